@@ -1,0 +1,73 @@
+import { fileURLToPath } from 'node:url'
+
+const root = (path: string) => fileURLToPath(new URL(path, import.meta.url))
+
+export default defineNuxtConfig({
+  modules: ['@pinia/nuxt', '@nuxtjs/tailwindcss', 'nuxt-security', '@nuxt/eslint', '@nuxt/test-utils/module'],
+  // Written out so that nobody has to guess: Nuxt 4 keeps the application in app/.
+  srcDir: 'app/',
+  compatibilityDate: '2026-01-01',
+  telemetry: false,
+  devtools: { enabled: false },
+  css: [
+    '@fontsource/ibm-plex-sans/latin-400.css',
+    '@fontsource/ibm-plex-sans/latin-600.css',
+    '@fontsource/ibm-plex-sans/latin-ext-400.css',
+    '@fontsource/ibm-plex-sans/latin-ext-600.css',
+    '@vuepic/vue-datepicker/dist/main.css',
+  ],
+  // No manifest request: nothing is fetched that the page does not need.
+  experimental: { appManifest: false },
+  components: [{ path: '~/components', pathPrefix: false }],
+  imports: { dirs: ['composables', 'stores'] },
+  // `reference-tables/` and `migrations/` stand outside the folders that Nuxt knows.
+  alias: {
+    '#reference-tables': root('./reference-tables'),
+    '#migrations': root('./migrations'),
+    '#server': root('./server'),
+  },
+  tailwindcss: { cssPath: '~/assets/css/main.css', configPath: 'tailwind.config.ts', viewer: false },
+  typescript: {
+    strict: true,
+    typeCheck: false,
+    sharedTsConfig: { include: ['../reference-tables/**/*', '../tests/unit/**/*'] },
+  },
+  runtimeConfig: {
+    dataDir: '.data/orthodrome', // NUXT_DATA_DIR
+    keyFile: '', // NUXT_KEY_FILE; empty: <dataDir>.key, beside the data folder and not inside it
+    appOrigin: 'http://127.0.0.1:3000', // NUXT_APP_ORIGIN
+    smtpUrl: 'smtp://127.0.0.1:2525', // NUXT_SMTP_URL
+    mailFrom: 'Orthodrome <reports@orthodrome.example>', // NUXT_MAIL_FROM
+    demo: '', // NUXT_DEMO: '1' for the demonstration
+    idleMinutes: 20, // NUXT_IDLE_MINUTES
+  },
+  vite: { server: { watch: { ignored: ['**/.data/**', '**/data/**'] } } },
+  nitro: {
+    typescript: { tsConfig: { include: ['../migrations/**/*', '../tests/server/**/*'] } },
+    serverAssets: [{ baseName: 'fonts', dir: './assets/fonts' }],
+  },
+  eslint: { config: { stylistic: { semi: false, quotes: 'single', indent: 2 } } },
+  security: {
+    // The routes that need a limit have their own (server/utils/rate-limit.ts): this one counts pages too.
+    rateLimiter: false,
+    corsHandler: false,
+    headers: {
+      contentSecurityPolicy: {
+        'default-src': ['\'self\''],
+        'script-src': ['\'self\'', '\'nonce-{{nonce}}\'', '\'strict-dynamic\''],
+        'style-src': ['\'self\'', '\'unsafe-inline\''],
+        'img-src': ['\'self\'', 'data:', 'blob:'],
+        'font-src': ['\'self\''],
+        'connect-src': ['\'self\''],
+        'frame-src': ['\'self\'', 'blob:'],
+        'base-uri': ['\'none\''],
+        'object-src': ['\'none\''],
+        'form-action': ['\'self\''],
+        'frame-ancestors': ['\'none\''],
+        'upgrade-insecure-requests': false,
+      },
+      crossOriginEmbedderPolicy: false,
+      referrerPolicy: 'no-referrer',
+    },
+  },
+})

@@ -1,0 +1,70 @@
+import type { AuditEventTable } from './audit-event'
+import type { BookingTable } from './booking'
+import type { CounterTable } from './counter'
+import type { DeliveryTable } from './delivery'
+import type { MetaTable } from './meta'
+import type { OneTimeLinkTable } from './one-time-link'
+import type { OrganisationTable } from './organisation'
+import type { OutboxMailTable } from './outbox-mail'
+import type { PatientTable } from './patient'
+import type { PhysicianTable } from './physician'
+import type { PracticeTable } from './practice'
+import type { RecoveryCodeTable } from './recovery-code'
+import type { ReferenceAdoptionTable } from './reference-adoption'
+import type { ReferralCopyTable } from './referral-copy'
+import type { ReferralTable } from './referral'
+import type { ReportPdfTable } from './report-pdf'
+import type { ReportTable } from './report'
+import type { ReportVersionTable } from './report-version'
+import type { RoleHoldingTable } from './role-holding'
+import type { RowCheckTable } from './row-check'
+import type { SessionTable } from './session'
+import type { SiteTable } from './site'
+import type { StateChangeTable } from './state-change'
+import type { StudyCellTable } from './study-cell'
+import type { StudyKeptCheckTable } from './study-kept-check'
+import type { StudyRowTable } from './study-row'
+import type { StudyRunTable } from './study-run'
+import type { StudyTable } from './study'
+import type { StudyTemperatureTable } from './study-temperature'
+import type { TaskTable } from './task'
+import type { UploadTable } from './upload'
+import type { UserTable } from './user'
+import type { ViewEventTable } from './view-event'
+
+/** Table name (camel case, see CamelCasePlugin in connection.ts) to row type. */
+export interface Tables {
+  meta: MetaTable
+  counter: CounterTable
+  organisation: OrganisationTable
+  site: SiteTable
+  user: UserTable
+  recoveryCode: RecoveryCodeTable
+  roleHolding: RoleHoldingTable
+  session: SessionTable
+  oneTimeLink: OneTimeLinkTable
+  practice: PracticeTable
+  physician: PhysicianTable
+  patient: PatientTable
+  referral: ReferralTable
+  referralCopy: ReferralCopyTable
+  stateChange: StateChangeTable
+  upload: UploadTable
+  booking: BookingTable
+  study: StudyTable
+  studyRun: StudyRunTable
+  studyRow: StudyRowTable
+  studyCell: StudyCellTable
+  studyTemperature: StudyTemperatureTable
+  studyKeptCheck: StudyKeptCheckTable
+  report: ReportTable
+  reportVersion: ReportVersionTable
+  reportPdf: ReportPdfTable
+  delivery: DeliveryTable
+  outboxMail: OutboxMailTable
+  task: TaskTable
+  referenceAdoption: ReferenceAdoptionTable
+  rowCheck: RowCheckTable
+  auditEvent: AuditEventTable
+  viewEvent: ViewEventTable
+}

@@ -1,0 +1,20 @@
+import type { Generated, Insertable, Selectable } from 'kysely'
+
+export interface OutboxMailTable {
+  id: string
+  template: string
+  deliveryId: string | null
+  toAddress: string
+  dataSealed: Generated<string>
+  messageId: string
+  state: 'held' | 'queued' | 'sending' | 'sent' | 'failed' | 'given-up' | 'bounced' | 'uncertain' | 'withdrawn'
+  dueAt: string
+  attempts: Generated<number>
+  leaseOwner: string | null
+  leaseUntil: string | null
+  lastError: Generated<string>
+  sentAt: string | null
+  createdAt: string
+}
+export type OutboxMail = Selectable<OutboxMailTable>
+export type NewOutboxMail = Insertable<OutboxMailTable>

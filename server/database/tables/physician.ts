@@ -1,0 +1,16 @@
+import type { Generated, Insertable, Selectable } from 'kysely'
+
+export interface PhysicianTable {
+  id: string
+  practiceId: string
+  name: string
+  title: Generated<string>
+  email: string
+  emailVerifiedAt: string | null
+  phone: Generated<string>
+  leftOn: string | null
+  userId: string | null
+  createdAt: string
+}
+export type Physician = Selectable<PhysicianTable>
+export type NewPhysician = Insertable<PhysicianTable>

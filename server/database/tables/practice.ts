@@ -1,0 +1,17 @@
+import type { Generated, Insertable, Selectable } from 'kysely'
+
+export interface PracticeTable {
+  id: string
+  name: string
+  town: string
+  address: Generated<string>
+  phone: Generated<string>
+  deliveryMethod: Generated<'encrypted-pdf' | 'collection-link'>
+  passphraseSealed: string | null
+  passphraseMadeAt: string | null
+  passphraseHandedOverAt: string | null
+  closedAt: string | null
+  createdAt: string
+}
+export type Practice = Selectable<PracticeTable>
+export type NewPractice = Insertable<PracticeTable>

@@ -1,0 +1,17 @@
+import type { Insertable, Selectable } from 'kysely'
+
+export interface UploadTable {
+  id: string
+  referralId: string | null
+  studyId: string | null
+  storedName: string
+  originalName: string
+  mediaType: string
+  byteCount: number
+  sha256: string
+  createdAt: string
+  createdBy: string
+  removedAt: string | null
+}
+export type Upload = Selectable<UploadTable>
+export type NewUpload = Insertable<UploadTable>

@@ -1,0 +1,18 @@
+import type { Generated, Insertable, Selectable } from 'kysely'
+
+export interface UserTable {
+  id: string
+  email: string
+  name: string
+  printedName: Generated<string>
+  credentials: Generated<string>
+  passwordHash: string | null
+  totpSecretSealed: string | null
+  totpEnabledAt: string | null
+  totpLastStep: number | null
+  lastSeenAt: string | null
+  deactivatedAt: string | null
+  createdAt: string
+}
+export type User = Selectable<UserTable>
+export type NewUser = Insertable<UserTable>

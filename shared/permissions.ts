@@ -1,0 +1,80 @@
+/**
+ * Who may do what. One table: action by role. Roles are held per site; the server asks for the action at the
+ * site the thing belongs to, at every request. tests/server/permissions.test.ts walks every cell.
+ */
+export const roles = ['technologist', 'neurologist', 'administrator', 'medical-director', 'referring-physician'] as const
+export type Role = (typeof roles)[number]
+export const roleLabels: Record<Role, string> = {
+  'technologist': 'technologist', 'neurologist': 'neurologist', 'administrator': 'administrator', 'medical-director': 'medical director', 'referring-physician': 'referring physician',
+}
+
+const T: Role = 'technologist'
+const N: Role = 'neurologist'
+const A: Role = 'administrator'
+const D: Role = 'medical-director'
+const R: Role = 'referring-physician'
+
+export const permissions = {
+  // Patients belong to the organisation: the register is searched across sites.
+  'patient.search': [T, N, A, D],
+  'patient.read': [T, N, A, D],
+  'patient.write': [T, A],
+
+  'referral.read': [T, N, A, D],
+  'referral.write': [T, A],
+  'referral.triage': [N, A, D],
+  'referral.book': [A],
+  'upload.read': [T, N, A, D],
+  'upload.write': [T, N, A],
+
+  // Measured values: those who record, read or answer for them.
+  'study.read': [T, N, D],
+  'study.record': [T, N],
+  'study.hand-over': [T, N],
+  'study.return': [N],
+
+  'report.read': [T, N, A, D],
+  'report.write': [N],
+  'report.sign': [N],
+  'report.correct': [N],
+
+  'delivery.read': [N, A, D],
+  'delivery.manage': [A],
+  'directory.read': [T, N, A, D],
+  'directory.write': [A],
+
+  'shelf.read': [T, N, A, D],
+  'shelf.propose': [N, A, D],
+  'shelf.approve': [D],
+
+  'people.read': [A, D],
+  'people.write': [A],
+  'site.read': [T, N, A, D],
+  'site.write': [A],
+  'audit.read': [A, D],
+  'task.read': [T, N, A, D],
+
+  // The desk of a referring physician: own referrals and final reports of own patients only.
+  'desk.read': [R],
+} as const satisfies Record<string, readonly Role[]>
+
+export type Action = keyof typeof permissions
+
+/** @example roleMay('technologist', 'report.sign') // => false */
+export function roleMay(role: Role, action: Action): boolean {
+  return (permissions[action] as readonly Role[]).includes(role)
+}
+
+/** The rooms of the bar, in order, each with the action that opens it. */
+export const rooms = [
+  { id: 'intake', label: 'Intake', path: '/intake', action: 'referral.triage' },
+  { id: 'bench', label: 'Bench', path: '/bench', action: 'study.record' },
+  { id: 'reading', label: 'Reading', path: '/reading', action: 'report.write' },
+  { id: 'dispatch', label: 'Dispatch', path: '/dispatch', action: 'delivery.read' },
+  { id: 'shelf', label: 'Shelf', path: '/shelf', action: 'shelf.read' },
+  { id: 'people', label: 'People', path: '/people', action: 'people.read' },
+  { id: 'ledger', label: 'Ledger', path: '/ledger', action: 'audit.read' },
+] as const satisfies readonly { id: string, label: string, path: string, action: Action }[]
+
+/** Roles whose holders sign or approve: they have the second factor from their first sign-in on. */
+export const rolesWithSecondFactor: readonly Role[] = [N, D]

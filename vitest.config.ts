@@ -1,0 +1,23 @@
+import { fileURLToPath } from 'node:url'
+import { defineVitestProject } from '@nuxt/test-utils/config'
+import { defineConfig } from 'vitest/config'
+
+const root = (path: string) => fileURLToPath(new URL(path, import.meta.url))
+const alias = {
+  '#shared': root('./shared'),
+  '#server': root('./server'),
+  '#reference-tables': root('./reference-tables'),
+  '#migrations': root('./migrations'),
+  '~~': root('./'),
+}
+
+export default defineConfig({
+  test: {
+    projects: [
+      { resolve: { alias }, test: { name: 'unit', environment: 'node', include: ['tests/unit/**/*.test.ts'] } },
+      { resolve: { alias }, test: { name: 'server', environment: 'node', include: ['tests/server/**/*.test.ts'], testTimeout: 30_000, hookTimeout: 60_000 } },
+      await defineVitestProject({ test: { name: 'nuxt', environment: 'nuxt', include: ['tests/nuxt/**/*.test.ts'], environmentOptions: { nuxt: { domEnvironment: 'happy-dom' } } } }),
+      { resolve: { alias }, test: { name: 'e2e', environment: 'node', include: ['tests/e2e/**/*.test.ts'], testTimeout: 180_000, hookTimeout: 120_000, fileParallelism: false, globalSetup: ['tests/e2e/global-setup.ts'] } },
+    ],
+  },
+})
