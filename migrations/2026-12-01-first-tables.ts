@@ -5,6 +5,16 @@ import { sql, type Kysely } from 'kysely'
  * Every table is STRICT. Booleans are 0 or 1. Columns ending in _json hold JSON text.
  * Triggers refuse any change to what must never change: audit, views, signed versions, their PDFs.
  */
+
+/** What a patient is found by. Letters that have no accent to take off (ł, ø, ß, …) and apostrophes are written once more as people type them. */
+const foldedNames = [['ł', 'l'], ['Ł', 'L'], ['ø', 'o'], ['Ø', 'O'], ['đ', 'd'], ['Đ', 'D'], ['ð', 'd'], ['þ', 'th'], ['ß', 'ss'], ['æ', 'ae'], ['Æ', 'Ae'], ['œ', 'oe'], ['ı', 'i'], ['\'\'', ''], ['’', '']]
+  .reduce((words, [from, to]) => `replace(${words}, '${from}', '${to}')`, 'new.family_name || \' \' || new.given_name')
+const searchWords = `new.family_name || ' ' || new.given_name || ' ' || ${foldedNames} || ' ' || new.record_number || ' ' || replace(new.record_number, '-', '') || ' ' || new.identifier || ' ' || new.birth_date`
+
+/** A room or a technologist cannot be in two bookings at once, a technologist not even at two sites. No booking lasts a day, so older ones are not looked at. */
+const overlapsNew = `b.id <> new.id AND b.state IN ('booked','arrived') AND b.starts_at < new.ends_at AND b.starts_at > strftime('%Y-%m-%dT%H:%M:%fZ', new.starts_at, '-1 day') AND b.ends_at > new.starts_at`
+const bookingOverlap = `(EXISTS (SELECT 1 FROM booking b WHERE b.site_id = new.site_id AND b.room = new.room AND ${overlapsNew}) OR EXISTS (SELECT 1 FROM booking b WHERE b.technologist_id = new.technologist_id AND ${overlapsNew}))`
+
 const statements = `
 CREATE TABLE meta (key TEXT PRIMARY KEY, value TEXT NOT NULL) STRICT;
 
@@ -60,11 +70,11 @@ CREATE INDEX patient_name ON patient(family_name, given_name);
 CREATE INDEX patient_birth ON patient(birth_date);
 CREATE VIRTUAL TABLE patient_search USING fts5(patient_id UNINDEXED, words, tokenize = 'unicode61 remove_diacritics 2', prefix = '2 3');
 CREATE TRIGGER patient_search_insert AFTER INSERT ON patient BEGIN
-  INSERT INTO patient_search (patient_id, words) VALUES (new.id, new.family_name || ' ' || new.given_name || ' ' || new.record_number || ' ' || replace(new.record_number, '-', '') || ' ' || new.identifier || ' ' || new.birth_date);
+  INSERT INTO patient_search (patient_id, words) VALUES (new.id, ${searchWords});
 END;
-CREATE TRIGGER patient_search_update AFTER UPDATE ON patient BEGIN
+CREATE TRIGGER patient_search_update AFTER UPDATE OF family_name, given_name, record_number, identifier, birth_date ON patient BEGIN
   DELETE FROM patient_search WHERE patient_id = new.id;
-  INSERT INTO patient_search (patient_id, words) VALUES (new.id, new.family_name || ' ' || new.given_name || ' ' || new.record_number || ' ' || replace(new.record_number, '-', '') || ' ' || new.identifier || ' ' || new.birth_date);
+  INSERT INTO patient_search (patient_id, words) VALUES (new.id, ${searchWords});
 END;
 
 CREATE TABLE referral (
@@ -78,9 +88,21 @@ CREATE TABLE referral (
   examination TEXT NOT NULL DEFAULT '', provisional_diagnosis TEXT NOT NULL DEFAULT '', previous_studies TEXT NOT NULL DEFAULT '',
   cautions_json TEXT NOT NULL DEFAULT '{}', needs TEXT NOT NULL DEFAULT '', consent_electronic TEXT NOT NULL DEFAULT 'not-asked', report_language TEXT NOT NULL DEFAULT 'en',
   protocol TEXT, received_at TEXT, created_at TEXT NOT NULL, created_by TEXT NOT NULL REFERENCES user(id), revision INTEGER NOT NULL DEFAULT 1) STRICT;
-CREATE INDEX referral_state ON referral(site_id, state, state_since);
+CREATE INDEX referral_list ON referral(site_id, state, urgency, state_since);
 CREATE INDEX referral_since ON referral(state_since);
 CREATE INDEX referral_patient ON referral(patient_id);
+CREATE TABLE referral_count (
+  site_id TEXT NOT NULL, state TEXT NOT NULL, urgency TEXT NOT NULL, n INTEGER NOT NULL, PRIMARY KEY (site_id, state, urgency)) STRICT, WITHOUT ROWID;
+CREATE TRIGGER referral_count_insert AFTER INSERT ON referral BEGIN
+  INSERT INTO referral_count (site_id, state, urgency, n) VALUES (new.site_id, new.state, new.urgency, 1) ON CONFLICT (site_id, state, urgency) DO UPDATE SET n = n + 1;
+END;
+CREATE TRIGGER referral_count_update AFTER UPDATE OF site_id, state, urgency ON referral BEGIN
+  UPDATE referral_count SET n = n - 1 WHERE site_id = old.site_id AND state = old.state AND urgency = old.urgency;
+  INSERT INTO referral_count (site_id, state, urgency, n) VALUES (new.site_id, new.state, new.urgency, 1) ON CONFLICT (site_id, state, urgency) DO UPDATE SET n = n + 1;
+END;
+CREATE TRIGGER referral_count_delete AFTER DELETE ON referral BEGIN
+  UPDATE referral_count SET n = n - 1 WHERE site_id = old.site_id AND state = old.state AND urgency = old.urgency;
+END;
 
 CREATE TABLE referral_copy (
   referral_id TEXT NOT NULL REFERENCES referral(id), physician_id TEXT NOT NULL REFERENCES physician(id), PRIMARY KEY (referral_id, physician_id)) STRICT;
@@ -97,17 +119,14 @@ CREATE INDEX upload_referral ON upload(referral_id);
 
 CREATE TABLE booking (
   id TEXT PRIMARY KEY, referral_id TEXT NOT NULL REFERENCES referral(id), site_id TEXT NOT NULL REFERENCES site(id), room TEXT NOT NULL, technologist_id TEXT REFERENCES user(id),
-  starts_at TEXT NOT NULL, ends_at TEXT NOT NULL CHECK (ends_at > starts_at), state TEXT NOT NULL CHECK (state IN ('booked','arrived','attended','did-not-attend','cancelled')), reason TEXT NOT NULL DEFAULT '',
+  starts_at TEXT NOT NULL, ends_at TEXT NOT NULL CHECK (ends_at > starts_at AND julianday(ends_at) - julianday(starts_at) < 1), state TEXT NOT NULL CHECK (state IN ('booked','arrived','attended','did-not-attend','cancelled')), reason TEXT NOT NULL DEFAULT '',
   created_at TEXT NOT NULL, created_by TEXT NOT NULL REFERENCES user(id)) STRICT;
 CREATE INDEX booking_day ON booking(site_id, starts_at);
 CREATE INDEX booking_referral ON booking(referral_id);
-CREATE TRIGGER booking_overlap_insert BEFORE INSERT ON booking WHEN new.state IN ('booked','arrived') AND EXISTS (
-  SELECT 1 FROM booking b WHERE b.state IN ('booked','arrived') AND b.site_id = new.site_id AND b.starts_at < new.ends_at AND b.ends_at > new.starts_at
-  AND (b.room = new.room OR (b.technologist_id IS NOT NULL AND b.technologist_id = new.technologist_id)))
+CREATE INDEX booking_technologist ON booking(technologist_id, starts_at);
+CREATE TRIGGER booking_overlap_insert BEFORE INSERT ON booking WHEN new.state IN ('booked','arrived') AND ${bookingOverlap}
   BEGIN SELECT RAISE(ABORT, 'booking-overlap'); END;
-CREATE TRIGGER booking_overlap_update BEFORE UPDATE ON booking WHEN new.state IN ('booked','arrived') AND EXISTS (
-  SELECT 1 FROM booking b WHERE b.id <> new.id AND b.state IN ('booked','arrived') AND b.site_id = new.site_id AND b.starts_at < new.ends_at AND b.ends_at > new.starts_at
-  AND (b.room = new.room OR (b.technologist_id IS NOT NULL AND b.technologist_id = new.technologist_id)))
+CREATE TRIGGER booking_overlap_update BEFORE UPDATE ON booking WHEN new.state IN ('booked','arrived') AND ${bookingOverlap}
   BEGIN SELECT RAISE(ABORT, 'booking-overlap'); END;
 
 CREATE TABLE study (
@@ -134,6 +153,9 @@ CREATE TABLE study_cell (
   row_id TEXT NOT NULL REFERENCES study_row(id), field TEXT NOT NULL, study_id TEXT NOT NULL REFERENCES study(id), entry_json TEXT NOT NULL, revision INTEGER NOT NULL,
   saved_at TEXT NOT NULL, saved_by TEXT NOT NULL REFERENCES user(id), PRIMARY KEY (row_id, field)) STRICT, WITHOUT ROWID;
 CREATE INDEX study_cell_study ON study_cell(study_id);
+CREATE TABLE study_cell_save (
+  study_id TEXT NOT NULL REFERENCES study(id), save_id TEXT NOT NULL, row_id TEXT NOT NULL, field TEXT NOT NULL, revision INTEGER NOT NULL, saved_at TEXT NOT NULL,
+  PRIMARY KEY (study_id, save_id)) STRICT, WITHOUT ROWID;
 
 CREATE TABLE study_temperature (
   id TEXT PRIMARY KEY, study_id TEXT NOT NULL REFERENCES study(id), segment TEXT NOT NULL CHECK (segment IN ('hand','foot')), side TEXT NOT NULL CHECK (side IN ('right','left')),

@@ -12,6 +12,7 @@ import type { PracticeTable } from './practice'
 import type { RecoveryCodeTable } from './recovery-code'
 import type { ReferenceAdoptionTable } from './reference-adoption'
 import type { ReferralCopyTable } from './referral-copy'
+import type { ReferralCountTable } from './referral-count'
 import type { ReferralTable } from './referral'
 import type { ReportPdfTable } from './report-pdf'
 import type { ReportTable } from './report'
@@ -21,6 +22,7 @@ import type { RowCheckTable } from './row-check'
 import type { SessionTable } from './session'
 import type { SiteTable } from './site'
 import type { StateChangeTable } from './state-change'
+import type { StudyCellSaveTable } from './study-cell-save'
 import type { StudyCellTable } from './study-cell'
 import type { StudyKeptCheckTable } from './study-kept-check'
 import type { StudyRowTable } from './study-row'
@@ -47,6 +49,7 @@ export interface Tables {
   physician: PhysicianTable
   patient: PatientTable
   referral: ReferralTable
+  referralCount: ReferralCountTable
   referralCopy: ReferralCopyTable
   stateChange: StateChangeTable
   upload: UploadTable
@@ -55,6 +58,7 @@ export interface Tables {
   studyRun: StudyRunTable
   studyRow: StudyRowTable
   studyCell: StudyCellTable
+  studyCellSave: StudyCellSaveTable
   studyTemperature: StudyTemperatureTable
   studyKeptCheck: StudyKeptCheckTable
   report: ReportTable
