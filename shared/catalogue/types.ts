@@ -9,10 +9,15 @@ export type TemperatureSegment = 'hand' | 'foot'
 export interface StimulationSite {
   id: string
   label: string
-  /** Usual and possible distance to the previous, more distal site, in mm: outside usual is questioned, outside possible is stopped. */
+  /**
+   * Usual and possible distance in mm: to the previous, more distal site, or, for the most distal site and for every
+   * sensory or mixed row, to the recording electrode. Outside usual is questioned, outside possible is stopped.
+   */
   segmentMm?: { usualMin: number, usualMax: number, possibleMin: number, possibleMax: number }
   /** "forearm", "across the elbow": the segment that ends at this site, for labels and limits. */
   segment?: { id: string, label: string, entrapment?: boolean }
+  /** Fixed distance of this site to the recording electrode where it differs from the technique's, mm. */
+  standardDistanceMm?: number
   /** Laid out when the run is added; the others are one keystroke away. */
   usual?: boolean
 }
@@ -24,7 +29,7 @@ export interface StimulationSite {
 export interface Technique {
   id: string
   kind: RunKind
-  /** 'median', 'superficial fibular': the nerve's id. */
+  /** 'median', 'superficial-fibular': the nerve's id; its words are in `nerveLabels`. */
   nerve: string
   /** "median motor", "median sensory, digit 2": without the side. */
   label: string
@@ -33,7 +38,7 @@ export interface Technique {
   limb: Limb
   temperatureSegment?: TemperatureSegment
   roots: string
-  /** Standard distance of the most distal site to the recording electrode, mm. */
+  /** Standard distance of the first site that is laid out to the recording electrode, mm. */
   standardDistanceMm?: number
   /** Sensory only: what is usual in the sets; the run says what was done. */
   direction?: 'antidromic' | 'orthodromic'
