@@ -1,0 +1,148 @@
+import type { Technique } from '../catalogue/types'
+import type { Result, RunAssessment } from '../calculations/types'
+import type { Run, RunRow } from '../schemas/study'
+import { axisTicks, type Tick } from './axis-ticks'
+import type { Tone } from './tokens'
+import { limitsOf, toneOf } from './verdict-words'
+
+export interface TravelPoint { rowId: string, site: string, label: string, x: number, y: number, ms: number, mm: number }
+export interface TravelSegment {
+  rowId: string
+  from: { x: number, y: number }
+  to: { x: number, y: number }
+  tone: Tone
+  /** "59 m/s"; where it stands, and whether its text ends or starts there. */
+  words: string
+  label: { x: number, y: number, anchor: 'start' | 'end' }
+}
+/** The slopes a segment's limit allows, as a closed path. */
+export interface TravelWedge { rowId: string, path: string }
+
+export interface TravelPlotGeometry {
+  width: number
+  height: number
+  /** The drawing area. */
+  area: { left: number, right: number, top: number, bottom: number }
+  points: TravelPoint[]
+  segments: TravelSegment[]
+  wedges: TravelWedge[]
+  /** The other side's line, dashed; '' without one. */
+  otherPath: string
+  otherSide: string
+  timeTicks: Tick[]
+  distanceTicks: Tick[]
+  origin: string
+  /** What could not be placed: "elbow: no response". */
+  unplaced: string[]
+  struck: boolean
+}
+
+interface Placed { row: RunRow, ms: number, mm: number }
+
+/** The path of one side's run that can be drawn; the other side's stands behind it. */
+export interface OtherSide { run: Run }
+
+/** Rows with a latency, at their distance along the limb. A missing distance ends the chain: what lies beyond has no place. */
+function placeRows(run: Run): Placed[] {
+  const placed: Placed[] = []
+  let mm: number | null = 0
+  for (const [index, row] of run.rows.entries()) {
+    const step: unknown = index === 0 ? 0 : row.values.distanceMm
+    mm = mm !== null && typeof step === 'number' ? mm + step : null
+    const ms = row.values.latencyMs
+    if (mm !== null && typeof ms === 'number') placed.push({ row, ms, mm })
+  }
+  return placed
+}
+
+const labelOf = (technique: Technique, siteId: string) => technique.sites.find(site => site.id === siteId)?.label ?? siteId
+
+function unplacedRows(run: Run, technique: Technique, placed: Placed[]): string[] {
+  return run.rows.filter(row => !placed.some(point => point.row.id === row.id)).map((row) => {
+    const latency = row.values.latencyMs
+    const because = typeof latency === 'string' ? latency.replace('-', ' ') : latency === undefined ? 'latency missing' : 'distance missing'
+    return `${labelOf(technique, row.site)}: ${because}`
+  })
+}
+
+const velocityOf = (assessment: RunAssessment | undefined, rowId: string): Result | undefined =>
+  assessment?.results.find(result => result.rowId === rowId && result.quantity === 'velocityMps')
+
+interface Frame { x: (ms: number) => number, y: (mm: number) => number, maxMs: number }
+
+/** m/s is mm/ms: a limit of 51 m/s lets 51 mm take 1 ms at most. */
+function wedgeOf(from: Placed, to: Placed, velocity: Result, { x, y, maxMs }: Frame): TravelWedge | null {
+  const limits = limitsOf(velocity.verdict)
+  const lower = limits.find(limit => limit.bound === 'lower')?.value
+  const upper = limits.find(limit => limit.bound === 'upper')?.value
+  const length = to.mm - from.mm
+  if (limits.length === 0 || length <= 0 || (lower !== undefined && lower <= 0)) return null
+  const earliest = upper ? from.ms + length / upper : from.ms
+  const latest = lower ? from.ms + length / lower : maxMs
+  const points = [[from.ms, from.mm], [earliest, to.mm], [Math.min(latest, maxMs), to.mm]] as const
+  const clipped = latest > maxMs ? [[maxMs, from.mm + (maxMs - from.ms) * (lower ?? 0)] as const] : []
+  return { rowId: to.row.id, path: `M${[...points, ...clipped].map(([ms, mm]) => `${x(ms)} ${y(mm)}`).join('L')}Z` }
+}
+
+function segmentOf(from: Placed, to: Placed, velocity: Result | undefined, { x, y }: Frame): TravelSegment {
+  const start = { x: x(from.ms), y: y(from.mm) }
+  const end = { x: x(to.ms), y: y(to.mm) }
+  const tight = start.y - end.y < 34
+  return {
+    rowId: to.row.id,
+    from: start,
+    to: end,
+    tone: velocity ? toneOf(velocity) : 'ink',
+    words: velocity?.value.kind === 'value' ? `${velocity.print} m/s` : '',
+    label: { x: (start.x + end.x) / 2 + (tight ? -9 : 10), y: (start.y + end.y) / 2 + 5, anchor: tight ? 'end' : 'start' },
+  }
+}
+
+/** Neighbouring rows that both have a place; across a missing one nothing is drawn, as nothing was computed. */
+function neighbours(run: Run, placed: Placed[]): [Placed, Placed][] {
+  return placed.slice(1).flatMap((to, index) => {
+    const from = placed[index] as Placed
+    return run.rows.indexOf(to.row) - run.rows.indexOf(from.row) === 1 ? [[from, to] as [Placed, Placed]] : []
+  })
+}
+
+function frameOf(placed: Placed[], others: Placed[], width: number, height: number) {
+  const area = { left: 36, right: width - 10, top: 24, bottom: height - 26 }
+  const all = [...placed, ...others]
+  const time = axisTicks(Math.max(...all.map(point => point.ms)) * 1.15)
+  const distance = axisTicks(Math.max(100, ...all.map(point => point.mm)))
+  const round = (value: number) => Math.round(value * 100) / 100
+  const x = (ms: number) => round(area.left + ms / time.max * (area.right - area.left))
+  const y = (mm: number) => round(area.bottom - mm / distance.max * (area.bottom - area.top))
+  return { area, x, y, maxMs: time.max, timeTicks: time.values.map(v => ({ value: v, at: x(v) })), distanceTicks: distance.values.map(v => ({ value: v, at: y(v) })) }
+}
+
+/**
+ * Distance along the limb upward, time to the right: one point per stimulation site, the slope between two is the velocity.
+ * Null when no site can be placed, and for techniques that are not stimulated at a series of sites.
+ *
+ * @param other the same technique on the other side, drawn dashed behind it
+ * @example travelPlotGeometry(run, runAssessment, technique)?.segments[0]?.words // => '59 m/s'
+ */
+export function travelPlotGeometry(run: Run, assessment: RunAssessment | undefined, technique: Technique, other?: OtherSide, { width = 296, height = 210 } = {}): TravelPlotGeometry | null {
+  if (technique.kind !== 'motor') return null
+  const placed = placeRows(run)
+  const others = other ? placeRows(other.run) : []
+  if (placed.length === 0) return null
+  const { area, timeTicks, distanceTicks, ...frame } = frameOf(placed, others, width, height)
+  const pairs = neighbours(run, placed)
+  return {
+    width, height, area, timeTicks, distanceTicks,
+    points: placed.map(({ row, ms, mm }) => ({ rowId: row.id, site: row.site, label: labelOf(technique, row.site), x: frame.x(ms), y: frame.y(mm), ms, mm })),
+    segments: pairs.map(([from, to]) => segmentOf(from, to, velocityOf(assessment, to.row.id), frame)),
+    wedges: pairs.flatMap(([from, to]) => {
+      const velocity = velocityOf(assessment, to.row.id)
+      return velocity ? wedgeOf(from, to, velocity, frame) ?? [] : []
+    }),
+    otherPath: others.length > 1 ? `M${others.map(point => `${frame.x(point.ms)} ${frame.y(point.mm)}`).join('L')}` : '',
+    otherSide: other && others.length > 1 ? other.run.side.toUpperCase() : '',
+    origin: labelOf(technique, (run.rows[0] as RunRow).site),
+    unplaced: unplacedRows(run, technique, placed),
+    struck: Boolean(assessment?.supersededBy),
+  }
+}
