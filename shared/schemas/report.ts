@@ -1,6 +1,7 @@
 import * as z from 'zod'
 import { idSchema, sideSchema } from './common'
 import type { Assessment, Policy } from '../calculations/types'
+import type { Technique } from '../catalogue/types'
 import type { ReportStatus, StudyState } from '../states'
 import type { ReferralInput, Urgency, RouteNode } from './referral'
 import type { PatientBand, PatientView } from './patient'
@@ -90,6 +91,9 @@ export interface ReadingView {
   namesakes: { recordNumber: string, name: string, birthDate: string }[]
 }
 
+/** One difference between a version and the one before it. */
+export interface ReportChange { what: string, before: string, after: string }
+
 /** What a signature freezes: canonical JSON of this is hashed. Shown for ever from this copy. */
 export const SNAPSHOT_FORMAT = 'orthodrome-report/1'
 export interface ReportSnapshot {
@@ -113,8 +117,14 @@ export interface ReportSnapshot {
   needleExamination: string
   policy: Policy
   assessment: Assessment
+  /** The catalogue entries of the study's runs as they were: labels of sites may change later, the signed copy keeps these. */
+  techniques: Technique[]
   findings: { key: string, runIds: string[], text: string, edited: boolean }[]
   draft: ReportDraft
+  /** Questions of the check before signing that the reader answered, with the words of the question as it stood. */
+  resolvedChecks: { key: string, sentence: string, reason: string }[]
+  /** Against the version before, item by item. */
+  changes: ReportChange[]
   signature: { userId: string, name: string, credentials: string, meaning: string, at: string, timeZone: string }
 }
 

@@ -1,0 +1,32 @@
+import type { ReportSnapshot } from '../../schemas/report'
+import { heading, paragraph, withSides, type Block, type ReportSection } from '../blocks'
+import type { ReportSource } from '../source'
+import { reportWords } from '../words'
+
+const line = (label: string, question: string, reason: string): Block =>
+  paragraph([{ text: `${label}. `, strong: true }, ...withSides(question ? `${question} ` : ''), { text: `Reason: ${reason}` }], 'faint')
+
+function keptLines({ assessment, study }: ReportSnapshot, label: string): Block[] {
+  return study.keptChecks.flatMap((kept) => {
+    const remark = assessment.remarks.find(candidate => candidate.key === kept.key)
+    return remark ? [line(label, remark.sentence, kept.reason)] : []
+  })
+}
+
+function coldLines({ draft, assessment }: ReportSnapshot, label: string): Block[] {
+  return draft.interpretCold.flatMap((item) => {
+    const run = assessment.runs.find(candidate => candidate.runId === item.runId)
+    return run ? [line(label, `${run.title}.`, item.reason)] : []
+  })
+}
+
+/** A question of the program reaches a signed report only with the reason it was answered with; nothing is answered silently. */
+export const questions: ReportSection<ReportSource> = {
+  id: 'questions',
+  blocks: ({ snapshot }) => {
+    const words = reportWords(snapshot.language)
+    const resolved = snapshot.resolvedChecks.map(check => line(words.resolvedByReader, check.sentence, check.reason))
+    const lines = [...coldLines(snapshot, words.interpretedCold), ...keptLines(snapshot, words.keptAtBench), ...resolved]
+    return lines.length > 0 ? [heading(2, words.questionsKept, 'questions'), ...lines] : []
+  },
+}

@@ -1,0 +1,76 @@
+import { heading, paragraph, type Block, type ReportSection } from '../blocks'
+import type { ReportSource } from '../source'
+import { reportWords } from '../words'
+import { formatMoment } from '../dates'
+import type { ReportSnapshot } from '../../schemas/report'
+
+const paragraphs = (text: string): Block[] => text.split(/\n+/).map(line => line.trim()).filter(Boolean).map(line => paragraph(line))
+const part = (title: string, id: string, text: string): Block[] => text.trim() ? [heading(2, title, id), ...paragraphs(text)] : []
+
+/** How the numbers fit the question. */
+export const correlation: ReportSection<ReportSource> = {
+  id: 'correlation',
+  blocks: ({ snapshot }) => part(reportWords(snapshot.language).correlation, 'correlation', snapshot.draft.correlation),
+}
+
+/** What this study cannot say; at least "none identified". */
+export const limitations: ReportSection<ReportSource> = {
+  id: 'limitations',
+  blocks: ({ snapshot }) => {
+    const text = snapshot.draft.limitations.map(line => /[.!?]$/.test(line) ? line : `${line}.`).join(' ')
+    return part(reportWords(snapshot.language).limitations, 'limitations', text)
+  },
+}
+
+export const recommendation: ReportSection<ReportSource> = {
+  id: 'recommendation',
+  blocks: ({ snapshot }) => part(reportWords(snapshot.language).recommendation, 'recommendation', snapshot.draft.recommendation),
+}
+
+/** A finding that needed prompt contact: who was told, when, how, and whether it was read back. */
+export const promptContact: ReportSection<ReportSource> = {
+  id: 'prompt-contact',
+  blocks: ({ snapshot }) => {
+    const contact = snapshot.draft.promptContact
+    if (!contact) return []
+    const at = Number.isNaN(Date.parse(contact.at)) ? contact.at : formatMoment(contact.at, snapshot.site.timeZone)
+    const text = [`${contact.who}, ${at}, ${contact.means}, ${contact.readBack ? 'read back' : 'not read back'}.`, contact.note].filter(Boolean).join(' ')
+    return part(reportWords(snapshot.language).promptContact, 'prompt-contact', text)
+  },
+}
+
+function referredHistory({ referral }: ReportSnapshot): string {
+  const onset = referral.onset ? `onset ${referral.onset}` : ''
+  return [referral.symptoms, onset].filter(Boolean).join('; ')
+}
+
+function historyParagraphs(snapshot: ReportSnapshot): Block[] {
+  const words = reportWords(snapshot.language)
+  const line = (who: string, text: string) => text.trim() ? [paragraph([{ text: `${who}: `, faint: true }, { text: text.trim() }])] : []
+  return [
+    ...line(`${words.history}, ${words.historyAsReferred.toLowerCase()}`, referredHistory(snapshot)),
+    ...line(`${words.history}, ${words.byReader.toLowerCase()}`, snapshot.draft.history),
+    ...line(`${words.examination}, ${words.historyAsReferred.toLowerCase()}`, snapshot.referral.examination),
+    ...line(`${words.examination}, ${words.byReader.toLowerCase()}`, snapshot.draft.examination),
+  ]
+}
+
+/** History and examination, said apart by who gave them. */
+export const history: ReportSection<ReportSource> = {
+  id: 'history',
+  blocks: ({ snapshot }) => {
+    const words = reportWords(snapshot.language)
+    const lines = historyParagraphs(snapshot)
+    return lines.length > 0 ? [heading(2, `${words.history}, ${words.examination.toLowerCase()}`, 'history'), ...lines] : []
+  },
+}
+
+/** The numbers in words, each sentence tied to its runs. */
+export const findings: ReportSection<ReportSource> = {
+  id: 'findings',
+  blocks: ({ snapshot }) => {
+    const words = reportWords(snapshot.language)
+    const sentences = snapshot.findings.map(finding => paragraph(finding.text, 'plain', finding.runIds))
+    return [heading(2, words.findings, 'findings'), ...(sentences.length > 0 ? sentences : [paragraph(words.noFindings)])]
+  },
+}
