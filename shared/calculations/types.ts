@@ -58,6 +58,8 @@ export interface Result {
   side?: Side
   /** A typed quantity id or a computed one (velocityMps, amplitudeFallPercent, …). */
   quantity: string
+  /** Stimulation site id (a site's own number) or segment id (velocity, fall) it belongs to; left out where there is none. */
+  at?: string
   /** "latency at wrist", "velocity, elbow to wrist", "sensory onset difference". */
   label: string
   unit: string
@@ -130,6 +132,30 @@ export interface PatternResult {
   runIds: string[]
 }
 
+/** One number of this study beside the same number of an earlier one. */
+export interface EarlierChange {
+  /** `earlier/${studyId}/${key of the result}`. */
+  key: string
+  resultKey: string
+  runId?: string
+  side?: Side
+  studyId: string
+  studyDate: string
+  quantity: string
+  label: string
+  unit: string
+  print: string
+  printEarlier: string
+  /** 100 x (now - then) / then, in per cent. */
+  changePercent: ComputedValue
+  /** Change in per cent that repeated measurement alone can make; null where no band is published. */
+  bandPercent: number | null
+  beyondBand: 'yes' | 'no' | 'not-known'
+  /** "a response where there was none", "another technologist". */
+  remarks: string[]
+  source: string
+}
+
 export interface FindingSentence {
   /** Stable over recalculation: `run/${runId}`, `compare/right/median-ulnar-sensory`. */
   key: string
@@ -159,6 +185,8 @@ export interface Assessment {
   chance: ChanceLine
   patterns: PatternResult[]
   findings: FindingSentence[]
+  /** Beside earlier signed studies of the same patient; empty when there are none. */
+  changes: EarlierChange[]
   setsUsed: { setId: string, version: number, title: string, citation: string, percentiles: string, recalledRows: number, verifiedRows: number }[]
   /** Keys of every flagged result, in printing order. */
   flagged: string[]

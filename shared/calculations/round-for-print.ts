@@ -1,0 +1,82 @@
+import type { AppliedLimit } from './types'
+
+/**
+ * The only rounding of the program: half away from zero on the decimal digits, never on the binary ones.
+ * Comparison never uses it: values are compared unrounded (compare-with-limit.ts).
+ *
+ * `(4.35).toFixed(1)` is '4.3' and `3.8 - 2.7` is 1.0999999999999996: twelve significant digits are kept first, so
+ * that 4.35 prints as 4.4 and the difference as 1.1.
+ *
+ * Source: number 1 of this project's decisions on numbers (latency 1 decimal, velocity 0, and so on).
+ *
+ * @example
+ * roundForPrint(53.75, 0) // => '54'
+ * roundForPrint(4.35, 1) // => '4.4'
+ * roundForPrint(-0.04, 1) // => '0.0'
+ */
+export function roundForPrint(value: number, decimals: number): string {
+  if (!Number.isFinite(value)) return 'not computable'
+  const size = Math.abs(value)
+  if (size >= 1e15) return value.toPrecision(12)
+  const rounded = shift(Math.round(shift(Number(size.toPrecision(12)), decimals)), -decimals)
+  const text = rounded.toFixed(decimals)
+  return value < 0 && rounded !== 0 ? `-${text}` : text
+}
+
+/** Moves the decimal point on the decimal digits, so that 4.35 becomes 43.5 and not 43.49999. */
+function shift(value: number, places: number): number {
+  const [digits, exponent = '0'] = String(value).split('e')
+  return Number(`${digits}e${Number(exponent) + places}`)
+}
+
+/**
+ * Rounds for print, with as many decimals more as it takes for the printed number to stand on the same side of each
+ * limit as the number itself: 50.6 against 51 prints as 50.6, not as 51.
+ *
+ * @example
+ * roundBesideLimits(50.6, 0, [{ bound: 'lower', value: 51 }]) // => '50.6'
+ * roundBesideLimits(53.75, 0, [{ bound: 'lower', value: 51 }]) // => '54'
+ */
+export function roundBesideLimits(value: number, decimals: number, limits: readonly Pick<AppliedLimit, 'value' | 'bound'>[]): string {
+  const plain = roundForPrint(value, decimals)
+  if (limits.length === 0 || limits.every(limit => sameSide(value, Number(plain), limit))) return plain
+  for (let more = decimals + 1; more <= decimals + 8; more += 1) {
+    const text = roundForPrint(value, more)
+    if (limits.every(limit => sameSide(value, Number(text), limit))) return text
+  }
+  return String(value)
+}
+
+function sameSide(value: number, printed: number, limit: Pick<AppliedLimit, 'value' | 'bound'>): boolean {
+  return isOutside(value, limit) === isOutside(printed, limit)
+}
+
+/** 0.2 + 0.4 + 0.3 is not above 0.9, and 3.2 - 2.8 is not above 0.4. */
+export const TOLERANCE = 1e-9
+
+/**
+ * Is the value outside this limit? A value exactly on a limit is within; the tolerance of 1e-9 takes up what binary
+ * fractions add.
+ *
+ * @example
+ * isOutside(0.2 + 0.4 + 0.3, { bound: 'upper', value: 0.9 }) // => false
+ * isOutside(50.6, { bound: 'lower', value: 51 }) // => true
+ */
+export function isOutside(value: number, limit: Pick<AppliedLimit, 'value' | 'bound'>): boolean {
+  return limit.bound === 'upper' ? value > limit.value + TOLERANCE : value < limit.value - TOLERANCE
+}
+
+/**
+ * A limit as it is printed: the decimals of its quantity, and up to two more where those would change it.
+ *
+ * @example
+ * printLimit(4, 1) // => '4.0'
+ * printLimit(42.424, 0) // => '42.42'
+ */
+export function printLimit(value: number, decimals: number): string {
+  for (let more = decimals; more < decimals + 2; more += 1) {
+    const text = roundForPrint(value, more)
+    if (Math.abs(Number(text) - value) < TOLERANCE) return text
+  }
+  return roundForPrint(value, decimals + 2)
+}
