@@ -1,0 +1,22 @@
+import * as z from 'zod'
+import { changedFields, changes, event, nothing } from './kind'
+
+const upload = z.object({ uploadId: z.string(), mediaType: z.string(), byteCount: z.number().int(), sha256: z.string() })
+
+/** Patients, referrals, uploads, bookings. Reasons that people gave stand with the change of state. */
+export const intakeEvents = {
+  'patient.added': event(z.object({ recordNumber: z.string() }), data => `added the patient ${data.recordNumber}`),
+  'patient.changed': event(changes, data => `changed a patient: ${changedFields(data)}`),
+  'referral.added': event(z.object({ number: z.string() }), data => `entered the referral ${data.number}`),
+  'referral.changed': event(changes, data => `changed a referral: ${changedFields(data)}`),
+  'referral.received': event(nothing, () => 'received a referral'),
+  'referral.accepted': event(z.object({ protocol: z.string() }), data => `accepted a referral with the protocol ${data.protocol}`),
+  'referral.returned': event(nothing, () => 'returned a referral for information'),
+  'referral.declined': event(nothing, () => 'declined a referral'),
+  'referral.cancelled': event(nothing, () => 'cancelled a referral'),
+  'referral.booked': event(z.object({ bookingId: z.string(), startsAt: z.string(), instead: z.string().nullable().default(null) }), data => `booked a referral for ${data.startsAt}${data.instead ? ', in place of an earlier booking' : ''}`),
+  'referral.not-attended': event(z.object({ bookingId: z.string().nullable() }), () => 'noted that the patient did not attend'),
+  'upload.added': event(upload, data => `added a file (${data.mediaType}, ${data.byteCount} bytes)`),
+  'upload.removed': event(upload, data => `removed a file (${data.mediaType}, ${data.byteCount} bytes)`),
+  'booking.arrived': event(z.object({ bookingId: z.string() }), () => 'noted that the patient arrived'),
+}
