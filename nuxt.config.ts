@@ -40,6 +40,7 @@ export default defineNuxtConfig({
     mailFrom: 'Orthodrome <reports@orthodrome.example>', // NUXT_MAIL_FROM
     demo: '', // NUXT_DEMO: '1' for the demonstration
     idleMinutes: 20, // NUXT_IDLE_MINUTES
+    trustProxy: '', // NUXT_TRUST_PROXY: '1' behind one reverse proxy of yours, which then says who calls
   },
   vite: { server: { watch: { ignored: ['**/.data/**', '**/data/**'] } } },
   nitro: {

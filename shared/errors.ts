@@ -5,6 +5,7 @@
 export const errors = {
   'not-signed-in': { status: 401, screen: 'You are signed out. Sign in again; what you typed is kept on this page.' },
   'not-allowed': { status: 403, screen: 'Your role at this site does not allow this. An administrator can change roles under People.' },
+  'second-factor-needed': { status: 403, screen: 'Set up the second factor first: your role signs or approves. Go to Profile.' },
   'other-origin': { status: 403, screen: 'The request came from another site and was refused.' },
   'not-found': { status: 404, screen: 'Nothing was found at this address, or you hold no role at its site.' },
   'not-valid': { status: 422, screen: 'Some entries need a second look. Nothing was lost.' },

@@ -1,0 +1,40 @@
+import { getHeader, setResponseHeader, type H3Event } from 'h3'
+import { DomainError, type ApiErrorBody } from '#shared/errors'
+import { answerError, routeForLog } from './api-handler'
+import { isPublicRoute } from './public-routes'
+import { requestSession } from './request-session'
+import { servicesOf } from './services'
+
+const SAFE = ['GET', 'HEAD', 'OPTIONS']
+
+/**
+ * Stands before every route: /api is closed unless public-routes.ts says otherwise, and a call that changes something
+ * must come from our own pages. Pages carry patient data too, so nothing but the built files may be cached.
+ * @returns the answer that ends the request, or undefined to go on
+ */
+export async function guardRequest(event: H3Event): Promise<ApiErrorBody | undefined> {
+  const path = event.path.split('?')[0]!
+  if (!path.startsWith('/_nuxt/')) setResponseHeader(event, 'Cache-Control', 'no-store')
+  if (!path.startsWith('/api/') && path !== '/api') return undefined
+  try {
+    if (!SAFE.includes(event.method) && !isOwnOrigin(event)) throw new DomainError('other-origin')
+    event.context.session = await requestSession(event)
+    if (!event.context.session && !isPublicRoute(event.method, path)) throw new DomainError('not-signed-in')
+    return undefined
+  }
+  catch (error) {
+    if (error instanceof DomainError) servicesOf(event).log.info({ refused: error.code, method: event.method, route: routeForLog(event) }, 'A request was refused')
+    return answerError(event, error)
+  }
+}
+
+/**
+ * Browsers send Origin with every POST, PUT, PATCH and DELETE, and Sec-Fetch-Site beside it; a page elsewhere can
+ * change neither. A caller that sends neither is no browser and has no cookie of ours.
+ */
+export function isOwnOrigin(event: H3Event): boolean {
+  const origin = getHeader(event, 'origin')
+  if (origin !== undefined) return origin === new URL(servicesOf(event).settings.appOrigin).origin
+  const site = getHeader(event, 'sec-fetch-site')
+  return site === undefined || site === 'same-origin' || site === 'none'
+}

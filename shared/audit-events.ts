@@ -1,0 +1,66 @@
+import * as z from 'zod'
+import { benchEvents } from './audit-events/bench'
+import { intakeEvents } from './audit-events/intake'
+import { shelfEvents } from './audit-events/shelf'
+
+/**
+ * The audit trail's vocabulary: one list, one entry each. An entry is the shape of its data and the sentence that the
+ * ledger shows. Data holds ids, codes, states and the names of changed fields; never a password, a token, or a text
+ * about a patient that stands elsewhere anyway. Old entries stay for ever: events that use them do.
+ */
+export interface AuditEventKind<S extends z.ZodType> { schema: S, sentence: (data: z.output<S>) => string }
+
+function event<S extends z.ZodType>(schema: S, sentence: (data: z.output<S>) => string): AuditEventKind<S> {
+  return { schema, sentence }
+}
+const nothing = z.object({})
+const fields = z.object({ fields: z.array(z.string()) })
+const because = z.object({ because: z.string() })
+const list = (words: readonly string[]) => words.join(', ')
+
+export const auditEvents = {
+  // Accounts, sites, access
+  'session.signed-in': event(z.object({ secondFactor: z.boolean(), recoveryCode: z.boolean().default(false) }), data => `signed in${data.recoveryCode ? ' with a recovery code' : data.secondFactor ? ' with a second factor' : ''}`),
+  'session.refused': event(z.object({ because: z.string(), address: z.string().default('') }), data => `a sign-in was refused: ${data.because}`),
+  'session.ended': event(z.object({ because: z.string(), count: z.number().int().default(1) }), data => `${data.count === 1 ? 'a session' : `${data.count} sessions`} ended: ${data.because}`),
+  'access.refused': event(z.object({ action: z.string(), because: z.string() }), data => `access was refused (${data.action}): ${data.because}`),
+  'account.password-set': event(z.object({ by: z.enum(['self', 'link', 'first-run']) }), data => `set a password${data.by === 'link' ? ' through a one-time link' : ''}`),
+  'account.second-factor-set': event(z.object({ replaced: z.boolean() }), data => data.replaced ? 'replaced the second factor' : 'set up the second factor'),
+  'account.second-factor-removed': event(nothing, () => 'the second factor was removed through a one-time link'),
+  'account.link-asked': event(nothing, () => 'asked for a link to set a password; a second person has to ask as well'),
+  'account.link-made': event(z.object({ askedBy: z.string().nullable().default(null) }), data => `made a one-time link to set a password${data.askedBy ? ', asked for by another person before' : ''}`),
+  'account.profile-changed': event(fields, data => `changed the own profile: ${list(data.fields)}`),
+  'person.added': event(nothing, () => 'added a person'),
+  'person.changed': event(fields, data => `changed a person: ${list(data.fields)}`),
+  'person.deactivated': event(nothing, () => 'deactivated a person'),
+  'role.granted': event(z.object({ role: z.string() }), data => `gave the role ${data.role}`),
+  'role.ended': event(z.object({ role: z.string() }), data => `ended the role ${data.role}`),
+  'site.added': event(nothing, () => 'added a site'),
+  'site.changed': event(fields, data => `changed a site: ${list(data.fields)}`),
+  'organisation.set-up': event(nothing, () => 'set up the organisation'),
+  'audit.verified': event(z.object({ events: z.number().int(), views: z.number().int(), intact: z.boolean() }), data => `verified the trail: ${data.events} events and ${data.views} views, ${data.intact ? 'intact' : 'NOT intact'}`),
+  'record.opened-with-reason': event(because, data => `opened a record outside the own sites: ${data.because}`),
+
+  // Patients, referrals, uploads, bookings, directory, studies, shelf
+  ...intakeEvents,
+  ...benchEvents,
+  ...shelfEvents,
+
+  // Reading, report, dispatch
+} as const satisfies Record<string, AuditEventKind<z.ZodType>>
+
+export type AuditEventName = keyof typeof auditEvents
+export type AuditEventData<N extends AuditEventName> = z.input<(typeof auditEvents)[N]['schema']>
+
+export const auditEventNames = Object.keys(auditEvents) as AuditEventName[]
+
+/**
+ * The ledger's sentence for a stored event; an unknown name (a newer version wrote it) is shown as it is.
+ * @example auditSentence('role.granted', { role: 'technologist' }) // => 'gave the role technologist'
+ */
+export function auditSentence(name: string, data: unknown): string {
+  if (!Object.hasOwn(auditEvents, name)) return name
+  const kind = auditEvents[name as AuditEventName] as unknown as AuditEventKind<z.ZodType>
+  const parsed = kind.schema.safeParse(data)
+  return parsed.success ? kind.sentence(parsed.data) : name
+}
