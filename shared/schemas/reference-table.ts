@@ -17,7 +17,11 @@ export const limitRowSchema = z.object({
   at: z.string().nullable().default(null),
   direction: z.enum(['antidromic', 'orthodromic']).nullable().default(null),
   amplitudeDefinition: z.enum(['onset-to-peak', 'peak-to-peak', 'baseline-to-peak']).nullable().default(null),
+  /** The source's fixed distance: the run has to have exactly this one. Motor amplitudes, velocities and falls carry none. */
   distanceMm: z.number().positive().nullable().default(null),
+  /** Or a range of distances, both ends inclusive. */
+  distanceMinMm: z.number().positive().nullable().default(null),
+  distanceMaxMm: z.number().positive().nullable().default(null),
   unit: z.string(),
   bound: z.enum(['upper', 'lower']).nullable(),
   /** limit: judged by. context: shown to people, never judged by. */
@@ -35,8 +39,10 @@ export const limitRowSchema = z.object({
   definition: z.string(),
   n: z.number().int().nullable().default(null),
   ageMinYears: z.number().nullable().default(null),
-  /** Inclusive, in completed years (exclusive for ages under one year given in months, see README). */
+  /** Inclusive, in completed years. Months and days are fractions of a year, see README. */
   ageMaxYears: z.number().nullable().default(null),
+  /** Bands in months or days end before their maximum. */
+  ageMaxExclusive: z.boolean().default(false),
   sex: z.enum(limitSexes).nullable().default(null),
   heightMinCm: z.number().nullable().default(null),
   /** Exclusive. */
