@@ -88,7 +88,7 @@ CREATE TABLE referral (
   examination TEXT NOT NULL DEFAULT '', provisional_diagnosis TEXT NOT NULL DEFAULT '', previous_studies TEXT NOT NULL DEFAULT '',
   cautions_json TEXT NOT NULL DEFAULT '{}', needs TEXT NOT NULL DEFAULT '', consent_electronic TEXT NOT NULL DEFAULT 'not-asked', report_language TEXT NOT NULL DEFAULT 'en',
   protocol TEXT, received_at TEXT, created_at TEXT NOT NULL, created_by TEXT NOT NULL REFERENCES user(id), revision INTEGER NOT NULL DEFAULT 1) STRICT;
-CREATE INDEX referral_list ON referral(site_id, state, urgency, state_since);
+CREATE INDEX referral_list ON referral(site_id, state, urgency, state_since, id);
 CREATE INDEX referral_since ON referral(state_since);
 CREATE INDEX referral_patient ON referral(patient_id);
 CREATE TABLE referral_count (

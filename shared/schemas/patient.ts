@@ -15,6 +15,20 @@ export const patientSchema = z.object({
 })
 export type PatientInput = z.infer<typeof patientSchema>
 
+/** PATCH /api/patients/:id: only what changes, and the revision the form was filled from. What is left out stays as it is. */
+export const changePatientSchema = z.object({
+  revision: z.number().int().min(1),
+  familyName: patientSchema.shape.familyName.optional(),
+  givenName: patientSchema.shape.givenName.optional(),
+  birthDate: isoDateSchema.optional(),
+  sexForLimits: z.enum(limitSexes).nullable().optional(),
+  gender: z.string().trim().max(40).optional(),
+  identifier: z.string().trim().max(40).optional(),
+  phone: z.string().trim().max(40).optional(),
+  interpreter: z.string().trim().max(80).optional(),
+})
+export type PatientChange = z.infer<typeof changePatientSchema>
+
 export interface PatientView extends PatientInput { id: string, recordNumber: string, sexForLimits: LimitSex | null, revision: number }
 
 /** GET /api/patients: search by words (name, number, birth date), accents folded. */

@@ -1,0 +1,125 @@
+import { sql, type RawBuilder } from 'kysely'
+import { nextStep } from '#shared/next-step'
+import type { Page } from '#shared/schemas/common'
+import { missingForBooking, urgencies, type ReferralRow, type Urgency } from '#shared/schemas/referral'
+import { referralStates, type ReferralState, type StudyState } from '#shared/states'
+import type { Database } from '../connection'
+import { patientWords } from './patient-words'
+import { referralInputOf } from './referrals'
+
+export const referralSorts = ['stateSince', 'number', 'patient', 'urgency', 'state', 'site', 'booking'] as const
+export interface ReferralListQuery {
+  /** Sites the person may see; nothing outside them is ever counted or listed. */
+  siteIds: readonly string[]
+  states: readonly ReferralState[]
+  urgency?: Urgency
+  search: string
+  sort: (typeof referralSorts)[number]
+  direction: 'asc' | 'desc'
+  page: number
+  pageSize: number
+}
+export type ReferralPage = Page<ReferralRow> & { counts: Record<ReferralState, number> }
+interface Group { siteId: string, state: string, urgency: string, n: number }
+
+/** Up to so many matching referrals are sorted as they are; more are read in the order of an index. */
+const SORT_AT_MOST = 3000
+
+/**
+ * One page of the worklist. Counts come from a table kept by triggers and the page from an index, so that a year of
+ * work and ten years of it take the same time (tests/server/referral-list.test.ts).
+ */
+export async function listReferrals(db: Database, query: ReferralListQuery): Promise<ReferralPage> {
+  const groups = await db.selectFrom('referralCount').selectAll().where('siteId', 'in', query.siteIds).where('n', '>', 0)
+    .$if(query.urgency !== undefined, counts => counts.where('urgency', '=', query.urgency ?? '')).execute()
+  const wanted = query.states.length ? groups.filter(group => query.states.includes(group.state as ReferralState)) : groups
+  const found = query.search.trim() === '' ? await pageOfGroups(db, query, wanted) : await pageOfSearch(db, query)
+  const counts = Object.fromEntries(referralStates.map(state => [state, sum(groups.filter(group => group.state === state))])) as Record<ReferralState, number>
+  return { rows: await rowsOf(db, found.ids), total: found.total, page: query.page, pageSize: query.pageSize, counts }
+}
+
+const sum = (groups: Group[]) => groups.reduce((total, group) => total + group.n, 0)
+const direction = (query: ReferralListQuery) => query.direction === 'desc' ? sql`DESC` : sql`ASC`
+const urgencyRank = sql`CASE referral.urgency ${sql.join(urgencies.map((urgency, index) => sql`WHEN ${urgency} THEN ${urgencies.length - index}`), sql` `)} END`
+const stateRank = sql`CASE referral.state ${sql.join(referralStates.map((state, index) => sql`WHEN ${state} THEN ${index}`), sql` `)} END`
+
+function orderOf(query: ReferralListQuery): RawBuilder<unknown> {
+  const way = direction(query)
+  const orders: Record<ReferralListQuery['sort'], RawBuilder<unknown>> = {
+    stateSince: sql`referral.state_since ${way}, referral.id ${way}`,
+    number: sql`referral.number ${way}`,
+    patient: sql`patient.family_name ${way}, patient.given_name ${way}, referral.number ${way}`,
+    urgency: sql`${urgencyRank} ${way}, referral.state_since ASC, referral.id`,
+    state: sql`${stateRank} ${way}, referral.state_since ASC, referral.id`,
+    site: sql`site.name ${way}, referral.state_since ASC, referral.id`,
+    booking: sql`booking_starts_at IS NULL, booking_starts_at ${way}, referral.number ${way}`,
+  }
+  return orders[query.sort]
+}
+
+const bookingStart = sql`(SELECT max(starts_at) FROM booking WHERE booking.referral_id = referral.id AND booking.state IN ('booked', 'arrived', 'attended'))`
+const from = sql`FROM referral JOIN patient ON patient.id = referral.patient_id JOIN site ON site.id = referral.site_id`
+const limitOf = (query: ReferralListQuery) => sql`LIMIT ${query.pageSize} OFFSET ${(query.page - 1) * query.pageSize}`
+const inList = (values: readonly string[]) => sql`(${sql.join(values.map(value => sql`${value}`))})`
+
+function filterOf(query: ReferralListQuery): RawBuilder<unknown> {
+  const states = query.states.length ? query.states : referralStates
+  const wanted = query.urgency ? [query.urgency] : urgencies
+  return sql`referral.site_id IN ${inList(query.siteIds)} AND referral.state IN ${inList(states)} AND referral.urgency IN ${inList(wanted)}`
+}
+
+interface Found { ids: string[], total: number }
+const idsOf = (result: { rows: { id: string }[] }) => result.rows.map(row => row.id)
+
+async function pageOfGroups(db: Database, query: ReferralListQuery, groups: Group[]): Promise<Found> {
+  const total = sum(groups)
+  if (total === 0) return { ids: [], total }
+  const mergeable = query.sort === 'stateSince' || query.sort === 'urgency'
+  const statement = total > SORT_AT_MOST && mergeable && groups.length <= 400 ? mergedGroups(query, groups) : sorted(query, filterOf(query))
+  return { ids: idsOf(await sql<{ id: string }>`${statement}`.execute(db)), total }
+}
+
+function sorted(query: ReferralListQuery, filter: RawBuilder<unknown>): RawBuilder<unknown> {
+  return sql`SELECT referral.id, ${query.sort === 'booking' ? bookingStart : sql`NULL`} AS booking_starts_at ${from} WHERE ${filter} ORDER BY ${orderOf(query)} ${limitOf(query)}`
+}
+
+/** Each site, state and urgency is one range of an index, already in order; the ranges are merged and only the page is read. */
+function mergedGroups(query: ReferralListQuery, groups: Group[]): RawBuilder<unknown> {
+  const parts = groups.map(({ siteId, state, urgency }) => sql`SELECT id, state_since AS since, ${sql.lit(urgencies.length - urgencies.indexOf(urgency as Urgency))} AS rank FROM referral WHERE site_id = ${siteId} AND state = ${state} AND urgency = ${urgency}`)
+  const way = direction(query)
+  const order = query.sort === 'urgency' ? sql`rank ${way}, since ASC, id ASC` : sql`since ${way}, id ${way}`
+  return sql`${sql.join(parts, sql` UNION ALL `)} ORDER BY ${order} ${limitOf(query)}`
+}
+
+/** By patient (name, number, birth date) or by the beginning of the referral's number. */
+async function pageOfSearch(db: Database, query: ReferralListQuery): Promise<Found> {
+  const { match, birthDates } = patientWords(query.search)
+  const conditions = [
+    ...(match ? [sql`referral.patient_id IN (SELECT patient_id FROM patient_search WHERE patient_search MATCH ${match})`] : []),
+    ...(birthDates.length ? [sql`patient.birth_date IN ${inList(birthDates)}`] : []),
+  ]
+  const number = query.search.trim().toUpperCase()
+  const byNumber = sql`referral.number >= ${number} AND referral.number < ${`${number}\uFFFF`}`
+  const byPatient = conditions.length ? sql`(${sql.join(conditions, sql` AND `)})` : sql`0`
+  const filter = sql`${filterOf(query)} AND ${/^REF-/.test(number) ? byNumber : byPatient}`
+  const { rows: [counted] } = await sql<{ total: number }>`SELECT count(*) AS total ${from} WHERE ${filter}`.execute(db)
+  return { ids: idsOf(await sql<{ id: string }>`${sorted(query, filter)}`.execute(db)), total: counted?.total ?? 0 }
+}
+
+async function rowsOf(db: Database, ids: string[]): Promise<ReferralRow[]> {
+  const rows = await db.selectFrom('referral').innerJoin('patient', 'patient.id', 'referral.patientId').innerJoin('site', 'site.id', 'referral.siteId').leftJoin('physician', 'physician.id', 'referral.physicianId')
+    .selectAll('referral').select(['familyName', 'givenName', 'birthDate', 'recordNumber', 'site.name as siteName', 'physician.name as physicianName'])
+    .select([
+      sql<string | null>`(SELECT id FROM study WHERE study.referral_id = referral.id AND study.state <> 'entered-in-error' ORDER BY created_at DESC LIMIT 1)`.as('studyId'),
+      sql<StudyState | null>`(SELECT state FROM study WHERE study.referral_id = referral.id AND study.state <> 'entered-in-error' ORDER BY created_at DESC LIMIT 1)`.as('studyState'),
+      sql<string | null>`${bookingStart}`.as('bookingStartsAt'),
+    ])
+    .where('referral.id', 'in', ids).execute()
+  const byId = new Map(rows.map(row => [row.id, row]))
+  return ids.flatMap(id => byId.get(id) ?? []).map(row => ({
+    id: row.id, number: row.number, patientId: row.patientId, patientName: `${row.familyName}, ${row.givenName}`, birthDate: row.birthDate, recordNumber: row.recordNumber,
+    siteId: row.siteId, siteName: row.siteName, physicianName: row.physicianName, state: row.state, stateSince: row.stateSince, urgency: row.urgency,
+    clinicalQuestion: row.clinicalQuestion, side: row.side, studyId: row.studyId, bookingStartsAt: row.bookingStartsAt,
+    nextStep: nextStep({ state: row.state, missing: missingForBooking(referralInputOf(row, [])), studyState: row.studyState }),
+  }))
+}
