@@ -1,5 +1,5 @@
 import { quantities } from '../catalogue/quantities'
-import { roundForPrint } from '../calculations/round-for-print'
+import { printLimit } from '../calculations/round-for-print'
 import type { AppliedLimit, Result, Verdict } from '../calculations/types'
 import type { Tone } from './tokens'
 
@@ -31,20 +31,12 @@ export function printDecimals(quantity: string, unit: string): number {
   return quantity in quantities ? quantities[quantity as keyof typeof quantities].printDecimals : unitDecimals[unit] ?? 2
 }
 
-/**
- * A limit as people read it: the decimals of its quantity, and one more where those would change it.
- *
- * @example printLimit({ value: 42.42, unit: 'm/s', … }, 'velocityMps') // => '42.4'
- */
-export function printLimit(limit: AppliedLimit, quantity: string): string {
-  const decimals = printDecimals(quantity, limit.unit)
-  const plain = `${roundForPrint(limit.value, decimals)}`
-  return Math.abs(Number(plain) - limit.value) < 1e-9 ? plain : `${roundForPrint(limit.value, decimals + 1)}`
-}
+/** A limit as people read it. @example limitText({ value: 4, unit: 'ms', … }, 'latencyMs') // => '4.0' */
+export const limitText = (limit: AppliedLimit, quantity: string): string => printLimit(limit.value, printDecimals(quantity, limit.unit))
 
 /** "≤ 4.4", "≥ 51", "≥ 32, ≤ 60"; '' when there is none. */
 export function limitWords(result: Result): string {
-  return limitsOf(result.verdict).map(limit => `${limit.bound === 'upper' ? '≤' : '≥'} ${printLimit(limit, result.quantity)}`).join(', ')
+  return limitsOf(result.verdict).map(limit => `${limit.bound === 'upper' ? '≤' : '≥'} ${limitText(limit, result.quantity)}`).join(', ')
 }
 
 const withUnit = (text: string, unit: string) => unit ? `${text} ${unit}` : text
@@ -52,7 +44,7 @@ const withUnit = (text: string, unit: string) => unit ? `${text} ${unit}` : text
 /** "the upper limit 4.4 ms (woman, 50 to 79)". */
 function namedLimit(limit: AppliedLimit, quantity: string): string {
   const group = limit.subgroup ? ` (${limit.subgroup})` : ''
-  return `the ${limit.bound} limit ${withUnit(printLimit(limit, quantity), limit.unit)}${group}`
+  return `the ${limit.bound} limit ${withUnit(limitText(limit, quantity), limit.unit)}${group}`
 }
 
 function judgement(result: Result): string {

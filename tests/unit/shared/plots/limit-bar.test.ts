@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest'
 import { limitBarGeometry, limitBarSvg, limitBarText } from '../../../../shared/plots/limit-bar'
 import { printColours } from '../../../../shared/plots/tokens'
-import { limitWords, markOf, printLimit } from '../../../../shared/plots/verdict-words'
+import { limitText, limitWords, markOf } from '../../../../shared/plots/verdict-words'
 import { limit, outside, result, within } from './results'
 
 const width = 100
@@ -89,12 +89,12 @@ describe('in words', () => {
     expect(limitWords(r)).toBe(words)
   })
   it.each([
-    { value: 42.42, unit: 'm/s', quantity: 'velocityMps', print: '42.4' },
+    { value: 42.42, unit: 'm/s', quantity: 'velocityMps', print: '42.42' },
     { value: 51, unit: 'm/s', quantity: 'velocityMps', print: '51' },
     { value: 4, unit: 'ms', quantity: 'latencyMs', print: '4.0' },
     { value: 0.2 + 0.4 + 0.3, unit: 'ms', quantity: 'combinedIndexMs', print: '0.9' },
   ])('limit $value prints $print', ({ value, unit, quantity, print }) => {
-    expect(printLimit(limit('lower', value, unit), quantity)).toBe(print)
+    expect(limitText(limit('lower', value, unit), quantity)).toBe(print)
   })
 })
 

@@ -1,0 +1,84 @@
+import { describe, expect, it } from 'vitest'
+import { quantities } from '../../../../shared/catalogue/quantities'
+import { siteOf } from '../../../../shared/catalogue/nerves'
+import { entryText, parseEntry, parseSeries, type EntryPlace } from '../../../../app/utils/grid-entry'
+
+const leg: EntryPlace = { site: siteOf('fibular-motor-edb', 'below-fibular-head'), segmentLabel: 'ankle to below fibular head', isSegment: true }
+
+describe('what is taken', () => {
+  it.each([
+    { typed: '3.4', quantity: 'latencyMs', entry: 3.4 },
+    { typed: '3,4', quantity: 'latencyMs', entry: 3.4 },
+    { typed: ' 3,4 ms ', quantity: 'latencyMs', entry: 3.4 },
+    { typed: '.9', quantity: 'latencyMs', entry: 0.9 },
+    { typed: '5.', quantity: 'latencyMs', entry: 5 },
+    { typed: '6.85', quantity: 'amplitudeMv', entry: 6.85 },
+    { typed: '6.8mV', quantity: 'amplitudeMv', entry: 6.8 },
+    { typed: '12 µV', quantity: 'amplitudeUv', entry: 12 },
+    { typed: '12 μV', quantity: 'amplitudeUv', entry: 12 },
+    { typed: '12uV', quantity: 'amplitudeUv', entry: 12 },
+    { typed: '30 mV·ms', quantity: 'areaMvMs', entry: 30 },
+    { typed: '215 mm', quantity: 'distanceMm', entry: 215 },
+    { typed: '0', quantity: 'responseCount', entry: 0 },
+    { typed: 'n', quantity: 'latencyMs', entry: 'no-response' },
+    { typed: 'N', quantity: 'amplitudeUv', entry: 'no-response' },
+    { typed: 'no response', quantity: 'latencyMs', entry: 'no-response' },
+    { typed: 'x', quantity: 'latencyMs', entry: 'technical' },
+    { typed: 'd', quantity: 'latencyMs', entry: 'not-done' },
+    { typed: 's', quantity: 'latencyMs', entry: 'stopped' },
+  ] as const)('"$typed" in $quantity', ({ typed, quantity, entry }) => {
+    expect(parseEntry(typed, quantities[quantity])).toEqual({ kind: 'entry', entry })
+  })
+  it('blank stays blank', () => expect(parseEntry('  ', quantities.latencyMs)).toEqual({ kind: 'blank' }))
+})
+
+describe('what is stopped, and with which sentence', () => {
+  it.each([
+    { typed: '0.006', quantity: 'amplitudeUv', says: 'Amplitude must be between 0.1 and 300 µV. Was 0.006 read in mV?' },
+    { typed: '9600', quantity: 'amplitudeMv', says: 'Was 9600 read in µV?' },
+    { typed: '12 mV', quantity: 'amplitudeUv', says: 'This column is in µV, and 12 mV was typed. Which is it?' },
+    { typed: '6 µV', quantity: 'amplitudeMv', says: 'This column is in mV, and 6 µV was typed.' },
+    { typed: '21 cm', quantity: 'distanceMm', says: 'This column is in mm, and 21 cm was typed.' },
+    { typed: '0', quantity: 'amplitudeMv', says: '0 is no reading. When nothing was recorded, press n for no response' },
+    { typed: '-3', quantity: 'latencyMs', says: 'Latency must be between 0.3 and 100 ms.' },
+    { typed: '1.234', quantity: 'latencyMs', says: 'with at most 2 decimals' },
+    { typed: '14.25', quantity: 'amplitudeUv', says: 'with at most 1 decimal.' },
+    { typed: '215.5', quantity: 'distanceMm', says: 'as a whole number of mm' },
+    { typed: '1.234,5', quantity: 'latencyMs', says: 'Enter the latency, in ms, as a number.' },
+    { typed: '3.4.5', quantity: 'latencyMs', says: 'Enter the latency, in ms, as a number.' },
+    { typed: 'abc', quantity: 'latencyMs', says: '"abc" was typed.' },
+    { typed: '3 bananas', quantity: 'latencyMs', says: 'Enter the latency, in ms' },
+  ] as const)('"$typed" in $quantity', ({ typed, quantity, says }) => {
+    const parsed = parseEntry(typed, quantities[quantity])
+    expect(parsed.kind).toBe('stop')
+    expect(parsed.kind === 'stop' && parsed.sentence).toContain(says)
+  })
+})
+
+describe('a distance is judged by its segment', () => {
+  it.each([
+    { typed: '33', place: leg, says: '33 mm is too short for this segment (ankle to below fibular head): under 80 mm the run must be declared a short-segment study first. Was 33 read in cm?' },
+    { typed: '9', place: leg, says: 'Distance must be between 10 and 900 mm.' },
+    { typed: '800', place: leg, says: 'must be between 10 and 700 mm' },
+  ])('$typed stopped', ({ typed, place, says }) => {
+    const parsed = parseEntry(typed, quantities.distanceMm, place)
+    expect(parsed.kind === 'stop' && parsed.sentence).toContain(says)
+  })
+  it.each([
+    { typed: '330', place: leg },
+    { typed: '530', place: leg }, // questioned by the assessment, not stopped here
+    { typed: '33', place: { ...leg, shortSegments: true } },
+    { typed: '65', place: { site: siteOf('fibular-motor-edb', 'above-fibular-head'), isSegment: true } },
+  ])('$typed taken', ({ typed, place }) => {
+    expect(parseEntry(typed, quantities.distanceMm, place)).toEqual({ kind: 'entry', entry: Number(typed) })
+  })
+})
+
+it('a series keeps decimal commas and absences apart', () => {
+  expect(parseSeries('28,1 28.4; n\n29', quantities.minimumLatencyMs)).toEqual({ kind: 'series', entries: [28.1, 28.4, 'no-response', 29] })
+  expect(parseSeries('28.1 2000', quantities.minimumLatencyMs)).toMatchObject({ kind: 'stop', sentence: expect.stringContaining('Response 2:') })
+})
+
+it.each([[3.4, '3.4'], ['no-response', 'no response'], [undefined, ''], [10, '10']] as const)('%s stands as "%s"', (entry, text) => {
+  expect(entryText(entry)).toBe(text)
+})
