@@ -10,8 +10,8 @@ export const projectRoot = resolve(dirname(fileURLToPath(import.meta.url)), '..'
 export const aliases = {
   '#shared': join(projectRoot, 'shared'),
   '#server': join(projectRoot, 'server'),
-  '#reference-tables': join(projectRoot, 'reference-tables/index.ts'),
-  '#migrations': join(projectRoot, 'migrations/index.ts'),
+  '#reference-tables': join(projectRoot, 'reference-tables'),
+  '#migrations': join(projectRoot, 'migrations'),
 }
 
 /** Runs a command with its output shown; ends the program with a plain sentence when it fails. */
