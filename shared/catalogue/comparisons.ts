@@ -64,3 +64,18 @@ export const COMBINED_SENSORY_INDEX = 'combined-sensory-index'
 export function sideDifferenceId(technique: string): string {
   return `side-difference/${technique}`
 }
+
+/**
+ * The techniques that a technique, side difference or comparison id rests on.
+ *
+ * @example
+ * techniquesNeeded('sural-radial') // => ['sural', 'radial-sensory-snuffbox']
+ * techniquesNeeded('side-difference/sural') // => ['sural']
+ */
+export function techniquesNeeded(id: string): string[] {
+  if (id.startsWith('side-difference/')) return [id.slice('side-difference/'.length)]
+  const parts = id === COMBINED_SENSORY_INDEX ? indexParts : comparisons.filter(comparison => comparison.id === id)
+  return parts.length === 0 ? [id] : parts.flatMap(({ first, second }) => [first, second])
+}
+
+const indexParts = comparisons.filter(({ id }) => ['median-ulnar-palm', 'median-ulnar-ring', 'median-radial-thumb'].includes(id))
