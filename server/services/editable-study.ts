@@ -1,0 +1,26 @@
+import type { Trx } from '#server/database/connection'
+import type { Study } from '#server/database/tables/study'
+import { DomainError } from '#shared/errors'
+import type { ServiceContext } from './context'
+import { withdrawReady } from './withdraw-ready'
+
+/**
+ * The study, if values may be recorded in it now: identity and side are confirmed, and it is not handed over.
+ * @throws DomainError 'not-found' or 'wrong-state'
+ */
+export async function editableStudy(trx: Trx, studyId: string): Promise<Study> {
+  const study = await trx.selectFrom('study').selectAll().where('id', '=', studyId).executeTakeFirst()
+  if (!study) throw new DomainError('not-found')
+  if (study.state === 'planned') throw new DomainError('wrong-state', { message: 'Confirm identity, side and cautions first.', details: { state: study.state } })
+  if (study.state !== 'recording' && study.state !== 'returned') throw new DomainError('wrong-state', { details: { state: study.state } })
+  return study
+}
+
+/** Every change of what was recorded ends with this. */
+export async function studyChanged(context: ServiceContext, trx: Trx, study: Study): Promise<void> {
+  await trx.updateTable('study').set({ revision: study.revision + 1 }).where('id', '=', study.id).execute()
+  await withdrawReady(context, trx, { studyId: study.id })
+}
+
+/** How an audit event names a study. */
+export const aboutStudy = (study: Pick<Study, 'id' | 'siteId' | 'patientId'>) => ({ subject: 'study', subjectId: study.id, siteId: study.siteId, patientId: study.patientId })
