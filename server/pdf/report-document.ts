@@ -1,0 +1,86 @@
+import type { Content, DynamicContent, TDocumentDefinitions } from 'pdfmake/interfaces'
+import { formatDay } from '#shared/report/dates'
+import { reportBlocks, type ReportSource } from '#shared/report/index'
+import { reportWords } from '#shared/report/words'
+import { printable } from './glyphs'
+import { renderBlocks } from './render-blocks'
+import { fontFamily, ink, lineWidth, margins, size } from './style'
+
+/** The product's mark: a line with one gap and a node in it. */
+const mark = `<svg xmlns="http://www.w3.org/2000/svg" width="34" height="14" viewBox="0 0 34 14"><path d="M4 7h6M24 7h6" stroke="${ink.ink}" stroke-width="7" stroke-linecap="round"/><circle cx="17" cy="7" r="2.4" fill="${ink.ink}"/></svg>`
+
+function rule(width: number, thickness: number, colour: string): Content {
+  return { canvas: [{ type: 'line', x1: 0, y1: 0, x2: width, y2: 0, lineWidth: thickness, lineColor: colour }] }
+}
+
+/** Who made it, which version it is: on every page. */
+function header({ snapshot, preliminary }: ReportSource): Content {
+  const words = reportWords(snapshot.language)
+  const status = preliminary ? words.preliminary.toLowerCase() : words.status[snapshot.status]
+  const place = [snapshot.organisation.name, snapshot.site.name].filter(Boolean).join(', ')
+  return {
+    margin: [margins.left, 24, margins.right, 0],
+    stack: [
+      { columns: [
+        { svg: mark, width: 26, margin: [0, 1, 0, 0] },
+        { text: printable(place), bold: true, width: '*', fontSize: size.body },
+        { text: printable(`${words.title} · ${words.version(snapshot.version, status)}`), alignment: 'right', width: 'auto', color: ink.faint, fontSize: size.body },
+      ], columnGap: 7, margin: [0, 0, 0, 4] },
+      rule(lineWidth(snapshot.organisation.paperSize), 1.4, ink.ink),
+    ],
+  }
+}
+
+/** Two identifiers and "page x of y" on every page: a sheet that falls out of the file can be put back. */
+function footer({ snapshot }: ReportSource): DynamicContent {
+  const words = reportWords(snapshot.language)
+  const { patient } = snapshot
+  const who = `${patient.familyName.toLocaleUpperCase('en')}, ${patient.givenName} · ${formatDay(patient.birthDate)} · ${patient.recordNumber}`
+  return (page, pages) => ({
+    margin: [margins.left, 14, margins.right, 0],
+    fontSize: size.footer,
+    color: ink.faint,
+    columns: [
+      { text: printable(who), width: '*' },
+      { text: printable(`${snapshot.number} · ${words.page(page, pages)}`), width: 'auto', alignment: 'right' },
+    ],
+  })
+}
+
+function watermark({ snapshot, preliminary }: ReportSource): Partial<TDocumentDefinitions> {
+  const words = reportWords(snapshot.language)
+  const text = [preliminary && words.preliminary, snapshot.demonstration && words.demonstration].filter(Boolean).join(' · ')
+  return text ? { watermark: { text, font: fontFamily, color: ink.ink, opacity: 0.07, bold: true, angle: -52 } } : {}
+}
+
+/** A heading moves to the next page when nothing that belongs to it stands below it. */
+const keepHeadings: TDocumentDefinitions['pageBreakBefore'] = (node, nodes) =>
+  node.headlineLevel === 1 && nodes.getFollowingNodesOnPage().length === 0
+
+/**
+ * The definition of a report's PDF. pdfmake changes what it is given, so every rendering needs a new one.
+ * The date is that of the signature and the rest comes from the frozen copy: the same version gives the same bytes.
+ *
+ * The document is not tagged: pdfmake's `tagged` writes an empty structure tree, which would claim what is not there.
+ * The page of the report is its accessible form.
+ */
+export function reportDocument(source: ReportSource): TDocumentDefinitions {
+  const { snapshot } = source
+  const words = reportWords(snapshot.language)
+  const made = new Date(snapshot.signature.at)
+  return {
+    info: { title: printable(`${words.title} ${snapshot.number}, ${words.version(snapshot.version, words.status[snapshot.status])}`), author: printable(snapshot.organisation.name), creator: 'Orthodrome', producer: 'Orthodrome', creationDate: made, modDate: made },
+    version: '1.7',
+    language: snapshot.language,
+    displayTitle: true,
+    compress: true,
+    pageSize: snapshot.organisation.paperSize,
+    pageMargins: [margins.left, margins.top, margins.right, margins.bottom],
+    defaultStyle: { font: fontFamily, fontSize: size.body, color: ink.ink, lineHeight: 1.12 },
+    header: () => header(source),
+    footer: footer(source),
+    ...watermark(source),
+    content: reportBlocks(source).flatMap(part => renderBlocks(part.blocks, snapshot)),
+    pageBreakBefore: keepHeadings,
+  }
+}
