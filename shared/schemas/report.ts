@@ -89,6 +89,8 @@ export interface ReadingView {
   readyToSign: boolean
   versions: { id: string, version: number, status: ReportStatus, signedAt: string, signedName: string }[]
   namesakes: { recordNumber: string, name: string, birthDate: string }[]
+  /** Who would receive a version signed now: the referring physician, the copies, or everyone who had an earlier version. */
+  recipients?: { name: string, practiceName: string, town: string }[]
 }
 
 /** One difference between a version and the one before it. */
