@@ -1,4 +1,5 @@
 import { randomUUID } from 'node:crypto'
+import { sql } from 'kysely'
 import type * as z from 'zod'
 import type { Trx } from '#server/database/connection'
 import type { RunSettings } from '#server/database/queries/studies'
@@ -44,7 +45,7 @@ export async function addTemperature(context: ServiceContext, { id, ...input }: 
     const study = await editableStudy(trx, id)
     const { segment, side, celsius, method, warmed } = input
     const at = input.at ? new Date(input.at).toISOString() : now(context)
-    const earlier = await trx.selectFrom('studyTemperature').selectAll().where('studyId', '=', id).where('segment', '=', segment).where('side', '=', side).where('removedAt', 'is', null).orderBy('at', 'desc').orderBy('id', 'desc').executeTakeFirst()
+    const earlier = await trx.selectFrom('studyTemperature').selectAll().where('studyId', '=', id).where('segment', '=', segment).where('side', '=', side).where('removedAt', 'is', null).orderBy('at', 'desc').orderBy(sql`rowid`, 'desc').executeTakeFirst()
     const temperatureId = randomUUID()
     const boundRuns = await bindEarlierRuns(trx, { studyId: id, segment, side }, earlier, at)
     await trx.insertInto('studyTemperature').values({ id: temperatureId, studyId: id, segment, side, celsius, at, method, warmed: warmed ? 1 : 0, removedAt: null, savedBy }).execute()

@@ -1,3 +1,4 @@
+import { sql } from 'kysely'
 import type { Policy } from '#shared/calculations/types'
 import { STUDY_FORMAT, type Run, type RunRow, type Study } from '#shared/schemas/study'
 import type { Database } from '../connection'
@@ -36,7 +37,7 @@ export async function loadStudy(db: Database, studyId: string): Promise<StoredSt
     db.selectFrom('studyRun').selectAll().where('studyId', '=', studyId).where('removedAt', 'is', null).orderBy('position').orderBy('id').execute(),
     db.selectFrom('studyRow').innerJoin('studyRun', 'studyRun.id', 'studyRow.runId').selectAll('studyRow').where('studyRun.studyId', '=', studyId).where('studyRow.removedAt', 'is', null).orderBy('studyRow.position').orderBy('studyRow.id').execute(),
     db.selectFrom('studyCell').selectAll().where('studyId', '=', studyId).execute(),
-    db.selectFrom('studyTemperature').selectAll().where('studyId', '=', studyId).where('removedAt', 'is', null).orderBy('at').orderBy('id').execute(),
+    db.selectFrom('studyTemperature').selectAll().where('studyId', '=', studyId).where('removedAt', 'is', null).orderBy('at').orderBy(sql`rowid`).execute(),
     db.selectFrom('studyKeptCheck').select(['key', 'reason']).where('studyId', '=', studyId).orderBy('key').execute(),
     policyOf(db, record),
   ])

@@ -1,0 +1,50 @@
+import { sql } from 'kysely'
+import type { Database, Trx } from '#server/database/connection'
+import type { PageQuery } from '#shared/schemas/common'
+
+/** Every holding with its site; which of them count now is settled by each site's own calendar day. */
+function holdingQuery(db: Database | Trx) {
+  return db.selectFrom('roleHolding').innerJoin('site', 'site.id', 'roleHolding.siteId').where('site.closedAt', 'is', null)
+    .select(['roleHolding.id', 'roleHolding.userId', 'roleHolding.siteId', 'site.name as siteName', 'site.timeZone', 'roleHolding.role', 'roleHolding.startsOn', 'roleHolding.endsOn'])
+    .orderBy('site.name').orderBy('roleHolding.role')
+}
+
+const day = (instant: Date, timeZone: string) => new Intl.DateTimeFormat('en-CA', { timeZone, year: 'numeric', month: '2-digit', day: '2-digit' }).format(instant)
+
+/** The roles that a person holds at this moment, by each site's own calendar. */
+export async function holdingsOfPerson(db: Database | Trx, personId: string, instant: Date) {
+  const rows = await holdingQuery(db).where('roleHolding.userId', '=', personId).execute()
+  return rows.filter(row => row.startsOn <= day(instant, row.timeZone) && (row.endsOn === null || day(instant, row.timeZone) < row.endsOn))
+}
+
+export async function holdingsOfPeople(db: Database | Trx, personIds: readonly string[], instant: Date) {
+  if (personIds.length === 0) return []
+  const rows = await holdingQuery(db).where('roleHolding.userId', 'in', personIds).execute()
+  return rows.filter(row => row.startsOn <= day(instant, row.timeZone) && (row.endsOn === null || day(instant, row.timeZone) < row.endsOn))
+}
+
+/** People who ever held a role at one of the sites, and people without any role (just added). */
+function peopleAt(db: Database, sites: readonly string[], search: string) {
+  const words = `%${search.trim().replace(/[\\%_]/g, match => `\\${match}`)}%`
+  return db.selectFrom('user')
+    .where(eb => eb.or([
+      eb.exists(eb.selectFrom('roleHolding').select(sql`1`.as('one')).whereRef('roleHolding.userId', '=', 'user.id').where('roleHolding.siteId', 'in', sites)),
+      eb.not(eb.exists(eb.selectFrom('roleHolding').select(sql`1`.as('one')).whereRef('roleHolding.userId', '=', 'user.id'))),
+    ]))
+    .$if(search.trim() !== '', query => query.where(sql<boolean>`(name like ${words} escape '\\' or email like ${words} escape '\\')`))
+}
+
+export async function listPeople(db: Database, sites: readonly string[], query: PageQuery) {
+  const { total } = await peopleAt(db, sites, query.search).select(eb => eb.fn.countAll<number>().as('total')).executeTakeFirstOrThrow()
+  const column = query.sort === 'lastSeenAt' ? 'lastSeenAt' : query.sort === 'email' ? 'email' : 'name'
+  const rows = await peopleAt(db, sites, query.search)
+    .select(['user.id', 'email', 'name', 'printedName', 'credentials', 'totpEnabledAt', 'lastSeenAt', 'deactivatedAt', sql<number>`password_hash is not null`.as('hasPassword')])
+    .orderBy(column, query.direction).orderBy('user.id').limit(query.pageSize).offset((query.page - 1) * query.pageSize).execute()
+  return { total, rows }
+}
+
+/** One person, if the asker's sites let them be seen. */
+export async function findPerson(db: Database, sites: readonly string[], id: string) {
+  return await peopleAt(db, sites, '').where('user.id', '=', id)
+    .select(['user.id', 'email', 'name', 'printedName', 'credentials', 'totpEnabledAt', 'lastSeenAt', 'deactivatedAt', sql<number>`password_hash is not null`.as('hasPassword')]).executeTakeFirst()
+}
