@@ -139,6 +139,8 @@ export interface ReportView {
   snapshot: ReportSnapshot
   sha256: string
   pdfSha256: string | null
+  /** The head of the audit trail at signing. */
+  auditHead?: string
   superseded: boolean
   versions: { version: number, status: ReportStatus, signedAt: string, signedName: string, reason: string }[]
   band: PatientBand
