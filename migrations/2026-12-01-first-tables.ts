@@ -193,7 +193,7 @@ CREATE INDEX delivery_state ON delivery(site_id, state, state_since);
 CREATE TABLE outbox_mail (
   id TEXT PRIMARY KEY, template TEXT NOT NULL, delivery_id TEXT UNIQUE REFERENCES delivery(id), to_address TEXT NOT NULL, data_sealed TEXT NOT NULL DEFAULT '', message_id TEXT NOT NULL UNIQUE,
   state TEXT NOT NULL CHECK (state IN ('held','queued','sending','sent','failed','given-up','bounced','uncertain','withdrawn')),
-  due_at TEXT NOT NULL, attempts INTEGER NOT NULL DEFAULT 0, lease_owner TEXT, lease_until TEXT, last_error TEXT NOT NULL DEFAULT '', sent_at TEXT, created_at TEXT NOT NULL) STRICT;
+  due_at TEXT NOT NULL, attempts INTEGER NOT NULL DEFAULT 0, lease_owner TEXT, lease_until TEXT, last_byte_at TEXT, last_error TEXT NOT NULL DEFAULT '', sent_at TEXT, created_at TEXT NOT NULL) STRICT;
 CREATE INDEX outbox_due ON outbox_mail(state, due_at);
 
 CREATE TABLE task (

@@ -12,6 +12,8 @@ export interface OutboxMailTable {
   attempts: Generated<number>
   leaseOwner: string | null
   leaseUntil: string | null
+  /** Set just before the last byte goes out: from then on only the server's answer tells whether it was accepted. */
+  lastByteAt: string | null
   lastError: Generated<string>
   sentAt: string | null
   createdAt: string

@@ -1,0 +1,26 @@
+import type * as z from 'zod'
+import type { MailText } from './mail-text'
+import { reportReady, reportReadySchema } from './report-ready'
+
+interface Template<S extends z.ZodType> { schema: S, render: (data: z.output<S>, appOrigin: string) => MailText }
+const template = <S extends z.ZodType>(schema: S, render: Template<S>['render']): Template<S> => ({ schema, render })
+
+/** Every mail of the program: its data and its words. A new mail is a file here and a line in this list. */
+export const mailTemplates = {
+  'report-ready': template(reportReadySchema, reportReady),
+} as const
+
+export type MailTemplate = keyof typeof mailTemplates
+export type MailData<T extends MailTemplate> = z.input<(typeof mailTemplates)[T]['schema']>
+
+/**
+ * The words of a queued mail.
+ * @throws Error when the template is unknown or its data has another shape
+ */
+export function renderMail(name: string, data: unknown, appOrigin: string): MailText {
+  const found = mailTemplates[name as MailTemplate]
+  if (!found) throw new Error('No mail template has this name.')
+  return found.render(found.schema.parse(data), appOrigin)
+}
+
+export type { MailText } from './mail-text'

@@ -1,0 +1,49 @@
+import * as z from 'zod'
+import { mailText, type MailText } from './mail-text'
+
+/** Nothing about the patient: the number is ours and means nothing to anybody else. */
+export const reportReadySchema = z.object({
+  reportNumber: z.string(),
+  version: z.number().int(),
+  /** How this version came about; 'final' is the first. */
+  status: z.enum(['final', 'appended', 'amended', 'corrected', 'entered-in-error']),
+  organisation: z.string(),
+  siteName: z.string(),
+  sitePhone: z.string(),
+  acknowledgeToken: z.string(),
+})
+export type ReportReady = z.infer<typeof reportReadySchema>
+
+const opening: Record<ReportReady['status'], string> = {
+  'final': 'A nerve conduction report is ready for one of your patients.',
+  'appended': 'A nerve conduction report that you received has an addition.',
+  'amended': 'A nerve conduction report that you received was amended.',
+  'corrected': 'A nerve conduction report that you received was corrected.',
+  'entered-in-error': 'A nerve conduction report that you received was entered in error and is withdrawn. Do not act on it.',
+}
+const subjects: Record<ReportReady['status'], string> = {
+  'final': 'A nerve conduction report is ready',
+  'appended': 'A nerve conduction report has an addition',
+  'amended': 'A nerve conduction report was amended',
+  'corrected': 'A nerve conduction report was corrected',
+  'entered-in-error': 'A nerve conduction report is withdrawn',
+}
+
+/**
+ * The mail that brings a report: neutral words, the number, a link to a page with a button. Opening the link alone
+ * acknowledges nothing, since mail scanners open links.
+ */
+export function reportReady(data: ReportReady, appOrigin: string): MailText {
+  const version = data.version > 1 ? `, version ${data.version}` : ''
+  const replaces = data.version > 1 ? [`It replaces the earlier version. Keep this one.`] : []
+  const telephone = data.sitePhone ? ` or telephone ${data.sitePhone}` : ''
+  return mailText(`${subjects[data.status]} (${data.reportNumber}${version})`, [
+    `${opening[data.status]} Reference ${data.reportNumber}${version}.`,
+    ...replaces,
+    'It is attached as a PDF that opens with your practice\'s passphrase.',
+    { link: `${appOrigin}/acknowledge/${encodeURIComponent(data.acknowledgeToken)}`, label: 'Say that it arrived, or that something looks wrong' },
+    'The link opens a page with a button; no sign-in is needed. The button, not the opening, says that it arrived.',
+    `If this is not meant for you: delete it and tell ${data.siteName}${telephone}. If the passphrase is lost, telephone too: a new one is never sent by mail.`,
+    `${data.organisation}, ${data.siteName}`,
+  ])
+}

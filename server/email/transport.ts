@@ -1,0 +1,138 @@
+import { Readable } from 'node:stream'
+import SMTPConnection from 'nodemailer/lib/smtp-connection'
+import { smtpSettings, type SmtpSettings } from './smtp-options'
+
+/** What is known after an attempt. `because` may quote the server: it is kept in the database, never in the log. */
+export type SendOutcome
+  = | { kind: 'accepted' }
+    /** Certainly not accepted; trying again is safe. */
+    | { kind: 'temporary', because: string }
+    /** Certainly not accepted, and the server says that it never will be. */
+    | { kind: 'permanent', because: string }
+    /** The last byte went out and no answer came back: it may have been accepted. */
+    | { kind: 'uncertain', because: string }
+
+export interface Envelope { from: string, to: string }
+
+export interface MailTransport {
+  /** @param beforeLastByte runs after the server opened the message and before its last byte goes out; a failure there ends the attempt */
+  send(envelope: Envelope, message: Buffer, beforeLastByte: () => Promise<void>): Promise<SendOutcome>
+  close(): void
+}
+
+/**
+ * The message as a stream that knows how far it got. nodemailer reads it only after the server's "go ahead", and adds
+ * the closing dot when it ends: before the end, the server cannot have accepted anything (RFC 5321, section 4.2.5).
+ */
+class WatchedMessage extends Readable {
+  ended = false
+  private sent = false
+
+  constructor(private readonly message: Buffer, private readonly beforeLastByte: () => Promise<void>) {
+    super({ highWaterMark: message.length + 1 })
+    this.once('end', () => this.ended = true)
+  }
+
+  override _read(): void {
+    if (!this.sent) {
+      this.sent = true
+      this.push(this.message)
+      return
+    }
+    this.beforeLastByte().then(() => this.push(null), error => this.destroy(error instanceof Error ? error : new Error('unknown')))
+  }
+}
+
+interface SmtpFailure { message: string, code?: string, responseCode?: number }
+
+function outcomeOf(failure: SmtpFailure, message: WatchedMessage): SendOutcome {
+  const because = failure.message.slice(0, 300)
+  const { responseCode } = failure
+  if (responseCode && responseCode >= 500 && failure.code !== 'EAUTH' && failure.code !== 'ETLS') return { kind: 'permanent', because }
+  if (responseCode && responseCode >= 400) return { kind: 'temporary', because }
+  return message.ended ? { kind: 'uncertain', because } : { kind: 'temporary', because }
+}
+
+const mailsPerConnection = 100
+const idleMs = 20_000
+
+/** Connections are kept and used again: most of a small mail's time is the greeting. */
+export class SmtpTransport implements MailTransport {
+  private readonly settings: SmtpSettings
+  private idle: { connection: SMTPConnection, sent: number, timer: NodeJS.Timeout }[] = []
+
+  constructor(address: string) {
+    this.settings = smtpSettings(address)
+  }
+
+  async send(envelope: Envelope, message: Buffer, beforeLastByte: () => Promise<void>): Promise<SendOutcome> {
+    const stream = new WatchedMessage(message, beforeLastByte)
+    const kept = this.takeIdle()
+    let connection: SMTPConnection | undefined = kept?.connection
+    try {
+      connection ??= await this.connect()
+      await sendOver(connection, envelope, stream, message.length)
+      this.keep(connection, (kept?.sent ?? 0) + 1)
+      return { kind: 'accepted' }
+    }
+    catch (error) {
+      connection?.close()
+      return outcomeOf(error as SmtpFailure, stream)
+    }
+  }
+
+  close(): void {
+    for (const { connection, timer } of this.idle.splice(0)) {
+      clearTimeout(timer)
+      connection.quit()
+    }
+  }
+
+  private takeIdle() {
+    const kept = this.idle.pop()
+    if (!kept) return undefined
+    clearTimeout(kept.timer)
+    kept.connection.removeAllListeners('end')
+    return kept
+  }
+
+  private keep(connection: SMTPConnection, sent: number): void {
+    if (sent >= mailsPerConnection) return connection.quit()
+    const forget = () => {
+      this.idle = this.idle.filter(kept => kept.connection !== connection)
+    }
+    const timer = setTimeout(() => {
+      forget()
+      connection.quit()
+    }, idleMs).unref()
+    connection.once('end', forget)
+    this.idle.push({ connection, sent, timer })
+  }
+
+  private async connect(): Promise<SMTPConnection> {
+    const { credentials, ...options } = this.settings
+    const connection = new SMTPConnection(options)
+    await settle(connection, done => connection.connect(error => done(error ?? null)))
+    if (credentials) await settle(connection, done => connection.login({ credentials, user: credentials.user, pass: credentials.pass }, error => done(error ?? null)))
+    return connection
+  }
+}
+
+function sendOver(connection: SMTPConnection, envelope: Envelope, stream: Readable, size: number): Promise<unknown> {
+  return settle(connection, done => connection.send({ from: envelope.from, to: envelope.to, size }, stream, error => done(error ?? null)))
+}
+
+/** A callback as a promise that also ends when the connection reports an error on its own. */
+function settle(connection: SMTPConnection, start: (done: (error: Error | null) => void) => void): Promise<undefined> {
+  return new Promise((resolve, reject) => {
+    const failed = (error: Error) => reject(error)
+    connection.once('error', failed)
+    start((error) => {
+      connection.removeListener('error', failed)
+      // A late error of a finished step must not end the process.
+      if (connection.listenerCount('error') === 0) connection.on('error', () => undefined)
+      if (error) reject(error)
+      else resolve(undefined)
+    })
+  })
+}
