@@ -123,6 +123,8 @@ export interface ReferralView extends ReferralInput {
   patient: PatientView
   band: PatientBand
   physician: { id: string, name: string, practiceName: string, town: string, emailVerified: boolean } | null
+  /** Those who get a copy, in the order of `copyPhysicianIds`. */
+  copyPhysicians?: { id: string, name: string, practiceName: string, town: string, emailVerified: boolean }[]
   missing: { path: string, message: string }[]
   uploads: UploadView[]
   booking: BookingView | null
