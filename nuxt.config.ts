@@ -52,6 +52,9 @@ export default defineNuxtConfig({
     // The routes that need a limit have their own (server/utils/rate-limit.ts): this one counts pages too.
     rateLimiter: false,
     corsHandler: false,
+    // It refuses texts such as "a < b"; every text is escaped where it is shown. Sizes are limited in server/utils/guard-request.ts.
+    xssValidator: false,
+    requestSizeLimiter: false,
     headers: {
       contentSecurityPolicy: {
         'default-src': ['\'self\''],

@@ -47,7 +47,7 @@ export const auditEvents = {
   ...shelfEvents,
 
   // Reading, report, dispatch
-} as const satisfies Record<string, AuditEventKind<z.ZodType>>
+} as const satisfies Record<string, { schema: z.ZodType, sentence: (data: never) => string }>
 
 export type AuditEventName = keyof typeof auditEvents
 export type AuditEventData<N extends AuditEventName> = z.input<(typeof auditEvents)[N]['schema']>

@@ -4,6 +4,9 @@
  */
 export const errors = {
   'not-signed-in': { status: 401, screen: 'You are signed out. Sign in again; what you typed is kept on this page.' },
+  // One text for every cause: unknown address, wrong password, wrong or missing code, deactivated account.
+  'sign-in-failed': { status: 401, screen: 'The e-mail address, the password or the code is not right.' },
+  'link-used': { status: 410, screen: 'This link was used before or is too old. Ask the administrator for a new one.' },
   'not-allowed': { status: 403, screen: 'Your role at this site does not allow this. An administrator can change roles under People.' },
   'second-factor-needed': { status: 403, screen: 'Set up the second factor first: your role signs or approves. Go to Profile.' },
   'other-origin': { status: 403, screen: 'The request came from another site and was refused.' },

@@ -114,7 +114,7 @@ async function refuse(event: H3Event, context: ServiceContext, action: Action, s
 
 async function readJson(event: H3Event): Promise<unknown> {
   try {
-    return await readBody(event)
+    return await readBody(event) ?? {}
   }
   catch {
     throw new DomainError('not-valid', { log: 'the body is not JSON' })

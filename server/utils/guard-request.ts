@@ -18,6 +18,7 @@ export async function guardRequest(event: H3Event): Promise<ApiErrorBody | undef
   if (!path.startsWith('/api/') && path !== '/api') return undefined
   try {
     if (!SAFE.includes(event.method) && !isOwnOrigin(event)) throw new DomainError('other-origin')
+    if (isTooLarge(event)) throw new DomainError('too-large', { message: 'The request is larger than the server takes. Nothing was stored.' })
     event.context.session = await requestSession(event)
     if (!event.context.session && !isPublicRoute(event.method, path)) throw new DomainError('not-signed-in')
     return undefined
@@ -26,6 +27,17 @@ export async function guardRequest(event: H3Event): Promise<ApiErrorBody | undef
     if (error instanceof DomainError) servicesOf(event).log.info({ refused: error.code, method: event.method, route: routeForLog(event) }, 'A request was refused')
     return answerError(event, error)
   }
+}
+
+const JSON_BYTES = 2_000_000
+/** A file of 10 MB with the wrapping around it. */
+const UPLOAD_BYTES = 10_500_000
+
+/** By the stated length; a body of unstated length is refused, since nothing would stop it growing. */
+function isTooLarge(event: H3Event): boolean {
+  if (getHeader(event, 'transfer-encoding') !== undefined) return true
+  const limit = getHeader(event, 'content-type')?.startsWith('multipart/form-data') ? UPLOAD_BYTES : JSON_BYTES
+  return Number(getHeader(event, 'content-length') ?? 0) > limit
 }
 
 /**

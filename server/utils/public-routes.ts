@@ -3,7 +3,7 @@
  * Each of them declares `allow: 'public'`; tests/server/every-route.test.ts compares the two.
  */
 const publicRoutes: readonly { methods: readonly string[], path: RegExp }[] = [
-  { methods: ['GET', 'POST'], path: /^\/api\/auth\/(?:csrf|session|signin|signout|callback\/credentials|error|providers)$/ },
+  { methods: ['GET', 'POST'], path: /^\/api\/auth\/(?:csrf|signout|callback\/credentials)$/ },
   { methods: ['GET'], path: /^\/api\/me$/ },
   { methods: ['GET'], path: /^\/api\/health$/ },
   { methods: ['GET', 'POST'], path: /^\/api\/first-run$/ },

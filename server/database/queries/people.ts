@@ -2,25 +2,12 @@ import { sql } from 'kysely'
 import type { Database, Trx } from '#server/database/connection'
 import type { PageQuery } from '#shared/schemas/common'
 
-/** Every holding with its site; which of them count now is settled by each site's own calendar day. */
-function holdingQuery(db: Database | Trx) {
-  return db.selectFrom('roleHolding').innerJoin('site', 'site.id', 'roleHolding.siteId').where('site.closedAt', 'is', null)
-    .select(['roleHolding.id', 'roleHolding.userId', 'roleHolding.siteId', 'site.name as siteName', 'site.timeZone', 'roleHolding.role', 'roleHolding.startsOn', 'roleHolding.endsOn'])
-    .orderBy('site.name').orderBy('roleHolding.role')
-}
-
-const day = (instant: Date, timeZone: string) => new Intl.DateTimeFormat('en-CA', { timeZone, year: 'numeric', month: '2-digit', day: '2-digit' }).format(instant)
-
-/** The roles that a person holds at this moment, by each site's own calendar. */
-export async function holdingsOfPerson(db: Database | Trx, personId: string, instant: Date) {
-  const rows = await holdingQuery(db).where('roleHolding.userId', '=', personId).execute()
-  return rows.filter(row => row.startsOn <= day(instant, row.timeZone) && (row.endsOn === null || day(instant, row.timeZone) < row.endsOn))
-}
-
-export async function holdingsOfPeople(db: Database | Trx, personIds: readonly string[], instant: Date) {
+/** Every role holding of these people at open sites, past and future ones too; services/current-holdings.ts keeps those that count today. */
+export async function allHoldings(db: Database | Trx, personIds: readonly string[]) {
   if (personIds.length === 0) return []
-  const rows = await holdingQuery(db).where('roleHolding.userId', 'in', personIds).execute()
-  return rows.filter(row => row.startsOn <= day(instant, row.timeZone) && (row.endsOn === null || day(instant, row.timeZone) < row.endsOn))
+  return await db.selectFrom('roleHolding').innerJoin('site', 'site.id', 'roleHolding.siteId').where('site.closedAt', 'is', null).where('roleHolding.userId', 'in', personIds)
+    .select(['roleHolding.id', 'roleHolding.userId', 'roleHolding.siteId', 'site.name as siteName', 'site.timeZone', 'roleHolding.role', 'roleHolding.startsOn', 'roleHolding.endsOn'])
+    .orderBy('site.name').orderBy('roleHolding.role').execute()
 }
 
 /** People who ever held a role at one of the sites, and people without any role (just added). */

@@ -1,0 +1,57 @@
+import { randomUUID } from 'node:crypto'
+import type * as z from 'zod'
+import type { Trx } from '#server/database/connection'
+import { siteView } from '#server/database/queries/sites'
+import { DomainError } from '#shared/errors'
+import type { siteSchema, SiteView } from '#shared/schemas/user'
+import { now, type ServiceContext } from './context'
+import { recordAuditEvent } from './record-audit-event'
+import { isTimeZone, localDate } from './site-time'
+
+export type SiteInput = z.output<typeof siteSchema>
+
+/**
+ * Adds a site; whoever adds it is its first administrator.
+ * @throws DomainError 'not-valid' when the name is in use or the time zone is unknown
+ */
+export async function addSite(context: ServiceContext, input: SiteInput): Promise<SiteView> {
+  return await context.db.transaction().execute(async (trx) => {
+    const { id: organisationId } = await trx.selectFrom('organisation').select('id').executeTakeFirstOrThrow()
+    await checkSite(trx, input, null)
+    const site = await trx.insertInto('site').values({ ...columnsOf(input), id: randomUUID(), organisationId, closedAt: null, createdAt: now(context) }).returningAll().executeTakeFirstOrThrow()
+    await recordAuditEvent(context, trx, { name: 'site.added', subject: 'site', subjectId: site.id, siteId: site.id, data: {} })
+    if (context.actor.userId) await makeAdministrator(context, trx, context.actor.userId, site)
+    return siteView(site)
+  })
+}
+
+/** @throws DomainError 'not-found' · 'not-valid' */
+export async function changeSite(context: ServiceContext, id: string, changes: Partial<SiteInput>): Promise<SiteView> {
+  return await context.db.transaction().execute(async (trx) => {
+    const old = await trx.selectFrom('site').selectAll().where('id', '=', id).where('closedAt', 'is', null).executeTakeFirst()
+    if (!old) throw new DomainError('not-found')
+    await checkSite(trx, { name: changes.name ?? old.name, timeZone: changes.timeZone ?? old.timeZone }, id)
+    const columns = columnsOf(changes)
+    const fields = (Object.keys(columns) as (keyof typeof columns)[]).filter(field => columns[field] !== undefined && columns[field] !== old[field])
+    if (fields.length === 0) return siteView(old)
+    const site = await trx.updateTable('site').set(Object.fromEntries(fields.map(field => [field, columns[field]]))).where('id', '=', id).returningAll().executeTakeFirstOrThrow()
+    await recordAuditEvent(context, trx, { name: 'site.changed', subject: 'site', subjectId: id, siteId: id, data: { fields: fields.map(field => field === 'roomsJson' ? 'rooms' : field) } })
+    return siteView(site)
+  })
+}
+
+function columnsOf<T extends Partial<SiteInput>>({ rooms, ...plain }: T): Omit<T, 'rooms'> & { roomsJson: string } {
+  return { ...plain, roomsJson: rooms === undefined ? undefined as never : JSON.stringify(rooms) }
+}
+
+async function checkSite(trx: Trx, input: { name: string, timeZone: string }, exceptId: string | null): Promise<void> {
+  if (!isTimeZone(input.timeZone)) throw new DomainError('not-valid', { fields: [{ path: 'timeZone', message: 'Choose a time zone from the list, for example Europe/Prague.' }] })
+  const other = await trx.selectFrom('site').select('id').where('name', '=', input.name).where('id', '!=', exceptId ?? '').executeTakeFirst()
+  if (other) throw new DomainError('not-valid', { fields: [{ path: 'name', message: 'Another site has this name.' }] })
+}
+
+/** Gives the administrator's role from today on. */
+export async function makeAdministrator(context: ServiceContext, trx: Trx, userId: string, site: { id: string, timeZone: string }): Promise<void> {
+  await trx.insertInto('roleHolding').values({ id: randomUUID(), userId, siteId: site.id, role: 'administrator', startsOn: localDate(context.clock(), site.timeZone), endsOn: null, grantedBy: context.actor.userId, createdAt: now(context) }).execute()
+  await recordAuditEvent(context, trx, { name: 'role.granted', subject: 'user', subjectId: userId, siteId: site.id, data: { role: 'administrator' } })
+}
