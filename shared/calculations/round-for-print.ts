@@ -1,8 +1,9 @@
+import { isAbove, isBelow, TOLERANCE } from './tolerance'
 import type { AppliedLimit } from './types'
 
 /**
  * The only rounding of the program: half away from zero on the decimal digits, never on the binary ones.
- * Comparison never uses it: values are compared unrounded (compare-with-limit.ts).
+ * Comparison never uses it: values are compared unrounded (tolerance.ts).
  *
  * `(4.35).toFixed(1)` is '4.3' and `3.8 - 2.7` is 1.0999999999999996: twelve significant digits are kept first, so
  * that 4.35 prints as 4.4 and the difference as 1.1.
@@ -51,9 +52,6 @@ function sameSide(value: number, printed: number, limit: Pick<AppliedLimit, 'val
   return isOutside(value, limit) === isOutside(printed, limit)
 }
 
-/** 0.2 + 0.4 + 0.3 is not above 0.9, and 3.2 - 2.8 is not above 0.4. */
-export const TOLERANCE = 1e-9
-
 /**
  * Is the value outside this limit? A value exactly on a limit is within; the tolerance of 1e-9 takes up what binary
  * fractions add.
@@ -63,7 +61,7 @@ export const TOLERANCE = 1e-9
  * isOutside(50.6, { bound: 'lower', value: 51 }) // => true
  */
 export function isOutside(value: number, limit: Pick<AppliedLimit, 'value' | 'bound'>): boolean {
-  return limit.bound === 'upper' ? value > limit.value + TOLERANCE : value < limit.value - TOLERANCE
+  return limit.bound === 'upper' ? isAbove(value, limit.value) : isBelow(value, limit.value)
 }
 
 /**

@@ -186,7 +186,7 @@ export interface Assessment {
   patterns: PatternResult[]
   findings: FindingSentence[]
   /** Beside earlier signed studies of the same patient; empty when there are none. */
-  changes: EarlierChange[]
+  changes?: EarlierChange[]
   setsUsed: { setId: string, version: number, title: string, citation: string, percentiles: string, recalledRows: number, verifiedRows: number }[]
   /** Keys of every flagged result, in printing order. */
   flagged: string[]

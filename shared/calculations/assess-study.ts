@@ -1,0 +1,82 @@
+import type { ReferenceTable } from '../schemas/reference-table'
+import type { Side } from '../schemas/common'
+import type { Study } from '../schemas/study'
+import { chanceOf } from './chance'
+import { compareWithEarlier } from './compare-with-earlier'
+import { compareWithinLimbs } from './comparisons'
+import { draftFindings } from './findings'
+import { assessPatterns, type LimitsOfResult, type PatternInput } from './patterns'
+import { findRemarks } from './plausibility'
+import { assessRun } from './runs'
+import { setsUsed } from './sets-used'
+import { compareSides } from './side-comparisons'
+import { standingRun, studyContext, type StudyContext } from './study-context'
+import type { Assessment, ComparisonAssessment, EarlierStudy, Policy, Result, RunAssessment } from './types'
+
+/** Stands in every assessment and every signed report. Raised whenever a result could come out differently. */
+export const CALCULATION_VERSION = '1.0.0'
+
+/**
+ * Everything the program says about a study: results with limits and verdicts, comparisons, remarks, the chance line,
+ * pattern check lists, draft findings and the change since earlier studies. Plain JSON, the same in the browser and on
+ * the server; no clock, no database. Never fails on a study that its schema accepts.
+ *
+ * @example
+ * assessStudy(study, referenceTables, { ...defaultPolicy, adopted }).flagged // => ['run-1/row-1/latencyMs', …]
+ */
+export function assessStudy(study: Study, tables: readonly ReferenceTable[], policy: Policy, earlier: readonly EarlierStudy[] = []): Assessment {
+  const context = studyContext(study, tables, policy)
+  const runs = assessRuns(context)
+  const comparisons = [...compareWithinLimbs(context), ...compareSides(context)]
+  const results = [...runs, ...comparisons].flatMap(one => one.results)
+  return {
+    calculationVersion: CALCULATION_VERSION,
+    studyId: study.id,
+    person: context.person,
+    runs,
+    comparisons,
+    remarks: findRemarks(context, runs, comparisons),
+    chance: chanceOf(results),
+    patterns: assessPatterns(patternInput(context, runs, comparisons, results)),
+    findings: draftFindings(context, runs, comparisons),
+    changes: earlier.length > 0 ? compareWithEarlier({ runs }, earlier) : [],
+    setsUsed: setsUsed(context.applied, tables),
+    flagged: results.filter(result => result.flagged).map(result => result.key),
+  }
+}
+
+/** Motor runs first, since F-waves use the velocity of their nerve; the answer keeps the order of the study. */
+function assessRuns(context: StudyContext): RunAssessment[] {
+  const isMotor = (index: number) => context.runs[index]?.technique?.kind === 'motor'
+  const places = context.runs.map((_, index) => index)
+  for (const index of [...places.filter(isMotor), ...places.filter(index => !isMotor(index))]) {
+    const known = context.runs[index]
+    if (known) context.assessed.set(known.run.id, assessRun(context, known))
+  }
+  return context.runs.map(known => context.assessed.get(known.run.id)).filter(run => run !== undefined)
+}
+
+/** What the published criteria may look at. */
+function patternInput(context: StudyContext, runs: RunAssessment[], comparisons: ComparisonAssessment[], results: readonly Result[]): PatternInput {
+  const bySide = new Map(comparisons.map(one => [`${one.id}/${one.side ?? ''}`, one]))
+  return {
+    study: context.study, policy: context.policy, person: context.person, runs, comparisons,
+    runFor: (technique: string, side: Side) => {
+      const known = standingRun(context, technique, side)
+      return known && context.assessed.get(known.run.id)
+    },
+    recordedRun: runId => context.known.get(runId)?.run,
+    resultOf: (run, quantity, at) => run?.results.find(result => result.quantity === quantity && (at === undefined || result.at === at)),
+    comparisonResult: (id, side, quantity) => bySide.get(`${id}/${side ?? ''}`)?.results.find(result => result.quantity === quantity),
+    limitsOf: result => limitsOfResult(context, result),
+    results,
+  }
+}
+
+function limitsOfResult(context: StudyContext, result: Result | undefined): LimitsOfResult {
+  if (!result) return { because: 'not recorded' }
+  const answer = context.limitsByKey.get(result.key)
+  if (answer?.kind === 'limits') return { ...(answer.lower && { lower: answer.lower }), ...(answer.upper && { upper: answer.upper }) }
+  const { verdict } = result
+  return { because: verdict.kind === 'no-limit' || verdict.kind === 'not-judged' ? verdict.because : 'no limit' }
+}

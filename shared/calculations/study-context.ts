@@ -1,0 +1,149 @@
+import { techniqueOf } from '../catalogue/nerves'
+import type { Technique } from '../catalogue/types'
+import type { ReferenceTable } from '../schemas/reference-table'
+import type { Side } from '../schemas/common'
+import type { Run, Study } from '../schemas/study'
+import { ageInYears } from './age-on-date'
+import { bodyMassIndex } from './bmi'
+import { findLimit, type FoundLimit, type LimitQuery } from './find-limit'
+import type { ColdBearing } from './judge'
+import { notCold } from './judge'
+import { ageNumber } from './limit-words'
+import { roundForPrint } from './round-for-print'
+import { coldOfRun, countsAsCold, temperatureContext, type Cold } from './temperature'
+import type { AppliedLimit, Assessment, Policy, RunAssessment } from './types'
+
+/** A run with all that is known before its numbers are judged. */
+export interface KnownRun {
+  run: Run
+  technique: Technique | undefined
+  cold: Cold
+  /** How cold bears on its numbers. */
+  bearing: ColdBearing
+  supersededBy?: string
+  measured: boolean
+}
+
+/** Everything that does not change while one study is assessed; built once, so that every look-up is by key. */
+export interface StudyContext {
+  study: Study
+  policy: Policy
+  tables: readonly ReferenceTable[]
+  person: Assessment['person']
+  runs: readonly KnownRun[]
+  known: ReadonlyMap<string, KnownRun>
+  /** By `${technique}/${side}`: the run that stands for them. */
+  standing: ReadonlyMap<string, KnownRun>
+  expanded: { distanceMm: number, latencyMs: number }
+  limits: (query: Omit<LimitQuery, 'person'>) => FoundLimit
+  /** Every limit that was applied, for the list of sets used. */
+  applied: Map<string, AppliedLimit>
+  /** Limits by result key, where the verdict alone does not carry them. */
+  limitsByKey: Map<string, FoundLimit>
+  assessed: Map<string, RunAssessment>
+}
+
+export function studyContext(study: Study, tables: readonly ReferenceTable[], policy: Policy): StudyContext {
+  const person = personOf(study)
+  const runs = knownRuns(study, tables, policy)
+  const known = new Map(runs.map(one => [one.run.id, one]))
+  markSuperseded(runs, known)
+  return {
+    study, policy, tables, person, runs, known,
+    standing: standingRuns(runs),
+    expanded: { distanceMm: policy.distanceUncertaintyMm, latencyMs: policy.latencyUncertaintyMs },
+    limits: limitFinder(tables, policy, person),
+    applied: new Map(), limitsByKey: new Map(), assessed: new Map(),
+  }
+}
+
+/** Both sides ask the same questions, so each is answered once per assessment. */
+function limitFinder(tables: readonly ReferenceTable[], policy: Policy, person: Assessment['person']): StudyContext['limits'] {
+  const answers = new Map<string, FoundLimit>()
+  const limitPerson = { ageYears: person.ageYears, sexForLimits: person.sexForLimits, heightCm: person.heightCm, bmi: person.bmi }
+  const shelf = { tables, policy }
+  return (query) => {
+    const key = `${query.technique}|${query.quantity}|${query.at}|${query.direction}|${query.amplitudeDefinition}|${query.distanceMm}`
+    let answer = answers.get(key)
+    if (!answer) {
+      answer = findLimit(shelf, { ...query, person: limitPerson })
+      answers.set(key, answer)
+    }
+    return answer
+  }
+}
+
+function personOf(study: Study): Assessment['person'] {
+  const { heightCm, weightKg } = study
+  const ageYears = ageInYears(study.patient.birthDate, study.studyDate)
+  const sexForLimits = study.patient.sexForLimits
+  const bmi = bodyMassIndex({ heightCm, weightKg })
+  const words = [
+    `${sexWord(sexForLimits, ageYears)}${ageYears === null ? ' of unknown age' : ` of ${ageNumber(ageYears)}`}`,
+    heightCm === null ? 'height missing' : `${roundForPrint(heightCm, heightCm % 1 ? 1 : 0)} cm`,
+    bmi === null ? 'BMI missing' : `BMI ${roundForPrint(bmi, 1)}`,
+  ].join(', ')
+  return { ageYears, sexForLimits, heightCm, weightKg, bmi, words }
+}
+
+function sexWord(sex: Assessment['person']['sexForLimits'], ageYears: number | null): string {
+  if (sex === null) return 'person (sex missing)'
+  const child = ageYears !== null && ageYears < 18
+  if (sex === 'female') return child ? 'girl' : 'woman'
+  return child ? 'boy' : 'man'
+}
+
+function knownRuns(study: Study, tables: readonly ReferenceTable[], policy: Policy): KnownRun[] {
+  const temperatures = temperatureContext(study, tables, policy)
+  return study.runs.map((run) => {
+    const technique = techniqueOf(run.technique)
+    const cold = coldOfRun(temperatures, run, technique)
+    const bearing: ColdBearing = countsAsCold(cold, run) ? { state: 'all', words: cold.because } : notCold
+    return { run, technique, cold, bearing, measured: isMeasured(run) }
+  })
+}
+
+/** Was anything recorded, an absent response included? A run marked as not done was not. */
+export function isMeasured(run: Run): boolean {
+  if (run.notDoneBecause?.trim()) return false
+  return run.rows.some((row) => {
+    for (const quantity in row.values) if (quantity !== 'distanceMm') return true
+    return (row.series?.length ?? 0) > 0 || Object.keys(row.ordinals ?? {}).length > 0
+  })
+}
+
+/** A warm repeat of a cold run stands in its place. */
+function markSuperseded(runs: readonly KnownRun[], known: ReadonlyMap<string, KnownRun>): void {
+  for (const repeat of runs) {
+    const { repeats, technique, side, id } = repeat.run
+    const before = repeats === undefined ? undefined : known.get(repeats)
+    if (!before || before === repeat || !repeat.measured || repeat.cold.state !== 'warm') continue
+    const same = before.run.technique === technique && before.run.side === side
+    const isCold = before.cold.state === 'cold' || before.cold.state === 'unknown'
+    if (same && isCold && (before.supersededBy === undefined || id > before.supersededBy)) before.supersededBy = id
+  }
+}
+
+function standingRuns(runs: readonly KnownRun[]): Map<string, KnownRun> {
+  const standing = new Map<string, KnownRun>()
+  for (const one of runs) {
+    if (!one.measured || one.supersededBy !== undefined || !one.technique) continue
+    const key = `${one.run.technique}/${one.run.side}`
+    const other = standing.get(key)
+    if (!other || standsBefore(one, other)) standing.set(key, one)
+  }
+  return standing
+}
+
+/** Of two runs of the same nerve and side: warm before cold, then the later, then by id, so that order does not matter. */
+function standsBefore(one: KnownRun, other: KnownRun): boolean {
+  const coldness = (known: KnownRun) => known.bearing.state === 'none' ? 0 : 1
+  if (coldness(one) !== coldness(other)) return coldness(one) < coldness(other)
+  const times = [one, other].map(known => known.run.recordedAt === undefined ? 0 : Date.parse(known.run.recordedAt))
+  if (times[0] !== times[1]) return (times[0] as number) > (times[1] as number)
+  return one.run.id > other.run.id
+}
+
+export function standingRun(context: StudyContext, technique: string, side: Side): KnownRun | undefined {
+  return context.standing.get(`${technique}/${side}`)
+}
