@@ -1,6 +1,7 @@
 import * as z from 'zod'
 import { benchEvents } from './audit-events/bench'
 import { intakeEvents } from './audit-events/intake'
+import { reportEvents } from './audit-events/report'
 import { shelfEvents } from './audit-events/shelf'
 
 /**
@@ -47,6 +48,7 @@ export const auditEvents = {
   ...shelfEvents,
 
   // Reading, report, dispatch
+  ...reportEvents,
 } as const satisfies Record<string, { schema: z.ZodType, sentence: (data: never) => string }>
 
 export type AuditEventName = keyof typeof auditEvents

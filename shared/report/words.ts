@@ -57,6 +57,7 @@ const en = {
   interpretedCold: 'Interpreted although cold',
   signature: 'Signature',
   signedBy: 'Signed',
+  draftedBy: 'Drafted by',
   fingerprint: 'Fingerprint',
   auditHead: 'audit trail at signing',
   notSigned: 'Not signed.',

@@ -46,7 +46,7 @@ export type ReportDraft = z.infer<typeof reportDraftSchema>
 export const saveDraftSchema = z.object({ draft: reportDraftSchema, revision: z.number().int().min(0) })
 
 /** One item of the check before signing. */
-export interface SignCheck { key: string, strength: 'stop' | 'check' | 'ok', sentence: string, resolvedBecause?: string, runId?: string }
+export interface SignCheck { key: string, strength: 'stop' | 'check' | 'ok', sentence: string, /** may it be answered with a reason, or must it be mended */ answerable: boolean, resolvedBecause?: string, runId?: string }
 
 export const signSchema = z.object({
   password: z.string().min(1, 'Enter your password.').max(1024),
@@ -127,6 +127,8 @@ export interface ReportSnapshot {
   resolvedChecks: { key: string, sentence: string, reason: string }[]
   /** Against the version before, item by item. */
   changes: ReportChange[]
+  /** Who wrote the draft, where it was someone else than the signer. */
+  draftedBy: string
   signature: { userId: string, name: string, credentials: string, meaning: string, at: string, timeZone: string }
 }
 

@@ -13,6 +13,7 @@ function signedBlock({ snapshot, sha256, auditHead }: ReportSource, words: Repor
   const prints = [sha256 && `${words.fingerprint} ${shortFingerprint(sha256)}`, auditHead && `${words.auditHead} ${shortFingerprint(auditHead)}`]
   return [
     paragraph([{ text: `${words.signedBy} `, strong: true }, { text: `by ${who}, ${formatMoment(at, timeZone)}: "${meaning}"` }]),
+    ...snapshot.draftedBy ? [paragraph(`${words.draftedBy} ${snapshot.draftedBy}.`, 'faint')] : [],
     paragraph([`${snapshot.number}, ${words.version(snapshot.version, words.status[snapshot.status])}`, ...prints].filter(Boolean).join(' · '), 'faint'),
   ]
 }

@@ -1,0 +1,26 @@
+import * as z from 'zod'
+import { event } from './kind'
+
+const version = z.object({ number: z.string(), version: z.number().int(), status: z.string(), sha256: z.string() })
+const delivery = z.object({ number: z.string(), version: z.number().int() })
+
+/** Reading, signing, delivery. Recipients are named by their id; the words of a report stand in its versions only. */
+export const reportEvents = {
+  'study.taken': event(z.object({ from: z.string().nullable() }), data => data.from ? 'took a study over from another reader' : 'took a study to read'),
+  'study.released': event(z.object({}), () => 'gave a study back to the queue'),
+  'study.returned': event(z.object({ runId: z.string().nullable() }), () => 'returned a study to the bench with a question'),
+  'report.drafted': event(z.object({ number: z.string() }), data => `began the report ${data.number}`),
+  'report.ready': event(z.object({ number: z.string(), fingerprint: z.string() }), data => `marked ${data.number} ready to sign`),
+  'report.signed': event(version, data => `signed ${data.number}, version ${data.version} (${data.status})`),
+  'report.not-signed': event(z.object({ because: z.string() }), data => `a signature was refused: ${data.because}`),
+  'report.pdf-made': event(z.object({ number: z.string(), version: z.number().int(), sha256: z.string() }), data => `made the PDF of ${data.number}, version ${data.version}`),
+  'delivery.queued': event(delivery.extend({ physicianId: z.string(), method: z.string() }), data => `queued ${data.number}, version ${data.version}, for a recipient`),
+  'delivery.sent': event(delivery.extend({ physicianId: z.string(), attempt: z.number().int() }), data => `sent ${data.number}, version ${data.version}`),
+  'delivery.failed': event(delivery.extend({ attempt: z.number().int(), final: z.boolean() }), data => `${data.final ? 'gave up sending' : 'could not send'} ${data.number}, version ${data.version}`),
+  'delivery.uncertain': event(delivery.extend({ messageId: z.string() }), data => `cannot tell whether ${data.number}, version ${data.version}, was sent`),
+  'delivery.acknowledged': event(delivery, data => `the recipient acknowledged ${data.number}, version ${data.version}`),
+  'delivery.withdrawn': event(delivery.extend({ wasSent: z.boolean() }), data => `withdrew the delivery of ${data.number}, version ${data.version}${data.wasSent ? ', after it was sent' : ''}`),
+  'delivery.sent-now': event(delivery, data => `released ${data.number}, version ${data.version}, for sending`),
+  'delivery.resolved': event(delivery.extend({ outcome: z.string() }), data => `settled the delivery of ${data.number}, version ${data.version}: ${data.outcome}`),
+  'task.done': event(z.object({ kind: z.string() }), data => `finished a task (${data.kind})`),
+} as const
