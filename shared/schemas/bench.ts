@@ -58,6 +58,8 @@ export const addRunSchema = z.object({ technique: idSchema, side: sideSchema, re
 export const addRowSchema = z.object({ site: idSchema })
 /** Everything of a run that is not a cell. */
 export const changeRunSchema = runSchema.pick({ direction: true, amplitudeDefinition: true, lowFrequencyFilterHz: true, elbowFlexionDegrees: true, shortSegments: true, temperatureId: true, repeats: true, quality: true, notDoneBecause: true, recordedAt: true }).partial().extend({ revision: z.number().int().min(0) })
+/** Taking away a run or a row: the reason is needed when it has values or the protocol plans it. DELETE may come without a body. */
+export const removeSchema = z.object({ reason: z.string().trim().max(500).default('') }).default({ reason: '' })
 export const bodySizeSchema = z.object({ heightCm: z.number().min(30, 'Height must be between 30 and 250 centimetres.').max(250, 'Height must be between 30 and 250 centimetres.').nullable(), weightKg: z.number().min(1, 'Weight must be between 1 and 400 kilograms.').max(400, 'Weight must be between 1 and 400 kilograms.').nullable() })
 export const addTemperatureSchema = z.object({ segment: z.enum(['hand', 'foot']), side: sideSchema, celsius: z.number().min(15, 'Temperature must be between 15 and 42 °C.').max(42, 'Temperature must be between 15 and 42 °C.'), method: z.string().max(100).default('skin probe'), warmed: z.boolean().default(false), at: isoDateTimeSchema.optional() })
 export const keepCheckSchema = z.object({ key: z.string().max(200), reason: z.string().trim().min(3, 'Give the reason.').max(500) })

@@ -77,3 +77,8 @@ export async function referralView(db: Database, referralId: string, today: stri
   const { id, number, state, stateSince, stateReason, protocol, revision, createdAt } = row
   return { ...input, id, number, state, stateSince, stateReason, protocol, revision, createdAt, patient, band, physician, missing: missingForBooking(input), uploads, booking, ...around, route, history }
 }
+
+export async function siteOfUpload(db: Database, uploadId: string): Promise<string | null> {
+  const row = await db.selectFrom('upload').innerJoin('referral', 'referral.id', 'upload.referralId').select('siteId').where('upload.id', '=', uploadId).where('removedAt', 'is', null).executeTakeFirst()
+  return row?.siteId ?? null
+}

@@ -1,0 +1,52 @@
+import { fileTypeFromBuffer } from 'file-type'
+import sharp from 'sharp'
+import { DomainError } from '#shared/errors'
+
+/** What is kept of a sent file: its type by content, not by name, and for pictures the re-encoded bytes. */
+export interface CheckedFile { mediaType: 'application/pdf' | 'image/png' | 'image/jpeg', extension: 'pdf' | 'png' | 'jpg', bytes: Uint8Array }
+
+export const UPLOAD_LIMIT_BYTES = 10 * 1024 * 1024
+/** A letter page scanned at 600 dots per inch has 35 million. */
+const MOST_PIXELS = 40_000_000
+const MOST_PDF_PAGES = 100
+
+const refused = (message: string) => new DomainError('wrong-file-type', { message })
+
+/**
+ * Looks at the bytes. Pictures are decoded and written anew, which leaves out whatever else was in the file (place and
+ * time of a photograph, appended data); PDF files with programs or other files inside are refused.
+ * @throws DomainError 'too-large' or 'wrong-file-type'
+ */
+export async function checkUpload(bytes: Uint8Array): Promise<CheckedFile> {
+  if (bytes.length > UPLOAD_LIMIT_BYTES) throw new DomainError('too-large')
+  const found = await fileTypeFromBuffer(bytes)
+  if (found?.mime === 'application/pdf') return { mediaType: found.mime, extension: 'pdf', bytes: checkPdf(bytes) }
+  if (found?.mime === 'image/png') return { mediaType: found.mime, extension: 'png', bytes: await encodeAgain(bytes, 'png') }
+  if (found?.mime === 'image/jpeg') return { mediaType: found.mime, extension: 'jpg', bytes: await encodeAgain(bytes, 'jpeg') }
+  throw new DomainError('wrong-file-type')
+}
+
+async function encodeAgain(bytes: Uint8Array, format: 'png' | 'jpeg'): Promise<Uint8Array> {
+  try {
+    const picture = sharp(bytes, { limitInputPixels: MOST_PIXELS, failOn: 'error' }).rotate()
+    return await (format === 'png' ? picture.png() : picture.jpeg({ quality: 88 })).toBuffer()
+  }
+  catch {
+    throw refused('The picture is damaged or has more than 40 million pixels. Nothing was stored.')
+  }
+}
+
+/** Without a PDF reader: counts page objects and the page tree's own counts as far as they stand in plain text. */
+export function pdfPages(text: string): number {
+  const objects = text.match(/\/Type\s*\/Page(?![A-Za-z])/g)?.length ?? 0
+  const counts = [...text.matchAll(/\/Count\s+(\d{1,9})/g)].map(match => Number(match[1]))
+  return Math.max(objects, ...counts)
+}
+
+function checkPdf(bytes: Uint8Array): Uint8Array {
+  const text = Buffer.from(bytes.buffer, bytes.byteOffset, bytes.byteLength).toString('latin1')
+  if (!text.startsWith('%PDF-') || !text.slice(-2048).includes('%%EOF')) throw refused('The PDF is cut short or damaged. Nothing was stored.')
+  if (/\/(?:JavaScript|JS|Launch|EmbeddedFiles?)\b/.test(text)) throw refused('The PDF has a program or another file inside. Print it to a new PDF and send that. Nothing was stored.')
+  if (pdfPages(text) > MOST_PDF_PAGES) throw refused(`The PDF has more than ${MOST_PDF_PAGES} pages. Nothing was stored.`)
+  return bytes
+}

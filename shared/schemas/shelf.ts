@@ -1,0 +1,28 @@
+import * as z from 'zod'
+import { idSchema, isoDateSchema } from './common'
+
+export const adoptionSchema = z.object({
+  siteId: z.string().min(1, 'Choose the site.'),
+  setId: idSchema,
+  setVersion: z.number().int().min(1),
+  /** null: for every technique it has limits for. */
+  techniques: z.array(idSchema).max(200).nullable().default(null),
+  effectiveOn: isoDateSchema,
+})
+export const rowChecksSchema = z.object({ setId: idSchema, setVersion: z.number().int().min(1), rowIds: z.array(idSchema).min(1, 'Choose at least one row.').max(2000) })
+
+/** GET /api/shelf/sets */
+export interface ShelfSet {
+  id: string
+  version: number
+  title: string
+  citation: string
+  population: string
+  rows: number
+  limitRows: number
+  recalledRows: number
+  checkedRows: number
+  adoptedAt: { id: string, siteId: string, siteName: string, techniques: string[] | null, effectiveOn: string, approvedBy: string | null, proposedBy: string, proposedById: string, endedOn: string | null, state: 'proposed' | 'approved' | 'in-use' | 'ended' }[]
+}
+/** GET /api/shelf/sets/:id, beside the fields of the set itself. */
+export interface RowCheckView { rowId: string, checkedBy: string, checkedAt: string }
