@@ -1,0 +1,133 @@
+import type { InjectionKey } from 'vue'
+import type { ApiErrorBody } from '#shared/errors'
+import type { StudyView } from '#shared/schemas/bench'
+import type { Study } from '#shared/schemas/study'
+import { emptyHistory, redo as redoStep, remember, undo as undoStep, type CellEdit } from '~/utils/grid-history'
+import { cellKey, type CellAddress } from '~/utils/grid-moves'
+import { unsavedCells, type SaveQueue } from '~/utils/save-queue'
+import { cellContent, findRow, sameContent, withCell, type CellContent } from '~/utils/study-edits'
+
+/** Cells that were acknowledged after this copy was made: a slow answer must not bring an older value back. */
+function acknowledgedSince(fresh: StudyView, queue: SaveQueue, current: Study) {
+  return Object.entries(queue.revisions).filter(([key, revision]) => revision > (fresh.cellRevisions[key] ?? 0)).flatMap(([key]) => {
+    const [rowId = '', field = ''] = key.split('/')
+    const found = findRow(current, rowId)
+    return found ? [{ rowId, field, entry: cellContent(found.row, field) }] : []
+  })
+}
+
+/** The server's study with everything on top that it has not acknowledged, or acknowledged meanwhile. */
+function withUnsaved(fresh: StudyView, queue: SaveQueue, current: Study) {
+  return [...acknowledgedSince(fresh, queue, current), ...unsavedCells(queue)].reduce((study, cell) => withCell(study, cell.rowId, cell.field, cell.entry), fresh.study)
+}
+
+/** What the explanation at the side is about: a row of a run, or one result. */
+export interface Explained { title: string, runId: string | null, rowId?: string, key?: string }
+
+/** The cell that is being typed into: it answers before the cursor leaves. */
+export interface CellEditor { address: CellAddress, isDirty: () => boolean, /** false when what stands there cannot be stored */ commit: () => boolean, reset: () => void }
+
+/**
+ * One study at the bench: what stands on the page, saving, undo, live results, and the acts that change more than a cell.
+ *
+ * @example
+ * const bench = useBenchStudy(view)
+ * bench.change([{ rowId, field: 'latencyMs', before: 4.2, after: 5.2 }])
+ */
+export function useBenchStudy(first: StudyView) {
+  const api = useApi()
+  const view = shallowRef(first)
+  const study = shallowRef(first.study)
+  const history = shallowRef(emptyHistory())
+  const problem = ref<ApiErrorBody | null>(null)
+  const busy = ref(false)
+  const saving = useCellSaving(first.id, first.cellRevisions, (rowId, field, entry) => study.value = withCell(study.value, rowId, field, entry))
+  const policy = computed(() => view.value.policy)
+  const live = useLiveAssessment(study, policy, () => view.value.assessment)
+  const path = (rest: string) => `/api/studies/${first.id}/${rest}`
+
+  const mayType = computed(() => view.value.mayRecord && (view.value.state === 'recording' || view.value.state === 'returned'))
+  const at = ref<CellAddress | null>(null)
+  const editor = shallowRef<CellEditor | null>(null)
+  const explained = shallowRef<Explained | null>(null)
+  const allColumns = ref(false)
+
+  /** Shows a value while it is typed, without storing it. */
+  function preview(rowId: string, field: string, content: CellContent) {
+    study.value = withCell(study.value, rowId, field, content)
+  }
+
+  function apply(edits: CellEdit[]) {
+    study.value = edits.reduce((state, edit) => withCell(state, edit.rowId, edit.field, edit.after), study.value)
+    saving.save(edits.map(edit => ({ rowId: edit.rowId, field: edit.field, entry: edit.after })))
+  }
+
+  function change(edits: CellEdit[]) {
+    const real = edits.filter(edit => !sameContent(edit.before, edit.after))
+    if (real.length === 0) return
+    history.value = remember(history.value, real)
+    apply(real)
+  }
+
+  /** Undo and redo answer with the cell they changed, for the cursor to go there. */
+  function walk(step: ReturnType<typeof undoStep>): CellAddress | null {
+    if (!step) return null
+    history.value = step.history
+    const edits = step.edits.filter(edit => findRow(study.value, edit.rowId))
+    apply(edits)
+    const lastEdit = edits.at(-1)
+    const row = lastEdit && findRow(study.value, lastEdit.rowId)
+    return lastEdit && row ? { runId: row.run.id, rowId: lastEdit.rowId, field: lastEdit.field } : null
+  }
+
+  function take(fresh: StudyView) {
+    view.value = fresh
+    study.value = withUnsaved(fresh, saving.queue.value, study.value)
+    saving.takeRevisions(fresh.cellRevisions)
+    if (saving.outstanding.value === 0) live.compareWith(fresh.study, fresh.assessment)
+  }
+
+  async function reload() {
+    take(await api<StudyView>(`/api/studies/${first.id}`))
+  }
+
+  /** An act on the server, then a fresh copy. True when it was done; else `problem` says why. */
+  async function act(rest: string, method: 'POST' | 'PUT' | 'PATCH' | 'DELETE', body: object = {}): Promise<boolean> {
+    busy.value = true
+    problem.value = null
+    try {
+      await saving.flush()
+      await api(path(rest), { method, body })
+      await reload()
+      return true
+    }
+    catch (error) {
+      problem.value = toApiError(error).body
+      if (['changed-meanwhile', 'wrong-state'].includes(problem.value.code)) await reload().catch(() => undefined)
+      return false
+    }
+    finally {
+      busy.value = false
+    }
+  }
+
+  const changeRun = (runId: string, changes: object) => act(`runs/${runId}`, 'PATCH', { ...changes, revision: view.value.runRevisions[runId] ?? 0 })
+
+  return {
+    view, study, policy, saving, assessment: live.assessment, isLive: live.live, liveProblem: live.problem, differences: live.differences, mayType, busy, problem, at, editor, explained, allColumns,
+    preview, change, reload, act, changeRun,
+    undo: () => walk(undoStep(history.value)),
+    redo: () => walk(redoStep(history.value)),
+    refusal: (rowId: string, field: string) => saving.queue.value.refusals[cellKey({ rowId, field })]?.message ?? '',
+  }
+}
+
+export type Bench = ReturnType<typeof useBenchStudy>
+export const benchKey: InjectionKey<Bench> = Symbol('bench')
+
+/** The study at the bench, inside its page. */
+export function useBench(): Bench {
+  const bench = inject(benchKey)
+  if (!bench) throw new Error('useBench is for components inside the bench page')
+  return bench
+}
