@@ -62,9 +62,9 @@ function limitsOf(table: ReferenceTable, adopted: AdoptedSet, query: LimitQuery)
   if (possible.length === 0) return { kind: 'no-limit', because: whyOutside(fits, query) }
   const missing = fitItems.filter(item => possible.some(({ fit }) => fit.missing.includes(item)))
   if (missing.length > 0) return { kind: 'not-judged', because: missing.map(item => `${item} missing`).join(', ') }
-  const applied = { upper: applyBound(table, adopted, query, possible, 'upper'), lower: applyBound(table, adopted, query, possible, 'lower') }
-  if (!applied.upper && !applied.lower) return { kind: 'not-judged', because: 'rows of the set contradict each other' }
-  return { kind: 'limits', ...(applied.upper && { upper: applied.upper }), ...(applied.lower && { lower: applied.lower }) }
+  const limits = (['upper', 'lower'] as const).map(bound => applyBound(table, adopted, query, possible, bound)).filter(limit => limit !== undefined)
+  if (limits.length === 0) return { kind: 'not-judged', because: 'rows of the set contradict each other' }
+  return { kind: 'limits', ...Object.fromEntries(limits.map(limit => [limit.bound, limit])) }
 }
 
 type Fitted = { row: LimitRow, fit: Fit }

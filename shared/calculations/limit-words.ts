@@ -31,7 +31,8 @@ export function ageWords(row: AgeBand): string {
   if (min === null && max === null) return ''
   if (max === null) return `${ageNumber(min!)} and over`
   if (min === null) return row.ageMaxExclusive ? `under ${ageNumber(max)}` : `up to ${ageNumber(max)}`
-  return row.ageMaxExclusive ? infantWords(min, max) : `${ageNumber(min)} to ${ageNumber(max)}`
+  if (row.ageMaxExclusive) return infantWords(min, max)
+  return min === max ? ageNumber(min) : `${ageNumber(min)} to ${ageNumber(max)}`
 }
 
 function infantWords(min: number, max: number): string {

@@ -118,6 +118,7 @@ export const motorTechniques: readonly Technique[] = [
   motor({
     id: 'femoral-motor-quadriceps', nerve: 'femoral', label: 'femoral motor', roots: 'L2 to L4', limb: 'leg',
     recording: { id: 'quadriceps', label: 'quadriceps (rectus femoris)', short: 'QUAD' },
+    withoutLimits: 'No shipped set has limits for the femoral nerve; compare the two sides.',
     sites: [
       { id: 'below-inguinal-ligament', label: 'below inguinal ligament', usual: true, segmentMm: distances.proximalMuscle },
       { id: 'above-inguinal-ligament', label: 'above inguinal ligament', segmentMm: distances.acrossInguinalLigament, segment: { id: 'across-inguinal-ligament', label: 'across the inguinal ligament', entrapment: true } },

@@ -40,6 +40,7 @@ export const sensoryTechniques: readonly Technique[] = [
   sensory({
     id: 'median-sensory-d3', nerve: 'median', label: 'median sensory, digit 3', roots: 'C7', ...hand,
     recording: { id: 'd3', label: 'digit 3', short: 'D3' }, standardDistanceMm: 140, sites: medianDigit,
+    withoutLimits: 'No shipped set has limits for digit 3; digit 2 has them.',
   }),
   sensory({
     id: 'median-sensory-d4', nerve: 'median', label: 'median sensory, digit 4', roots: 'C7, C8', ...hand,
