@@ -86,7 +86,7 @@ function withUnit(result: Result): string {
 /** "velocity across the elbow 38 m/s (below the limit, ≥ 43)". */
 function valueText(result: Result): string {
   const remark = verdictText(result)
-  return `${result.label} ${withUnit(result)}${remark ? ` (${remark})` : ''}`
+  return `${result.label.replaceAll(',', '')} ${withUnit(result)}${remark ? ` (${remark})` : ''}`
 }
 
 function verdictText({ verdict, quantity, value }: Result): string {

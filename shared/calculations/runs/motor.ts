@@ -1,4 +1,4 @@
-import { numberOf, isNoResponse, absentBecause, notComputable } from '../computed-value'
+import { numberOf, isNoResponse, absentBecause, notComputable, valueOf } from '../computed-value'
 import { amplitudeRatio, fallPercent, risePercent } from '../change-between-sites'
 import { conductionVelocity } from '../conduction-velocity'
 import { quantityInfo } from '../quantity-info'
@@ -6,7 +6,6 @@ import { residualLatency, residualLatencyUncertainty } from '../residual-latency
 import { roundForPrint } from '../round-for-print'
 import { terminalLatencyIndex } from '../terminal-latency-index'
 import type { ComputedValue } from '../types'
-import { valueOf } from '../computed-value'
 import { velocityDrop, velocityDropPercent } from '../velocity-drop'
 import { addCorrected } from './corrected'
 import { add, addTyped, cellOf, questionFor, type PlacedRow, type RunMaker } from './run-maker'

@@ -1,0 +1,80 @@
+import { quantities, quantityOf, type Quantity, type QuantityId } from '../../catalogue/quantities'
+import { quantityInfo } from '../quantity-info'
+import { roundForPrint } from '../round-for-print'
+import type { PlacedRow } from '../runs/run-maker'
+import type { KnownRun } from '../study-context'
+import { TOLERANCE } from '../tolerance'
+import { capital } from '../words'
+import { addRemark, OWN_DECISION, type RemarkList } from './remark'
+
+/**
+ * Each typed number by itself: zero and negative numbers, possible and usual ranges, slips of unit and decimal point,
+ * and entries that contradict each other within a row. The program asks and never converts.
+ */
+export function remarkOnValues(list: RemarkList, known: KnownRun, rows: readonly PlacedRow[]): void {
+  for (const placed of rows) {
+    for (const [quantity, entry] of Object.entries(placed.row.values)) {
+      if (typeof entry === 'number') remarkOnNumber(list, known, placed, quantity as QuantityId, entry)
+    }
+    remarkOnSeries(list, known, placed)
+    remarkOnContradiction(list, known, placed)
+  }
+}
+
+/** The single responses of a series, as one remark for the row. */
+function remarkOnSeries(list: RemarkList, known: KnownRun, { row, label }: PlacedRow): void {
+  const quantity: QuantityId = known.technique?.kind === 'f-wave' ? 'minimumLatencyMs' : 'amplitudeMv'
+  const { possible, unit } = quantityOf(quantity)
+  const wrong = (row.series ?? []).filter((entry): entry is number => typeof entry === 'number').find(entry => possible && (entry < possible.min || entry > possible.max))
+  if (wrong === undefined || !possible) return
+  addRemark(list, {
+    code: 'series-impossible', strength: 'stop', runId: known.run.id, rowId: row.id, source: OWN_DECISION,
+    sentence: `A response of ${plain(wrong)} ${unit} in the series (${label}) cannot be: it must be between ${possible.min} and ${possible.max} ${unit}.`,
+  })
+}
+
+function remarkOnNumber(list: RemarkList, known: KnownRun, { row, label, site }: PlacedRow, id: QuantityId, value: number): void {
+  if (!(id in quantities)) return
+  const quantity = quantityOf(id)
+  const where = { runId: known.run.id, rowId: row.id, quantity: id }
+  const name = capital(`${quantityInfo(id).label} at ${label}`)
+  const isCount = quantity.kind === 'count'
+  if (value <= 0 && !isCount) {
+    addRemark(list, { ...where, code: 'zero', strength: 'stop', source: OWN_DECISION, sentence: value === 0 ? `${name}: 0 is no measurement. Enter no response, technical, not done or stopped.` : `${name} must be above 0.` })
+    return
+  }
+  const possible = id === 'distanceMm' && site?.segmentMm ? { min: site.segmentMm.possibleMin, max: site.segmentMm.possibleMax } : quantity.possible
+  if (possible && (value < possible.min - TOLERANCE || value > possible.max + TOLERANCE)) {
+    addRemark(list, { ...where, code: 'impossible', strength: 'stop', source: OWN_DECISION, sentence: `${name} must be between ${possible.min} and ${possible.max}${unitOf(quantity)}; ${plain(value)} was entered.${slipHint(quantity, value, possible)}` })
+    return
+  }
+  const { usual } = quantity
+  if (usual && (value < usual.min - TOLERANCE || value > usual.max + TOLERANCE)) {
+    addRemark(list, { ...where, code: 'unusual', strength: 'check', source: OWN_DECISION, sentence: `${name} is usually between ${usual.min} and ${usual.max}${unitOf(quantity)}; ${plain(value)} was entered.${slipHint(quantity, value, usual)}` })
+  }
+}
+
+const unitOf = (quantity: Quantity) => quantity.unit ? ` ${quantity.unit}` : ''
+const plain = (value: number) => String(Number(roundForPrint(value, 3)))
+
+/** What the number would be if its unit or its decimal point had slipped. */
+function slipHint(quantity: Quantity, value: number, range: { min: number, max: number }): string {
+  const fits = (candidate: number) => candidate >= range.min && candidate <= range.max
+  if (quantity.unit === 'mV' && fits(value / 1000)) return ' Were microvolts entered? Enter millivolts.'
+  if (quantity.unit === 'mV' && value < range.min) return ' Were volts or microvolts mistaken? Enter millivolts.'
+  if (quantity.unit === 'µV' && fits(value * 1000)) return ' Were millivolts entered? Enter microvolts.'
+  if (quantity.kind === 'distance' && fits(value * 10)) return ' Were centimetres entered? Enter millimetres.'
+  if (quantity.kind === 'latency' && (fits(value / 10) || fits(value / 100))) return ' Is the decimal point missing?'
+  return ''
+}
+
+/** A number beside "no response" of the same response cannot both be right. */
+function remarkOnContradiction(list: RemarkList, known: KnownRun, { row, label }: PlacedRow): void {
+  for (const amplitude of ['amplitudeMv', 'amplitudeUv'] as const) {
+    const size = row.values[amplitude]
+    const timed = (['latencyMs', 'onsetLatencyMs', 'peakLatencyMs'] as const).filter(quantity => row.values[quantity] !== undefined)
+    const contradicts = timed.some(quantity => (size === 'no-response' && typeof row.values[quantity] === 'number') || (typeof size === 'number' && row.values[quantity] === 'no-response'))
+    if (!contradicts) continue
+    addRemark(list, { code: 'response-and-none', strength: 'stop', runId: known.run.id, rowId: row.id, quantity: amplitude, sentence: `At ${label} a number stands beside no response: correct the latency or the amplitude.` })
+  }
+}
