@@ -3,7 +3,7 @@ import type { Trx } from '#server/database/connection'
 import { copiesOf, referralInputOf } from '#server/database/queries/referrals'
 import type { Referral } from '#server/database/tables/referral'
 import { DomainError, type FieldError } from '#shared/errors'
-import { missingForBooking, type ReferralInput } from '#shared/schemas/referral'
+import { missingForBooking, referralSchema, type ReferralInput } from '#shared/schemas/referral'
 import type { ReferralState } from '#shared/states'
 import { changedFields } from './changed-fields'
 import { mayAt, now, type ServiceContext } from './context'
@@ -72,7 +72,8 @@ function checkChange(context: ServiceContext, before: Referral, input: ReferralI
  * accepted it may not become incomplete again.
  * @throws DomainError 'changed-meanwhile' with `details.theirs`, 'wrong-state', 'not-valid'
  */
-export async function changeReferral(context: ServiceContext, { id, revision, input }: { id: string, revision: number, input: ReferralInput }): Promise<void> {
+export async function changeReferral(context: ServiceContext, { id, revision, input: sent }: { id: string, revision: number, input: ReferralInput }): Promise<void> {
+  const input = referralSchema.parse(sent)
   await context.db.transaction().execute(async (trx) => {
     const before = await trx.selectFrom('referral').selectAll().where('id', '=', id).executeTakeFirst()
     if (!before) throw new DomainError('not-found')

@@ -1,4 +1,4 @@
-import { getRequestHeader, setResponseHeader, type H3Event } from 'h3'
+import { getRequestHeader, type H3Event } from 'h3'
 import { DomainError } from '#shared/errors'
 
 export interface SentFile { name: string, bytes: Uint8Array }
@@ -25,8 +25,8 @@ export async function readSentFile(event: H3Event, limitBytes: number): Promise<
 function readAtMost(event: H3Event, limit: number): Promise<Buffer> {
   const { req } = event.node
   const refuse = () => {
-    // The rest of the body is not read: the connection ends with this answer.
-    setResponseHeader(event, 'Connection', 'close')
+    // What still comes is thrown away unread, so that the answer reaches whoever is still sending.
+    req.resume()
     return new DomainError('too-large')
   }
   if (Number(getRequestHeader(event, 'content-length') ?? 0) > limit) return Promise.reject(refuse())

@@ -42,7 +42,7 @@ function namesakeBecause(asked: NameAndBirth, other: NameAndBirth): Omit<Namesak
   if (sameBirth && swapped) return { because: 'same birth date, family and given name swapped', strength: 'likely-same' }
   if (sameName && asked.birthDate !== '' && swapDayAndMonth(asked.birthDate) === other.birthDate) return { because: 'same name, day and month of birth swapped', strength: 'likely-same' }
   if (sameBirth && (family === otherFamily || given === otherGiven)) return { because: `same birth date and ${family === otherFamily ? 'family' : 'given'} name`, strength: 'same-birth-date' }
-  if (sameName) return { because: 'same name, another birth date', strength: 'same-name' }
+  if (sameName) return { because: asked.birthDate === '' ? 'same name' : 'same name, another birth date', strength: 'same-name' }
   return sameBirth ? { because: 'same birth date', strength: 'same-birth-date' } : undefined
 }
 

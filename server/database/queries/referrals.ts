@@ -69,13 +69,14 @@ export async function referralView(db: Database, referralId: string, today: stri
   const row = await referralRecord(db, referralId)
   if (!row) return undefined
   const input = referralInputOf(row, await copiesOf(db, referralId))
+  const copyPhysicians = (await Promise.all(input.copyPhysicianIds.map(id => physicianOf(db, id, today)))).filter(copy => copy !== null)
   const [patient, band, physician, uploads, booking, around, route, history] = await Promise.all([
     patientById(db, row.patientId), patientBand(db, referralId, today), physicianOf(db, row.physicianId, today), uploadsOf(db, referralId),
     bookingOf(db, referralId), studyAndReport(db, referralId), routeOf(db, referralId), historyOf(db, referralId),
   ])
   if (!patient || !band) return undefined
   const { id, number, state, stateSince, stateReason, protocol, revision, createdAt } = row
-  return { ...input, id, number, state, stateSince, stateReason, protocol, revision, createdAt, patient, band, physician, missing: missingForBooking(input), uploads, booking, ...around, route, history }
+  return { ...input, id, number, state, stateSince, stateReason, protocol, revision, createdAt, patient, band, physician, copyPhysicians, missing: missingForBooking(input), uploads, booking, ...around, route, history }
 }
 
 export async function siteOfUpload(db: Database, uploadId: string): Promise<string | null> {

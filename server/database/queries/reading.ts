@@ -1,0 +1,35 @@
+import { sql } from 'kysely'
+import type { Page, PageQuery } from '#shared/schemas/common'
+import type { ReadingRow } from '#shared/schemas/report'
+import type { StudyState } from '#shared/states'
+import type { Database } from '../connection'
+
+export interface ReadingQueue { siteIds: string[], states: StudyState[], readerId?: string }
+
+const queue = (db: Database, { siteIds, states, readerId }: ReadingQueue) => db.selectFrom('study')
+  .innerJoin('referral', 'referral.id', 'study.referralId').innerJoin('patient', 'patient.id', 'study.patientId').innerJoin('site', 'site.id', 'study.siteId')
+  .where('study.siteId', 'in', siteIds).where('study.state', 'in', states)
+  .$if(readerId !== undefined, query => query.where('study.readerId', '=', readerId ?? ''))
+
+/** Urgent studies first, then those that have waited longest: a study must not be overtaken for ever. */
+const urgencyRank = sql<number>`case referral.urgency when 'urgent' then 0 when 'same-week' then 1 else 2 end`
+
+/** What waits to be read, or was read, at these sites. */
+export async function readingPage(db: Database, wanted: ReadingQueue, { page, pageSize }: Pick<PageQuery, 'page' | 'pageSize'>): Promise<Page<ReadingRow>> {
+  const { total } = await queue(db, wanted).select(eb => eb.fn.countAll<number>().as('total')).executeTakeFirstOrThrow()
+  const done = wanted.states.every(state => state === 'read')
+  const rows = await queue(db, wanted)
+    .leftJoin('user as reader', 'reader.id', 'study.readerId').leftJoin('report', 'report.studyId', 'study.id')
+    .select(['study.id as studyId', 'study.number', 'familyName', 'givenName', 'birthDate', 'recordNumber', 'clinicalQuestion as question', 'urgency', 'study.state', 'handedOverAt', 'site.name as siteName', 'readerId', 'reader.name as readerName', 'summaryJson', 'report.id as reportId'])
+    .$if(!done, query => query.orderBy(urgencyRank).orderBy('study.stateSince'))
+    .$if(done, query => query.orderBy('study.stateSince', 'desc'))
+    .orderBy('study.id').limit(pageSize).offset((page - 1) * pageSize).execute()
+  return { total, page, pageSize, rows: rows.map(({ familyName, givenName, summaryJson, reportId, ...row }) => ({ ...row, patientName: `${familyName}, ${givenName}`, flagged: flaggedIn(summaryJson), hasDraft: reportId !== null })) }
+}
+
+/** The count that was kept at hand-over, so that the list assesses nothing. */
+function flaggedIn(summaryJson: string | null): number {
+  if (!summaryJson) return 0
+  const summary = JSON.parse(summaryJson) as { flagged?: number }
+  return summary.flagged ?? 0
+}

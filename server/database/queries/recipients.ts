@@ -1,0 +1,45 @@
+import { sql } from 'kysely'
+import type { Database } from '../connection'
+
+/** Someone a report goes to, with what decides whether it can be mailed. */
+export interface Recipient {
+  physicianId: string
+  practiceId: string
+  name: string
+  practiceName: string
+  town: string
+  email: string
+  reachable: boolean
+  /** Why it cannot be mailed; '' when it can. */
+  because: string
+}
+
+async function recipientsById(db: Database, ids: string[], today: string): Promise<Recipient[]> {
+  const rows = await db.selectFrom('physician').innerJoin('practice', 'practice.id', 'physician.practiceId')
+    .select(['physician.id as physicianId', 'practiceId', 'physician.name', 'practice.name as practiceName', 'practice.town', 'email', 'emailVerifiedAt', 'passphraseSealed'])
+    .select(sql<number>`practice.closed_at IS NOT NULL OR coalesce(physician.left_on <= ${today}, 0)`.as('left'))
+    .where('physician.id', 'in', ids).orderBy('physician.name').orderBy('physician.id').execute()
+  return rows.map(({ emailVerifiedAt, passphraseSealed, left, ...row }) => {
+    const because = left ? 'the physician left the practice' : emailVerifiedAt === null ? 'the address is not verified' : passphraseSealed === null ? 'the practice has no passphrase yet' : ''
+    return { ...row, because, reachable: because === '' }
+  })
+}
+
+/** Those the referral names: the referring physician and the copies. */
+export async function recipientsOfReferral(db: Database, referralId: string, today: string): Promise<Recipient[]> {
+  const referral = await db.selectFrom('referral').select('physicianId').where('id', '=', referralId).executeTakeFirst()
+  const copies = await db.selectFrom('referralCopy').select('physicianId').where('referralId', '=', referralId).execute()
+  return await recipientsById(db, [referral?.physicianId ?? '', ...copies.map(copy => copy.physicianId)], today)
+}
+
+/**
+ * Those a later version goes to: everyone the referral names now and everyone who had an earlier version. A delivery
+ * that was withdrawn does not count: a report sent to the wrong practice is not corrected there.
+ */
+export async function recipientsOfVersion(db: Database, { referralId, reportId }: { referralId: string, reportId: string }, today: string): Promise<Recipient[]> {
+  const named = await recipientsOfReferral(db, referralId, today)
+  const had = await db.selectFrom('delivery').innerJoin('reportVersion', 'reportVersion.id', 'delivery.reportVersionId')
+    .select('physicianId').distinct().where('reportVersion.reportId', '=', reportId).where('delivery.state', '<>', 'withdrawn').execute()
+  const others = had.map(row => row.physicianId).filter(id => !named.some(person => person.physicianId === id))
+  return [...named, ...await recipientsById(db, others, today)]
+}
