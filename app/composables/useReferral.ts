@@ -19,7 +19,7 @@ export async function useReferral(id: string) {
 
   const values = ref(inputOf(view.value))
   const revision = ref(view.value.revision)
-  const known = ref<Record<string, ChosenPhysician>>(Object.fromEntries([view.value.physician, ...view.value.copyPhysicians ?? []].flatMap(p => p ? [[p.id, p]] : [])))
+  const known = ref<Record<string, ChosenPhysician>>(Object.fromEntries([view.value.physician, ...view.value.copyPhysicians].flatMap(p => p ? [[p.id, p]] : [])))
   const kept = ref(JSON.stringify(values.value))
   const theirs = ref<Theirs | null>(null)
   const savedAt = ref<string | null>(null)

@@ -124,7 +124,7 @@ export interface ReferralView extends ReferralInput {
   band: PatientBand
   physician: { id: string, name: string, practiceName: string, town: string, emailVerified: boolean } | null
   /** Those who get a copy, in the order of `copyPhysicianIds`. */
-  copyPhysicians?: { id: string, name: string, practiceName: string, town: string, emailVerified: boolean }[]
+  copyPhysicians: { id: string, name: string, practiceName: string, town: string, emailVerified: boolean }[]
   missing: { path: string, message: string }[]
   uploads: UploadView[]
   booking: BookingView | null
