@@ -61,11 +61,11 @@ function isCommon(lower: string): boolean {
   return unit !== undefined && commonest.has(unit)
 }
 
-/** The first own word without which fewer than half of the least characters remain. */
+/** The longest own word found, if without all of them fewer than half of the least characters (letters and digits) remain. */
 function guessableWord(lower: string, ownWords: readonly string[], least: number): string | null {
-  const words = [...PRODUCT_WORDS, ...ownWords.flatMap(name => name.toLowerCase().split(/[^\p{L}\p{N}]+/u))].filter(word => [...word].length >= 4)
+  const words = [...PRODUCT_WORDS, ...ownWords.flatMap(name => name.toLowerCase().split(/[^\p{L}\p{N}]+/u))].filter(word => [...word].length >= 3)
   const found = words.filter(word => lower.includes(word)).sort((a, b) => b.length - a.length)
   let rest = lower
   for (const word of found) rest = rest.replaceAll(word, '')
-  return found.length > 0 && [...rest].length < least / 2 ? found[0]! : null
+  return found.length > 0 && [...rest.replace(/[^\p{L}\p{N}]/gu, '')].length < least / 2 ? found[0]! : null
 }
