@@ -1,5 +1,6 @@
 import * as z from 'zod'
 import { idSchema, isoDateSchema } from './common'
+import type { ReferenceTable } from './reference-table'
 
 export const adoptionSchema = z.object({
   siteId: z.string().min(1, 'Choose the site.'),
@@ -26,3 +27,7 @@ export interface ShelfSet {
 }
 /** GET /api/shelf/sets/:id, beside the fields of the set itself. */
 export interface RowCheckView { rowId: string, checkedBy: string, checkedAt: string }
+export type ShelfSetView = ReferenceTable & { rowChecks: RowCheckView[] }
+
+/** Where a set is in use, was, or is proposed to be. */
+export type AdoptionView = ShelfSet['adoptedAt'][number]
