@@ -1,0 +1,110 @@
+import { randomBytes, randomUUID } from 'node:crypto'
+import { TOTP } from 'otpauth'
+import { addPerson } from '#server/services/change-person'
+import { addSite, changeSite } from '#server/services/change-site'
+import { actingAs, type Actor, type ServiceContext } from '#server/services/context'
+import { currentHoldings } from '#server/services/current-holdings'
+import { makeFirstAdministrator, writeFirstRunLink } from '#server/services/first-run'
+import { makePassphrase } from '#server/services/make-passphrase'
+import { confirmSecondFactor, startSecondFactor } from '#server/services/second-factor'
+import { makeSetUpLink, setPassword } from '#server/services/set-up-link'
+import { approveAdoption, proposeAdoption } from '#server/services/adopt-set'
+import { referenceTable } from '#reference-tables/index'
+import { rolesWithSecondFactor, type Role } from '#shared/permissions'
+import { localDate } from '#server/services/site-time'
+import { organisation, practices, sites, staff } from './people'
+import type { DemoClock } from './clock'
+
+export interface DemoPerson { key: string, id: string, role: Role, name: string, email: string, password: string, totpSecret?: string, siteIds: string[] }
+export interface DemoPractice { id: string, name: string, passphrase: string }
+export interface DemoSite { id: string, name: string, rooms: string[], timeZone: string }
+export interface Organisation { sites: DemoSite[], people: DemoPerson[], practices: DemoPractice[], physicians: { id: string, name: string, practice: string }[] }
+
+const addressOf = (name: string) => `${name.replace(/^Dr /, '').toLowerCase().replace(/[^a-z]+/g, '.')}@northmere.example`
+/** 96 random bits, in a form that can be typed. */
+const randomPassword = () => randomBytes(12).toString('base64url').replace(/[-_]/g, 'x').replace(/(.{4})(?=.)/g, '$1-')
+const tokenOf = (link: string) => link.split('#')[1] ?? ''
+
+/** The actor of a person as a request would have it. */
+export async function actorFor(context: ServiceContext, id: string): Promise<Actor> {
+  const user = await context.db.selectFrom('user').select('name').where('id', '=', id).executeTakeFirstOrThrow()
+  const holdings = await currentHoldings(context.db, [id], context.clock())
+  return { userId: id, label: user.name, holdings: holdings.map(h => ({ siteId: h.siteId, role: h.role as Role })) }
+}
+
+/** Organisation, sites and people, through the one-time links that anybody would use. */
+export async function makeOrganisation(context: ServiceContext, clock: DemoClock): Promise<Organisation> {
+  const people: DemoPerson[] = []
+  const first = staff[0]
+  const administrator: DemoPerson = { key: first.key, id: '', role: 'administrator', name: first.name, email: addressOf(first.name), password: randomPassword(), siteIds: [] }
+  const link = await writeFirstRunLink({ ...context, settings: { ...context.settings, demonstration: false } })
+  await makeFirstAdministrator(context, { token: tokenOf(link ?? ''), organisationName: organisation.name, siteName: sites[0]!.name, town: sites[0]!.town, timeZone: organisation.timeZone, name: first.name, email: administrator.email, password: administrator.password })
+  await context.db.updateTable('organisation').set({ demonstration: 1, paperSize: organisation.paperSize }).execute()
+  administrator.id = (await context.db.selectFrom('user').select('id').executeTakeFirstOrThrow()).id
+  people.push(administrator)
+
+  const asAdministrator = async () => actingAs(context, await actorFor(context, administrator.id))
+  const made = await makeSites(await asAdministrator())
+  administrator.siteIds = made.map(site => site.id)
+  for (const person of staff.slice(1)) people.push(await makePerson(await asAdministrator(), clock, person, made))
+  const directory = await makeDirectory(context, people)
+  return { sites: made, people, ...directory }
+}
+
+async function makeSites(context: ServiceContext): Promise<DemoSite[]> {
+  const rest = { timeZone: organisation.timeZone, handMinimumC: 32, footMinimumC: 30, distanceUncertaintyMm: 5, latencyUncertaintyMs: 0.1 }
+  const existing = await context.db.selectFrom('site').select('id').executeTakeFirstOrThrow()
+  await changeSite(context, existing.id, { ...sites[0]!, ...rest })
+  const made: DemoSite[] = [{ id: existing.id, name: sites[0]!.name, rooms: sites[0]!.rooms, timeZone: organisation.timeZone }]
+  for (const site of sites.slice(1)) made.push({ id: (await addSite(context, { ...site, ...rest })).id, name: site.name, rooms: site.rooms, timeZone: organisation.timeZone })
+  return made
+}
+
+async function makePerson(context: ServiceContext, clock: DemoClock, { key, name, credentials, roles, sites: where }: (typeof staff)[number], made: readonly DemoSite[]): Promise<DemoPerson> {
+  clock.forward(2)
+  const email = addressOf(name)
+  const siteIds = where.map(index => made[index]!.id)
+  const id = await addPerson(context, { email, name, printedName: credentials ? `${name}, ${credentials}` : name, credentials, holdings: siteIds.flatMap(siteId => roles.map(role => ({ siteId, role }))) })
+  const password = randomPassword()
+  const answer = await makeSetUpLink(context, id, false)
+  if (answer.waiting) throw new Error('A first link needs no second person.')
+  await setPassword(context, { token: tokenOf(answer.link), password })
+  const person: DemoPerson = { key, id, role: roles[0], name, email, password, siteIds }
+  if (!roles.some(role => rolesWithSecondFactor.includes(role))) return person
+  const { secret } = await startSecondFactor(context, { id, email })
+  const code = new TOTP({ secret }).generate({ timestamp: clock.read().getTime() })
+  await confirmSecondFactor(actingAs(context, await actorFor(context, id)), { userId: id, password, code, currentCode: '', agent: 'demonstration' })
+  // The set-up's session is nobody's.
+  await context.db.updateTable('session').set({ endedAt: clock.read().toISOString(), endedBecause: 'set-up finished' }).where('userId', '=', id).where('endedAt', 'is', null).execute()
+  return { ...person, totpSecret: secret }
+}
+
+async function makeDirectory(context: ServiceContext, people: readonly DemoPerson[]) {
+  const createdAt = context.clock().toISOString()
+  const made: DemoPractice[] = []
+  const physicians: Organisation['physicians'] = []
+  for (const practice of practices) {
+    const [id, passphrase] = [randomUUID(), makePassphrase()]
+    await context.db.insertInto('practice').values({ id, name: practice.name, town: practice.town, address: `1 Invented Street, ${practice.town}`, phone: '+00 55 0999', passphraseSealed: context.keys.seal(passphrase), passphraseMadeAt: createdAt, passphraseHandedOverAt: createdAt, closedAt: null, createdAt }).execute()
+    made.push({ id, name: practice.name, passphrase })
+    for (const physician of practice.physicians) {
+      const user = people.find(person => 'key' in physician && person.key === physician.key)
+      const physicianId = randomUUID()
+      await context.db.insertInto('physician').values({ id: physicianId, practiceId: id, name: physician.name, title: 'MD', email: `${addressOf(physician.name).split('@')[0]}@${practice.name.toLowerCase().replace(/[^a-z]+/g, '-')}.example`, emailVerifiedAt: createdAt, phone: '+00 55 0998', leftOn: null, userId: user?.id ?? null, createdAt }).execute()
+      physicians.push({ id: physicianId, name: physician.name, practice: practice.name })
+    }
+  }
+  return { practices: made, physicians }
+}
+
+/** The set that every site uses, proposed by the administrator and approved by the medical director. */
+export async function adoptSets(context: ServiceContext, { people, sites: made }: Organisation): Promise<void> {
+  const by = (key: string) => people.find(person => person.key === key)!.id
+  const setId = 'aanem-ndtf-2016'
+  const version = referenceTable(setId)?.version ?? 1
+  for (const site of made) {
+    const effectiveOn = localDate(context.clock(), site.timeZone)
+    const { id } = await proposeAdoption(actingAs(context, await actorFor(context, by('administrator'))), { siteId: site.id, setId, setVersion: version, techniques: null, effectiveOn })
+    await approveAdoption(actingAs(context, await actorFor(context, by('medical-director'))), { id })
+  }
+}
