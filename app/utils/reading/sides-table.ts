@@ -87,18 +87,24 @@ function pairRows(right: Result[], left: Result[], keyOf: (result: Result) => st
   return [...rows.values()]
 }
 
-/** Side differences stand in the line of the value they compare. */
-function withDifferences(group: Omit<SidesGroup, 'rows'> & { rows: SidesRow[] }, comparisons: ComparisonAssessment[]): SidesRow[] {
+/** Side differences stand in the line of the value they compare: `at` of a difference names its quantity. */
+function withDifferences(group: SidesGroup, comparisons: ComparisonAssessment[]): SidesRow[] {
   const ids = [group.right?.runId, group.left?.runId].filter(id => id !== undefined)
   const results = comparisons
     .filter(comparison => comparison.id.startsWith(SIDE_DIFFERENCE) && ids.length === 2 && ids.every(id => comparison.runIds.includes(id)))
     .flatMap(comparison => comparison.results)
-  return group.rows.map(row => ({ ...row, difference: results.find(result => comparesRow(result, row)) ?? null }))
+  const left = new Set(results)
+  return group.rows.map((row) => {
+    const difference = [...left].find(result => comparesRow(result, row)) ?? null
+    if (difference) left.delete(difference)
+    return { ...row, difference }
+  })
 }
 
-/** A difference names the value it compares as "<label of the value>, side difference". */
-function comparesRow(result: Result, row: SidesRow): boolean {
-  return result.label === row.label || result.label.startsWith(`${row.label},`) || result.label.includes(row.label)
+function comparesRow(difference: Result, row: SidesRow): boolean {
+  const value = row.right ?? row.left
+  if (!value || !row.right || !row.left) return false
+  return difference.at === value.quantity && (value.quantity !== 'velocityMps' || difference.label.startsWith(`${value.label},`))
 }
 
 function comparisonGroups(comparisons: ComparisonAssessment[]): SidesGroup[] {
@@ -115,9 +121,4 @@ function comparisonGroups(comparisons: ComparisonAssessment[]): SidesGroup[] {
 
 function comparisonTitle(comparison: ComparisonAssessment): string {
   return nerveTitle({ title: comparison.title.replace(/,?\s*\b(RIGHT|LEFT)\b\s*$/, '') })
-}
-
-/** Every result of the assessment, in printing order. */
-export function allResults(assessment: Assessment): Result[] {
-  return [...assessment.runs, ...assessment.comparisons].flatMap(part => part.results)
 }
