@@ -1,8 +1,8 @@
 import { techniqueTitle } from '../catalogue/nerves'
 import type { Technique } from '../catalogue/types'
+import { STANDS_FOR } from './make-result'
 import { decimalsFor, quantityInfo } from './quantity-info'
 import { printLimit } from './round-for-print'
-import { placedRows } from './runs/run-maker'
 import type { KnownRun, StudyContext } from './study-context'
 import type { AppliedLimit, ComparisonAssessment, FindingSentence, Result, RunAssessment } from './types'
 import { capital, listed, sideWords } from './words'
@@ -59,7 +59,7 @@ function titleOf(known: KnownRun, run: RunAssessment): string {
   const { technique } = known
   if (!technique) return run.title
   const title = `${sideWords[run.side]} ${techniqueTitle(technique)}`
-  const distance = technique.kind === 'sensory' || technique.kind === 'mixed' ? placedRows(known.run, technique)[0]?.row.values.distanceMm : undefined
+  const distance = technique.kind === 'sensory' || technique.kind === 'mixed' ? known.rows[0]?.row.values.distanceMm : undefined
   return typeof distance === 'number' ? `${title} (${distance} mm)` : title
 }
 
@@ -69,7 +69,7 @@ function isTold(result: Result): boolean {
   if (kind === 'within' || kind === 'outside' || kind === 'absent' || kind === 'cold' || kind === 'not-judged') return true
   if (result.value.kind === 'absent') return true
   if (kind !== 'no-limit' || result.value.kind !== 'value') return false
-  return !result.verdict.because.startsWith('its limit comes')
+  return !result.verdict.because.startsWith(STANDS_FOR)
 }
 
 const isNear = (result: Result) => result.verdict.kind === 'within' && result.verdict.nearLimit

@@ -1,6 +1,7 @@
 import { absentBecause, isNoResponse, notComputable, valueOf } from './computed-value'
 import type { ComputedValue } from './types'
 import { latencySumUncertainty } from './uncertainty'
+import { absenceAt } from './words'
 
 /**
  * Latency of the nerve in question minus that of the nerve it is compared with, in ms; the sign is kept.
@@ -24,9 +25,7 @@ export function latencyDifference(
   return valueOf(lead.value - other.value, latencySumUncertainty(2, context.latencyMs))
 }
 
-const absenceWords = { 'no-response': 'no response', 'technical': 'not recordable', 'not-done': 'not done', 'stopped': 'stopped' } as const
-
 function reasonOf(value: ComputedValue, name: string): string {
-  if (value.kind === 'absent') return `${name}: ${absenceWords[value.absence]}`
+  if (value.kind === 'absent') return `${name}: ${absenceAt[value.absence]}`
   return value.kind === 'not-computable' ? `${name}: ${value.because}` : ''
 }

@@ -1,89 +1,105 @@
-import type { ReferenceTable } from '../schemas/reference-table'
 import type { Side } from '../schemas/common'
 import { absenceLabels } from '../schemas/study'
-import type { FoundLimit, LimitQuery } from './find-limit'
+import type { FoundLimit } from './find-limit'
 import { isFlag, judge, type ColdBearing } from './judge'
-import { decimalsFor, quantityInfo } from './quantity-info'
+import type { LimitAsker } from './limit-asker'
+import { decimalsFor, quantityInfo, type QuantityInfo } from './quantity-info'
 import { roundBesideLimits, roundForPrint } from './round-for-print'
 import type { StudyContext } from './study-context'
 import type { AppliedLimit, ComputedValue, Result, Verdict } from './types'
 import { zScore } from './z-score'
 
-export interface ResultInput {
-  key: string
+/** Whose number it is: a row of a run, or a comparison. */
+export interface Owner {
+  /** `${runId}/${rowId}/` or `compare/${side}/${id}/`. */
+  keyStart: string
   runId?: string
   rowId?: string
   side?: Side
+  cold: ColdBearing
+  supersededBy?: string
+}
+
+export interface ResultInput {
   quantity: string
+  /** What follows in the key when the quantity alone is not unique. */
+  keyEnd?: string
   at?: string
   label: string
   typed: boolean
   value: ComputedValue
   how?: Result['how']
-  /** What to ask the sets for; left out for what is not meant to be judged. */
-  query?: Omit<LimitQuery, 'person' | 'quantity'> & { quantity?: string }
+  /** Who knows the limits; left out for what is not meant to be judged. */
+  asker?: LimitAsker
+  /** Place the question is about; `at` unless given. */
+  askAt?: string | null
   /** Context for people: judged where a set has a limit, and without one not called "no limit". */
   supporting?: boolean
-  cold: ColdBearing
-  supersededBy?: string
-  /** Why no limit of a set can be used here although it has one. */
+  /** Why no limit of a set can be used here although it may have one. */
   noLimitBecause?: string
 }
 
 const noQuestion: FoundLimit = { kind: 'no-limit', because: '' }
+const noLimits: readonly AppliedLimit[] = []
 
 /**
  * One number with its limits, verdict and print. Every result of an assessment is made here.
  */
-export function makeResult(context: StudyContext, input: ResultInput): Result {
+export function makeResult(context: StudyContext, owner: Owner, input: ResultInput): Result {
   const info = quantityInfo(input.quantity)
-  const answer = askFor(context, input)
-  const verdict = verdictOf(context, input, answer, info.cold)
-  const limits = 'limits' in verdict ? verdict.limits : []
+  const key = owner.keyStart + (input.keyEnd ?? input.quantity)
+  const answer = askFor(context, key, input)
+  const verdict = verdictOf(context, owner, input, answer, info)
+  const limits = 'limits' in verdict ? verdict.limits : noLimits
+  const print = printOf(input.value, limits, info)
   const result: Result = {
-    key: input.key, quantity: input.quantity, label: input.label, unit: info.unit, typed: input.typed, value: input.value,
-    print: printOf(input.value, limits, input.quantity), printUncertainty: '', verdict,
-    flagged: isFlag(verdict),
+    key, quantity: input.quantity, label: input.label, unit: info.unit, typed: input.typed, value: input.value,
+    print, printUncertainty: input.typed ? '' : printUncertainty(input.value, print),
+    verdict, flagged: isFlag(verdict),
   }
-  if (input.runId !== undefined) result.runId = input.runId
-  if (input.rowId !== undefined) result.rowId = input.rowId
-  if (input.side !== undefined) result.side = input.side
+  // Only what there is: a key without a value would not outlive being written as JSON.
+  if (owner.runId !== undefined) result.runId = owner.runId
+  if (owner.rowId !== undefined) result.rowId = owner.rowId
+  if (owner.side !== undefined) result.side = owner.side
   if (input.at !== undefined) result.at = input.at
-  if (input.how) result.how = input.how
-  if (!input.typed) result.printUncertainty = printUncertainty(input.value, result.print)
+  if (input.how !== undefined) result.how = input.how
   if (limits.length > 0) addScore(context, result, limits)
   return result
 }
 
-function askFor(context: StudyContext, input: ResultInput): FoundLimit {
-  if (!input.query) return noQuestion
+function askFor(context: StudyContext, key: string, input: ResultInput): FoundLimit {
+  if (!input.asker) return noQuestion
   if (input.noLimitBecause) return { kind: 'no-limit', because: input.noLimitBecause }
-  const answer = context.limits({ ...input.query, quantity: input.query.quantity ?? input.quantity })
-  if (answer.kind === 'limits') context.limitsByKey.set(input.key, answer)
+  const answer = input.asker.ask(input.quantity, input.askAt === undefined ? input.at ?? null : input.askAt)
+  if (answer.kind === 'limits') context.limitsByKey.set(key, answer)
   return answer
 }
 
-function verdictOf(context: StudyContext, input: ResultInput, answer: FoundLimit, effect: ReturnType<typeof quantityInfo>['cold']): Verdict {
-  if (input.supersededBy !== undefined) return { kind: 'superseded', by: input.supersededBy }
-  if (!input.query) return { kind: 'none' }
+function verdictOf(context: StudyContext, owner: Owner, input: ResultInput, answer: FoundLimit, info: QuantityInfo): Verdict {
+  if (owner.supersededBy !== undefined) return { kind: 'superseded', by: owner.supersededBy }
+  if (!input.asker) return { kind: 'none' }
+  if (answer.kind === 'no-limit' && input.supporting) return { kind: 'none' }
   const standIn = answer.kind === 'limits' ? answer.lower?.derivation ?? answer.upper?.derivation : undefined
-  if (standIn !== undefined) return { kind: 'no-limit', because: `its limit comes ${standIn}, which stands for it` }
-  const verdict = judge(input.value, answer, effect, input.cold)
-  if (verdict.kind === 'no-limit' && input.supporting) return { kind: 'none' }
-  if ('limits' in verdict) for (const limit of verdict.limits) context.applied.set(`${limit.setId}/${limit.setVersion}/${limit.rowId}`, limit)
+  if (standIn !== undefined) return { kind: 'no-limit', because: `${STANDS_FOR} ${standIn}, which stands for it` }
+  const verdict = judge(input.value, answer, info.cold, owner.cold)
+  if ('limits' in verdict) for (const limit of verdict.limits) context.applied.add(limit)
   return verdict
 }
 
-function printOf(value: ComputedValue, limits: readonly AppliedLimit[], quantity: string): string {
+/** How the reason begins where another measurement of the same response is judged in a number's place. */
+export const STANDS_FOR = 'its limit comes'
+
+function printOf(value: ComputedValue, limits: readonly AppliedLimit[], info: QuantityInfo): string {
   if (value.kind === 'absent') return absenceLabels[value.absence]
   if (value.kind === 'not-computable') return 'not computable'
-  return roundBesideLimits(value.value, decimalsFor(quantityInfo(quantity), value.value), limits)
+  return roundBesideLimits(value.value, decimalsFor(info, value.value), limits)
 }
 
 /** With as many decimals as the value beside it, and one more where it would print as 0. */
 function printUncertainty(value: ComputedValue, print: string): string {
   if (value.kind !== 'value' || value.uncertainty === undefined) return ''
-  const decimals = print.includes('.') ? print.length - print.indexOf('.') - 1 : 0
+  const point = print.indexOf('.')
+  const decimals = point < 0 ? 0 : print.length - point - 1
   const text = roundForPrint(value.uncertainty, decimals)
   return `± ${Number(text) === 0 && value.uncertainty > 0 ? roundForPrint(value.uncertainty, decimals + 1) : text}`
 }
@@ -92,23 +108,10 @@ function printUncertainty(value: ComputedValue, print: string): string {
 function addScore(context: StudyContext, result: Result, limits: readonly AppliedLimit[]): void {
   const [limit] = limits
   if (result.value.kind !== 'value' || !limit || limit.derivation !== undefined) return
-  const table = context.tables.find(one => one.id === limit.setId && one.version === limit.setVersion)
-  const row = table && rowsById(table).get(limit.rowId)
+  const row = context.rowOf(limit)
   if (!row || (row.kind !== 'mean-sd' && row.kind !== 'transformed-mean-sd' && row.kind !== 'regression')) return
   const score = zScore(row, result.value.value, context.person)
   if (score.kind !== 'value' || !Number.isFinite(score.zScore)) return
   result.zScore = score.zScore + 0
   result.percentile = score.percentile + 0
-}
-
-/** Tables never change once loaded, so each is sorted once. */
-const rowIndices = new WeakMap<ReferenceTable, Map<string, ReferenceTable['rows'][number]>>()
-
-function rowsById(table: ReferenceTable): Map<string, ReferenceTable['rows'][number]> {
-  let index = rowIndices.get(table)
-  if (!index) {
-    index = new Map(table.rows.map(row => [row.id, row]))
-    rowIndices.set(table, index)
-  }
-  return index
 }

@@ -18,10 +18,23 @@ import type { AppliedLimit } from './types'
 export function roundForPrint(value: number, decimals: number): string {
   if (!Number.isFinite(value)) return 'not computable'
   const size = Math.abs(value)
-  if (size >= 1e15) return value.toPrecision(12)
-  const rounded = shift(Math.round(shift(Number(size.toPrecision(12)), decimals)), -decimals)
-  const text = rounded.toFixed(decimals)
-  return value < 0 && rounded !== 0 ? `-${text}` : text
+  if (size >= 1e12) return value.toPrecision(12)
+  const whole = wholeParts(size, decimals)
+  const text = decimals === 0 ? String(whole) : withPoint(whole, decimals)
+  return value < 0 && whole !== 0 ? `-${text}` : text
+}
+
+/** The value in units of its last decimal, rounded; near a half, on the decimal digits. */
+function wholeParts(size: number, decimals: number): number {
+  const scaled = size * 10 ** decimals
+  const below = Math.floor(scaled)
+  if (Math.abs(scaled - below - 0.5) > 1e-4) return Math.round(scaled)
+  return Math.round(shift(Number(size.toPrecision(12)), decimals))
+}
+
+function withPoint(whole: number, decimals: number): string {
+  const digits = String(whole).padStart(decimals + 1, '0')
+  return `${digits.slice(0, -decimals)}.${digits.slice(-decimals)}`
 }
 
 /** Moves the decimal point on the decimal digits, so that 4.35 becomes 43.5 and not 43.49999. */

@@ -5,10 +5,13 @@ import type { AppliedLimit, Assessment } from './types'
  * The sets whose limits were applied in this study, with how many of those rows rest on memory, and how many of
  * these a named person compared with the paper.
  */
-export function setsUsed(applied: ReadonlyMap<string, AppliedLimit>, tables: readonly ReferenceTable[]): Assessment['setsUsed'] {
+export function setsUsed(applied: ReadonlySet<AppliedLimit>, tables: readonly ReferenceTable[]): Assessment['setsUsed'] {
   const sets = new Map<string, Assessment['setsUsed'][number]>()
-  for (const limit of applied.values()) {
+  const seen = new Set<string>()
+  for (const limit of applied) {
     const key = `${limit.setId}/${limit.setVersion}`
+    if (seen.has(`${key}/${limit.rowId}`)) continue
+    seen.add(`${key}/${limit.rowId}`)
     const set = sets.get(key) ?? emptySet(limit, tables)
     if (limit.basis === 'from memory') {
       set.recalledRows += 1

@@ -1,31 +1,35 @@
 import { sideDifferenceId } from '../catalogue/comparisons'
-import { nerveLabels, techniqueTitle, techniques } from '../catalogue/nerves'
+import { techniqueTitle, techniques } from '../catalogue/nerves'
 import type { QuantityId } from '../catalogue/quantities'
 import type { Technique } from '../catalogue/types'
-import { bearingOf, usualRow } from './comparisons'
+import { bearingOf, definitionOf } from './comparisons'
 import { absentBecause, isNoResponse } from './computed-value'
-import { makeResult } from './make-result'
+import type { LimitAsker } from './limit-asker'
+import { makeResult, type Owner } from './make-result'
 import { quantityInfo } from './quantity-info'
 import { cellOf, isLatency } from './runs/run-maker'
 import { sideDifference, sideDifferencePercent, sideRatio } from './side-difference'
-import { standingRun, type KnownRun, type StudyContext } from './study-context'
+import type { BySide, KnownRun, StudyContext } from './study-context'
 import type { ComparisonAssessment, ComputedValue, Result } from './types'
 
 /** One measure of the sides: what is compared, as which quantity. `limitedOnly`: shown only where a set has a limit. */
 interface Measure { of: QuantityId, quantity: string, limitedOnly?: boolean }
 
+const sensoryMeasures: Measure[] = [
+  { of: 'onsetLatencyMs', quantity: 'sideDifferenceMs' },
+  { of: 'peakLatencyMs', quantity: 'sideDifferenceMs' },
+  { of: 'amplitudeUv', quantity: 'sideDifferencePercent' },
+  { of: 'amplitudeUv', quantity: 'sideDifferenceUv', limitedOnly: true },
+]
 const byKind: Partial<Record<Technique['kind'], Measure[]>> = {
   'motor': [
     { of: 'latencyMs', quantity: 'sideDifferenceMs' },
+    { of: 'latencyMs', quantity: 'sideDifferencePercent', limitedOnly: true },
     { of: 'amplitudeMv', quantity: 'sideDifferencePercent' },
     { of: 'amplitudeMv', quantity: 'sideDifferenceMv', limitedOnly: true },
   ],
-  'sensory': [
-    { of: 'onsetLatencyMs', quantity: 'sideDifferenceMs' },
-    { of: 'peakLatencyMs', quantity: 'sideDifferenceMs' },
-    { of: 'amplitudeUv', quantity: 'sideDifferencePercent' },
-    { of: 'amplitudeUv', quantity: 'sideDifferenceUv', limitedOnly: true },
-  ],
+  'sensory': sensoryMeasures,
+  'mixed': sensoryMeasures,
   'f-wave': [{ of: 'minimumLatencyMs', quantity: 'sideDifferenceMs' }],
   'h-reflex': [
     { of: 'hLatencyMs', quantity: 'sideDifferenceMs' },
@@ -36,34 +40,78 @@ const byKind: Partial<Record<Technique['kind'], Measure[]>> = {
     { of: 'r2IpsilateralMs', quantity: 'sideDifferenceMs' },
   ],
 }
-byKind.mixed = byKind.sensory
+
+/** What the measures of one technique share. */
+interface Pair {
+  context: StudyContext
+  right: KnownRun
+  left: KnownRun
+  owner: Owner
+  asker: LimitAsker
+  noLimitBecause: string | undefined
+}
+
+/** Words of a measure of two sides; built once. */
+const labels = new Map<string, string>()
+function labelOf(of: string, quantity: string): string {
+  const key = `${of}/${quantity}`
+  let label = labels.get(key)
+  if (label === undefined) labels.set(key, label = `${quantityInfo(of).label}, ${quantityInfo(quantity).label}`)
+  return label
+}
+
+const catalogueOrder = new Map(techniques.map((technique, index) => [technique.id, index]))
+const placeOf = (known: KnownRun) => catalogueOrder.get(known.run.technique) ?? 0
 
 /** Every technique recorded on both sides, in the order of the catalogue. */
 export function compareSides(context: StudyContext): ComparisonAssessment[] {
+  const pairs = [...context.standing.values()].filter((one): one is Required<BySide> => one.right !== undefined && one.left !== undefined)
+  pairs.sort((a, b) => placeOf(a.right) - placeOf(b.right))
   const made: ComparisonAssessment[] = []
-  for (const technique of techniques) {
-    const measures = byKind[technique.kind]
+  for (const { right, left } of pairs) {
+    const technique = right.technique
+    const measures = technique && byKind[technique.kind]
     if (!measures) continue
-    const right = standingRun(context, technique.id, 'right')
-    const left = standingRun(context, technique.id, 'left')
-    if (!right || !left) continue
-    const results = [...measures.flatMap(measure => compareCells(context, technique, right, left, measure)), ...compareVelocities(context, technique, right, left)]
+    const pair = pairOf(context, technique, right, left)
+    const results: Result[] = []
+    for (const measure of measures) compareCells(pair, measure, results)
+    compareVelocities(pair, results)
     if (results.length > 0) made.push({ id: sideDifferenceId(technique.id), title: `${techniqueTitle(technique)}, RIGHT against LEFT`, runIds: [right.run.id, left.run.id], results })
   }
   return made
 }
 
-function compareCells(context: StudyContext, technique: Technique, right: KnownRun, left: KnownRun, measure: Measure): Result[] {
-  const rows = [usualRow(right), usualRow(left)]
-  const uncertainty = isLatency(measure.of) ? context.expanded.latencyMs : undefined
-  const [a, b] = rows.map(placed => placed && cellOf(placed.row, measure.of, uncertainty))
-  const value = a && b && between(a, b, measure.quantity)
-  const same = rows[0]?.row.site === rows[1]?.row.site
-  if (!value || !same) return []
-  return side(context, technique, right, left, { ...measure, at: measure.of, label: `${quantityInfo(measure.of).label}, ${quantityInfo(measure.quantity).label}`, value, keyEnd: measure.of, how: `${said(a)} and ${said(b)}` })
+function pairOf(context: StudyContext, technique: Technique, right: KnownRun, left: KnownRun): Pair {
+  const id = sideDifferenceId(technique.id)
+  const [a, b] = [right, left].map(known => known.usual?.row.values.distanceMm)
+  const distanceMm = typeof a === 'number' && a === b ? a : null
+  return {
+    context, right, left,
+    owner: { keyStart: `compare/both/${id}/`, cold: bearingOf([right, left]) },
+    asker: context.askerFor({ technique: id, direction: right.run.direction ?? technique.direction ?? null, amplitudeDefinition: definitionOf(right), distanceMm }),
+    noLimitBecause: unlikeSides(right, left, technique),
+  }
 }
 
-const said = (value: ComputedValue) => value.kind === 'value' ? String(value.value) : value.kind
+/** Sides recorded in two ways are shown beside each other and not judged. */
+function unlikeSides(right: KnownRun, left: KnownRun, technique: Technique): string | undefined {
+  const [a, b] = [right, left].map(known => known.usual?.row.values.distanceMm)
+  if (typeof a === 'number' && typeof b === 'number' && a !== b) return `recorded over ${a} mm and ${b} mm`
+  const sameWay = (right.run.direction ?? technique.direction) === (left.run.direction ?? technique.direction) && definitionOf(right) === definitionOf(left)
+  return sameWay ? undefined : 'the sides were recorded in two ways'
+}
+
+function compareCells(pair: Pair, measure: Measure, results: Result[]): void {
+  const [one, other] = [pair.right.usual, pair.left.usual]
+  if (!one || !other || one.row.site !== other.row.site) return
+  const [right, left] = [one.row.values[measure.of], other.row.values[measure.of]]
+  if (right === undefined || left === undefined) return
+  if (measure.limitedOnly && pair.asker.ask(measure.quantity, measure.of).kind !== 'limits') return
+  const uncertainty = isLatency(measure.of) ? pair.context.expanded.latencyMs : undefined
+  const value = between(cellOf(one.row, measure.of, uncertainty), cellOf(other.row, measure.of, uncertainty), measure.quantity)
+  if (!value) return
+  addSide(pair, results, { quantity: measure.quantity, of: measure.of, keyEnd: `${measure.quantity}/${measure.of}`, label: labelOf(measure.of, measure.quantity), value, formula: `${right} and ${left}` })
+}
 
 /** A number from two numbers; "no response" when one side alone has none; nothing otherwise. */
 function between(a: ComputedValue, b: ComputedValue, quantity: string): ComputedValue | null {
@@ -75,45 +123,26 @@ function between(a: ComputedValue, b: ComputedValue, quantity: string): Computed
   return oneIsAbsent ? absentBecause('no-response') : null
 }
 
-function compareVelocities(context: StudyContext, technique: Technique, right: KnownRun, left: KnownRun): Result[] {
-  const [ofRight, ofLeft] = [right, left].map(known => context.assessed.get(known.run.id)?.results ?? [])
-  return (ofRight ?? []).filter(result => result.quantity === 'velocityMps').flatMap((result) => {
-    const other = ofLeft?.find(one => one.quantity === 'velocityMps' && one.at === result.at)
-    if (!other || result.value.kind !== 'value' || other.value.kind !== 'value') return []
-    const how = `${result.print} and ${other.print} m/s`
-    const common = { at: 'velocityMps', keyEnd: `velocityMps/${result.at ?? ''}`, label: `${result.label}, side difference`, how }
-    return [
-      ...side(context, technique, right, left, { ...common, quantity: 'sideDifferenceMps', value: sideDifference(result.value.value, other.value.value, result.value.uncertainty, other.value.uncertainty) }),
-      ...side(context, technique, right, left, { ...common, quantity: 'sideDifferencePercent', value: sideDifferencePercent(result.value.value, other.value.value), limitedOnly: true }),
-    ]
-  })
-}
-
-interface SideInput { quantity: string, at: string, keyEnd: string, label: string, value: ComputedValue, how: string, limitedOnly?: boolean }
-
-function side(context: StudyContext, technique: Technique, right: KnownRun, left: KnownRun, input: SideInput): Result[] {
-  const id = sideDifferenceId(technique.id)
-  const query = {
-    technique: id, at: input.at, distanceMm: sharedDistance(right, left),
-    direction: right.run.direction ?? technique.direction ?? null,
-    amplitudeDefinition: right.run.amplitudeDefinition ?? technique.amplitudeDefinition ?? null,
+function compareVelocities(pair: Pair, results: Result[]): void {
+  const { assessed } = pair.context
+  const left = assessed.get(pair.left.run.id)?.results.filter(result => result.quantity === 'velocityMps') ?? []
+  if (left.length === 0) return
+  for (const one of assessed.get(pair.right.run.id)?.results ?? []) {
+    if (one.quantity !== 'velocityMps' || one.value.kind !== 'value') continue
+    const other = left.find(result => result.at === one.at)
+    if (other?.value.kind !== 'value') continue
+    const common = { of: 'velocityMps', label: `${one.label}, side difference`, formula: `${one.print} and ${other.print} m/s` }
+    addSide(pair, results, { ...common, quantity: 'sideDifferenceMps', keyEnd: `sideDifferenceMps/velocityMps/${one.at ?? ''}`, value: sideDifference(one.value.value, other.value.value, one.value.uncertainty, other.value.uncertainty) })
+    if (pair.asker.ask('sideDifferencePercent', 'velocityMps').kind !== 'limits') continue
+    addSide(pair, results, { ...common, quantity: 'sideDifferencePercent', keyEnd: `sideDifferencePercent/velocityMps/${one.at ?? ''}`, value: sideDifferencePercent(one.value.value, other.value.value) })
   }
-  if (input.limitedOnly && context.limits({ ...query, quantity: input.quantity }).kind !== 'limits') return []
-  return [makeResult(context, {
-    key: `compare/both/${id}/${input.quantity}/${input.keyEnd}`, quantity: input.quantity, at: input.at, label: input.label, typed: false, value: input.value,
-    how: { formula: input.how, source: 'Buschbacher (from memory); common practice' }, query, noLimitBecause: unlikeSides(right, left, technique), cold: bearingOf([right, left]),
-  })]
 }
 
-function sharedDistance(right: KnownRun, left: KnownRun): number | null {
-  const [a, b] = [right, left].map(known => usualRow(known)?.row.values.distanceMm)
-  return typeof a === 'number' && a === b ? a : null
-}
+const SOURCE = 'Buschbacher (from memory); common practice'
 
-/** Sides recorded in two ways are shown beside each other and not judged. */
-function unlikeSides(right: KnownRun, left: KnownRun, technique: Technique): string | undefined {
-  const [a, b] = [right, left].map(known => usualRow(known)?.row.values.distanceMm)
-  if (typeof a === 'number' && typeof b === 'number' && a !== b) return `the ${nerveLabels[technique.nerve] ?? technique.nerve} nerve was recorded over ${a} mm and ${b} mm`
-  const way = (known: KnownRun) => `${known.run.direction ?? technique.direction}/${known.run.amplitudeDefinition ?? technique.amplitudeDefinition}`
-  return way(right) === way(left) ? undefined : 'the sides were recorded in two ways'
+function addSide(pair: Pair, results: Result[], input: { quantity: string, of: string, keyEnd: string, label: string, value: ComputedValue, formula: string }): void {
+  results.push(makeResult(pair.context, pair.owner, {
+    quantity: input.quantity, keyEnd: input.keyEnd, at: input.of, label: input.label, typed: false, value: input.value,
+    how: { formula: input.formula, source: SOURCE }, asker: pair.asker, noLimitBecause: pair.noLimitBecause,
+  }))
 }

@@ -5,10 +5,12 @@ import type { Side } from '../schemas/common'
 import type { Run, Study } from '../schemas/study'
 import { ageInYears } from './age-on-date'
 import { bodyMassIndex } from './bmi'
-import { findLimit, type FoundLimit, type LimitQuery } from './find-limit'
-import type { ColdBearing } from './judge'
-import { notCold } from './judge'
+import type { FoundLimit } from './find-limit'
+import { notCold, type ColdBearing } from './judge'
+import { askerFor, type AskerFor } from './limit-asker'
 import { ageNumber } from './limit-words'
+import { placedRows, usualIndex, type PlacedRow } from './placed-rows'
+import { rowFinder } from './row-finder'
 import { roundForPrint } from './round-for-print'
 import { coldOfRun, countsAsCold, temperatureContext, type Cold } from './temperature'
 import type { AppliedLimit, Assessment, Policy, RunAssessment } from './types'
@@ -22,7 +24,13 @@ export interface KnownRun {
   bearing: ColdBearing
   supersededBy?: string
   measured: boolean
+  /** Its rows, distal to proximal. */
+  rows: readonly PlacedRow[]
+  /** The row of the usual distal site: what comparisons and side differences use. */
+  usual: PlacedRow | undefined
 }
+
+export type BySide = Partial<Record<Side, KnownRun>>
 
 /** Everything that does not change while one study is assessed; built once, so that every look-up is by key. */
 export interface StudyContext {
@@ -32,12 +40,14 @@ export interface StudyContext {
   person: Assessment['person']
   runs: readonly KnownRun[]
   known: ReadonlyMap<string, KnownRun>
-  /** By `${technique}/${side}`: the run that stands for them. */
-  standing: ReadonlyMap<string, KnownRun>
+  /** By technique: the run that stands for each side. */
+  standing: ReadonlyMap<string, BySide>
   expanded: { distanceMm: number, latencyMs: number }
-  limits: (query: Omit<LimitQuery, 'person'>) => FoundLimit
+  askerFor: AskerFor
   /** Every limit that was applied, for the list of sets used. */
-  applied: Map<string, AppliedLimit>
+  applied: Set<AppliedLimit>
+  /** The row of a set that a limit came from. */
+  rowOf: (limit: AppliedLimit) => ReferenceTable['rows'][number] | undefined
   /** Limits by result key, where the verdict alone does not carry them. */
   limitsByKey: Map<string, FoundLimit>
   assessed: Map<string, RunAssessment>
@@ -52,24 +62,8 @@ export function studyContext(study: Study, tables: readonly ReferenceTable[], po
     study, policy, tables, person, runs, known,
     standing: standingRuns(runs),
     expanded: { distanceMm: policy.distanceUncertaintyMm, latencyMs: policy.latencyUncertaintyMs },
-    limits: limitFinder(tables, policy, person),
-    applied: new Map(), limitsByKey: new Map(), assessed: new Map(),
-  }
-}
-
-/** Both sides ask the same questions, so each is answered once per assessment. */
-function limitFinder(tables: readonly ReferenceTable[], policy: Policy, person: Assessment['person']): StudyContext['limits'] {
-  const answers = new Map<string, FoundLimit>()
-  const limitPerson = { ageYears: person.ageYears, sexForLimits: person.sexForLimits, heightCm: person.heightCm, bmi: person.bmi }
-  const shelf = { tables, policy }
-  return (query) => {
-    const key = `${query.technique}|${query.quantity}|${query.at}|${query.direction}|${query.amplitudeDefinition}|${query.distanceMm}`
-    let answer = answers.get(key)
-    if (!answer) {
-      answer = findLimit(shelf, { ...query, person: limitPerson })
-      answers.set(key, answer)
-    }
-    return answer
+    askerFor: askerFor(tables, policy, { ageYears: person.ageYears, sexForLimits: person.sexForLimits, heightCm: person.heightCm, bmi: person.bmi }),
+    applied: new Set(), rowOf: rowFinder(tables), limitsByKey: new Map(), assessed: new Map(),
   }
 }
 
@@ -99,7 +93,8 @@ function knownRuns(study: Study, tables: readonly ReferenceTable[], policy: Poli
     const technique = techniqueOf(run.technique)
     const cold = coldOfRun(temperatures, run, technique)
     const bearing: ColdBearing = countsAsCold(cold, run) ? { state: 'all', words: cold.because } : notCold
-    return { run, technique, cold, bearing, measured: isMeasured(run) }
+    const rows = technique ? placedRows(run, technique) : []
+    return { run, technique, cold, bearing, measured: isMeasured(run), rows, usual: technique && rows[usualIndex(rows, technique)] }
   })
 }
 
@@ -124,13 +119,14 @@ function markSuperseded(runs: readonly KnownRun[], known: ReadonlyMap<string, Kn
   }
 }
 
-function standingRuns(runs: readonly KnownRun[]): Map<string, KnownRun> {
-  const standing = new Map<string, KnownRun>()
+function standingRuns(runs: readonly KnownRun[]): Map<string, BySide> {
+  const standing = new Map<string, BySide>()
   for (const one of runs) {
     if (!one.measured || one.supersededBy !== undefined || !one.technique) continue
-    const key = `${one.run.technique}/${one.run.side}`
-    const other = standing.get(key)
-    if (!other || standsBefore(one, other)) standing.set(key, one)
+    let bySide = standing.get(one.run.technique)
+    if (!bySide) standing.set(one.run.technique, bySide = {})
+    const other = bySide[one.run.side]
+    if (!other || standsBefore(one, other)) bySide[one.run.side] = one
   }
   return standing
 }
@@ -145,5 +141,5 @@ function standsBefore(one: KnownRun, other: KnownRun): boolean {
 }
 
 export function standingRun(context: StudyContext, technique: string, side: Side): KnownRun | undefined {
-  return context.standing.get(`${technique}/${side}`)
+  return context.standing.get(technique)?.[side]
 }

@@ -1,9 +1,13 @@
 import { nerveLabels } from '../catalogue/nerves'
 import type { Technique } from '../catalogue/types'
 import type { Side } from '../schemas/common'
+import type { Absence } from '../schemas/study'
 
 /** Sides in capitals wherever a person reads them. */
 export const sideWords: Record<Side, string> = { right: 'RIGHT', left: 'LEFT' }
+
+/** Absences as a reason within a sentence: "no response at wrist". */
+export const absenceAt: Record<Absence, string> = { 'no-response': 'no response', 'technical': 'not recordable', 'not-done': 'not done', 'stopped': 'stopped' }
 
 export const otherSide = (side: Side): Side => side === 'right' ? 'left' : 'right'
 

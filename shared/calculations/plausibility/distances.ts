@@ -1,7 +1,7 @@
 import { quantityOf } from '../../catalogue/quantities'
 import { numberOf } from '../computed-value'
 import { roundForPrint } from '../round-for-print'
-import type { PlacedRow } from '../runs/run-maker'
+import type { PlacedRow } from '../placed-rows'
 import type { KnownRun } from '../study-context'
 import type { Result, RunAssessment } from '../types'
 import { capital } from '../words'

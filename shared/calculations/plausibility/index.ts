@@ -1,4 +1,3 @@
-import { placedRows } from '../runs/run-maker'
 import type { StudyContext } from '../study-context'
 import type { ComparisonAssessment, Remark, RunAssessment } from '../types'
 import { remarkOnAmplitudes } from './amplitudes'
@@ -19,7 +18,7 @@ export function findRemarks(context: StudyContext, runs: readonly RunAssessment[
   for (const [index, known] of context.runs.entries()) {
     const assessed = runs[index]
     if (!known.technique || !assessed || known.supersededBy !== undefined) continue
-    const rows = placedRows(known.run, known.technique)
+    const { rows } = known
     remarkOnValues(list, known, rows)
     remarkOnOrder(list, known, rows)
     remarkOnDistances(list, known, rows, assessed)

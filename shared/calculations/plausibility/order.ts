@@ -1,5 +1,5 @@
 import type { QuantityId } from '../../catalogue/quantities'
-import type { PlacedRow } from '../runs/run-maker'
+import type { PlacedRow } from '../placed-rows'
 import { fMeasures } from '../runs/f-wave'
 import type { KnownRun } from '../study-context'
 import { TOLERANCE } from '../tolerance'

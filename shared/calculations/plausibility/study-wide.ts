@@ -3,7 +3,6 @@ import type { Side } from '../../schemas/common'
 import { standingRun, type KnownRun, type StudyContext } from '../study-context'
 import { numberOf } from '../computed-value'
 import type { ComparisonAssessment } from '../types'
-import { usualRow } from '../comparisons'
 import { roundForPrint } from '../round-for-print'
 import { addRemark, runName, sideWord, type RemarkList } from './remark'
 
@@ -89,7 +88,7 @@ function remarkOnSensoryBesideLatency(list: RemarkList, context: StudyContext): 
   for (const side of ['right', 'left'] as const) {
     const motor = standingRun(context, 'median-motor-apb', side)
     const sensory = standingRun(context, 'median-sensory-d2', side)
-    const latency = motor && usualRow(motor)?.row.values.latencyMs
+    const latency = motor?.usual?.row.values.latencyMs
     if (!motor || !sensory || typeof latency !== 'number' || latency <= LATENCY_WITH_SENSORY_MS || !hasResponse(sensory)) continue
     addRemark(list, { code: 'sensory-beside-long-latency', strength: 'note', runId: motor.run.id, sentence: `A ${sideWord(side)} median sensory response beside a distal motor latency of ${latency} ms is unusual: check stimulation and recording.`, source: 'Clin Neurol Neurosurg 2016;148:45-48, doi:10.1016/j.clineuro.2016.06.019 (read)' })
   }

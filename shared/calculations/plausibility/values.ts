@@ -1,7 +1,7 @@
 import { quantities, quantityOf, type Quantity, type QuantityId } from '../../catalogue/quantities'
 import { quantityInfo } from '../quantity-info'
 import { roundForPrint } from '../round-for-print'
-import type { PlacedRow } from '../runs/run-maker'
+import type { PlacedRow } from '../placed-rows'
 import type { KnownRun } from '../study-context'
 import { TOLERANCE } from '../tolerance'
 import { capital } from '../words'

@@ -1,5 +1,6 @@
 import { correctedLatency, correctedVelocity, REFERENCE_CELSIUS } from '../temperature-correction'
-import { add, type PlacedRow, type RunMaker } from './run-maker'
+import type { PlacedRow } from '../placed-rows'
+import { add, type RunMaker } from './run-maker'
 
 /** The temperature-corrected value beside the measured one, where the organisation turned that on and the limb was cold. */
 export function addCorrected(maker: RunMaker, placed: PlacedRow, what: 'velocity' | 'latency', measured: number): void {
@@ -7,8 +8,8 @@ export function addCorrected(maker: RunMaker, placed: PlacedRow, what: 'velocity
   if (!maker.context.policy.temperatureCorrection || celsius === null || state !== 'cold') return
   const { nerve, kind } = maker.technique
   const isVelocity = what === 'velocity'
-  add(maker, {
-    rowId: placed.row.id, typed: false, at: placed.row.site,
+  add(maker, placed, {
+    typed: false, at: placed.row.site,
     quantity: isVelocity ? 'correctedVelocityMps' : 'correctedLatencyMs',
     label: `${what}, corrected from ${celsius} to ${REFERENCE_CELSIUS} °C`,
     value: isVelocity ? correctedVelocity({ velocityMps: measured, celsius, nerve, kind }) : correctedLatency({ latencyMs: measured, celsius }),

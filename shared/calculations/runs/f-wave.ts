@@ -5,8 +5,9 @@ import { absentBecause, notComputable, numberOf, valueOf } from '../computed-val
 import { chronodispersion, fEstimate, fRatio, fWaveVelocity, peripheralMotorLatency, persistence } from '../f-wave'
 import { quantityInfo } from '../quantity-info'
 import { standingRun, type StudyContext } from '../study-context'
-import type { ComputedValue, Result } from '../types'
-import { add, addTyped, entryValue, questionFor, type PlacedRow, type RunMaker } from './run-maker'
+import type { PlacedRow } from '../placed-rows'
+import type { ComputedValue } from '../types'
+import { add, addTyped, askerOf, entryValue, type RunMaker } from './run-maker'
 
 /** Motor technique of the same nerve and muscle, whose latency and velocity the estimate uses. */
 const motorByFWave = new Map(techniques.filter(one => one.kind === 'f-wave').map((wave) => {
@@ -30,7 +31,7 @@ export function fMeasures(row: Pick<RunRow, 'values' | 'series'>, latencyMs?: nu
   const none = series.length > 0 && numbers.length === 0 && series.includes('no-response')
   const either = (quantity: QuantityId, fromSeries: () => number): ComputedValue => {
     const typed = row.values[quantity]
-    if (typed !== undefined) return entryValue(typed, '', latencyMs)
+    if (typed !== undefined) return entryValue(typed, latencyMs)
     if (numbers.length > 0) return valueOf(fromSeries(), latencyMs)
     return none ? absentBecause('no-response') : notComputable(`${quantityInfo(quantity).label} missing`)
   }
@@ -46,7 +47,7 @@ export function fMeasures(row: Pick<RunRow, 'values' | 'series'>, latencyMs?: nu
 /** Results of a run of F-waves. */
 export function assessFWave(maker: RunMaker): void {
   for (const placed of maker.rows) {
-    addTyped(maker, placed, { label: quantity => quantityInfo(quantity).label, at: null, distanceMm: null, supporting: quantity => quantity !== 'minimumLatencyMs' })
+    addTyped(maker, placed, { place: '', asker: askerOf(maker, null), askAt: null, supporting: quantity => quantity !== 'minimumLatencyMs' })
     const measures = fMeasures(placed.row, maker.context.expanded.latencyMs)
     addFromSeries(maker, placed, measures)
     addCounts(maker, placed, measures)
@@ -56,10 +57,10 @@ export function assessFWave(maker: RunMaker): void {
 
 type Extra = { value: ComputedValue, formula: string, source: string, supporting?: boolean }
 
-function addComputed(maker: RunMaker, placed: PlacedRow, quantity: string, extra: Extra): Result {
-  return add(maker, {
-    rowId: placed.row.id, quantity, label: quantityInfo(quantity).label, typed: false, value: extra.value, supporting: extra.supporting ?? true,
-    how: extra.value.kind === 'value' ? { formula: extra.formula, source: extra.source } : undefined, query: questionFor(maker, null, null),
+function addComputed(maker: RunMaker, placed: PlacedRow, quantity: string, extra: Extra): void {
+  add(maker, placed, {
+    quantity, label: quantityInfo(quantity).label, typed: false, value: extra.value, supporting: extra.supporting ?? true,
+    how: extra.value.kind === 'value' ? { formula: extra.formula, source: extra.source } : undefined, asker: askerOf(maker, null), askAt: null,
   })
 }
 

@@ -1,14 +1,18 @@
-import { numberOf, isNoResponse, absentBecause, notComputable, valueOf } from '../computed-value'
+import type { QuantityId } from '../../catalogue/quantities'
+import { absentBecause, isNoResponse, notComputable, valueOf } from '../computed-value'
 import { amplitudeRatio, fallPercent, risePercent } from '../change-between-sites'
 import { conductionVelocity } from '../conduction-velocity'
-import { quantityInfo } from '../quantity-info'
+import type { LimitAsker } from '../limit-asker'
+import type { PlacedRow } from '../placed-rows'
 import { residualLatency, residualLatencyUncertainty } from '../residual-latency'
 import { roundForPrint } from '../round-for-print'
 import { terminalLatencyIndex } from '../terminal-latency-index'
 import type { ComputedValue } from '../types'
+import { usualIndex } from '../placed-rows'
 import { velocityDrop, velocityDropPercent } from '../velocity-drop'
+import { absenceAt } from '../words'
 import { addCorrected } from './corrected'
-import { add, addTyped, cellOf, questionFor, type PlacedRow, type RunMaker } from './run-maker'
+import { add, addTyped, askerOf, cellOf, type RunMaker } from './run-maker'
 
 const VELOCITY_SOURCE = 'Mallik and Weir, J Neurol Neurosurg Psychiatry 2005;76(Suppl 2):ii23-ii31; uncertainty by JCGM 100, k = 2'
 const CHANGE_SOURCE = 'negative-peak measures, EFNS/PNS criteria (PMC8108415, table 2)'
@@ -16,38 +20,34 @@ const DROP_SOURCE = 'Buschbacher, Am J Phys Med Rehabil 1999;78(S):S9-S14'
 
 /** A segment that could be computed: kept for the next one and for the indices of the distal part. */
 interface Segment { velocityMps: number, distanceMm: number, timeMs: number }
+interface Place { id: string, words: string }
 
 /**
  * Results of a motor run: what was typed, and from it segment velocities, drops of velocity, falls of amplitude and area,
  * rises of duration, terminal latency index and residual latency.
  */
 export function assessMotor(maker: RunMaker): void {
-  const distalIndex = usualDistal(maker)
+  const distalIndex = usualIndex(maker.rows, maker.technique)
   const distances = distancesToElectrode(maker.rows)
-  const distal = distances[distalIndex] ?? null
+  const distalDistance = distances[distalIndex] ?? null
+  const asker = askerOf(maker, distalDistance)
   let before: Segment | null = null
   for (const [index, placed] of maker.rows.entries()) {
-    addTyped(maker, placed, {
-      label: quantity => `${quantityInfo(quantity).label} at ${placed.label}`,
-      at: placed.row.site,
-      distanceMm: distances[index] ?? null,
-      supporting: quantity => index !== distalIndex || quantity === 'durationMs' || quantity === 'areaMvMs',
-    })
+    const own = index === distalIndex ? asker : askerOf(maker, distances[index] ?? null)
+    addTyped(maker, placed, { place: ` at ${placed.label}`, asker: own, askAt: placed.row.site, supporting: index === distalIndex ? isSecondary : always })
     const previous = maker.rows[index - 1]
     if (!previous || !isStarted(placed)) continue
-    const segment = addVelocity(maker, previous, placed, distal)
-    if (segment && before && placed.site?.segment?.entrapment) addDrop(maker, placed, before, segment, distal)
-    addChanges(maker, previous, placed, index, distal)
-    if (segment && index === distalIndex + 1) addDistalIndices(maker, maker.rows[distalIndex] as PlacedRow, segment, distal)
+    const place = segmentOf(previous, placed)
+    const segment = addVelocity(maker, previous, placed, place, asker)
+    if (segment && before && placed.site?.segment?.entrapment) addDrop(maker, placed, before, segment, asker)
+    addChanges(maker, previous, placed, index, place, asker)
+    if (segment && index === distalIndex + 1) addDistalIndices(maker, previous, segment, distalDistance, asker)
     before = segment
   }
 }
 
-/** The row that the distal limits are for: the first of the technique's usual sites. */
-function usualDistal(maker: RunMaker): number {
-  const usual = maker.technique.sites.find(site => site.usual)?.id
-  return Math.max(0, maker.rows.findIndex(placed => placed.row.site === usual))
-}
+const always = () => true
+const isSecondary = (quantity: QuantityId) => quantity === 'durationMs' || quantity === 'areaMvMs'
 
 /** Distances from each site to the recording electrode: the typed ones added up. */
 function distancesToElectrode(rows: readonly PlacedRow[]): (number | null)[] {
@@ -61,49 +61,47 @@ function distancesToElectrode(rows: readonly PlacedRow[]): (number | null)[] {
 
 const isStarted = ({ row }: PlacedRow) => row.values.latencyMs !== undefined || row.values.amplitudeMv !== undefined
 
-/** Segment id: the catalogue's where the two sites are neighbours there, otherwise both names. */
-function segmentOf(previous: PlacedRow, placed: PlacedRow): { id: string, label: string } {
-  const { segment } = placed.site ?? {}
+/** The catalogue's segment where the two sites are neighbours there, otherwise both names. */
+function segmentOf(previous: PlacedRow, placed: PlacedRow): Place {
+  const segment = placed.site?.segment
+  const between = `, ${placed.label} to ${previous.label}`
   if (segment && previous.site && placed.place === previous.place + 1) {
-    return { id: segment.id, label: segment.label.startsWith('across') ? ` ${segment.label}` : `, ${placed.label} to ${previous.label}` }
+    return { id: segment.id, words: segment.label.startsWith('across') ? ` ${segment.label}` : between }
   }
-  return { id: `${previous.row.site}-${placed.row.site}`, label: `, ${placed.label} to ${previous.label}` }
+  return { id: `${previous.row.site}-${placed.row.site}`, words: between }
 }
 
-function addVelocity(maker: RunMaker, previous: PlacedRow, placed: PlacedRow, distal: number | null): Segment | null {
-  const segment = segmentOf(previous, placed)
-  const [near, far, along] = [cellOf(previous.row, 'latencyMs'), cellOf(placed.row, 'latencyMs'), cellOf(placed.row, 'distanceMm')]
-  const value = near.kind === 'value' && far.kind === 'value' && along.kind === 'value'
-    ? conductionVelocity({ distanceMm: along.value, proximalLatencyMs: far.value, distalLatencyMs: near.value }, maker.context.expanded)
-    : notComputable(whyNot([[near, previous.label], [far, placed.label], [along, placed.label]]))
-  add(maker, {
-    rowId: placed.row.id, quantity: 'velocityMps', at: segment.id, label: `velocity${segment.label}`, typed: false, value,
-    how: value.kind === 'value' ? { formula: `${numberOf(along)} mm / (${numberOf(far)} ms - ${numberOf(near)} ms)`, source: VELOCITY_SOURCE } : undefined,
-    query: questionFor(maker, segment.id, distal),
+function addVelocity(maker: RunMaker, previous: PlacedRow, placed: PlacedRow, place: Place, asker: LimitAsker): Segment | null {
+  const [distalLatencyMs, proximalLatencyMs, distanceMm] = [previous.row.values.latencyMs, placed.row.values.latencyMs, placed.row.values.distanceMm]
+  const isComplete = typeof distalLatencyMs === 'number' && typeof proximalLatencyMs === 'number' && typeof distanceMm === 'number'
+  const value = isComplete
+    ? conductionVelocity({ distanceMm, proximalLatencyMs, distalLatencyMs }, maker.context.expanded)
+    : notComputable(whyNot(previous, placed))
+  add(maker, placed, {
+    quantity: 'velocityMps', at: place.id, label: `velocity${place.words}`, typed: false, value, asker,
+    how: value.kind === 'value' ? { formula: `${distanceMm} mm / (${proximalLatencyMs} ms - ${distalLatencyMs} ms)`, source: VELOCITY_SOURCE } : undefined,
   })
-  if (value.kind !== 'value' || near.kind !== 'value' || far.kind !== 'value' || along.kind !== 'value') return null
+  if (value.kind !== 'value' || !isComplete) return null
   addCorrected(maker, placed, 'velocity', value.value)
-  return { velocityMps: value.value, distanceMm: along.value, timeMs: far.value - near.value }
+  return { velocityMps: value.value, distanceMm, timeMs: proximalLatencyMs - distalLatencyMs }
 }
 
 /** The first input that is missing or absent, in words. */
-function whyNot(inputs: [ComputedValue, string][]): string {
-  for (const [value, label] of inputs) {
+function whyNot(previous: PlacedRow, placed: PlacedRow): string {
+  const inputs = [[cellOf(previous.row, 'latencyMs'), previous], [cellOf(placed.row, 'latencyMs'), placed], [cellOf(placed.row, 'distanceMm'), placed]] as const
+  for (const [value, { label }] of inputs) {
     if (value.kind === 'absent') return `${absenceAt[value.absence]} at ${label}`
     if (value.kind === 'not-computable') return `${value.because} at ${label}`
   }
   return ''
 }
 
-const absenceAt = { 'no-response': 'no response', 'technical': 'not recordable', 'not-done': 'not done', 'stopped': 'stopped' } as const
-
-function addDrop(maker: RunMaker, placed: PlacedRow, before: Segment, segment: Segment, distal: number | null): void {
+function addDrop(maker: RunMaker, placed: PlacedRow, before: Segment, segment: Segment, asker: LimitAsker): void {
   const at = placed.site?.segment
   if (!at) return
-  const formula = `${roundForPrint(before.velocityMps, 1)} m/s against ${roundForPrint(segment.velocityMps, 1)} m/s`
-  const common = { rowId: placed.row.id, at: at.id, typed: false, supporting: true, query: questionFor(maker, at.id, distal), how: { formula, source: DROP_SOURCE } }
-  add(maker, { ...common, quantity: 'velocityDropMps', label: `velocity drop ${at.label}`, value: velocityDrop(before, segment, maker.context.expanded) })
-  add(maker, { ...common, quantity: 'velocityDropPercent', label: `velocity drop ${at.label}, per cent`, value: velocityDropPercent(before.velocityMps, segment.velocityMps) })
+  const how = { formula: `${roundForPrint(before.velocityMps, 1)} m/s against ${roundForPrint(segment.velocityMps, 1)} m/s`, source: DROP_SOURCE }
+  add(maker, placed, { quantity: 'velocityDropMps', at: at.id, label: `velocity drop ${at.label}`, typed: false, supporting: true, asker, how, value: velocityDrop(before, segment, maker.context.expanded) })
+  add(maker, placed, { quantity: 'velocityDropPercent', at: at.id, label: `velocity drop ${at.label}, per cent`, typed: false, supporting: true, asker, how, value: velocityDropPercent(before.velocityMps, segment.velocityMps) })
 }
 
 const changes = [
@@ -113,52 +111,50 @@ const changes = [
 ] as const
 
 /** From the site before to this one, and, from the third site on, from the most distal one. */
-function addChanges(maker: RunMaker, previous: PlacedRow, placed: PlacedRow, index: number, distal: number | null): void {
-  const segment = segmentOf(previous, placed)
+function addChanges(maker: RunMaker, previous: PlacedRow, placed: PlacedRow, index: number, place: Place, asker: LimitAsker): void {
   const first = maker.rows[0] as PlacedRow
   for (const { from, quantity, overall, label, of } of changes) {
-    const proximal = cellOf(placed.row, from)
-    const adjacent = changeOf(cellOf(previous.row, from), proximal, of)
-    const common = { rowId: placed.row.id, at: segment.id, typed: false, supporting: true, query: questionFor(maker, segment.id, distal) }
-    if (adjacent) add(maker, { ...common, quantity, label: `${label}, ${previous.label} to ${placed.label}`, ...adjacent })
-    const whole = index > 1 ? changeOf(cellOf(first.row, from), proximal, of) : null
-    if (whole) add(maker, { ...common, query: undefined, quantity: overall, at: `${first.row.site}-${placed.row.site}`, label: `${label}, ${first.label} to ${placed.label}`, ...whole })
+    if (placed.row.values[from] === undefined) continue
+    addChange(maker, previous, placed, { from, of, quantity, at: place.id, label, asker })
+    if (index > 1) addChange(maker, first, placed, { from, of, quantity: overall, at: `${first.row.site}-${placed.row.site}`, label })
   }
-  addLimitedOnly(maker, previous, placed, segment.id, distal)
+  addLimitedOnly(maker, previous, placed, place.id, asker)
 }
 
-type ChangeRule = (pair: { distal: number, proximal: number }) => ComputedValue
+interface Change { from: QuantityId, of: (pair: { distal: number, proximal: number }) => ComputedValue, quantity: string, at: string, label: string, asker?: LimitAsker }
 
-function changeOf(distal: ComputedValue, proximal: ComputedValue, of: ChangeRule): { value: ComputedValue, how?: { formula: string, source: string } } | null {
-  if (distal.kind !== 'value') return null
-  if (isNoResponse(proximal)) return { value: absentBecause('no-response') }
-  if (proximal.kind !== 'value') return null
-  return { value: of({ distal: distal.value, proximal: proximal.value }), how: { formula: `from ${distal.value} to ${proximal.value}`, source: CHANGE_SOURCE } }
+function addChange(maker: RunMaker, previous: PlacedRow, placed: PlacedRow, change: Change): void {
+  const distal = previous.row.values[change.from]
+  const proximal = cellOf(placed.row, change.from)
+  if (typeof distal !== 'number' || proximal.kind === 'not-computable' || (proximal.kind === 'absent' && !isNoResponse(proximal))) return
+  add(maker, placed, {
+    quantity: change.quantity, at: change.at, label: `${change.label}, ${previous.label} to ${placed.label}`, typed: false, supporting: true, asker: change.asker,
+    value: proximal.kind === 'value' ? change.of({ distal, proximal: proximal.value }) : absentBecause('no-response'),
+    how: proximal.kind === 'value' ? { formula: `from ${distal} to ${proximal.value}`, source: CHANGE_SOURCE } : undefined,
+  })
 }
 
 /** Measures that are shown only where the set in use has a limit for them. */
-function addLimitedOnly(maker: RunMaker, previous: PlacedRow, placed: PlacedRow, segmentId: string, distal: number | null): void {
-  const [near, far] = [cellOf(previous.row, 'amplitudeMv'), cellOf(placed.row, 'amplitudeMv')]
-  if (near.kind !== 'value' || far.kind !== 'value') return
-  const query = questionFor(maker, segmentId, distal)
-  const measures = [
-    { quantity: 'amplitudeFallMv', label: 'amplitude fall', value: valueOf(near.value - far.value) },
-    { quantity: 'amplitudeRatio', label: 'amplitude ratio', value: amplitudeRatio({ distal: near.value, proximal: far.value }) },
-  ]
-  for (const { quantity, label, value } of measures) {
-    if (maker.context.limits({ ...query, quantity }).kind !== 'limits') continue
-    add(maker, { rowId: placed.row.id, quantity, at: segmentId, label: `${label}, ${previous.label} to ${placed.label}`, typed: false, value, query, how: { formula: `${near.value} mV and ${far.value} mV`, source: CHANGE_SOURCE } })
+function addLimitedOnly(maker: RunMaker, previous: PlacedRow, placed: PlacedRow, at: string, asker: LimitAsker): void {
+  const [distal, proximal] = [previous.row.values.amplitudeMv, placed.row.values.amplitudeMv]
+  if (typeof distal !== 'number' || typeof proximal !== 'number') return
+  const common = { at, typed: false, asker, label: `, ${previous.label} to ${placed.label}` }
+  if (asker.ask('amplitudeFallMv', at).kind === 'limits') {
+    add(maker, placed, { ...common, quantity: 'amplitudeFallMv', label: `amplitude fall in mV${common.label}`, value: valueOf(distal - proximal), how: { formula: `${distal} mV - ${proximal} mV`, source: CHANGE_SOURCE } })
+  }
+  if (asker.ask('amplitudeRatio', at).kind === 'limits') {
+    add(maker, placed, { ...common, quantity: 'amplitudeRatio', label: `amplitude ratio${common.label}`, value: amplitudeRatio({ distal, proximal }), how: { formula: `${proximal} mV / ${distal} mV`, source: CHANGE_SOURCE } })
   }
 }
 
-function addDistalIndices(maker: RunMaker, placed: PlacedRow, segment: Segment, distalDistanceMm: number | null): void {
-  const latency = placed.row.values.latencyMs
-  if (typeof latency !== 'number' || distalDistanceMm === null) return
-  const input = { distalDistanceMm, velocityMps: segment.velocityMps, distalLatencyMs: latency }
+function addDistalIndices(maker: RunMaker, placed: PlacedRow, segment: Segment, distalDistanceMm: number | null, asker: LimitAsker): void {
+  const distalLatencyMs = placed.row.values.latencyMs
+  if (typeof distalLatencyMs !== 'number' || distalDistanceMm === null) return
+  const input = { distalDistanceMm, velocityMps: segment.velocityMps, distalLatencyMs }
   const residual = residualLatency(input)
   const uncertainty = residualLatencyUncertainty({ distalDistanceMm, segmentDistanceMm: segment.distanceMm, timeMs: segment.timeMs }, maker.context.expanded)
-  const formula = `${distalDistanceMm} mm, ${roundForPrint(segment.velocityMps, 1)} m/s, ${latency} ms`
-  const common = { rowId: placed.row.id, at: placed.row.site, typed: false, supporting: true, query: questionFor(maker, placed.row.site, distalDistanceMm) }
-  add(maker, { ...common, quantity: 'terminalLatencyIndex', label: 'terminal latency index', value: terminalLatencyIndex(input), how: { formula, source: 'Kang et al., J Korean Neurol Assoc 2004;22:609-612' } })
-  add(maker, { ...common, quantity: 'residualLatencyMs', label: 'residual latency', value: residual.kind === 'value' ? valueOf(residual.value, uncertainty) : residual, how: { formula, source: 'Khosrawi and Dehghan, J Res Med Sci 2013;18:934-938' } })
+  const formula = `${distalDistanceMm} mm, ${roundForPrint(segment.velocityMps, 1)} m/s, ${distalLatencyMs} ms`
+  const at = placed.row.site
+  add(maker, placed, { quantity: 'terminalLatencyIndex', at, label: 'terminal latency index', typed: false, supporting: true, asker, value: terminalLatencyIndex(input), how: { formula, source: 'Kang et al., J Korean Neurol Assoc 2004;22:609-612' } })
+  add(maker, placed, { quantity: 'residualLatencyMs', at, label: 'residual latency', typed: false, supporting: true, asker, value: residual.kind === 'value' ? valueOf(residual.value, uncertainty) : residual, how: { formula, source: 'Khosrawi and Dehghan, J Res Med Sci 2013;18:934-938' } })
 }

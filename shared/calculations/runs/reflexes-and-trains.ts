@@ -4,22 +4,23 @@ import { decrement, DECREMENT_RESPONSE } from '../decrement'
 import { expectedHLatency, hmRatio } from '../h-reflex'
 import { increment } from '../increment'
 import { quantityInfo } from '../quantity-info'
-import { add, addTyped, cellOf, questionFor, type PlacedRow, type RunMaker } from './run-maker'
+import type { PlacedRow } from '../placed-rows'
+import { add, addTyped, askerOf, cellOf, type RunMaker } from './run-maker'
 
 const plainLabel = (quantity: string) => quantityInfo(quantity).label
 
 /** Results of an H-reflex run: what was typed, H to M ratio, and the latency expected for leg length and age. */
 export function assessHReflex(maker: RunMaker): void {
   for (const placed of maker.rows) {
-    addTyped(maker, placed, { label: plainLabel, at: null, distanceMm: null, supporting: quantity => quantity !== 'hLatencyMs' })
+    addTyped(maker, placed, { place: '', asker: askerOf(maker, null), askAt: null, supporting: quantity => quantity !== 'hLatencyMs' })
     const [h, m] = [cellOf(placed.row, 'hAmplitudeMv'), cellOf(placed.row, 'mAmplitudeMv')]
-    const common = { rowId: placed.row.id, typed: false, supporting: true, query: questionFor(maker, null, null) }
+    const common = { typed: false, supporting: true, asker: askerOf(maker, null), askAt: null }
     if (h.kind === 'value' && m.kind === 'value') {
-      add(maker, { ...common, quantity: 'hmRatio', label: plainLabel('hmRatio'), value: hmRatio({ hAmplitudeMv: h.value, mAmplitudeMv: m.value }), how: { formula: `${h.value} mV / ${m.value} mV`, source: 'common practice' } })
+      add(maker, placed, { ...common, quantity: 'hmRatio', label: plainLabel('hmRatio'), value: hmRatio({ hAmplitudeMv: h.value, mAmplitudeMv: m.value }), how: { formula: `${h.value} mV / ${m.value} mV`, source: 'common practice' } })
     }
     const length = placed.row.values.legLengthMm
     if (typeof length === 'number') {
-      add(maker, { ...common, quantity: 'hExpectedMs', label: plainLabel('hExpectedMs'), value: expectedHLatency({ legLengthMm: length, ageYears: maker.context.person.ageYears }), how: { formula: `9.14 + 0.46 x ${length / 10} cm + 0.1 x age`, source: 'Braddom and Johnson, Arch Phys Med Rehabil 1974;55:161-166, from memory' } })
+      add(maker, placed, { ...common, quantity: 'hExpectedMs', label: plainLabel('hExpectedMs'), value: expectedHLatency({ legLengthMm: length, ageYears: maker.context.person.ageYears }), how: { formula: `9.14 + 0.46 x ${length / 10} cm + 0.1 x age`, source: 'Braddom and Johnson, Arch Phys Med Rehabil 1974;55:161-166, from memory' } })
     }
   }
 }
@@ -27,12 +28,12 @@ export function assessHReflex(maker: RunMaker): void {
 /** Results of a blink reflex run. */
 export function assessBlink(maker: RunMaker): void {
   for (const placed of maker.rows) {
-    addTyped(maker, placed, { label: plainLabel, at: null, distanceMm: null, supporting: () => false })
+    addTyped(maker, placed, { place: '', asker: askerOf(maker, null), askAt: null, supporting: () => false })
     const [same, other] = [cellOf(placed.row, 'r2IpsilateralMs'), cellOf(placed.row, 'r2ContralateralMs')]
     if (same.kind !== 'value' || other.kind !== 'value') continue
-    add(maker, {
-      rowId: placed.row.id, quantity: 'r2DifferenceMs', label: 'R2, other side minus same side', typed: false, supporting: true,
-      value: valueOf(other.value - same.value, Math.SQRT2 * maker.context.expanded.latencyMs), query: questionFor(maker, null, null),
+    add(maker, placed, {
+      quantity: 'r2DifferenceMs', label: 'R2, other side minus same side', typed: false, supporting: true,
+      value: valueOf(other.value - same.value, Math.SQRT2 * maker.context.expanded.latencyMs), asker: askerOf(maker, null), askAt: null,
       how: { formula: `${other.value} ms - ${same.value} ms`, source: 'arithmetic' },
     })
   }
@@ -56,7 +57,7 @@ export function assessRepetitive(maker: RunMaker): void {
   const rest = maker.rows.find(placed => placed.row.site === 'rest')
   for (const placed of maker.rows) {
     const label = trainLabel(placed)
-    addTyped(maker, placed, { label: quantity => `${plainLabel(quantity)}, ${label}`, at: placed.row.site, distanceMm: null, supporting: () => true })
+    addTyped(maker, placed, { place: `, ${label}`, asker: askerOf(maker, null), askAt: placed.row.site, supporting: () => true })
     if (isFastTrain(placed.row)) addFastIncrement(maker, placed, label)
     else addSlow(maker, placed, label, rest)
   }
@@ -71,8 +72,8 @@ function addSlow(maker: RunMaker, placed: PlacedRow, label: string, rest: Placed
   const train = trainOf(placed.row)
   if (placed.row.series?.length) {
     const value = decrement(train)
-    add(maker, {
-      rowId: placed.row.id, quantity: 'decrementPercent', at: placed.row.site, label: `decrement, ${label}`, typed: false, value, query: questionFor(maker, null, null),
+    add(maker, placed, {
+      quantity: 'decrementPercent', at: placed.row.site, label: `decrement, ${label}`, typed: false, value, asker: askerOf(maker, null), askAt: null,
       how: { formula: `100 x (first - response ${DECREMENT_RESPONSE}) / first`, source: 'page of the Norwegian society on myasthenia (read)' },
     })
   }
@@ -89,8 +90,8 @@ function addFastIncrement(maker: RunMaker, placed: PlacedRow, label: string): vo
 
 function addIncrement(maker: RunMaker, placed: PlacedRow, label: string, beforeMv: number, afterMv: number): void {
   const value = increment({ beforeMv, afterMv })
-  add(maker, {
-    rowId: placed.row.id, quantity: 'incrementPercent', at: placed.row.site, label: `increment, ${label}`, typed: false, value, supporting: true, query: questionFor(maker, null, null),
+  add(maker, placed, {
+    quantity: 'incrementPercent', at: placed.row.site, label: `increment, ${label}`, typed: false, value, supporting: true, asker: askerOf(maker, null), askAt: null,
     how: numberOf(value) === null ? undefined : { formula: `from ${beforeMv} mV to ${afterMv} mV`, source: 'Lipka et al., Muscle Nerve 2020, doi:10.1002/mus.26885' },
   })
 }

@@ -1,14 +1,13 @@
 import type { QuantityId } from '../../catalogue/quantities'
-import type { StimulationSite, Technique } from '../../catalogue/types'
+import type { Technique } from '../../catalogue/types'
 import type { Entry, Run, RunRow } from '../../schemas/study'
 import { absentBecause, notComputable, valueOf } from '../computed-value'
-import { makeResult, type ResultInput } from '../make-result'
+import type { LimitAsker } from '../limit-asker'
+import { makeResult, type Owner, type ResultInput } from '../make-result'
+import type { PlacedRow } from '../placed-rows'
 import { quantityInfo } from '../quantity-info'
 import type { KnownRun, StudyContext } from '../study-context'
 import type { ComputedValue, Result } from '../types'
-
-/** One row of a run with its place in the catalogue. */
-export interface PlacedRow { row: RunRow, site: StimulationSite | undefined, /** Index in the technique's sites; after all of them when unknown. */ place: number, label: string }
 
 /** Collects the results of one run. */
 export interface RunMaker {
@@ -17,21 +16,17 @@ export interface RunMaker {
   run: Run
   technique: Technique
   rows: readonly PlacedRow[]
+  owners: ReadonlyMap<RunRow, Owner>
   results: Result[]
 }
 
 export function runMaker(context: StudyContext, known: KnownRun, technique: Technique): RunMaker {
-  return { context, known, run: known.run, technique, rows: placedRows(known.run, technique), results: [] }
-}
-
-/** Distal to proximal as in the catalogue, whatever the order they were added in. */
-export function placedRows(run: Run, technique: Technique): PlacedRow[] {
-  const placed = run.rows.map((row) => {
-    const index = technique.sites.findIndex(site => site.id === row.site)
-    const site = index < 0 ? undefined : technique.sites[index]
-    return { row, site, place: index < 0 ? technique.sites.length : index, label: site?.label ?? row.site }
-  })
-  return placed.sort((a, b) => a.place - b.place)
+  const { run, rows } = known
+  const owners = new Map<RunRow, Owner>()
+  for (const { row } of rows) {
+    owners.set(row, { keyStart: `${run.id}/${row.id}/`, runId: run.id, rowId: row.id, side: run.side, cold: known.bearing, supersededBy: known.supersededBy })
+  }
+  return { context, known, run, technique, rows, owners, results: [] }
 }
 
 /**
@@ -41,58 +36,56 @@ export function placedRows(run: Run, technique: Technique): PlacedRow[] {
  * cellOf({ values: { latencyMs: 'no-response' } }, 'latencyMs') // => { kind: 'absent', absence: 'no-response' }
  */
 export function cellOf(row: Pick<RunRow, 'values'>, quantity: QuantityId, uncertainty?: number): ComputedValue {
-  return entryValue(row.values[quantity], `${quantityInfo(quantity).label} missing`, uncertainty)
+  const entry = row.values[quantity]
+  return entry === undefined ? notComputable(`${quantityInfo(quantity).label} missing`) : entryValue(entry, uncertainty)
 }
 
-export function entryValue(entry: Entry | undefined, missing: string, uncertainty?: number): ComputedValue {
-  if (entry === undefined) return notComputable(missing)
+export function entryValue(entry: Entry, uncertainty?: number): ComputedValue {
   return typeof entry === 'number' ? valueOf(entry, uncertainty) : absentBecause(entry)
 }
 
-export const isLatency = (quantity: string) => quantity.endsWith('LatencyMs') || quantity === 'latencyMs' || quantity.startsWith('r1') || quantity.startsWith('r2')
+const latencies = new Set(['latencyMs', 'onsetLatencyMs', 'peakLatencyMs', 'minimumLatencyMs', 'meanLatencyMs', 'maximumLatencyMs', 'mLatencyMs', 'hLatencyMs', 'r1Ms', 'r2IpsilateralMs', 'r2ContralateralMs'])
+export const isLatency = (quantity: string) => latencies.has(quantity)
 
-/** Adds a result of this run. */
-export function add(maker: RunMaker, input: Omit<ResultInput, 'key' | 'runId' | 'side' | 'cold' | 'supersededBy'> & { rowId: string, keyEnd?: string }): Result {
-  const { known, run } = maker
-  const result = makeResult(maker.context, {
-    ...input,
-    key: `${run.id}/${input.rowId}/${input.keyEnd ?? input.quantity}`,
-    runId: run.id,
-    side: run.side,
-    cold: known.bearing,
-    supersededBy: known.supersededBy,
-  })
-  maker.results.push(result)
-  return result
+/** Adds a result to a row of this run. */
+export function add(maker: RunMaker, placed: PlacedRow, input: ResultInput): void {
+  maker.results.push(makeResult(maker.context, maker.owners.get(placed.row) as Owner, input))
 }
 
-/** What every question to the sets about this run says. */
-export function questionFor(maker: RunMaker, at: string | null, distanceMm: number | null): NonNullable<ResultInput['query']> {
+/** Who knows the limits for a run recorded like this one, at this distance from stimulus to recording electrode. */
+export function askerOf(maker: RunMaker, distanceMm: number | null): LimitAsker {
   const { run, technique } = maker
-  return {
+  return maker.context.askerFor({
     technique: technique.id,
-    at,
     direction: run.direction ?? technique.direction ?? null,
     amplitudeDefinition: run.amplitudeDefinition ?? technique.amplitudeDefinition ?? null,
     distanceMm,
-  }
+  })
 }
 
-/** Distances, stimuli and counts are never judged. */
+/** Distances, stimuli, counts and direct responses beside late ones are never judged. */
 const notJudged = new Set(['distanceMm', 'stimulusMa', 'stimulusCount', 'responseCount', 'limbLengthMm', 'legLengthMm', 'rateHz', 'secondsAfterExercise', 'mLatencyMs', 'mAmplitudeMv', 'hAmplitudeMv'])
-export const isJudged = (quantity: string) => !notJudged.has(quantity)
+
+export interface TypedOptions {
+  /** Follows the name of the quantity: " at wrist", or nothing. */
+  place: string
+  asker: LimitAsker
+  /** Place that limits are asked for; null for those that have none. */
+  askAt: string | null
+  supporting: (quantity: QuantityId) => boolean
+}
 
 /** Every typed cell of a row, in the order of the technique's columns. */
-export function addTyped(maker: RunMaker, placed: PlacedRow, options: { label: (quantity: QuantityId) => string, at: string | null, distanceMm: number | null, supporting: (quantity: QuantityId) => boolean }): void {
+export function addTyped(maker: RunMaker, placed: PlacedRow, { place, asker, askAt, supporting }: TypedOptions): void {
   const { row } = placed
+  const uncertainty = maker.context.expanded.latencyMs
   for (const quantity of maker.technique.quantities) {
     const entry = row.values[quantity]
     if (entry === undefined) continue
-    add(maker, {
-      rowId: row.id, quantity, at: row.site, label: options.label(quantity), typed: true,
-      value: entryValue(entry, '', isLatency(quantity) ? maker.context.expanded.latencyMs : undefined),
-      ...(isJudged(quantity) && { query: questionFor(maker, options.at, options.distanceMm) }),
-      supporting: options.supporting(quantity),
+    add(maker, placed, {
+      quantity, at: row.site, label: quantityInfo(quantity).label + place, typed: true,
+      value: entryValue(entry, isLatency(quantity) ? uncertainty : undefined),
+      asker: notJudged.has(quantity) ? undefined : asker, askAt, supporting: supporting(quantity),
     })
   }
 }

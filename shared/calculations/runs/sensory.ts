@@ -1,10 +1,11 @@
 import type { QuantityId } from '../../catalogue/quantities'
-import { notComputable, numberOf } from '../computed-value'
-import { quantityInfo } from '../quantity-info'
+import { notComputable } from '../computed-value'
+import type { LimitAsker } from '../limit-asker'
+import type { PlacedRow } from '../placed-rows'
 import { segmentalSensoryVelocity, sensoryVelocity } from '../sensory-velocity'
-import type { ComputedValue } from '../types'
+import { absenceAt } from '../words'
 import { addCorrected } from './corrected'
-import { add, addTyped, cellOf, questionFor, type PlacedRow, type RunMaker } from './run-maker'
+import { add, addTyped, askerOf, cellOf, type RunMaker } from './run-maker'
 
 const SOURCE = 'distance over onset latency: common practice; uncertainty by JCGM 100, k = 2'
 
@@ -12,50 +13,41 @@ const SOURCE = 'distance over onset latency: common practice; uncertainty by JCG
 export function assessSensory(maker: RunMaker): void {
   const several = maker.rows.length > 1
   for (const [index, placed] of maker.rows.entries()) {
-    const place = several ? ` at ${placed.label}` : ''
     const distance = placed.row.values.distanceMm
     const distanceMm = typeof distance === 'number' ? distance : null
-    addTyped(maker, placed, {
-      label: (quantity: QuantityId) => `${quantityInfo(quantity).label}${place}`,
-      at: placed.row.site,
-      distanceMm,
-      supporting: quantity => quantity === 'durationMs',
-    })
-    addVelocity(maker, placed, several ? `, ${placed.label}` : '', distanceMm)
+    const asker = askerOf(maker, distanceMm)
+    addTyped(maker, placed, { place: several ? ` at ${placed.label}` : '', asker, askAt: placed.row.site, supporting: isDuration })
+    addVelocity(maker, placed, several ? `, ${placed.label}` : '', distanceMm, asker)
     const previous = maker.rows[index - 1]
-    if (previous) addSegment(maker, previous, placed)
+    if (previous) addSegment(maker, previous, placed, asker)
   }
 }
 
+const isDuration = (quantity: QuantityId) => quantity === 'durationMs'
 const isStarted = ({ row }: PlacedRow) => row.values.onsetLatencyMs !== undefined || row.values.peakLatencyMs !== undefined || row.values.amplitudeUv !== undefined
 
-function addVelocity(maker: RunMaker, placed: PlacedRow, place: string, distanceMm: number | null): void {
+function addVelocity(maker: RunMaker, placed: PlacedRow, place: string, distanceMm: number | null, asker: LimitAsker): void {
   if (!isStarted(placed)) return
-  const onset = cellOf(placed.row, 'onsetLatencyMs')
-  const value = onset.kind === 'value' && distanceMm !== null
-    ? sensoryVelocity({ distanceMm, onsetLatencyMs: onset.value }, maker.context.expanded)
-    : notComputable(onset.kind === 'value' ? 'distance missing' : reason(onset))
-  add(maker, {
-    rowId: placed.row.id, quantity: 'velocityMps', at: placed.row.site, label: `velocity${place}`, typed: false, value,
-    how: value.kind === 'value' ? { formula: `${distanceMm} mm / ${numberOf(onset)} ms`, source: SOURCE } : undefined,
-    query: questionFor(maker, placed.row.site, distanceMm),
+  const onset = placed.row.values.onsetLatencyMs
+  const value = typeof onset === 'number' && distanceMm !== null
+    ? sensoryVelocity({ distanceMm, onsetLatencyMs: onset }, maker.context.expanded)
+    : notComputable(typeof onset === 'number' ? 'distance missing' : onset === undefined ? 'onset latency missing' : absenceAt[onset])
+  add(maker, placed, {
+    quantity: 'velocityMps', at: placed.row.site, label: `velocity${place}`, typed: false, value, asker,
+    how: value.kind === 'value' ? { formula: `${distanceMm} mm / ${onset} ms`, source: SOURCE } : undefined,
   })
   if (value.kind === 'value') addCorrected(maker, placed, 'velocity', value.value)
 }
 
-const absenceWords = { 'no-response': 'no response', 'technical': 'not recordable', 'not-done': 'not done', 'stopped': 'stopped' } as const
-const reason = (value: ComputedValue) => value.kind === 'absent' ? absenceWords[value.absence] : value.kind === 'not-computable' ? value.because : ''
-
-function addSegment(maker: RunMaker, previous: PlacedRow, placed: PlacedRow): void {
+function addSegment(maker: RunMaker, previous: PlacedRow, placed: PlacedRow, asker: LimitAsker): void {
   const [nearD, farD] = [cellOf(previous.row, 'distanceMm'), cellOf(placed.row, 'distanceMm')]
   const [near, far] = [cellOf(previous.row, 'onsetLatencyMs'), cellOf(placed.row, 'onsetLatencyMs')]
   if (nearD.kind !== 'value' || farD.kind !== 'value' || near.kind !== 'value' || far.kind !== 'value') return
   const isNext = placed.place === previous.place + 1
-  const at = isNext && placed.site?.segment ? placed.site.segment.id : `${previous.row.site}-${placed.row.site}`
-  add(maker, {
-    rowId: placed.row.id, quantity: 'segmentVelocityMps', at, label: `velocity, ${placed.label} to ${previous.label}`, typed: false, supporting: true,
+  add(maker, placed, {
+    quantity: 'segmentVelocityMps', at: isNext && placed.site?.segment ? placed.site.segment.id : `${previous.row.site}-${placed.row.site}`,
+    label: `velocity, ${placed.label} to ${previous.label}`, typed: false, supporting: true, asker,
     value: segmentalSensoryVelocity({ distanceMm: farD.value, onsetLatencyMs: far.value }, { distanceMm: nearD.value, onsetLatencyMs: near.value }, maker.context.expanded),
     how: { formula: `(${farD.value} - ${nearD.value}) mm / (${far.value} - ${near.value}) ms`, source: SOURCE },
-    query: questionFor(maker, at, farD.value),
   })
 }
