@@ -40,7 +40,7 @@ export async function listReferrals(db: Database, query: ReferralListQuery): Pro
 
 const sum = (groups: Group[]) => groups.reduce((total, group) => total + group.n, 0)
 const direction = (query: ReferralListQuery) => query.direction === 'desc' ? sql`DESC` : sql`ASC`
-const urgencyRank = sql`CASE referral.urgency ${sql.join(urgencies.map((urgency, index) => sql`WHEN ${urgency} THEN ${urgencies.length - index}`), sql` `)} END`
+const urgencyRank = sql`CASE referral.urgency ${sql.join(urgencies.map((urgency, index) => sql`WHEN ${urgency} THEN ${index}`), sql` `)} END`
 const stateRank = sql`CASE referral.state ${sql.join(referralStates.map((state, index) => sql`WHEN ${state} THEN ${index}`), sql` `)} END`
 
 function orderOf(query: ReferralListQuery): RawBuilder<unknown> {
@@ -85,7 +85,7 @@ function sorted(query: ReferralListQuery, filter: RawBuilder<unknown>): RawBuild
 
 /** Each site, state and urgency is one range of an index, already in order; the ranges are merged and only the page is read. */
 function mergedGroups(query: ReferralListQuery, groups: Group[]): RawBuilder<unknown> {
-  const parts = groups.map(({ siteId, state, urgency }) => sql`SELECT id, state_since AS since, ${sql.lit(urgencies.length - urgencies.indexOf(urgency as Urgency))} AS rank FROM referral WHERE site_id = ${siteId} AND state = ${state} AND urgency = ${urgency}`)
+  const parts = groups.map(({ siteId, state, urgency }) => sql`SELECT id, state_since AS since, ${sql.lit(urgencies.indexOf(urgency as Urgency))} AS rank FROM referral WHERE site_id = ${siteId} AND state = ${state} AND urgency = ${urgency}`)
   const way = direction(query)
   const order = query.sort === 'urgency' ? sql`rank ${way}, since ASC, id ASC` : sql`since ${way}, id ${way}`
   return sql`${sql.join(parts, sql` UNION ALL `)} ORDER BY ${order} ${limitOf(query)}`
