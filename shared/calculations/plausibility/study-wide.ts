@@ -1,4 +1,5 @@
 import { otherSide } from '../words'
+import type { QuantityId } from '../../catalogue/quantities'
 import type { Side } from '../../schemas/common'
 import { standingRun, type KnownRun, type StudyContext } from '../study-context'
 import { numberOf } from '../computed-value'
@@ -49,24 +50,26 @@ function remarkOnMirrored(list: RemarkList, context: StudyContext): void {
     if (right.run.side !== 'right') continue
     const left = standingRun(context, right.run.technique, 'left')
     if (!left) continue
-    const [a, b] = [numbersOf(right), numbersOf(left)]
-    if (a.count < 3 || a.text !== b.text) continue
+    if (!isCopy(right, left)) continue
     addRemark(list, { code: 'sides-identical', strength: 'check', runId: right.run.id, sentence: `Every number of ${runName(right)} is the same on the LEFT: was one side recorded twice, or copied?` })
   }
 }
 
-/** Distances are often alike and do not count. */
-function numbersOf({ run }: KnownRun): { text: string, count: number } {
-  const parts: string[] = []
+/** At least three numbers and every one the same; distances are often alike and do not count. */
+function isCopy(right: KnownRun, left: KnownRun): boolean {
+  if (right.rows.length !== left.rows.length) return false
   let count = 0
-  for (const row of run.rows) {
-    for (const [quantity, entry] of Object.entries(row.values).sort(([a], [b]) => a < b ? -1 : 1)) {
-      if (quantity === 'distanceMm' || typeof entry !== 'number') continue
-      parts.push(`${row.site}/${quantity}/${entry}`)
-      count += 1
+  for (const [index, { row }] of right.rows.entries()) {
+    const other = left.rows[index]?.row
+    if (!other || other.site !== row.site || Object.keys(row.values).length !== Object.keys(other.values).length) return false
+    for (const quantity in row.values) {
+      if (quantity === 'distanceMm') continue
+      const entry = row.values[quantity as QuantityId]
+      if (entry !== other.values[quantity as QuantityId]) return false
+      if (typeof entry === 'number') count += 1
     }
   }
-  return { text: parts.sort().join(' '), count }
+  return count >= 3
 }
 
 const hasResponse = ({ run }: KnownRun) => run.rows.some(row => Object.entries(row.values).some(([quantity, entry]) => quantity !== 'distanceMm' && typeof entry === 'number'))
