@@ -17,6 +17,7 @@ export const errors = {
   'already-signed': { status: 409, screen: 'This report was signed a moment ago by someone else. Your text is kept as a draft.' },
   'not-ready': { status: 409, screen: 'The report cannot be signed yet. The list says what is missing.' },
   'wrong-password': { status: 422, screen: 'The password is not right. Nothing was signed.' },
+  'altered': { status: 409, screen: 'This signed version no longer fits its hash: it was altered outside the program. It is neither shown nor sent. Tell the administrator; a backup holds the original.' },
   'double-booking': { status: 409, screen: 'The room or the technologist is taken at that time. Choose another time.' },
   'too-large': { status: 413, screen: 'The file is larger than 10 MB. Nothing was stored.' },
   'wrong-file-type': { status: 415, screen: 'The file is not a PDF, PNG or JPEG, whatever its name says. Nothing was stored.' },

@@ -113,7 +113,7 @@ function writeObject({ number, generation, body, stream }: PdfObject): Buffer {
 }
 
 function writePdf(file: PdfFile, objects: PdfObject[], encryptNumber: number): Uint8Array {
-  const parts = [Buffer.from('%PDF-1.7\n%\u00FF\u00FF\u00FF\u00FF\n', 'latin1')]
+  const parts: Buffer[] = [Buffer.from('%PDF-1.7\n%\u00FF\u00FF\u00FF\u00FF\n', 'latin1')]
   const offsets = new Map<number, number>()
   let at = parts[0]!.length
   for (const object of objects) {

@@ -55,10 +55,11 @@ function drawFigure(figure: FigureBlock, snapshot: ReportSnapshot, width: number
   const run = snapshot.study.runs.find(candidate => candidate.id === figure.runId)
   const assessment = snapshot.assessment.runs.find(candidate => candidate.runId === figure.runId)
   const technique = snapshot.techniques.find(candidate => candidate.id === run?.technique)
-  const other = snapshot.study.runs.find(candidate => candidate.technique === run?.technique && candidate.side !== run?.side)
+  const superseded = new Set(snapshot.assessment.runs.filter(candidate => candidate.supersededBy).map(candidate => candidate.runId))
+  const other = snapshot.study.runs.find(candidate => candidate.technique === run?.technique && candidate.side !== run?.side && candidate.rows.length > 1 && !superseded.has(candidate.id))
   const plot = run && technique ? travelPlotGeometry(run, assessment, technique, other ? { run: other } : undefined, { width: 232, height: 164 }) : null
   if (!plot) return { text: printable(figure.text), fontSize: size.small }
-  return { stack: [{ text: runs(withSides(shortTitle(figure.title))), fontSize: size.small, margin: [0, 0, 0, 2] }, { svg: printable(travelPlotSvg(plot, ink)), width }], width }
+  return { stack: [{ text: runs(withSides(shortTitle(figure.title))), fontSize: size.small, margin: [0, 0, 0, 2] }, { svg: printable(travelPlotSvg(plot, ink)), width }] }
 }
 
 /** Plots in rows; a row is never cut. */
@@ -66,7 +67,7 @@ function renderFigures(figures: FigureBlock[], snapshot: ReportSnapshot): Conten
   const width = (lineWidth(snapshot.organisation.paperSize) - gap * (plotsInRow - 1)) / plotsInRow
   const drawn = figures.map(figure => drawFigure(figure, snapshot, width))
   const rows = Array.from({ length: Math.ceil(drawn.length / plotsInRow) }, (_, row) => drawn.slice(row * plotsInRow, (row + 1) * plotsInRow))
-  return { stack: rows.map((columns): Content => ({ columns, columnGap: gap, unbreakable: true, margin: [0, 0, 0, 6] })) }
+  return { stack: rows.map((columns): Content => ({ columns: columns.map(column => ({ width, stack: [column] })), columnGap: gap, unbreakable: true, margin: [0, 0, 0, 6] })) }
 }
 
 function renderHeading(level: number, text: string): Content {

@@ -91,6 +91,8 @@ export interface ReadingView {
   namesakes: { recordNumber: string, name: string, birthDate: string }[]
   /** Who would receive a version signed now: the referring physician, the copies, or everyone who had an earlier version. */
   recipients?: { name: string, practiceName: string, town: string }[]
+  /** The study judged with the reader's own choices (cold runs interpreted); left out while there are none. */
+  assessment?: Assessment
 }
 
 /** One difference between a version and the one before it. */
@@ -140,9 +142,9 @@ export interface ReportView {
   status: ReportStatus
   snapshot: ReportSnapshot
   sha256: string
+  /** The head of the audit trail at the signature, as printed. */
+  auditHead: string
   pdfSha256: string | null
-  /** The head of the audit trail at signing. */
-  auditHead?: string
   superseded: boolean
   versions: { version: number, status: ReportStatus, signedAt: string, signedName: string, reason: string }[]
   band: PatientBand

@@ -1,0 +1,86 @@
+import type { Database } from '#server/database/connection'
+import { cautionAnswers } from '#server/database/queries/bands'
+import { copiesOf } from '#server/database/queries/referrals'
+import { patientView } from '#server/database/queries/patients'
+import { techniqueOf } from '#shared/catalogue/nerves'
+import { SNAPSHOT_FORMAT, type ReportSnapshot } from '#shared/schemas/report'
+import { DomainError } from '#shared/errors'
+import { isOpen } from '#shared/report/sign-checks'
+import type { ServiceContext } from './context'
+import type { ReadingFacts } from './reading-facts'
+
+type Signature = ReportSnapshot['signature']
+type Person = NonNullable<ReportSnapshot['referral']['physician']>
+
+async function personsOf(db: Database, ids: (string | null)[]): Promise<(Person & { id: string })[]> {
+  return await db.selectFrom('physician').innerJoin('practice', 'practice.id', 'physician.practiceId')
+    .select(['physician.id', 'physician.name', 'practice.name as practiceName', 'practice.town'])
+    .where('physician.id', 'in', ids.filter(id => id !== null)).orderBy('physician.name').execute()
+}
+
+async function referralPart(db: Database, { referral }: ReadingFacts): Promise<ReportSnapshot['referral']> {
+  const { number, receivedAt, clinicalQuestion, side, symptoms, onset, examination, provisionalDiagnosis, urgency } = referral
+  const copies = await copiesOf(db, referral.id)
+  const people = await personsOf(db, [referral.physicianId, ...copies])
+  const plain = ({ name, practiceName, town }: Person): Person => ({ name, practiceName, town })
+  const physician = people.find(person => person.id === referral.physicianId)
+  return {
+    number, receivedAt, clinicalQuestion, side, symptoms, onset, examination, provisionalDiagnosis, urgency,
+    cautions: cautionAnswers(referral.cautionsJson).filter(caution => caution.answer === 'yes').map(caution => caution.chip),
+    physician: physician ? plain(physician) : null,
+    copies: people.filter(person => person.id !== referral.physicianId && copies.includes(person.id)).map(plain),
+  }
+}
+
+async function nameOf(db: Database, userId: string | null): Promise<string> {
+  if (userId === null) return ''
+  const user = await db.selectFrom('user').select(['name', 'printedName', 'credentials']).where('id', '=', userId).executeTakeFirst()
+  return user ? [user.printedName || user.name, user.credentials].filter(Boolean).join(', ') : ''
+}
+
+/**
+ * The signature's name, moment and meaning (21 CFR 11.50(a)), from the account of the person who signs.
+ * @throws DomainError 'not-allowed' without a signed-in person
+ */
+export async function signatureOf(context: ServiceContext, db: Database, meaning: string, at: string, timeZone: string): Promise<Signature> {
+  const { userId } = context.actor
+  const user = userId ? await db.selectFrom('user').select(['name', 'printedName', 'credentials']).where('id', '=', userId).executeTakeFirst() : undefined
+  if (!userId || !user) throw new DomainError('not-allowed')
+  return { userId, name: user.printedName || user.name, credentials: user.credentials, meaning, at, timeZone }
+}
+
+/** The first signed copy: everything the report says, frozen; nothing of it is looked up again later. */
+export async function buildSnapshot(context: ServiceContext, db: Database, facts: ReadingFacts, { number, signature }: { number: string, signature: Signature }): Promise<ReportSnapshot> {
+  const { site, study, policy, assessment, draft, referral, assessed, report } = facts
+  const organisation = await db.selectFrom('organisation').selectAll().where('id', '=', site.organisationId).executeTakeFirstOrThrow()
+  const { id, recordNumber, familyName, givenName, birthDate, sexForLimits } = patientView(facts.patient)
+  const drafter = report?.draftedBy && report.draftedBy !== signature.userId ? report.draftedBy : null
+  return {
+    format: SNAPSHOT_FORMAT,
+    demonstration: organisation.demonstration === 1 || context.settings.demonstration,
+    number, version: 1, status: 'final', reason: '', supersedes: null,
+    organisation: { name: organisation.name, disclaimer: organisation.disclaimer, paperSize: organisation.paperSize, timeZone: organisation.timeZone },
+    site: { name: site.name, town: site.town, address: site.address, phone: site.phone, timeZone: site.timeZone },
+    language: referral.reportLanguage,
+    patient: { id, recordNumber, familyName, givenName, birthDate, sexForLimits },
+    referral: await referralPart(db, facts),
+    study, studyNumber: assessed.record.number, startedAt: assessed.record.startedAt,
+    technologist: await nameOf(db, assessed.record.technologistId),
+    handOverNote: assessed.record.handOverNote,
+    needleExamination: study.runs.some(run => techniqueOf(run.technique)?.kind === 'needle') ? 'Needle examination: see its table.' : '',
+    policy, assessment,
+    techniques: [...new Set(study.runs.map(run => run.technique))].flatMap(technique => techniqueOf(technique) ?? []),
+    findings: facts.findings.filter(finding => !finding.left).map(({ key, runIds, text, edited }) => ({ key, runIds, text, edited })),
+    draft,
+    resolvedChecks: resolvedChecks(facts),
+    changes: [],
+    draftedBy: await nameOf(db, drafter),
+    signature,
+  }
+}
+
+/** Questions that were answered by the reader; those kept at the bench stand with the study. */
+export function resolvedChecks({ checks }: Pick<ReadingFacts, 'checks'>): ReportSnapshot['resolvedChecks'] {
+  return checks.filter(check => check.strength !== 'ok' && !isOpen(check) && !check.key.startsWith('cold/'))
+    .map(({ key, sentence, resolvedBecause = '' }) => ({ key, sentence, reason: resolvedBecause }))
+}

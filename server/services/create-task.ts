@@ -1,0 +1,23 @@
+import { randomUUID } from 'node:crypto'
+import type { Trx } from '#server/database/connection'
+import type { Role } from '#shared/permissions'
+import { now, type ServiceContext } from './context'
+
+export interface NewTask {
+  kind: string
+  subject: string
+  subjectId: string
+  siteId: string | null
+  ownerRole?: Role
+  ownerId?: string
+  /** Our numbers and what to do; no patient's name. */
+  sentence: string
+  dueAt?: string
+}
+
+/** Something that a person has to do; one open task of a kind for a thing is enough. */
+export async function createTask(context: ServiceContext, trx: Trx, { kind, subject, subjectId, siteId, ownerRole, ownerId, sentence, dueAt }: NewTask): Promise<void> {
+  const open = await trx.selectFrom('task').select('id').where('kind', '=', kind).where('subjectId', '=', subjectId).where('doneAt', 'is', null).executeTakeFirst()
+  if (open) return
+  await trx.insertInto('task').values({ id: randomUUID(), kind, subject, subjectId, siteId, ownerId: ownerId ?? null, ownerRole: ownerRole ?? null, sentence, createdAt: now(context), dueAt: dueAt ?? null, doneAt: null, doneBy: null }).execute()
+}

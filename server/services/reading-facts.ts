@@ -1,0 +1,96 @@
+import type { Database } from '#server/database/connection'
+import { namesakesToTellApart } from '#server/database/queries/patients'
+import { recipientsOfReferral, recipientsOfVersion, type Recipient } from '#server/database/queries/recipients'
+import { referralRecord } from '#server/database/queries/referrals'
+import { reportOfStudy } from '#server/database/queries/reports'
+import type { Patient } from '#server/database/tables/patient'
+import type { Referral } from '#server/database/tables/referral'
+import type { Report } from '#server/database/tables/report'
+import type { Site } from '#server/database/tables/site'
+import { assessStudy } from '#shared/calculations/assess-study'
+import type { Assessment, Policy } from '#shared/calculations/types'
+import { DomainError } from '#shared/errors'
+import { signChecks } from '#shared/report/sign-checks'
+import { reportDraftSchema, type ReadingView, type ReportDraft, type SignCheck } from '#shared/schemas/report'
+import type { Study } from '#shared/schemas/study'
+import { assessStoredStudy, type AssessedStudy } from './assess-stored-study'
+import { now, type ServiceContext } from './context'
+import { localDate } from './site-time'
+
+/** Everything the reading page shows and a signature freezes, read together so that it fits together. */
+export interface ReadingFacts {
+  assessed: AssessedStudy
+  report: Report | undefined
+  referral: Referral
+  patient: Patient
+  site: Site
+  draft: ReportDraft
+  /** Study, policy and assessment with the reader's own choices (cold runs interpreted, entrapment sites left out). */
+  study: Study
+  policy: Policy
+  assessment: Assessment
+  findings: ReadingView['findings']
+  recipients: Recipient[]
+  namesakes: ReadingView['namesakes']
+  checks: SignCheck[]
+}
+
+/** The draft as stored; a blank one where nothing was written yet. */
+export function draftOf(report: Report | undefined): ReportDraft {
+  return reportDraftSchema.parse(report ? JSON.parse(report.draftJson) : {})
+}
+
+/** The study as the reader wants it judged: each choice carries its reason, which is printed. */
+export function withReaderChoices({ study, policy }: { study: Study, policy: Policy }, draft: ReportDraft): { study: Study, policy: Policy } {
+  const reasonOf = (runId: string) => draft.interpretCold.find(item => item.runId === runId)?.reason
+  const runs = study.runs.map((run) => {
+    const reason = reasonOf(run.id)
+    return reason ? { ...run, interpretColdBecause: reason } : run
+  })
+  return { study: { ...study, runs }, policy: { ...policy, leaveOutEntrapmentSites: policy.leaveOutEntrapmentSites || draft.leaveOutEntrapmentSites } }
+}
+
+/**
+ * The sentences as made from the rows now, with the reader's wording where one was edited. An edited sentence whose
+ * numbers changed is kept and marked, and so is one whose row is gone: nothing that a person wrote vanishes.
+ */
+export function mergeFindings(assessment: Assessment, draft: ReportDraft): ReadingView['findings'] {
+  const made = assessment.findings.map((finding) => {
+    const edited = draft.editedFindings.find(item => item.key === finding.key)
+    const { key, runIds, text } = finding
+    if (!edited) return { key, runIds, text, edited: false, needsReview: false, left: false }
+    return { key, runIds, text: edited.text, edited: edited.text !== text, needsReview: edited.fingerprint !== finding.fingerprint, left: edited.left }
+  })
+  const orphans = draft.editedFindings.filter(item => !item.left && !assessment.findings.some(finding => finding.key === item.key))
+    .map(item => ({ key: item.key, runIds: [], text: item.text, edited: true, needsReview: true, left: false }))
+  return [...made, ...orphans]
+}
+
+async function recipientsOf(db: Database, referralId: string, report: Report | undefined, today: string): Promise<Recipient[]> {
+  return report ? await recipientsOfVersion(db, { referralId, reportId: report.id }, today) : await recipientsOfReferral(db, referralId, today)
+}
+
+/**
+ * @param db the transaction where something is decided on it, else the database
+ * @throws DomainError 'not-found'
+ */
+export async function readingFacts(context: ServiceContext, db: Database, studyId: string): Promise<ReadingFacts> {
+  const assessed = await assessStoredStudy({ db }, studyId)
+  const { record } = assessed
+  const [report, referral, patient, site] = await Promise.all([
+    reportOfStudy(db, studyId),
+    referralRecord(db, record.referralId),
+    db.selectFrom('patient').selectAll().where('id', '=', record.patientId).executeTakeFirst(),
+    db.selectFrom('site').selectAll().where('id', '=', record.siteId).executeTakeFirst(),
+  ])
+  if (!referral || !patient || !site) throw new DomainError('not-found')
+  const draft = draftOf(report)
+  const chosen = withReaderChoices(assessed, draft)
+  const assessment = draft.interpretCold.length > 0 || draft.leaveOutEntrapmentSites ? assessStudy(chosen.study, assessed.tables, chosen.policy) : assessed.assessment
+  const findings = mergeFindings(assessment, draft)
+  const recipients = await recipientsOf(db, record.referralId, report, localDate(new Date(now(context)), site.timeZone))
+  const others = await namesakesToTellApart(db, patient)
+  const namesakes = others.map(other => ({ recordNumber: other.recordNumber, name: `${other.familyName}, ${other.givenName}`, birthDate: other.birthDate }))
+  const checks = signChecks({ study: chosen.study, assessment, draft, findings, clinicalQuestion: referral.clinicalQuestion, language: referral.reportLanguage, recipients, namesakes })
+  return { assessed, report, referral, patient, site, draft, ...chosen, assessment, findings, recipients, namesakes, checks }
+}
