@@ -42,16 +42,28 @@ export function useLiveAssessment(study: Ref<Study>, policy: Ref<Policy>, fromSe
   onMounted(loadTables)
   watch(() => policy.value.adopted.map(set => `${set.setId}/${set.version}`).join(' '), loadTables)
 
+  /** Null when it cannot be computed here: the library never throws, but an old page in an open tab may. */
+  function compute(stored: Study): Assessment | null {
+    try {
+      return tables.value && assessStudy(stored, tables.value, policy.value)
+    }
+    catch {
+      return null
+    }
+  }
+
   const assessment = computed<Assessment>(() => {
-    if (!tables.value) return fromServer()
-    const fresh = assessStudy(study.value, tables.value, policy.value)
+    const fresh = compute(study.value)
+    if (!fresh) return fromServer()
     last = { ...fresh, runs: keepRuns(last?.runs ?? [], fresh.runs), remarks: keepSame(last?.remarks, fresh.remarks), comparisons: keepSame(last?.comparisons, fresh.comparisons) }
     return last
   })
 
   /** Compares with the server's assessment of the same stored study. */
   function compareWith(stored: Study, server: Assessment) {
-    if (tables.value) differences.value = assessmentDifferences(assessStudy(stored, tables.value, policy.value), server)
+    const mine = compute(stored)
+    if (mine) differences.value = assessmentDifferences(mine, server)
+    else if (tables.value) problem.value = 'Results could not be computed on this page: they appear after saving. Reload the page.'
   }
 
   return { assessment, live: computed(() => tables.value !== null), problem, differences, compareWith }

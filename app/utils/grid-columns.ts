@@ -9,7 +9,8 @@ export type GridColumn
     | { kind: 'series', field: 'series', quantity: QuantityId, label: string, unit: string }
 
 /** Columns that many laboratories leave blank: shown when wanted or filled. */
-const seldom: QuantityId[] = ['areaMvMs', 'stimulusMa']
+const isSeldom = (technique: Technique, id: QuantityId) =>
+  (id === 'areaMvMs' && technique.kind === 'motor') || id === 'stimulusMa' || (id === 'durationMs' && technique.kind !== 'motor')
 
 const isFilled = (run: Run, id: QuantityId) => run.rows.some(row => row.values[id] !== undefined)
 
@@ -27,7 +28,7 @@ function seriesColumn(technique: Technique): GridColumn[] {
  */
 export function columnsOf(technique: Technique, run: Run, all: boolean): GridColumn[] {
   const numbers = technique.quantities
-    .filter(id => all || !seldom.includes(id) || technique.kind === 'repetitive' || isFilled(run, id))
+    .filter(id => all || !isSeldom(technique, id) || isFilled(run, id))
     .map((id): GridColumn => ({ kind: 'number', field: id, quantity: id, label: quantityOf(id).label, unit: quantityOf(id).unit }))
   const ordinals = (technique.ordinals ?? []).map((scale): GridColumn => ({ kind: 'ordinal', field: `ordinal:${scale.id}`, label: scale.label, unit: '', choices: scale.choices }))
   return [...numbers, ...seriesColumn(technique), ...ordinals]

@@ -5,7 +5,7 @@ import { axisTicks, type Tick } from './axis-ticks'
 import type { Tone } from './tokens'
 import { limitsOf, toneOf } from './verdict-words'
 
-export interface TravelPoint { rowId: string, site: string, label: string, x: number, y: number, ms: number, mm: number }
+export interface TravelPoint { rowId: string, site: string, label: string, /** its label starts or ends beside it */ anchor: 'start' | 'end', x: number, y: number, ms: number, mm: number }
 export interface TravelSegment {
   rowId: string
   from: { x: number, y: number }
@@ -84,6 +84,12 @@ function wedgeOf(from: Placed, to: Placed, velocity: Result, { x, y, maxMs }: Fr
   return { rowId: to.row.id, path: `M${[...points, ...clipped].map(([ms, mm]) => `${x(ms)} ${y(mm)}`).join('L')}Z` }
 }
 
+/** About 6.6 pixels a letter at size 12: enough to know whether a label still fits. */
+function pointOf({ row, ms, mm }: Placed, label: string, { x, y }: Frame, width: number): TravelPoint {
+  const anchor = x(ms) + 9 + label.length * 6.6 > width ? 'end' : 'start'
+  return { rowId: row.id, site: row.site, label, anchor, x: x(ms), y: y(mm), ms, mm }
+}
+
 function segmentOf(from: Placed, to: Placed, velocity: Result | undefined, { x, y }: Frame): TravelSegment {
   const start = { x: x(from.ms), y: y(from.mm) }
   const end = { x: x(to.ms), y: y(to.mm) }
@@ -133,7 +139,7 @@ export function travelPlotGeometry(run: Run, assessment: RunAssessment | undefin
   const pairs = neighbours(run, placed)
   return {
     width, height, area, timeTicks, distanceTicks,
-    points: placed.map(({ row, ms, mm }) => ({ rowId: row.id, site: row.site, label: labelOf(technique, row.site), x: frame.x(ms), y: frame.y(mm), ms, mm })),
+    points: placed.map(point => pointOf(point, labelOf(technique, point.row.site), frame, width)),
     segments: pairs.map(([from, to]) => segmentOf(from, to, velocityOf(assessment, to.row.id), frame)),
     wedges: pairs.flatMap(([from, to]) => {
       const velocity = velocityOf(assessment, to.row.id)

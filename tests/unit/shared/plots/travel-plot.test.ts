@@ -66,6 +66,16 @@ it('the other side is drawn behind it and both fit', () => {
   for (const x of plot.otherPath.match(/[ML]([\d.]+)/g)!.map(part => Number(part.slice(1)))) expect(x).toBeLessThanOrEqual(plot.area.right)
 })
 
+it('a label that would not fit stands left of its point', () => {
+  const plot = travelPlotGeometry(healthy, healthyJudged, technique)!
+  for (const point of plot.points) {
+    const width = point.label.length * 7
+    const [from, to] = point.label && point.anchor === 'end' ? [point.x - 9 - width, point.x - 9] : [point.x + 9, point.x + 9 + width]
+    expect(from).toBeGreaterThan(0)
+    expect(to).toBeLessThan(plot.width)
+  }
+})
+
 it('in words: every site, every velocity with its limit, what is missing, the other side', () => {
   const plot = travelPlotGeometry(healthy, healthyJudged, technique, { run: makeRun([[3.2, 80], [6.6, 210], [8, 100]], 'left') })!
   expect(travelPlotText('RIGHT ulnar motor', plot, healthyJudged)).toBe('RIGHT ulnar motor: wrist at 0 mm, 2.9 ms; below elbow at 205 mm, 6.4 ms: 59 ± 3 m/s, within the lower limit 52 m/s; above elbow at 305 mm, 8.1 ms: 59 ± 3 m/s, within the lower limit 43 m/s. The LEFT side is drawn dashed.')
@@ -80,7 +90,7 @@ it('as SVG text: the shipped font, given colours, labels escaped, never NaN', ()
 })
 
 it.each([
-  { largest: 9.2, max: 10, count: 6 }, { largest: 305, max: 400, count: 5 }, { largest: 12, max: 15, count: 4 }, { largest: 100, max: 100, count: 6 },
+  { largest: 9.2, max: 10, count: 6 }, { largest: 305, max: 400, count: 5 }, { largest: 12, max: 12, count: 7 }, { largest: 12.1, max: 15, count: 4 }, { largest: 100, max: 100, count: 6 },
 ])('ticks up to $largest', ({ largest, max, count }) => {
   const ticks = axisTicks(largest)
   expect(ticks.max).toBeCloseTo(max)
