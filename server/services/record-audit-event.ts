@@ -1,6 +1,6 @@
 import { randomUUID } from 'node:crypto'
-import { sql } from 'kysely'
-import type { Trx } from '#server/database/connection'
+import { compiled } from '#server/database/compiled'
+import type { Database, Trx } from '#server/database/connection'
 import type { AuditEvent } from '#server/database/tables/audit-event'
 import { auditEvents, type AuditEventData, type AuditEventName } from '#shared/audit-events'
 import { now, type ServiceContext } from './context'
@@ -44,23 +44,32 @@ export async function recordAuditEvent<N extends AuditEventName>(context: Servic
     dataJson, previousMac: last?.mac ?? CHAIN_START,
   }
   const mac = context.keys.auditMac(auditLinkText(link))
-  await trx.insertInto('auditEvent').values({ ...link, mac }).execute()
+  await insertLink(trx, [...Object.values(link), mac])
   await setHead(trx, AUDIT_HEAD, headProof(context.keys.auditMac, link.seq, mac))
   return mac
 }
 
 /** The head of the audit chain, as reports print it and backups keep it. */
-export async function auditHead(db: Pick<Trx, 'selectFrom'>): Promise<string> {
+export async function auditHead(db: Database | Trx): Promise<string> {
   return (await lastAudit(db))?.mac ?? CHAIN_START
 }
 
-function lastAudit(db: Pick<Trx, 'selectFrom'>) {
-  return db.selectFrom('auditEvent').select(['seq', 'mac']).orderBy('seq', 'desc').limit(1).executeTakeFirst()
+async function lastAudit(db: Database | Trx) {
+  return (await selectLast(db, [1]))[0]
 }
+
+const selectLast = compiled(db => db.selectFrom('auditEvent').select(['seq', 'mac']).orderBy('seq', 'desc').limit(1).compile())
+
+/** The columns in the order in which `recordAuditEvent` puts a link together. */
+const insertLink = compiled(db => db.insertInto('auditEvent').values({
+  seq: 0, id: '', at: '', actorId: '', actorLabel: '', siteId: '', name: '', subject: '', subjectId: '', patientId: '', dataJson: '', previousMac: '', mac: '',
+}).compile())
+
+const upsertMeta = compiled(db => db.insertInto('meta').values({ key: '', value: '' }).onConflict(conflict => conflict.column('key').doUpdateSet(eb => ({ value: eb.ref('excluded.value') }))).compile())
 
 /** Keeps the proof of a chain's last link. */
 export async function setHead(trx: Trx, key: string, value: string): Promise<void> {
-  await sql`insert into meta (key, value) values (${key}, ${value}) on conflict (key) do update set value = excluded.value`.execute(trx)
+  await upsertMeta(trx, [key, value])
 }
 
 export { recordView } from './record-view'
