@@ -59,12 +59,25 @@ function parseFile(file: string): z.infer<typeof fileSchema> {
   const json = readJson(file)
   const isWrapped = typeof json === 'object' && json !== null && 'study' in json
   const parsed = fileSchema.safeParse(isWrapped ? json : { study: json })
-  if (parsed.success) return parsed.data
+  if (parsed.success) {
+    const unknown = unknownKeys(isWrapped ? json : { study: json }, parsed.data, [])
+    if (unknown.length > 0) throw new BadInput(unknown.map(path => `${file}: ${(isWrapped ? path : path.slice(1)).join('.')}: there is no such field.`).join('\n'))
+    return parsed.data
+  }
   const faults = parsed.error.issues.map((issue) => {
     const path = isWrapped ? issue.path : issue.path.slice(1)
-    return `${file}: ${path.length > 0 ? path.join('.') : '(whole file)'}: ${issue.message}`
+    return `${file}: ${path.length > 0 ? path.join('.') : '(whole file)'}: ${plain(issue.message)}`
   })
   throw new BadInput(faults.join('\n'))
+}
+
+const plain = (message: string) => message.replace(/^Invalid (?:input|option): e/, 'E')
+
+/** A misspelt field would otherwise be dropped in silence, and a limit with it. */
+function unknownKeys(given: unknown, read: unknown, path: string[]): string[][] {
+  if (Array.isArray(given)) return given.flatMap((item, index) => unknownKeys(item, (read as unknown[])[index], [...path, String(index)]))
+  if (typeof given !== 'object' || given === null || typeof read !== 'object' || read === null) return []
+  return Object.entries(given).flatMap(([key, value]) => key in read ? unknownKeys(value, (read as Record<string, unknown>)[key], [...path, key]) : [[...path, key]])
 }
 
 function adopt(file: string, id: string): AdoptedSet {
@@ -73,7 +86,7 @@ function adopt(file: string, id: string): AdoptedSet {
   return { setId: table.id, version: table.version, adoptedOn: '', adoptedBy: 'this file', verifiedRows: [] }
 }
 
-/** exactOptionalPropertyTypes is off: keys that were left out keep their defaults. */
+/** What the file leaves out keeps its default. */
 function policyOf(file: string, { policy = {}, sets = [] }: z.infer<typeof fileSchema>): Policy {
   const adopted = [...(policy.adopted ?? []), ...sets.map(id => adopt(file, id))]
   const missing = adopted.find(one => !referenceTable(one.setId, one.version))
