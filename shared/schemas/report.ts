@@ -55,6 +55,10 @@ export const signSchema = z.object({
   /** Fingerprint of the study the check was made on: a changed row refuses. */
   fingerprint: z.string(),
 })
+/** POST /api/studies/:id/ready: what was looked at, as for a signature. */
+export const readySchema = signSchema.pick({ draftRevision: true, fingerprint: true }).partial().default({})
+/** Which version; the latest where it is left out. */
+export const versionQuerySchema = z.object({ version: z.coerce.number().int().min(1).optional() })
 export type SignInput = z.infer<typeof signSchema>
 
 export const newVersionSchema = z.object({ kind: z.enum(['appended', 'amended', 'corrected', 'entered-in-error']), reason: z.string().trim().min(3, 'Say what changed and why.').max(1000), draft: reportDraftSchema.optional(), password: z.string().min(1, 'Enter your password.').max(1024), meaning: z.enum(meanings) })
