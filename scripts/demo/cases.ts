@@ -111,7 +111,7 @@ export function makeRows(technique: string, severity: number, random: Random, fo
     case 'median-sensory-d2': return sensory(random, s, { site: 'wrist', onset: 2.7, amplitude: 34, mm: 140, slow: focus === 'wrist' ? 0.36 : 0.2 })
     case 'ulnar-sensory-d5': return sensory(random, s, { site: 'wrist', onset: 2.6, amplitude: 24, mm: 140, slow: 0.2 })
     case 'sural': return sensory(random, s, { site: 'calf', onset: 3.1, amplitude: 14, mm: 140, slow: 0.36 })
-    case 'superficial-fibular': return sensory(random, s, { site: 'calf', onset: 2.9, amplitude: 12, mm: 120, slow: 0.3 })
+    case 'superficial-fibular': return sensory(random, s, { site: 'lower-leg', onset: 2.9, amplitude: 12, mm: 140, slow: 0.3 })
     default: return null
   }
 }
