@@ -125,7 +125,7 @@ function between(a: ComputedValue, b: ComputedValue, quantity: string): Computed
 
 function compareVelocities(pair: Pair, results: Result[]): void {
   const { assessed } = pair.context
-  const left = assessed.get(pair.left.run.id)?.results.filter(result => result.quantity === 'velocityMps') ?? []
+  const left = assessed.get(pair.left.run.id)?.results.filter(result => result.quantity === 'velocityMps' && result.value.kind === 'value') ?? []
   if (left.length === 0) return
   for (const one of assessed.get(pair.right.run.id)?.results ?? []) {
     if (one.quantity !== 'velocityMps' || one.value.kind !== 'value') continue

@@ -36,7 +36,8 @@ export function assessMotor(maker: RunMaker): void {
     const own = index === distalIndex ? asker : askerOf(maker, distances[index] ?? null)
     addTyped(maker, placed, { place: ` at ${placed.label}`, asker: own, askAt: placed.row.site, supporting: index === distalIndex ? isSecondary : always })
     const previous = maker.rows[index - 1]
-    if (!previous || !isStarted(placed)) continue
+    // A site that stands twice makes no segment with itself; it is remarked on.
+    if (!previous || previous.row.site === placed.row.site || !isStarted(placed)) continue
     const place = segmentOf(previous, placed)
     const segment = addVelocity(maker, previous, placed, place, asker)
     if (segment && before && placed.site?.segment?.entrapment) addDrop(maker, placed, before, segment, asker)

@@ -19,7 +19,7 @@ export function assessSensory(maker: RunMaker): void {
     addTyped(maker, placed, { place: several ? ` at ${placed.label}` : '', asker, askAt: placed.row.site, supporting: isDuration })
     addVelocity(maker, placed, several ? `, ${placed.label}` : '', distanceMm, asker)
     const previous = maker.rows[index - 1]
-    if (previous) addSegment(maker, previous, placed, asker)
+    if (previous && previous.row.site !== placed.row.site) addSegment(maker, previous, placed, asker)
   }
 }
 
