@@ -115,8 +115,15 @@ export function parseSeries(typed: string, quantity: Quantity): { kind: 'series'
   return { kind: 'series', entries }
 }
 
-/** How a stored entry stands in its cell: as typed, with a decimal point; absences in words. */
-export function entryText(entry: Entry | undefined | null): string {
+/**
+ * How a stored entry stands in its cell: a decimal point, at least the decimals of its quantity (8 becomes 8.0) and never
+ * fewer digits than were typed; absences in words.
+ *
+ * @example entryText(8, 1) // => '8.0'
+ */
+export function entryText(entry: Entry | undefined | null, decimals = 0): string {
   if (entry === undefined || entry === null) return ''
-  return typeof entry === 'number' ? String(entry) : absenceLabels[entry]
+  if (typeof entry !== 'number') return absenceLabels[entry]
+  const [whole, fraction = ''] = String(entry).split('.')
+  return fraction.length >= decimals ? String(entry) : `${whole}.${fraction.padEnd(decimals, '0')}`
 }

@@ -47,7 +47,7 @@ export function planPaste(block: string[][], at: { rowIndex: number, columnIndex
     const before = cellContent(row, column.field)
     return [{
       rowId: row.id, field: column.field, row: rowLabel(technique, row), column: column.label, unit: column.unit, text,
-      before: Array.isArray(before) ? before.map(entryText).join(' ') : entryText(before as never),
+      before: Array.isArray(before) ? before.map(entry => entryText(entry)).join(' ') : entryText(before as never),
       ...read(text, column, technique, run, at.rowIndex + down),
     }]
   }))
@@ -61,6 +61,6 @@ export function blockText(run: Run, columns: GridColumn[], from: { rowIndex: num
   const [left, right] = [from.columnIndex, to.columnIndex].sort((a, b) => a - b) as [number, number]
   return run.rows.slice(top, bottom + 1).map(row => columns.slice(left, right + 1).map((column) => {
     const content = cellContent(row, column.field)
-    return Array.isArray(content) ? content.map(entryText).join(' ') : entryText(content as never)
+    return Array.isArray(content) ? content.map(entry => entryText(entry)).join(' ') : entryText(content as never)
   }).join('\t')).join('\n')
 }

@@ -79,6 +79,6 @@ it('a series keeps decimal commas and absences apart', () => {
   expect(parseSeries('28.1 2000', quantities.minimumLatencyMs)).toMatchObject({ kind: 'stop', sentence: expect.stringContaining('Response 2:') })
 })
 
-it.each([[3.4, '3.4'], ['no-response', 'no response'], [undefined, ''], [10, '10']] as const)('%s stands as "%s"', (entry, text) => {
-  expect(entryText(entry)).toBe(text)
+it.each([[3.4, 0, '3.4'], [8, 1, '8.0'], [3.85, 1, '3.85'], [12, 0, '12'], ['no-response', 1, 'no response'], [undefined, 1, ''], [10, 0, '10']] as const)('%s with %i decimals stands as "%s"', (entry, decimals, text) => {
+  expect(entryText(entry, decimals)).toBe(text)
 })
