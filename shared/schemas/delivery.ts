@@ -28,6 +28,8 @@ export const withdrawSchema = z.object({ reason: z.string().trim().min(3, 'Give 
 /** How a person resolves the state "uncertain", or sends again after a failure. */
 export const resolveDeliverySchema = z.object({ outcome: z.enum(['arrived', 'send-again', 'by-hand']), note: z.string().trim().min(3, 'Say how you know.').max(500) })
 
+export const finishTaskSchema = z.object({ resolution: z.string().trim().max(500).default('') }).nullish()
+
 /** GET /api/acknowledge/:token: nothing about the patient. */
 export interface AcknowledgeView { reportNumber: string, version: number, organisation: string, superseded: boolean, withdrawn: boolean, acknowledgedAt: string | null }
 export interface TaskRow { id: string, kind: string, sentence: string, createdAt: string, dueAt: string | null, siteName: string | null, ownerName: string | null, link: string | null }

@@ -4,12 +4,12 @@ import type { ReadingRow } from '#shared/schemas/report'
 import type { StudyState } from '#shared/states'
 import type { Database } from '../connection'
 
-export interface ReadingQueue { siteIds: string[], states: StudyState[], readerId?: string }
+export interface ReadingQueue { siteIds: string[], states: StudyState[], /** null: nobody has taken it */ readerId?: string | null }
 
 const queue = (db: Database, { siteIds, states, readerId }: ReadingQueue) => db.selectFrom('study')
   .innerJoin('referral', 'referral.id', 'study.referralId').innerJoin('patient', 'patient.id', 'study.patientId').innerJoin('site', 'site.id', 'study.siteId')
   .where('study.siteId', 'in', siteIds).where('study.state', 'in', states)
-  .$if(readerId !== undefined, query => query.where('study.readerId', '=', readerId ?? ''))
+  .$if(readerId !== undefined, query => query.where('study.readerId', readerId === null ? 'is' : '=', readerId ?? null))
 
 /** Urgent studies first, then those that have waited longest: a study must not be overtaken for ever. */
 const urgencyRank = sql<number>`case referral.urgency when 'urgent' then 0 when 'same-week' then 1 else 2 end`

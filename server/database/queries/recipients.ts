@@ -43,3 +43,9 @@ export async function recipientsOfVersion(db: Database, { referralId, reportId }
   const others = had.map(row => row.physicianId).filter(id => !named.some(person => person.physicianId === id))
   return [...named, ...await recipientsById(db, others, today)]
 }
+
+/** One person of the directory as a recipient. */
+export async function recipientById(db: Database, physicianId: string, today: string): Promise<Recipient | undefined> {
+  const [found] = await recipientsById(db, [physicianId], today)
+  return found
+}

@@ -1,0 +1,37 @@
+import type { Trx } from '#server/database/connection'
+import type { DeliveryFacts } from '#server/database/queries/deliveries'
+import { recipientById } from '#server/database/queries/recipients'
+import { DomainError } from '#shared/errors'
+import { now, type ServiceContext } from './context'
+import { newToken } from './keys'
+import { moveState } from './move-state'
+import { queueMail } from './queue-mail'
+import { localDate } from './site-time'
+import { intactSnapshot } from './verify-version'
+
+/**
+ * Puts a delivery back into the outbox, to the address that the directory has now. The Message-ID stays: if it did arrive
+ * the first time, the recipient's program can tell that it is the same mail.
+ * @throws DomainError 'not-valid' when the recipient cannot be mailed
+ */
+export async function queueAgain(context: ServiceContext, trx: Trx, delivery: DeliveryFacts, reason: string): Promise<void> {
+  const site = await trx.selectFrom('site').select('timeZone').where('id', '=', delivery.siteId).executeTakeFirstOrThrow()
+  const recipient = await recipientById(trx, delivery.physicianId, localDate(context.clock(), site.timeZone))
+  if (!recipient?.reachable) throw new DomainError('not-valid', { fields: [{ path: 'outcome', message: `It cannot be mailed: ${recipient?.because ?? 'the recipient is not in the directory'}.` }] })
+  await moveState(context, trx, { subject: 'delivery', id: delivery.id, from: ['failed', 'given-up', 'bounced', 'uncertain'], to: 'queued', reason })
+  await trx.updateTable('delivery').set({ address: recipient.email, practiceId: recipient.practiceId, method: 'encrypted-pdf' }).where('id', '=', delivery.id).execute()
+  const again = await trx.updateTable('outboxMail').set({ state: 'queued', dueAt: now(context), attempts: 0, lastByteAt: null, toAddress: recipient.email }).where('deliveryId', '=', delivery.id).executeTakeFirst()
+  if (again.numUpdatedRows === 0n) await firstMail(context, trx, delivery, recipient.email)
+}
+
+/** A delivery that could not be mailed at the signature has no mail yet. */
+async function firstMail(context: ServiceContext, trx: Trx, delivery: DeliveryFacts, toAddress: string): Promise<void> {
+  const version = await trx.selectFrom('reportVersion').selectAll().where('id', '=', delivery.reportVersionId).executeTakeFirstOrThrow()
+  const snapshot = intactSnapshot(version)
+  const token = newToken()
+  await trx.updateTable('delivery').set({ acknowledgeTokenHash: context.keys.tokenHash(token) }).where('id', '=', delivery.id).execute()
+  await queueMail(context, trx, {
+    template: 'report-ready', toAddress, deliveryId: delivery.id,
+    data: { reportNumber: snapshot.number, version: snapshot.version, status: snapshot.status, organisation: snapshot.organisation.name, siteName: snapshot.site.name, sitePhone: snapshot.site.phone, acknowledgeToken: token },
+  })
+}
