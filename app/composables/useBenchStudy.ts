@@ -40,6 +40,8 @@ export function useBenchStudy(first: StudyView) {
   const study = shallowRef(first.study)
   const history = shallowRef(emptyHistory())
   const problem = ref<ApiErrorBody | null>(null)
+  /** Which act the problem belongs to, so that it is said once, where the act was. */
+  const problemOf = ref('')
   const busy = ref(false)
   const saving = useCellSaving(first.id, first.cellRevisions, (rowId, field, entry) => study.value = withCell(study.value, rowId, field, entry))
   const policy = computed(() => view.value.policy)
@@ -95,6 +97,7 @@ export function useBenchStudy(first: StudyView) {
   async function act(rest: string, method: 'POST' | 'PUT' | 'PATCH' | 'DELETE', body: object = {}): Promise<boolean> {
     busy.value = true
     problem.value = null
+    problemOf.value = rest
     try {
       await saving.flush()
       await api(path(rest), { method, body })
@@ -114,7 +117,7 @@ export function useBenchStudy(first: StudyView) {
   const changeRun = (runId: string, changes: object) => act(`runs/${runId}`, 'PATCH', { ...changes, revision: view.value.runRevisions[runId] ?? 0 })
 
   return {
-    view, study, policy, saving, assessment: live.assessment, isLive: live.live, liveProblem: live.problem, differences: live.differences, mayType, busy, problem, at, editor, explained, allColumns,
+    view, study, policy, saving, assessment: live.assessment, isLive: live.live, liveProblem: live.problem, differences: live.differences, mayType, busy, problem, problemOf, at, editor, explained, allColumns,
     preview, change, reload, act, changeRun,
     undo: () => walk(undoStep(history.value)),
     redo: () => walk(redoStep(history.value)),

@@ -84,23 +84,26 @@ function wedgeOf(from: Placed, to: Placed, velocity: Result, { x, y, maxMs }: Fr
   return { rowId: to.row.id, path: `M${[...points, ...clipped].map(([ms, mm]) => `${x(ms)} ${y(mm)}`).join('L')}Z` }
 }
 
-/** About 6.6 pixels a letter at size 12: enough to know whether a label still fits. */
-function pointOf({ row, ms, mm }: Placed, label: string, { x, y }: Frame, width: number): TravelPoint {
-  const anchor = x(ms) + 9 + label.length * 6.6 > width ? 'end' : 'start'
-  return { rowId: row.id, site: row.site, label, anchor, x: x(ms), y: y(mm), ms, mm }
+/** About 6.6 pixels a letter at size 12: enough to know whether a label still fits to the right. */
+const anchorOf = ({ ms }: Placed, label: string, { x }: Frame, width: number) => x(ms) + 9 + label.length * 6.6 > width ? 'end' as const : 'start' as const
+
+function pointOf(point: Placed, label: string, frame: Frame, width: number): TravelPoint {
+  const { row, ms, mm } = point
+  return { rowId: row.id, site: row.site, label, anchor: anchorOf(point, label, frame, width), x: frame.x(ms), y: frame.y(mm), ms, mm }
 }
 
-function segmentOf(from: Placed, to: Placed, velocity: Result | undefined, { x, y }: Frame): TravelSegment {
+function segmentOf(from: Placed, to: Placed, velocity: Result | undefined, { x, y }: Frame, siteAnchor: 'start' | 'end'): TravelSegment {
   const start = { x: x(from.ms), y: y(from.mm) }
   const end = { x: x(to.ms), y: y(to.mm) }
-  const tight = start.y - end.y < 34
+  /** A short segment has no room for its velocity on the side where the sites are named. */
+  const left = start.y - end.y < 34 && siteAnchor === 'start'
   return {
     rowId: to.row.id,
     from: start,
     to: end,
     tone: velocity ? toneOf(velocity) : 'ink',
     words: velocity?.value.kind === 'value' ? `${velocity.print} m/s` : '',
-    label: { x: (start.x + end.x) / 2 + (tight ? -9 : 10), y: (start.y + end.y) / 2 + 5, anchor: tight ? 'end' : 'start' },
+    label: { x: (start.x + end.x) / 2 + (left ? -9 : 10), y: (start.y + end.y) / 2 + 5, anchor: left ? 'end' : 'start' },
   }
 }
 
@@ -140,7 +143,7 @@ export function travelPlotGeometry(run: Run, assessment: RunAssessment | undefin
   return {
     width, height, area, timeTicks, distanceTicks,
     points: placed.map(point => pointOf(point, labelOf(technique, point.row.site), frame, width)),
-    segments: pairs.map(([from, to]) => segmentOf(from, to, velocityOf(assessment, to.row.id), frame)),
+    segments: pairs.map(([from, to]) => segmentOf(from, to, velocityOf(assessment, to.row.id), frame, anchorOf(to, labelOf(technique, to.row.site), frame, width))),
     wedges: pairs.flatMap(([from, to]) => {
       const velocity = velocityOf(assessment, to.row.id)
       return velocity ? wedgeOf(from, to, velocity, frame) ?? [] : []
