@@ -11,12 +11,18 @@ const alias = {
   '~~': root('./'),
 }
 
+// Nuxt takes seconds to load: only when its project may run.
+const named = process.argv.includes('--project')
+const withNuxt = !named || process.argv.includes('nuxt')
+
 export default defineConfig({
   test: {
     projects: [
       { resolve: { alias }, test: { name: 'unit', environment: 'node', include: ['tests/unit/**/*.test.ts'] } },
       { resolve: { alias }, test: { name: 'server', environment: 'node', include: ['tests/server/**/*.test.ts'], testTimeout: 30_000, hookTimeout: 60_000 } },
-      await defineVitestProject({ test: { name: 'nuxt', environment: 'nuxt', include: ['tests/nuxt/**/*.test.ts'], environmentOptions: { nuxt: { domEnvironment: 'happy-dom' } } } }),
+      ...withNuxt
+        ? [await defineVitestProject({ test: { name: 'nuxt', environment: 'nuxt', include: ['tests/nuxt/**/*.test.ts'], environmentOptions: { nuxt: { domEnvironment: 'happy-dom' } } } })]
+        : [],
       { resolve: { alias }, test: { name: 'e2e', environment: 'node', include: ['tests/e2e/**/*.test.ts'], testTimeout: 180_000, hookTimeout: 120_000, fileParallelism: false, globalSetup: ['tests/e2e/global-setup.ts'] } },
     ],
   },
