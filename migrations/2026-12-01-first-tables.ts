@@ -15,6 +15,9 @@ const searchWords = `new.family_name || ' ' || new.given_name || ' ' || ${folded
 const overlapsNew = `b.id <> new.id AND b.state IN ('booked','arrived') AND b.starts_at < new.ends_at AND b.starts_at > strftime('%Y-%m-%dT%H:%M:%fZ', new.starts_at, '-1 day') AND b.ends_at > new.starts_at`
 const bookingOverlap = `(EXISTS (SELECT 1 FROM booking b WHERE b.site_id = new.site_id AND b.room = new.room AND ${overlapsNew}) OR EXISTS (SELECT 1 FROM booking b WHERE b.technologist_id = new.technologist_id AND ${overlapsNew}))`
 
+/** When a referral is booked for stands beside it too, so that the worklist can be sorted by it. */
+const bookingStart = `UPDATE referral SET booking_starts_at = (SELECT max(starts_at) FROM booking WHERE referral_id = new.referral_id AND state IN ('booked','arrived','attended')) WHERE id = new.referral_id;`
+
 const statements = `
 CREATE TABLE meta (key TEXT PRIMARY KEY, value TEXT NOT NULL) STRICT;
 
@@ -87,9 +90,10 @@ CREATE TABLE referral (
   symptoms TEXT NOT NULL DEFAULT '', onset TEXT NOT NULL DEFAULT '', weakness TEXT NOT NULL DEFAULT 'not-asked', sensory_symptoms TEXT NOT NULL DEFAULT 'not-asked', pain TEXT NOT NULL DEFAULT 'not-asked',
   examination TEXT NOT NULL DEFAULT '', provisional_diagnosis TEXT NOT NULL DEFAULT '', previous_studies TEXT NOT NULL DEFAULT '',
   cautions_json TEXT NOT NULL DEFAULT '{}', needs TEXT NOT NULL DEFAULT '', consent_electronic TEXT NOT NULL DEFAULT 'not-asked', report_language TEXT NOT NULL DEFAULT 'en',
-  protocol TEXT, received_at TEXT, created_at TEXT NOT NULL, created_by TEXT NOT NULL REFERENCES user(id), revision INTEGER NOT NULL DEFAULT 1) STRICT;
+  protocol TEXT, received_at TEXT, booking_starts_at TEXT, created_at TEXT NOT NULL, created_by TEXT NOT NULL REFERENCES user(id), revision INTEGER NOT NULL DEFAULT 1) STRICT;
 CREATE INDEX referral_list ON referral(site_id, state, urgency, state_since, id);
 CREATE INDEX referral_since ON referral(state_since);
+CREATE INDEX referral_booking ON referral(booking_starts_at, number);
 CREATE INDEX referral_patient ON referral(patient_id);
 CREATE TABLE referral_count (
   site_id TEXT NOT NULL, state TEXT NOT NULL, urgency TEXT NOT NULL, n INTEGER NOT NULL, PRIMARY KEY (site_id, state, urgency)) STRICT, WITHOUT ROWID;
@@ -123,6 +127,12 @@ CREATE TABLE booking (
   created_at TEXT NOT NULL, created_by TEXT NOT NULL REFERENCES user(id)) STRICT;
 CREATE INDEX booking_day ON booking(site_id, starts_at);
 CREATE INDEX booking_referral ON booking(referral_id);
+CREATE TRIGGER booking_start_insert AFTER INSERT ON booking BEGIN
+  ${bookingStart}
+END;
+CREATE TRIGGER booking_start_update AFTER UPDATE OF state, starts_at ON booking BEGIN
+  ${bookingStart}
+END;
 CREATE INDEX booking_technologist ON booking(technologist_id, starts_at);
 CREATE TRIGGER booking_overlap_insert BEFORE INSERT ON booking WHEN new.state IN ('booked','arrived') AND ${bookingOverlap}
   BEGIN SELECT RAISE(ABORT, 'booking-overlap'); END;

@@ -23,7 +23,7 @@ class ImmediateDialect extends SqliteDialect {
 }
 
 /** `synchronous = FULL`: an acknowledged write survives a power cut. `recursive_triggers`: INSERT OR REPLACE cannot slip past the triggers that refuse change. */
-const pragmas = ['journal_mode = WAL', 'synchronous = FULL', 'foreign_keys = ON', 'recursive_triggers = ON', 'busy_timeout = 10000', 'temp_store = MEMORY']
+const pragmas = ['journal_mode = WAL', 'synchronous = FULL', 'foreign_keys = ON', 'recursive_triggers = ON', 'busy_timeout = 10000', 'temp_store = MEMORY', 'cache_size = -65536']
 
 /**
  * Opens the one connection that writes. Queries of one process wait for one another, so nothing slow (hashing, PDF,

@@ -52,58 +52,92 @@ function orderOf(query: ReferralListQuery): RawBuilder<unknown> {
     urgency: sql`${urgencyRank} ${way}, referral.state_since ASC, referral.id`,
     state: sql`${stateRank} ${way}, referral.state_since ASC, referral.id`,
     site: sql`site.name ${way}, referral.state_since ASC, referral.id`,
-    booking: sql`booking_starts_at IS NULL, booking_starts_at ${way}, referral.number ${way}`,
+    booking: sql`referral.booking_starts_at ${way} NULLS LAST, referral.number ${way}`,
   }
   return orders[query.sort]
 }
 
-const bookingStart = sql`(SELECT max(starts_at) FROM booking WHERE booking.referral_id = referral.id AND booking.state IN ('booked', 'arrived', 'attended'))`
-const from = sql`FROM referral JOIN patient ON patient.id = referral.patient_id JOIN site ON site.id = referral.site_id`
 const limitOf = (query: ReferralListQuery) => sql`LIMIT ${query.pageSize} OFFSET ${(query.page - 1) * query.pageSize}`
 const inList = (values: readonly string[]) => sql`(${sql.join(values.map(value => sql`${value}`))})`
 
-function filterOf(query: ReferralListQuery): RawBuilder<unknown> {
+/** `plus` is SQLite's way of saying "not by an index of this column": where the order or a search finds the rows. */
+function filterOf(query: ReferralListQuery, plus: RawBuilder<unknown>): RawBuilder<unknown> {
   const states = query.states.length ? query.states : referralStates
   const wanted = query.urgency ? [query.urgency] : urgencies
-  return sql`referral.site_id IN ${inList(query.siteIds)} AND referral.state IN ${inList(states)} AND referral.urgency IN ${inList(wanted)}`
+  return sql`${plus}referral.site_id IN ${inList(query.siteIds)} AND ${plus}referral.state IN ${inList(states)} AND ${plus}referral.urgency IN ${inList(wanted)}`
+}
+
+const fromReferral = sql`FROM referral CROSS JOIN patient ON patient.id = referral.patient_id CROSS JOIN site ON site.id = referral.site_id`
+const fromPatient = sql`FROM patient CROSS JOIN referral ON referral.patient_id = patient.id CROSS JOIN site ON site.id = referral.site_id`
+
+function select(query: ReferralListQuery, from: RawBuilder<unknown>, filter: RawBuilder<unknown>): RawBuilder<{ id: string }> {
+  return sql`SELECT referral.id ${from} WHERE ${filter} ORDER BY ${orderOf(query)} ${limitOf(query)}`
 }
 
 interface Found { ids: string[], total: number }
 const idsOf = (result: { rows: { id: string }[] }) => result.rows.map(row => row.id)
 
+/** Few rows are fetched and sorted; many are read in order: by the index of names or numbers, or group by group. */
 async function pageOfGroups(db: Database, query: ReferralListQuery, groups: Group[]): Promise<Found> {
   const total = sum(groups)
   if (total === 0) return { ids: [], total }
-  const mergeable = query.sort === 'stateSince' || query.sort === 'urgency'
-  const statement = total > SORT_AT_MOST && mergeable && groups.length <= 400 ? mergedGroups(query, groups) : sorted(query, filterOf(query))
-  return { ids: idsOf(await sql<{ id: string }>`${statement}`.execute(db)), total }
+  if (total <= SORT_AT_MOST || groups.length > 400) return { ids: idsOf(await select(query, fromReferral, filterOf(query, sql``)).execute(db)), total }
+  if (query.sort === 'patient') return { ids: idsOf(await select(query, fromPatient, filterOf(query, sql`+`)).execute(db)), total }
+  if (query.sort === 'number' || query.sort === 'booking') return { ids: idsOf(await select(query, fromReferral, filterOf(query, sql`+`)).execute(db)), total }
+  return { ids: await idsOfParts(db, query, await partsOf(db, query, groups)), total }
 }
 
-function sorted(query: ReferralListQuery, filter: RawBuilder<unknown>): RawBuilder<unknown> {
-  return sql`SELECT referral.id, ${query.sort === 'booking' ? bookingStart : sql`NULL`} AS booking_starts_at ${from} WHERE ${filter} ORDER BY ${orderOf(query)} ${limitOf(query)}`
+/** The groups in the order of the list: those of one part stand together and are ordered by how long they wait. */
+async function partsOf(db: Database, query: ReferralListQuery, groups: Group[]): Promise<Group[][]> {
+  const orders = {
+    urgency: async (group: Group) => urgencies.indexOf(group.urgency as Urgency),
+    state: async (group: Group) => referralStates.indexOf(group.state as ReferralState),
+    site: async (group: Group) => (await siteOrder(db)).indexOf(group.siteId),
+  }
+  if (query.sort !== 'urgency' && query.sort !== 'state' && query.sort !== 'site') return [groups]
+  const ranks = await Promise.all(groups.map(orders[query.sort]))
+  const parts = [...new Set(ranks)].toSorted((a, b) => query.direction === 'desc' ? b - a : a - b)
+  return parts.map(rank => groups.filter((_, index) => ranks[index] === rank))
+}
+
+async function siteOrder(db: Database): Promise<string[]> {
+  return (await db.selectFrom('site').select('id').orderBy('name').execute()).map(site => site.id)
+}
+
+/** Counts are known, so whole parts are stepped over without reading them. */
+async function idsOfParts(db: Database, query: ReferralListQuery, parts: Group[][]): Promise<string[]> {
+  const ids: string[] = []
+  let skip = (query.page - 1) * query.pageSize
+  const way = query.sort === 'stateSince' ? direction(query) : sql`ASC`
+  for (const part of parts) {
+    const wanted = Math.min(query.pageSize - ids.length, sum(part) - skip)
+    if (wanted > 0) ids.push(...idsOf(await mergedGroups(part, way, wanted, skip).execute(db)))
+    skip = Math.max(0, skip - sum(part))
+    if (ids.length >= query.pageSize) break
+  }
+  return ids
 }
 
 /** Each site, state and urgency is one range of an index, already in order; the ranges are merged and only the page is read. */
-function mergedGroups(query: ReferralListQuery, groups: Group[]): RawBuilder<unknown> {
-  const parts = groups.map(({ siteId, state, urgency }) => sql`SELECT id, state_since AS since, ${sql.lit(urgencies.indexOf(urgency as Urgency))} AS rank FROM referral WHERE site_id = ${siteId} AND state = ${state} AND urgency = ${urgency}`)
-  const way = direction(query)
-  const order = query.sort === 'urgency' ? sql`rank ${way}, since ASC, id ASC` : sql`since ${way}, id ${way}`
-  return sql`${sql.join(parts, sql` UNION ALL `)} ORDER BY ${order} ${limitOf(query)}`
+function mergedGroups(groups: Group[], way: RawBuilder<unknown>, limit: number, offset: number): RawBuilder<{ id: string }> {
+  const parts = groups.map(({ siteId, state, urgency }) => sql`SELECT id, state_since AS since FROM referral WHERE site_id = ${siteId} AND state = ${state} AND urgency = ${urgency}`)
+  return sql`${sql.join(parts, sql` UNION ALL `)} ORDER BY since ${way}, id ${way} LIMIT ${limit} OFFSET ${offset}`
 }
 
 /** By patient (name, number, birth date) or by the beginning of the referral's number. */
 async function pageOfSearch(db: Database, query: ReferralListQuery): Promise<Found> {
   const { match, birthDates } = patientWords(query.search)
   const conditions = [
-    ...(match ? [sql`referral.patient_id IN (SELECT patient_id FROM patient_search WHERE patient_search MATCH ${match})`] : []),
+    ...(match ? [sql`patient.id IN (SELECT patient_id FROM patient_search WHERE patient_search MATCH ${match})`] : []),
     ...(birthDates.length ? [sql`patient.birth_date IN ${inList(birthDates)}`] : []),
   ]
   const number = query.search.trim().toUpperCase()
-  const byNumber = sql`referral.number >= ${number} AND referral.number < ${`${number}\uFFFF`}`
-  const byPatient = conditions.length ? sql`(${sql.join(conditions, sql` AND `)})` : sql`0`
-  const filter = sql`${filterOf(query)} AND ${/^REF-/.test(number) ? byNumber : byPatient}`
+  const byNumber = /^REF-/.test(number)
+  const from = byNumber ? fromReferral : fromPatient
+  const found = byNumber ? sql`referral.number >= ${number} AND referral.number < ${`${number}\uFFFF`}` : conditions.length ? sql.join(conditions, sql` AND `) : sql`0`
+  const filter = sql`${found} AND ${filterOf(query, sql`+`)}`
   const { rows: [counted] } = await sql<{ total: number }>`SELECT count(*) AS total ${from} WHERE ${filter}`.execute(db)
-  return { ids: idsOf(await sql<{ id: string }>`${sorted(query, filter)}`.execute(db)), total: counted?.total ?? 0 }
+  return { ids: idsOf(await select(query, from, filter).execute(db)), total: counted?.total ?? 0 }
 }
 
 async function rowsOf(db: Database, ids: string[]): Promise<ReferralRow[]> {
@@ -112,7 +146,6 @@ async function rowsOf(db: Database, ids: string[]): Promise<ReferralRow[]> {
     .select([
       sql<string | null>`(SELECT id FROM study WHERE study.referral_id = referral.id AND study.state <> 'entered-in-error' ORDER BY created_at DESC LIMIT 1)`.as('studyId'),
       sql<StudyState | null>`(SELECT state FROM study WHERE study.referral_id = referral.id AND study.state <> 'entered-in-error' ORDER BY created_at DESC LIMIT 1)`.as('studyState'),
-      sql<string | null>`${bookingStart}`.as('bookingStartsAt'),
     ])
     .where('referral.id', 'in', ids).execute()
   const byId = new Map(rows.map(row => [row.id, row]))

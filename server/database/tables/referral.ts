@@ -28,6 +28,8 @@ export interface ReferralTable {
   reportLanguage: Generated<string>
   protocol: string | null
   receivedAt: string | null
+  /** Kept by triggers of the booking table. */
+  bookingStartsAt: Generated<string | null>
   createdAt: string
   createdBy: string
   revision: Generated<number>
