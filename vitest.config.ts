@@ -1,5 +1,4 @@
 import { fileURLToPath } from 'node:url'
-import { defineVitestProject } from '@nuxt/test-utils/config'
 import { defineConfig } from 'vitest/config'
 
 const root = (path: string) => fileURLToPath(new URL(path, import.meta.url))
@@ -20,10 +19,13 @@ export default defineConfig({
     projects: [
       { resolve: { alias }, test: { name: 'unit', environment: 'node', include: ['tests/unit/**/*.test.ts'] } },
       { resolve: { alias }, test: { name: 'server', environment: 'node', include: ['tests/server/**/*.test.ts'], testTimeout: 30_000, hookTimeout: 60_000 } },
-      ...withNuxt
-        ? [await defineVitestProject({ test: { name: 'nuxt', environment: 'nuxt', include: ['tests/nuxt/**/*.test.ts'], environmentOptions: { nuxt: { domEnvironment: 'happy-dom' } } } })]
-        : [],
+      ...withNuxt ? [await nuxtProject()] : [],
       { resolve: { alias }, test: { name: 'e2e', environment: 'node', include: ['tests/e2e/**/*.test.ts'], testTimeout: 180_000, hookTimeout: 120_000, fileParallelism: false, globalSetup: ['tests/e2e/global-setup.ts'] } },
     ],
   },
 })
+
+async function nuxtProject() {
+  const { defineVitestProject } = await import('@nuxt/test-utils/config')
+  return await defineVitestProject({ test: { name: 'nuxt', environment: 'nuxt', include: ['tests/nuxt/**/*.test.ts'], environmentOptions: { nuxt: { domEnvironment: 'happy-dom' } } } })
+}
