@@ -83,7 +83,7 @@ it('"none identified" and a limitation exclude each other', async () => {
 
 it('a question before signing is answered with a reason of at least three letters', async () => {
   let resolved: ReportDraft['resolved'] = []
-  const page = await mountSuspended(SignChecks, { props: { 'checks': [{ key: 'side/left', strength: 'stop', sentence: 'The impression names LEFT; no LEFT row is outside.' }], 'namesakes': [], 'modelValue': resolved, 'onUpdate:modelValue': (value: ReportDraft['resolved']) => {
+  const page = await mountSuspended(SignChecks, { props: { 'checks': [{ key: 'side/left', strength: 'stop', answerable: true, sentence: 'The impression names LEFT; no LEFT row is outside.' }], 'namesakes': [], 'modelValue': resolved, 'onUpdate:modelValue': (value: ReportDraft['resolved']) => {
     resolved = value
     void page.setProps({ modelValue: value })
   } } })
@@ -95,4 +95,10 @@ it('a question before signing is answered with a reason of at least three letter
   await page.get('form').trigger('submit')
   expect(resolved).toEqual([{ key: 'side/left', reason: 'clinical side, discussed' }])
   expect(page.text()).toContain('Answered: “clinical side, discussed”')
+})
+
+it('what has to be mended cannot be answered away', async () => {
+  const page = await mountSuspended(SignChecks, { props: { checks: [{ key: 'impression', strength: 'stop', answerable: false, sentence: 'Write the impression.' }], namesakes: [], modelValue: [] } })
+  expect(page.text()).toContain('Stops signing: Write the impression.')
+  expect(page.findAll('button')).toEqual([])
 })
