@@ -49,7 +49,7 @@ export default defineNuxtConfig({
   },
   eslint: { config: { stylistic: { semi: false, quotes: 'single', indent: 2 } } },
   security: {
-    // The routes that need a limit have their own (server/utils/rate-limit.ts): this one counts pages too.
+    // The routes that need a limit have their own (server/services/sign-in-limits.ts): this one counts pages too.
     rateLimiter: false,
     corsHandler: false,
     // It refuses texts such as "a < b"; every text is escaped where it is shown. Sizes are limited in server/utils/guard-request.ts.

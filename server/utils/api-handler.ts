@@ -145,6 +145,8 @@ export function routeForLog(event: H3Event): string {
 export function answerError(event: H3Event, error: unknown): ApiErrorBody {
   const known = answerOf(error)
   setResponseStatus(event, errors[known.code].status)
+  const seconds = known.code === 'too-many-requests' ? (known.options.details as { seconds?: number } | undefined)?.seconds : undefined
+  if (seconds) setResponseHeader(event, 'Retry-After', seconds)
   if (known.code === 'unexpected') servicesOf(event).log.error({ err: error, method: event.method, route: routeForLog(event) }, 'A request failed unexpectedly')
   return known.body
 }

@@ -80,6 +80,8 @@ describe('the end of a session', () => {
     const cookie = await cookieFor(t, user)
     await deactivatePerson(t.as(admin), user.id)
     expect(await isIn(cookie)).toBe(false)
+    // And if a session were opened at that very moment:
+    expect(await isIn(await cookieFor(t, user))).toBe(false)
   })
 })
 
