@@ -32,9 +32,9 @@ export function assessBlink(maker: RunMaker): void {
     const [same, other] = [cellOf(placed.row, 'r2IpsilateralMs'), cellOf(placed.row, 'r2ContralateralMs')]
     if (same.kind !== 'value' || other.kind !== 'value') continue
     add(maker, placed, {
-      quantity: 'r2DifferenceMs', label: 'R2, other side minus same side', typed: false, supporting: true,
-      value: valueOf(other.value - same.value, Math.SQRT2 * maker.context.expanded.latencyMs), asker: askerOf(maker, null), askAt: null,
-      how: { formula: `${other.value} ms - ${same.value} ms`, source: 'arithmetic' },
+      quantity: 'r2DifferenceMs', label: 'R2, difference of the two eyes', typed: false, supporting: true,
+      value: valueOf(Math.abs(other.value - same.value), Math.SQRT2 * maker.context.expanded.latencyMs), asker: askerOf(maker, null), askAt: null,
+      how: { formula: `${same.value} ms and ${other.value} ms`, source: 'arithmetic' },
     })
   }
 }
