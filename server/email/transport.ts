@@ -26,22 +26,23 @@ export interface MailTransport {
  */
 class WatchedMessage extends Readable {
   ended = false
-  private sent = false
+  private at = 0
 
   constructor(private readonly message: Buffer, private readonly beforeLastByte: () => Promise<void>) {
-    super({ highWaterMark: message.length + 1 })
+    // One piece at a time, the next only when the socket took the last: so the end comes no sooner than it must.
+    super({ highWaterMark: 1 })
     this.once('end', () => this.ended = true)
   }
 
   override _read(): void {
-    if (!this.sent) {
-      this.sent = true
-      this.push(this.message)
+    if (this.at < this.message.length) {
+      this.push(this.message.subarray(this.at, this.at += pieceBytes))
       return
     }
     this.beforeLastByte().then(() => this.push(null), error => this.destroy(error instanceof Error ? error : new Error('unknown')))
   }
 }
+const pieceBytes = 16_384
 
 interface SmtpFailure { message: string, code?: string, responseCode?: number }
 
@@ -54,6 +55,8 @@ function outcomeOf(failure: SmtpFailure, message: WatchedMessage): SendOutcome {
 }
 
 const mailsPerConnection = 100
+/** Well below a lease: a server that answers drop by drop must not hold a mail for ever. */
+const longestAttemptMs = 120_000
 const idleMs = 20_000
 
 /** Connections are kept and used again: most of a small mail's time is the greeting. */
@@ -69,9 +72,13 @@ export class SmtpTransport implements MailTransport {
     const stream = new WatchedMessage(message, beforeLastByte)
     const kept = this.takeIdle()
     let connection: SMTPConnection | undefined = kept?.connection
-    try {
+    const work = async () => {
       connection ??= await this.connect()
       await sendOver(connection, envelope, stream, message.length)
+      return connection
+    }
+    try {
+      connection = await within(longestAttemptMs, work())
       this.keep(connection, (kept?.sent ?? 0) + 1)
       return { kind: 'accepted' }
     }
@@ -115,6 +122,17 @@ export class SmtpTransport implements MailTransport {
     await settle(connection, done => connection.connect(error => done(error ?? null)))
     if (credentials) await settle(connection, done => connection.login({ credentials, user: credentials.user, pass: credentials.pass }, error => done(error ?? null)))
     return connection
+  }
+}
+
+async function within<T>(ms: number, work: Promise<T>): Promise<T> {
+  let timer: NodeJS.Timeout | undefined
+  const late = new Promise<never>((_, reject) => timer = setTimeout(() => reject(new Error(`No end after ${ms / 1000} seconds.`)), ms))
+  try {
+    return await Promise.race([work, late])
+  }
+  finally {
+    clearTimeout(timer)
   }
 }
 

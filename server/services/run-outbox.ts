@@ -37,10 +37,26 @@ export async function runOutboxOnce(context: ServiceContext, { transport, owner,
 
 async function sendOne(context: ServiceContext, transport: MailTransport, mail: Claimed): Promise<SendOutcome['kind']> {
   const outcome = await attempt(context, transport, mail)
-  const written = await settleAttempt(context, mail, outcome)
+  const written = await settleSurely(context, mail, outcome)
   if (!written) context.log.error({ mailId: mail.id, outcome: outcome.kind }, 'A mail was settled by another process meanwhile')
   else context.log.info({ mailId: mail.id, outcome: outcome.kind, attempt: mail.attempts }, 'A mail was tried')
   return outcome.kind
+}
+
+/**
+ * Writing down what happened is tried three times. If even that fails, the lease runs out and the mail counts as
+ * interrupted: sent again if its last byte never left, a task if it did.
+ */
+async function settleSurely(context: ServiceContext, mail: Claimed, outcome: SendOutcome): Promise<boolean> {
+  for (let attemptNumber = 1; ; attemptNumber++) {
+    try {
+      return await settleAttempt(context, mail, outcome)
+    }
+    catch (error) {
+      context.log.error({ mailId: mail.id, err: error }, 'The outcome of a mail could not be written')
+      if (attemptNumber === 3) return false
+    }
+  }
 }
 
 async function attempt(context: ServiceContext, transport: MailTransport, mail: Claimed): Promise<SendOutcome> {
