@@ -42,7 +42,7 @@ export const quantities = {
   meanLatencyMs: latency('meanLatencyMs', 'mean', 80),
   maximumLatencyMs: latency('maximumLatencyMs', 'maximum', 90),
   limbLengthMm: { id: 'limbLengthMm', label: 'stimulus to spine', unit: 'mm', ucum: 'mm', typedDecimals: 0, printDecimals: 0, kind: 'distance', possible: { min: 200, max: 1500 } },
-  legLengthMm: { id: 'legLengthMm', label: 'leg length', unit: 'mm', ucum: 'mm', typedDecimals: 0, printDecimals: 0, kind: 'distance', possible: { min: 200, max: 1300 }, usual: { min: 600, max: 1100 } },
+  legLengthMm: { id: 'legLengthMm', label: 'knee crease to inner ankle', unit: 'mm', ucum: 'mm', typedDecimals: 0, printDecimals: 0, kind: 'distance', possible: { min: 100, max: 700 }, usual: { min: 250, max: 500 } },
   mLatencyMs: latency('mLatencyMs', 'M latency', 15),
   hLatencyMs: latency('hLatencyMs', 'H latency', 60),
   mAmplitudeMv: { id: 'mAmplitudeMv', label: 'M amplitude', unit: 'mV', ucum: 'mV', typedDecimals: 2, printDecimals: 1, kind: 'amplitude', possible: { min: 0.01, max: 50 } },

@@ -35,6 +35,8 @@ export function assessMotor(maker: RunMaker): void {
   for (const [index, placed] of maker.rows.entries()) {
     const own = index === distalIndex ? asker : askerOf(maker, distances[index] ?? null)
     addTyped(maker, placed, { place: ` at ${placed.label}`, asker: own, askAt: placed.row.site, supporting: index === distalIndex ? isSecondary : always })
+    const latency = placed.row.values.latencyMs
+    if (index === distalIndex && typeof latency === 'number') addCorrected(maker, placed, 'latency', latency)
     const previous = maker.rows[index - 1]
     // A site that stands twice makes no segment with itself; it is remarked on.
     if (!previous || previous.row.site === placed.row.site || !isStarted(placed)) continue

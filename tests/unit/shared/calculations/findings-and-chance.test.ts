@@ -58,7 +58,7 @@ describe('chance', () => {
   const outside = (percentile: number | null) => result({ kind: 'outside', direction: 'above', limit: limit(percentile), limits: [limit(percentile)], nearLimit: false })
 
   it.each([[10, 0.03, 1], [20, 0.03, 2], [30, 0.03, 6], [30, 0.025, 1], [9, 0.05, 9], [200, 0.03, 15]])('%i limits at %f: at least %i outside, as the statistics library has it', (count, tail, seen) => {
-    const expected = 1 - jstat.binomial.cdf(seen - 1, count, tail)
+    const expected = 1 - jstat.jStat.binomial.cdf(seen - 1, count, tail)
     expect(probabilityAtLeast(Array.from({ length: count }, () => tail), seen)).toBeCloseTo(expected, 10)
   })
   it.each([[5, 0.025, 1, 11.9], [9, 0.025, 1, 20.4], [20, 0.05, 1, 64.2], [30, 0.03, 1, 59.9], [20, 0.025, 2, 8.8], [30, 0.025, 2, 17.2]])('%i limits at %f: at least %i outside in %f % (formula collection F7.4, derived)', (count, tail, seen, percent) => {

@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest'
 import { amplitudeRatio, fallPercent, risePercent } from '#shared/calculations/change-between-sites'
 import { combinedSensoryIndex } from '#shared/calculations/combined-sensory-index'
-import { absentBecause, notComputable, valueOf } from '#shared/calculations/computed-value'
+import { absentBecause, notComputable, numberOf, valueOf } from '#shared/calculations/computed-value'
 import { conductionVelocity } from '#shared/calculations/conduction-velocity'
 import { decrement, keepsFalling } from '#shared/calculations/decrement'
 import { chronodispersion, fEstimate, fRatio, fWaveVelocity, peripheralMotorLatency, persistence } from '#shared/calculations/f-wave'
@@ -128,6 +128,12 @@ describe('formulas', () => {
     const [residual, index] = [residualLatency(input), terminalLatencyIndex(input)]
     expect(residual.kind === 'value' && index.kind === 'value' && residual.value - 3.2 * (1 - index.value)).toBeCloseTo(0, 12)
   })
+})
+
+it('the expected H latency takes the length from knee crease to ankle: 36 cm at 40 years give its own mean of 29.8 ms (both from memory), a whole leg would not', () => {
+  const expected = (legLengthMm: number) => numberOf(expectedHLatency({ legLengthMm, ageYears: 40 }))
+  expect(expected(360)).toBeCloseTo(29.7, 1)
+  expect(expected(850)).toBeGreaterThan(45)
 })
 
 describe('a train that keeps falling', () => {

@@ -137,6 +137,8 @@ it('a corrected value stands beside the measured one, only where turned on', () 
   expect(off.runs[0]?.results.some(result => result.quantity === 'correctedVelocityMps')).toBe(false)
   expect(resultOf(on, 'r/r-1/correctedVelocityMps')).toMatchObject({ print: '48', verdict: { kind: 'none' }, flagged: false })
   expect(resultOf(on, 'r/r-1/velocityMps')).toMatchObject({ print: '41' })
+  expect(resultOf(on, 'r/r-0/correctedLatencyMs')).toMatchObject({ print: '4.2', verdict: { kind: 'none' }, flagged: false })
+  expect(resultOf(on, 'r/r-0/latencyMs')).toMatchObject({ print: '5.2' })
 })
 
 it('a short warming is noted, a long one not', () => {
