@@ -1,35 +1,37 @@
-import type { Side } from '../../schemas/common'
-import type { Run, Study } from '../../schemas/study'
-import type { AppliedLimit, Assessment, ComparisonAssessment, PatternResult, Policy, Result, RunAssessment } from '../types'
+import { sides, type Side } from '../../schemas/common'
+import type { PatternResult } from '../types'
+import { isOn, patternSets } from './all-sets'
+import { factsOf, type Facts } from './facts'
+import type { PatternInput } from './pattern-input'
+import type { PatternSet } from './pattern-set'
 
-/** The limits that apply to one result; `because` says why there is none ("height missing", "no set adopted here"). */
-export interface LimitsOfResult { lower?: AppliedLimit, upper?: AppliedLimit, because?: string }
+export { isOn, patternSets } from './all-sets'
+export type { LimitsOfResult, PatternInput } from './pattern-input'
+export type { PatternSet } from './pattern-set'
 
-/** Everything a published criterion may use: what was measured, what was computed from it, and the limits that applied. */
-export interface PatternInput {
-  study: Study
-  policy: Policy
-  person: Assessment['person']
-  /** Every run of the study, in its order, the superseded and the not done ones included (`supersededBy`, `notDone`). */
-  runs: readonly RunAssessment[]
-  comparisons: readonly ComparisonAssessment[]
-  /** The run that stands for this technique and side: measured, not superseded, warm before cold, then the latest. */
-  runFor: (technique: string, side: Side) => RunAssessment | undefined
-  /** The same as it was recorded. */
-  recordedRun: (runId: string) => Run | undefined
-  /** A result of a run by quantity and, where it matters, site or segment id. */
-  resultOf: (run: RunAssessment | undefined, quantity: string, at?: string) => Result | undefined
-  /** A result of a comparison by id, side and quantity. */
-  comparisonResult: (id: string, side: Side | undefined, quantity: string) => Result | undefined
-  /** Every result of every run and comparison, in printing order. */
-  results: readonly Result[]
-  /** Limits of a result, also where the verdict is cold or absent, and for a sensory velocity the one derived from the onset latency. */
-  limitsOf: (result: Result | undefined) => LimitsOfResult
-}
+const RECALLED = 'Judged with limits that are recalled, not verified.'
 
 /**
- * The published criteria as check lists, offered and never concluded. None is built in yet.
+ * The published criteria as check lists: each criterion met, not met or not assessable, with the numbers it used. Offered
+ * to the reader, never concluded. Only sets that are in use and whose nerves were studied; runs that are cold or were
+ * repeated warm do not count.
+ *
+ * @example
+ * assessPatterns(input).find(one => one.id === 'bland-2000' && one.side === 'right')?.outcome.label // => 'grade 3, moderate'
  */
-export function assessPatterns(_input: PatternInput): PatternResult[] {
-  return []
+export function assessPatterns(input: PatternInput): PatternResult[] {
+  const facts = factsOf(input)
+  return patternSets.filter(set => isOn(set, input.policy)).flatMap((set) => {
+    const places: readonly (Side | undefined)[] = set.scope === 'side' ? sides : [undefined]
+    return places.map(side => resultOf(set, facts, side)).filter(result => result !== null)
+  })
+}
+
+function resultOf(set: PatternSet, facts: Facts, side: Side | undefined): PatternResult | null {
+  facts.usedRecalled = false
+  const assessed = set.assess(facts, side ?? 'right')
+  if (!assessed) return null
+  const source = facts.usedRecalled ? `${set.source}. ${RECALLED}` : set.source
+  const { id, version, title, basis } = set
+  return { id, version, title, ...(side && { side }), source, basis, outcome: assessed.outcome, criteria: assessed.criteria, runIds: [...assessed.runIds] }
 }
