@@ -26,7 +26,7 @@ export function useSchemaForm<S extends z.ZodType<GenericObject, GenericObject>>
   async function check(): Promise<z.output<S> | null> {
     form.setValues(plainCopy(values), false)
     const result = await form.validate({ mode: 'force' })
-    found.value = Object.entries(result.errors as Record<string, string | undefined>).map(([path, message]) => ({ path, message: message ?? '' }))
+    found.value = inFormOrder(Object.entries(result.errors as Record<string, string | undefined>).map(([path, message]) => ({ path, message: message ?? '' })), Object.keys(initialValues))
     return result.valid && result.values ? result.values as z.output<S> : null
   }
 
@@ -42,6 +42,12 @@ export function useSchemaForm<S extends z.ZodType<GenericObject, GenericObject>>
   }
 
   return { values, errorList, errorOf, submit, check, busy, problem }
+}
+
+/** As the fields stand in the form, not by the alphabet. */
+function inFormOrder(errors: FieldError[], order: string[]): FieldError[] {
+  const place = (error: FieldError) => order.indexOf(error.path.split(/[.[]/)[0] ?? '')
+  return errors.toSorted((a, b) => place(a) - place(b))
 }
 
 /** A deep copy free of proxies, as the schema and the request take it. */
