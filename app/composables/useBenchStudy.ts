@@ -53,6 +53,8 @@ export function useBenchStudy(first: StudyView) {
   const editor = shallowRef<CellEditor | null>(null)
   const explained = shallowRef<Explained | null>(null)
   const allColumns = ref(false)
+  /** Cells whose text cannot be stored: it stands there with its sentence, and the study is not handed over with it. */
+  const unaccepted = reactive(new Map<string, { runId: string, sentence: string }>())
 
   /** Shows a value while it is typed, without storing it. */
   function preview(rowId: string, field: string, content: CellContent) {
@@ -117,7 +119,7 @@ export function useBenchStudy(first: StudyView) {
   const changeRun = (runId: string, changes: object) => act(`runs/${runId}`, 'PATCH', { ...changes, revision: view.value.runRevisions[runId] ?? 0 })
 
   return {
-    view, study, policy, saving, assessment: live.assessment, isLive: live.live, liveProblem: live.problem, differences: live.differences, mayType, busy, problem, problemOf, at, editor, explained, allColumns,
+    view, study, policy, saving, assessment: live.assessment, isLive: live.live, liveProblem: live.problem, differences: live.differences, mayType, busy, problem, problemOf, at, editor, explained, allColumns, unaccepted,
     preview, change, reload, act, changeRun,
     undo: () => walk(undoStep(history.value)),
     redo: () => walk(redoStep(history.value)),
