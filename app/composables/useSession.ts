@@ -48,7 +48,6 @@ export function useSession() {
   /** Ends the session on the server and leaves the page by a full load, so that no patient stays in memory. */
   async function signOut(because: 'asked' | 'idle' = 'asked') {
     await postAuth('/api/auth/signout', {}).catch(() => undefined)
-    user.value = null
     window.location.assign(because === 'idle' ? '/sign-in?because=idle' : '/sign-in')
   }
 
