@@ -47,7 +47,10 @@ class PdfThread {
   private async next(): Promise<void> {
     if (this.current || this.starting || this.queue.length === 0) return
     clearTimeout(this.idle)
+    // Set before anything is awaited: a second call in between would take a job and lose this one.
+    this.starting = true
     const worker = await this.started()
+    this.starting = false
     const job = worker && this.queue.shift()
     if (!worker || !job) return
     const id = this.nextId++
@@ -58,7 +61,6 @@ class PdfThread {
 
   private async started(): Promise<Worker | undefined> {
     if (this.worker) return this.worker
-    this.starting = true
     try {
       const { file, fontsDir } = await findWorkerFile()
       const worker = new Worker(file, { workerData: { fontsDir }, resourceLimits: { maxOldGenerationSizeMb: 512 } })
@@ -70,9 +72,6 @@ class PdfThread {
     catch (error) {
       for (const job of this.queue.splice(0)) job.reject(error instanceof Error ? error : new PdfError('crashed'))
       return undefined
-    }
-    finally {
-      this.starting = false
     }
   }
 

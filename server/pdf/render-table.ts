@@ -5,9 +5,11 @@ import { limitBarSvg } from '#shared/plots/limit-bar'
 import { printable } from './glyphs'
 import { ink, size } from './style'
 
-const barWidth = 58
-/** Values, pairs of limits and short reasons stay on one line; sentences may wrap. */
-const longestUnbroken = 26
+const barWidth = 54
+/** Numbers and pairs of limits stay on one line; words ("no response") and sentences may wrap. */
+const isShort = (text: string) => text.length <= 30 && /\d/.test(text)
+/** "nerve, recorded from" and "amplitude, mV" stay whole; longer heads take two lines. */
+const longestHead = 20
 
 /** Words as pdfmake takes them: weight, colour, and nothing that the typeface cannot draw. */
 export function runs(words: readonly Words[], colour = ink.ink) {
@@ -24,7 +26,7 @@ function markColour({ mark, doubtful }: TextCell): string {
 function textCell(cell: TextCell, align: 'left' | 'right', struck: boolean): TableCell {
   const colour = struck ? ink.faint : markColour(cell)
   const sign = cell.mark && !struck ? [{ text: printable(`${markSigns[cell.mark]} `), bold: cell.mark !== 'near', color: colour }] : []
-  const main = { text: [...sign, ...runs(cell.words, colour)], alignment: align, noWrap: align === 'right' && plainText(cell.words).length <= longestUnbroken, ...(struck ? { decoration: 'lineThrough' as const } : {}) }
+  const main = { text: [...sign, ...runs(cell.words, colour)], alignment: align, noWrap: align === 'right' && isShort(plainText(cell.words)), ...(struck ? { decoration: 'lineThrough' as const } : {}) }
   return cell.below ? { stack: [main, { text: printable(cell.below), fontSize: size.footer, color: ink.faint, alignment: align }] } : main
 }
 
@@ -55,7 +57,7 @@ function widthOf(column: TableBlock['columns'][number], isLast: boolean): 'auto'
 
 /** A table with its head repeated on every page; a row is never cut. */
 export function renderTable(table: TableBlock): Content {
-  const head = table.columns.map((column): TableCell => ({ text: printable(column.label), color: ink.faint, noWrap: true, alignment: column.align === 'bar' ? 'left' : column.align }))
+  const head = table.columns.map((column): TableCell => ({ text: printable(column.label), color: ink.faint, noWrap: column.label.length <= longestHead, alignment: column.align === 'bar' ? 'left' : column.align }))
   const body = table.rows.map(row => table.columns.map((column, index) => tableCell(row.cells[index], column.align, row.struck)))
   const content: ContentTable = {
     table: {

@@ -3,7 +3,8 @@ import { formatDay } from '#shared/report/dates'
 import { reportBlocks, type ReportSource } from '#shared/report/index'
 import { reportWords } from '#shared/report/words'
 import { printable } from './glyphs'
-import { renderBlocks } from './render-blocks'
+import { headlineLevels, renderBlocks } from './render-blocks'
+import { stampSvg } from './stamp'
 import { fontFamily, ink, lineWidth, margins, size } from './style'
 
 /** The product's mark: a line with one gap and a node in it. */
@@ -32,7 +33,8 @@ function header({ snapshot, preliminary }: ReportSource): Content {
 }
 
 /** Two identifiers and "page x of y" on every page: a sheet that falls out of the file can be put back. */
-function footer({ snapshot }: ReportSource): DynamicContent {
+function footer(source: ReportSource): DynamicContent {
+  const { snapshot } = source
   const words = reportWords(snapshot.language)
   const { patient } = snapshot
   const who = `${patient.familyName.toLocaleUpperCase('en')}, ${patient.givenName} · ${formatDay(patient.birthDate)} · ${patient.recordNumber}`
@@ -42,20 +44,27 @@ function footer({ snapshot }: ReportSource): DynamicContent {
     color: ink.faint,
     columns: [
       { text: printable(who), width: '*' },
-      { text: printable(`${snapshot.number} · ${words.page(page, pages)}`), width: 'auto', alignment: 'right' },
+      { text: printable([stamp(source), snapshot.number, words.page(page, pages)].filter(Boolean).join(' · ')), width: 'auto', alignment: 'right' },
     ],
   })
 }
 
-function watermark({ snapshot, preliminary }: ReportSource): Partial<TDocumentDefinitions> {
+/** PRELIMINARY and DEMONSTRATION, or nothing. */
+function stamp({ snapshot, preliminary }: ReportSource): string {
   const words = reportWords(snapshot.language)
-  const text = [preliminary && words.preliminary, snapshot.demonstration && words.demonstration].filter(Boolean).join(' · ')
-  return text ? { watermark: { text, font: fontFamily, color: ink.ink, opacity: 0.07, bold: true, angle: -52 } } : {}
+  return [preliminary && words.preliminary, snapshot.demonstration && words.demonstration].filter(Boolean).join(' ')
 }
 
-/** A heading moves to the next page when nothing that belongs to it stands below it. */
-const keepHeadings: TDocumentDefinitions['pageBreakBefore'] = (node, nodes) =>
-  node.headlineLevel === 1 && nodes.getFollowingNodesOnPage().length === 0
+/** Room that a heading needs below it: itself, the head of a table and one row of two lines. */
+const roomBelowHeading: Record<number, number> = { [headlineLevels.rows]: 76, [headlineLevels.plots]: 160 }
+
+/** A heading moves to the next page when nothing that belongs to it would stand below it. */
+const keepHeadings: TDocumentDefinitions['pageBreakBefore'] = (node, nodes) => {
+  const room = roomBelowHeading[node.headlineLevel ?? 0]
+  if (room === undefined) return false
+  const { top, pageInnerHeight } = node.startPosition
+  return nodes.getFollowingNodesOnPage().length === 0 || top - margins.top > pageInnerHeight - room
+}
 
 /**
  * The definition of a report's PDF. pdfmake changes what it is given, so every rendering needs a new one.
@@ -79,7 +88,7 @@ export function reportDocument(source: ReportSource): TDocumentDefinitions {
     defaultStyle: { font: fontFamily, fontSize: size.body, color: ink.ink, lineHeight: 1.12 },
     header: () => header(source),
     footer: footer(source),
-    ...watermark(source),
+    ...(stamp(source) ? { background: (_page: number, paper: { width: number, height: number }) => ({ svg: stampSvg(stamp(source), paper), width: paper.width, height: paper.height }) } : {}),
     content: reportBlocks(source).flatMap(part => renderBlocks(part.blocks, snapshot)),
     pageBreakBefore: keepHeadings,
   }

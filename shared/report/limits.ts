@@ -1,7 +1,6 @@
 import type { AppliedLimit, Result } from '../calculations/types'
-import { limitsOf, limitWords, verdictWords } from '../plots/verdict-words'
-import type { Cell, Mark, TextCell } from './blocks'
-import { emptyCell, plainCell } from './blocks'
+import { limitsOf, limitText as limitNumber, verdictWords } from '../plots/verdict-words'
+import { emptyCell, note, plainCell, type Cell, type Mark, type NoteBlock, type TextCell } from './blocks'
 import type { ReportWords } from './words'
 
 /** A row from memory that nobody compared with the paper yet. */
@@ -30,30 +29,55 @@ export function barCell(judged: readonly Result[]): Cell {
   return first ? { bar: first, text: verdictWords(first) } : emptyCell
 }
 
-/** Why a row has no limits, shortest first: "no limit: no set adopted here", "not judged: height missing". */
-function reasonWithoutLimits(results: readonly Result[], words: ReportWords): string {
-  for (const { verdict } of results) {
-    if (verdict.kind === 'not-judged') return `not judged: ${verdict.because}`
-    if (verdict.kind === 'no-limit') return `${words.noLimits}: ${verdict.because}`
-  }
-  return ''
+/** Why a result has no limit: "no limit: age 5 is outside 19 to 79", "not judged: height missing"; '' where it has one or needs none. */
+function reasonOf({ verdict }: Result, words: ReportWords): string {
+  if (verdict.kind === 'not-judged') return `${words.notJudged}: ${verdict.because}`
+  return verdict.kind === 'no-limit' ? `${words.noLimits}: ${verdict.because}` : ''
 }
 
-/**
- * The limits a row was judged by, in the order of its columns: "≤ 4.4 · ≥ 4.2". Recalled ones say so below,
- * unless the whole table is recalled and a note says it once.
- */
-export function limitsCell(results: readonly Result[], words: ReportWords, sayRecalled: boolean): TextCell {
+/** The reasons in a table, each once, in order; rows name them by letter where there are several. */
+export function reasonsAmong(rows: readonly (readonly Result[])[], words: ReportWords): string[] {
+  const withoutAny = rows.filter(results => !results.some(result => limitsOf(result.verdict).length > 0))
+  return [...new Set(withoutAny.flatMap(results => results.map(result => reasonOf(result, words)).find(Boolean) ?? []))]
+}
+
+const letter = (index: number) => String.fromCharCode(97 + index)
+
+function shortReason(results: readonly Result[], words: ReportWords, reasons: readonly string[]): string {
+  const reason = results.map(result => reasonOf(result, words)).find(Boolean)
+  if (!reason) return ''
+  const short = reason.slice(0, reason.indexOf(':'))
+  return reasons.length > 1 ? `${short} ${letter(reasons.indexOf(reason))}` : short
+}
+
+const sign = (limit: AppliedLimit) => limit.bound === 'upper' ? '≤' : '≥'
+
+/** "≤ 4.4", or "≤ 4.4 r" where the table marks recalled ones. */
+function limitText(result: Result, markRecalled: boolean): string {
+  return limitsOf(result.verdict).map(limit => `${sign(limit)} ${limitNumber(limit, result.quantity)}${markRecalled && isRecalled(limit) ? ` ${recalledMark}` : ''}`).join(', ')
+}
+
+/** Stands after a recalled limit in a table that has others too; a note below the table says what it means. */
+export const recalledMark = 'r'
+
+/** The limits a row was judged by, in the order of its columns: "≤ 4.4 · ≥ 4.2". */
+export function limitsCell(results: readonly Result[], words: ReportWords, { markRecalled, reasons }: TableNotes): TextCell {
   const judged = results.filter(result => limitsOf(result.verdict).length > 0)
-  const text = judged.map(limitWords).join(' · ') || reasonWithoutLimits(results, words)
-  const recalled = judged.some(result => limitsOf(result.verdict).some(isRecalled))
-  const cold = results.find(result => result.verdict.kind === 'cold')
-  const below = [cold && words.cold, recalled && sayRecalled && words.recalled].filter(Boolean).join('; ')
-  return plainCell(text, below ? { below } : {})
+  const text = judged.map(result => limitText(result, markRecalled)).join(' · ') || shortReason(results, words, reasons)
+  const cold = results.some(result => result.verdict.kind === 'cold')
+  return plainCell(text, cold ? { below: words.cold } : {})
 }
 
-/** Is every limit that was applied in these results recalled? False where none was applied. */
-export function allRecalled(results: readonly Result[]): boolean {
-  const limits = results.flatMap(result => limitsOf(result.verdict))
-  return limits.length > 1 && limits.every(isRecalled)
+/** What stands below a table instead of in every row. */
+export interface TableNotes { markRecalled: boolean, reasons: string[], blocks: NoteBlock[] }
+
+/** @param rows the shown results of each row */
+export function tableNotes(rows: readonly (readonly Result[])[], words: ReportWords): TableNotes {
+  const applied = rows.flat().flatMap(result => limitsOf(result.verdict))
+  const some = applied.some(isRecalled)
+  const all = some && applied.every(isRecalled)
+  const reasons = reasonsAmong(rows, words)
+  const recalled = some ? [note('plain', all ? words.allRecalled : words.someRecalled(recalledMark))] : []
+  const named = reasons.map((reason, index) => reasons.length > 1 ? `${letter(index)} ${reason}` : `${reason.charAt(0).toUpperCase()}${reason.slice(1)}`)
+  return { markRecalled: some && !all, reasons, blocks: [...recalled, ...(named.length > 0 ? [note('plain', `${named.join('; ')}.`)] : [])] }
 }

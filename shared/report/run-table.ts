@@ -2,21 +2,22 @@ import type { Result } from '../calculations/types'
 import { quantities } from '../catalogue/quantities'
 import type { RunKind } from '../catalogue/types'
 import type { RunRow } from '../schemas/study'
-import { emptyCell, plainCell, withSides, type Cell, type TableBlock, type TextCell } from './blocks'
-import { allRecalled, barCell, limitsCell, valueCell } from './limits'
+import { plainCell, withSides, type Block, type Cell, type TableBlock, type TextCell } from './blocks'
+import { barCell, limitsCell, tableNotes, valueCell, type TableNotes } from './limits'
 import { runsOf, shortRunName, type FrozenRun, type ReportSource } from './source'
 import type { ReportWords } from './words'
 
 /** Columns of the kinds that every report prints the same way; a column in brackets appears only when something stands in it. */
 const fixedColumns: Partial<Record<RunKind, { always: string[], ifPresent: string[] }>> = {
-  motor: { always: ['latencyMs', 'amplitudeMv', 'distanceMm', 'velocityMps'], ifPresent: ['durationMs', 'areaMvMs'] },
-  sensory: { always: ['onsetLatencyMs', 'peakLatencyMs', 'amplitudeUv', 'distanceMm', 'velocityMps'], ifPresent: ['durationMs'] },
-  mixed: { always: ['onsetLatencyMs', 'peakLatencyMs', 'amplitudeUv', 'distanceMm', 'velocityMps'], ifPresent: ['durationMs'] },
+  'motor': { always: ['latencyMs', 'amplitudeMv', 'distanceMm', 'velocityMps'], ifPresent: ['durationMs', 'areaMvMs'] },
+  'sensory': { always: ['onsetLatencyMs', 'peakLatencyMs', 'amplitudeUv', 'distanceMm', 'velocityMps'], ifPresent: ['durationMs'] },
+  'f-wave': { always: ['minimumLatencyMs', 'persistencePercent'], ifPresent: ['stimulusCount', 'responseCount', 'meanLatencyMs', 'maximumLatencyMs', 'chronodispersionMs'] },
+  'mixed': { always: ['onsetLatencyMs', 'peakLatencyMs', 'amplitudeUv', 'distanceMm', 'velocityMps'], ifPresent: ['durationMs'] },
 }
 /** Printing order; a quantity that is not here keeps the order of the results. */
-const order = ['latencyMs', 'onsetLatencyMs', 'peakLatencyMs', 'amplitudeMv', 'amplitudeUv', 'durationMs', 'areaMvMs', 'distanceMm', 'velocityMps']
+const order = ['stimulusCount', 'responseCount', 'latencyMs', 'onsetLatencyMs', 'peakLatencyMs', 'amplitudeMv', 'amplitudeUv', 'durationMs', 'areaMvMs', 'distanceMm', 'velocityMps', 'minimumLatencyMs', 'meanLatencyMs', 'maximumLatencyMs', 'chronodispersionMs', 'persistencePercent']
 const place = (quantity: string) => order.includes(quantity) ? order.indexOf(quantity) : order.length
-const mostColumns = 8
+const mostColumns = 6
 
 const hasSomething = (result: Result) => result.value.kind !== 'not-computable'
 
@@ -42,21 +43,28 @@ function resultsOfRow({ assessment }: FrozenRun, row: RunRow, first: boolean): R
   return assessment.results.filter(result => result.rowId === row.id || (first && !result.rowId))
 }
 
-function nameCell(frozen: FrozenRun, words: ReportWords): TextCell {
+/** The side stands in every row: a row at the head of a page must not depend on the page before. */
+function nameCell(frozen: FrozenRun, first: boolean, words: ReportWords): TextCell {
   const name = `${words.sides[frozen.run.side]} ${shortRunName(frozen)}`
+  if (!first) return { words: [{ text: name, faint: true }] }
   return { words: withSides(name), ...(frozen.assessment.supersededBy ? { below: words.superseded } : {}) }
 }
 
-function tableRow(frozen: FrozenRun, row: RunRow, index: number, columns: string[], words: ReportWords, sayRecalled: boolean): TableBlock['rows'][number] {
+/** The results that a row shows, column by column. */
+function shownIn(frozen: FrozenRun, row: RunRow, index: number, columns: string[]): (Result | undefined)[] {
   const results = resultsOfRow(frozen, row, index === 0)
-  const shown = columns.map(quantity => results.find(result => result.quantity === quantity))
-  const judged = shown.filter(result => result !== undefined)
+  return columns.map(quantity => results.find(result => result.quantity === quantity))
+}
+const present = (results: readonly (Result | undefined)[]): Result[] => results.filter(result => result !== undefined)
+
+function tableRow(frozen: FrozenRun, row: RunRow, index: number, columns: string[], words: ReportWords, notes: TableNotes): TableBlock['rows'][number] {
+  const shown = shownIn(frozen, row, index, columns)
   const cells: Cell[] = [
-    index === 0 ? nameCell(frozen, words) : emptyCell,
+    nameCell(frozen, index === 0, words),
     ...siteCell(frozen, row),
     ...shown.map(valueCell),
-    barCell(judged),
-    limitsCell(judged, words, sayRecalled),
+    barCell(present(shown)),
+    limitsCell(present(shown), words, notes),
   ]
   return { cells, first: index === 0, struck: Boolean(frozen.assessment.supersededBy), runId: frozen.run.id }
 }
@@ -68,27 +76,26 @@ function siteCell({ technique }: FrozenRun, row: RunRow): Cell[] {
 }
 
 /**
- * One table of all runs of a kind, nerve by nerve, with limits and limit bars; null when there is none.
- * A blank cell was not measured; a response that was looked for and not found reads "no response".
+ * One table of all runs of a kind, nerve by nerve, with limits and limit bars, and below it what its limits are; nothing
+ * when there is no such run. A blank cell was not measured; a response that was looked for and not found reads
+ * "no response".
  */
-export function runTable(source: ReportSource, kind: RunKind, caption: string, words: ReportWords): { table: TableBlock, allRecalled: boolean } | null {
+export function runTable(source: ReportSource, kind: RunKind, caption: string, words: ReportWords): Block[] {
   const runs = runsOf(source.snapshot, [kind])
-  if (runs.length === 0) return null
+  if (runs.length === 0) return []
   const columns = columnsOf(kind, runs)
-  const recalled = allRecalled(runs.flatMap(({ assessment }) => assessment.results))
-  return {
-    allRecalled: recalled,
-    table: {
-      kind: 'table',
-      caption,
-      columns: [
-        { label: words.columns.nerve, align: 'left', wide: true },
-        ...(hasSiteColumn(kind) ? [{ label: words.columns.site, align: 'left' as const }] : []),
-        ...columns.map(quantity => ({ label: columnLabel(quantity, runs), align: 'right' as const })),
-        { label: '', align: 'bar' },
-        { label: words.columns.limits, align: 'right' },
-      ],
-      rows: runs.flatMap(frozen => frozen.run.rows.map((row, index) => tableRow(frozen, row, index, columns, words, !recalled))),
-    },
+  const notes = tableNotes(runs.flatMap(frozen => frozen.run.rows.map((row, index) => present(shownIn(frozen, row, index, columns)))), words)
+  const table: TableBlock = {
+    kind: 'table',
+    caption,
+    columns: [
+      { label: words.columns.nerve, align: 'left', wide: true },
+      ...(hasSiteColumn(kind) ? [{ label: words.columns.site, align: 'left' as const }] : []),
+      ...columns.map(quantity => ({ label: columnLabel(quantity, runs), align: 'right' as const })),
+      { label: '', align: 'bar' },
+      { label: words.columns.limits, align: 'right' },
+    ],
+    rows: runs.flatMap(frozen => frozen.run.rows.map((row, index) => tableRow(frozen, row, index, columns, words, notes))),
   }
+  return [table, ...notes.blocks]
 }

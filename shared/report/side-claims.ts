@@ -9,7 +9,8 @@ const bothSides: readonly Side[] = ['right', 'left']
 /** A clause ends at a full stop, a semicolon, or where the sense turns. */
 const clauseEnds = /[.;\n]+|,?\s+(?:but|whereas|while|however)\s+|,\s+(?=(?:no|not|without|normal)\b)/i
 const saysNo = /\b(?:no|not|never|without|normal|unremarkable|within (?:the )?limits|spared|preserved)\b/i
-const aVerb = /\bleft (?:out|undone|over)\b|\b(?:is|are|was|were) left\b/gi
+/** Only where it cannot be a side: "is left" alone may well be one, and a needless question does no harm. */
+const aVerb = /\bleft (?:out|undone|over)\b|\bleft to (?:do|say|be)\b/gi
 
 /** Common names that point to one nerve without naming it. */
 const byName: readonly [RegExp, string][] = [[/\bcarpal\b/i, 'median'], [/\bcubital\b/i, 'ulnar'], [/\bperoneal\b/i, 'fibular'], [/\btarsal tunnel\b/i, 'tibial'], [/\bfoot drop\b/i, 'fibular']]

@@ -1,6 +1,7 @@
 import type { LimbTemperature } from '../../schemas/study'
 import type { ReportSnapshot } from '../../schemas/report'
 import { heading, markSigns, paragraph, withSides, type Block, type ReportSection, type Words } from '../blocks'
+import { formatDay } from '../dates'
 import { runsOf, type ReportSource } from '../source'
 import { reportWords } from '../words'
 
@@ -70,9 +71,10 @@ const counted = (count: number, word: string) => `${count} ${word}${count === 1 
 
 function setText(set: ReportSnapshot['assessment']['setsUsed'][number], snapshot: ReportSnapshot, recalled: string): string {
   const adopted = snapshot.policy.adopted.find(candidate => candidate.setId === set.setId && candidate.version === set.version)
-  const memory = set.recalledRows > 0 ? `${counted(set.recalledRows, 'row')} ${recalled}, ${set.verifiedRows} compared with the publication` : ''
-  const since = adopted ? `in use here since ${adopted.adoptedOn}` : ''
-  return [`${set.title}, version ${set.version} (${set.citation})`, set.percentiles, memory, since].filter(Boolean).join(', ') + '.'
+  const compared = set.verifiedRows > 0 ? `, ${set.verifiedRows} compared with the publication` : ''
+  const memory = set.recalledRows > 0 ? `${counted(set.recalledRows, 'row')} ${recalled}${compared}` : ''
+  const since = adopted?.adoptedOn ? `in use here since ${formatDay(adopted.adoptedOn)}` : ''
+  return [`${set.title}, version ${set.version} (${set.citation.replace(/[\s,.;]+$/, '')})`, set.percentiles, memory, since].filter(Boolean).join(', ') + '.'
 }
 
 /** Which limits, from where, how many were applied and how many fall outside by chance. */
@@ -83,6 +85,6 @@ export const limits: ReportSection<ReportSource> = {
     const { setsUsed, chance } = snapshot.assessment
     const sets = setsUsed.map(set => setText(set, snapshot, words.recalled)).join(' ') || 'No limits were applied: no set adopted here covers these values.'
     const legend: Words[] = withSides(words.legend(markSigns.above, markSigns.below), { faint: true })
-    return [labelled(words.limits, [sets, chance.sentence].filter(Boolean).join(' ')), paragraph(legend, 'faint')]
+    return [labelled(words.limits, [sets, chance.limitsApplied > 0 ? chance.sentence : ''].filter(Boolean).join(' ')), paragraph(legend, 'faint')]
   },
 }

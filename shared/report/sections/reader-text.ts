@@ -65,12 +65,25 @@ export const history: ReportSection<ReportSource> = {
   },
 }
 
-/** The numbers in words, each sentence tied to its runs. */
+/** Does the sentence rest on something that is flagged? Edited and unknown ones count: they are never folded away. */
+function standsAlone({ key, edited }: ReportSnapshot['findings'][number], { runs, comparisons }: ReportSnapshot['assessment']): boolean {
+  const results = key.startsWith('run/') ? runs.find(run => key === `run/${run.runId}`)?.results : comparisons.find(comparison => key.endsWith(`/${comparison.id}`) && (!comparison.side || key.includes(`/${comparison.side}/`)))?.results
+  return edited || !results || results.some(result => result.flagged || result.verdict.kind === 'cold')
+}
+
+/**
+ * The numbers in words, each sentence tied to its runs: first those on something outside, one by one, then the others
+ * together.
+ */
 export const findings: ReportSection<ReportSource> = {
   id: 'findings',
   blocks: ({ snapshot }) => {
     const words = reportWords(snapshot.language)
-    const sentences = snapshot.findings.map(finding => paragraph(finding.text, 'plain', finding.runIds))
-    return [heading(2, words.findings, 'findings'), ...(sentences.length > 0 ? sentences : [paragraph(words.noFindings)])]
+    const alone = snapshot.findings.filter(finding => standsAlone(finding, snapshot.assessment))
+    const together = snapshot.findings.filter(finding => !alone.includes(finding))
+    const sentences = alone.map(finding => paragraph(finding.text, 'plain', finding.runIds))
+    const rest = together.length > 0 ? [paragraph(together.map(finding => finding.text).join(' '), 'plain', [...new Set(together.flatMap(finding => finding.runIds))])] : []
+    const said = [...sentences, ...rest]
+    return [heading(2, words.findings, 'findings'), ...(said.length > 0 ? said : [paragraph(words.noFindings)])]
   },
 }

@@ -1,5 +1,5 @@
 import type { RunKind } from '../../catalogue/types'
-import { emptyCell, heading, note, plainCell, withSides, type Block, type ReportSection, type TableBlock } from '../blocks'
+import { emptyCell, heading, plainCell, withSides, type ReportSection, type TableBlock } from '../blocks'
 import { runTable } from '../run-table'
 import { runsOf, shortRunName, type FrozenRun, type ReportSource } from '../source'
 import { reportWords, type ReportWords } from '../words'
@@ -11,9 +11,7 @@ function tableOf(kind: RunKind, id: string, title: (words: ReportWords) => strin
     blocks: (source) => {
       const words = reportWords(source.snapshot.language)
       const made = runTable(source, kind, title(words), words)
-      if (!made) return []
-      const blocks: Block[] = [heading(2, title(words), id), made.table]
-      return made.allRecalled ? [...blocks, note('plain', words.allRecalled)] : blocks
+      return made.length > 0 ? [heading(2, title(words), id), ...made] : []
     },
   }
 }
