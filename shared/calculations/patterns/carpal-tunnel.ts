@@ -22,6 +22,8 @@ export interface HandFacts {
   runIds: readonly string[]
 }
 
+/** Digits 2 and 3 judge the velocity; thumb and ring finger, recorded for comparison, only where neither answered. */
+const mainFingers = ['d2', 'd3']
 const fingers = ['median-sensory-d2', 'median-sensory-d3', 'median-sensory-d1', 'median-sensory-d4'] as const
 const sensitiveTests = [
   ['median-ulnar-palm', 'peakDifferenceMs', 'palm'],
@@ -73,11 +75,14 @@ function absentIn(nerves: readonly SensoryNerve[]): Finding {
   return result === 'not-assessable' ? notAssessable(joined(nerves.map(({ amplitude, onset }) => amplitude.because || onset.because)), numbers) : { result, numbers }
 }
 
+/** A finger without a limit does not keep open what another one has decided. */
 function slowIn(facts: Facts, nerves: readonly SensoryNerve[]): Finding {
-  const findings = nerves.map(nerve => ({ finger: nerve.run.technique.recording.label, finding: isSlow(facts, nerve) }))
-  const answered = findings.filter(({ finding }) => finding.because !== 'no response')
-  if (answered.length === 0) return notAssessable(nerves.length === 0 ? 'no median sensory study' : 'no response')
-  return summed(answered.map(({ finger, finding }) => ({ what: finger, finding })))
+  const answered = nerves.filter(nerve => !isSilent(nerve))
+  const main = answered.filter(nerve => mainFingers.includes(nerve.run.technique.recording.id))
+  const findings = (main.length > 0 ? main : answered).map(nerve => ({ what: nerve.run.technique.recording.label, finding: isSlow(facts, nerve) }))
+  if (findings.length === 0) return notAssessable(nerves.length === 0 ? 'no median sensory study' : 'no response')
+  const judged = findings.filter(({ finding }) => finding.result !== 'not-assessable')
+  return summed(judged.length > 0 ? judged : findings)
 }
 
 /** Any of several, with the numbers of all that could be judged. */

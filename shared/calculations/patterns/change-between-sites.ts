@@ -1,5 +1,5 @@
 import type { Side } from '../../schemas/common'
-import { definiteIn, dispersionIn, overPairs, probableIn, ratioIn } from './change-rules'
+import { definiteIn, dispersionIn, overPairs, probableIn, ratioIn, type PairRule } from './change-rules'
 import type { Facts, RunFacts } from './facts'
 import { anyOf, criterion, notAssessable, type Criterion, type CriterionText, type Finding } from './finding'
 import { motorRun, type MotorRun } from './motor-nerves'
@@ -51,7 +51,7 @@ const sitesStimulated = ({ assessment }: RunFacts) => new Set(assessment.results
 
 function findingsOf(facts: Facts, run: MotorRun, arm: boolean): Record<TextId, Finding> {
   const pairs = run.pairs.filter(pair => !facts.input.policy.leaveOutEntrapmentSites || !pair.entrapment)
-  const ask = (rule: Parameters<typeof overPairs>[1]) => run.facts.cold
+  const ask = (rule: PairRule) => run.facts.cold
     ? notAssessable(run.facts.cold)
     : pairs.length === 0 ? notAssessable('no pair of sites is left') : overPairs(pairs, rule)
   return {

@@ -15,38 +15,43 @@ const riseLarge: Bar = { op: 'above', value: 30 }
 
 const truthOf = (change: Change, bar: Bar): Truth => change.state === 'missing' ? 'not-assessable' : passes(change.percent, bar) ? 'met' : 'not-met'
 
+/** What a rule says of one pair; the words are made for the pairs that are shown. */
+export interface PairFinding { result: Truth, because: () => string, words: () => string }
+export type PairRule = (pair: SitePair) => PairFinding
+
 /** Definite: area falls by half or more, duration rises by 30 % at most, distal amplitude above 1 mV and above 20 % of its lower limit. */
-export function definiteIn(facts: Facts, run: MotorRun, pair: SitePair): Finding {
-  const area = truthOf(pair.areaFall, areaHalf)
-  const rise = truthOf(pair.durationRise, riseSmall)
+export function definiteIn(facts: Facts, run: MotorRun, pair: SitePair): PairFinding {
   const size = largeEnough(facts, run, pair)
-  const result = allOf([area, rise, size.result])
-  const numbers = joined([changeWords('area fall', pair.areaFall, areaHalf), changeWords('duration rise', pair.durationRise, riseSmall), size.numbers])
-  if (result !== 'not-assessable') return { result, numbers }
-  return notAssessable(joined([pair.areaFall.because, pair.durationRise.because, size.because]), numbers)
+  return {
+    result: allOf([truthOf(pair.areaFall, areaHalf), truthOf(pair.durationRise, riseSmall), size.result]),
+    because: () => joined([pair.areaFall.because, pair.durationRise.because, size.because]),
+    words: () => `${changeWords('area fall', pair.areaFall, areaHalf)}, ${changeWords('duration rise', pair.durationRise, riseSmall)}, distal ${printBeside(pair.distalAmplitude.value, 1, oneMillivolt)} mV`,
+  }
 }
 
+const oneMillivolt: Bar = { op: 'above', value: 1 }
+
 /** The amplitude at the distal site of the pair; its lower limit is that of the distal site of the nerve. */
-function largeEnough(facts: Facts, run: MotorRun, { distalAmplitude }: SitePair): Finding {
-  if (distalAmplitude.state !== 'number') return notAssessable(`distal amplitude ${distalAmplitude.because}`)
-  const words = `distal ${printBeside(distalAmplitude.value, 1, { op: 'above', value: 1 })} mV`
-  if (!passes(distalAmplitude.value, { op: 'above', value: 1 })) return { result: 'not-met', numbers: words }
+function largeEnough(facts: Facts, run: MotorRun, { distalAmplitude }: SitePair): { result: Truth, because: string } {
+  if (distalAmplitude.state !== 'number') return { result: 'not-assessable', because: `distal amplitude ${distalAmplitude.because}` }
+  if (!passes(distalAmplitude.value, oneMillivolt)) return { result: 'not-met', because: '' }
   const share = shareOf(facts, run.amplitude, 'lower')
-  if (typeof share === 'string') return notAssessable(`amplitude: ${share}`, words)
+  if (typeof share === 'string') return { result: 'not-assessable', because: `amplitude: ${share}` }
   const isLarge = share.limit > 0 && passes(distalAmplitude.value, { op: 'above', value: share.limit * 0.2 })
-  return { result: isLarge ? 'met' : 'not-met', numbers: words }
+  return { result: isLarge ? 'met' : 'not-met', because: '' }
 }
 
 /**
  * Probable at least: area falls by 30 % or more over a long segment of the arm while the duration rises by 30 % at most,
  * or it falls by half or more, whatever the duration does (then it is definite or probable).
  */
-export function probableIn(pair: SitePair, isArm: boolean): Finding {
+export function probableIn(pair: SitePair, isArm: boolean): PairFinding {
   const overLong = isArm && isLongSegment(pair) ? allOf([truthOf(pair.areaFall, areaThird), truthOf(pair.durationRise, riseSmall)]) : 'not-met'
-  const result = anyOf([overLong, truthOf(pair.areaFall, areaHalf)])
-  const numbers = joined([changeWords('area fall', pair.areaFall, result === 'met' ? areaThird : areaHalf), changeWords('duration rise', pair.durationRise, riseLarge)])
-  if (result !== 'not-assessable') return { result, numbers }
-  return notAssessable(joined([pair.areaFall.because, pair.durationRise.because]), numbers)
+  return {
+    result: anyOf([overLong, truthOf(pair.areaFall, areaHalf)]),
+    because: () => joined([pair.areaFall.because, pair.durationRise.because]),
+    words: () => joined([changeWords('area fall', pair.areaFall, isLongSegment(pair) ? areaThird : areaHalf), changeWords('duration rise', pair.durationRise, riseSmall)]).replace('; ', ', '),
+  }
 }
 
 const atWrist = ['wrist', 'forearm']
@@ -55,35 +60,34 @@ const atElbow = ['elbow', 'below-elbow', 'above-elbow']
 const isLongSegment = ({ from, to }: SitePair) => (atWrist.includes(from.id) && atElbow.includes(to.id)) || (atElbow.includes(from.id) && to.id === 'axilla')
 
 /** Dispersion: the negative peak gets longer by more than 30 %. */
-export function dispersionIn(pair: SitePair): Finding {
-  const result = truthOf(pair.durationRise, riseLarge)
-  const numbers = changeWords('duration rise', pair.durationRise, riseLarge)
-  return result === 'not-assessable' ? notAssessable(pair.durationRise.because) : { result, numbers }
+export function dispersionIn(pair: SitePair): PairFinding {
+  return { result: truthOf(pair.durationRise, riseLarge), because: () => pair.durationRise.because, words: () => changeWords('duration rise', pair.durationRise, riseLarge) }
 }
 
 /** Proximal to distal amplitude under 0.5, or under 0.36 where the distal amplitude is not above 1 mV. */
-export function ratioIn(pair: SitePair): Finding {
-  if (pair.amplitudeFall.state === 'missing') return notAssessable(pair.amplitudeFall.because)
-  if (pair.distalAmplitude.state !== 'number') return notAssessable(`distal amplitude ${pair.distalAmplitude.because}`)
-  const isLarge = passes(pair.distalAmplitude.value, { op: 'above', value: 1 })
+export function ratioIn({ amplitudeFall, distalAmplitude }: SitePair): PairFinding {
+  const isLarge = passes(distalAmplitude.value, oneMillivolt)
   const bar: Bar = { op: 'below', value: isLarge ? 0.5 : 0.36 }
-  const ratio = 1 - pair.amplitudeFall.percent / 100
-  return { result: passes(ratio, bar) ? 'met' : 'not-met', numbers: `ratio ${printBeside(ratio, 2, bar)}, limit ${bar.value} at ${printBeside(pair.distalAmplitude.value, 1, { op: 'above', value: 1 })} mV` }
+  const ratio = 1 - amplitudeFall.percent / 100
+  const isKnown = amplitudeFall.state === 'number' && distalAmplitude.state === 'number'
+  return {
+    result: !isKnown ? 'not-assessable' : passes(ratio, bar) ? 'met' : 'not-met',
+    because: () => amplitudeFall.because || (distalAmplitude.state === 'number' ? '' : `distal amplitude ${distalAmplitude.because}`),
+    words: () => `ratio ${printBeside(ratio, 2, bar)}, limit ${bar.value} at ${printBeside(distalAmplitude.value, 1, oneMillivolt)} mV`,
+  }
 }
 
 function changeWords(what: string, change: Change, bar: Bar): string {
   return change.state === 'number' ? `${what} ${printBeside(change.percent, 0, bar)} %` : ''
 }
 
-/** Asks each pair; the first that is met stands for the nerve, else all that are open, else the pair with the greatest fall. */
-export function overPairs(pairs: readonly SitePair[], rule: (pair: SitePair) => Finding): Finding {
+/** Asks each pair; those that are met stand for the nerve, else all that are open, else the pair with the greatest fall. */
+export function overPairs(pairs: readonly SitePair[], rule: PairRule): Finding {
   const asked = pairs.map(pair => ({ pair, finding: rule(pair) }))
-  const found = asked.filter(({ finding }) => finding.result === 'met')
   const result = anyOf(asked.map(({ finding }) => finding.result))
-  if (result === 'not-assessable') return notAssessable(joined(asked.map(({ finding }) => finding.because)), '')
-  const [greatest] = [...asked].sort((a, b) => sizeOf(b.pair) - sizeOf(a.pair))
-  const shown = found.length > 0 ? found : greatest ? [greatest] : []
-  return { result, numbers: joined(shown.map(({ pair, finding }) => `${pair.label}: ${finding.numbers.replaceAll('; ', ', ')}`)) }
+  if (result === 'not-assessable') return notAssessable(joined(asked.map(({ finding }) => finding.result === 'not-assessable' ? finding.because() : '')))
+  const found = result === 'met' ? asked.filter(({ finding }) => finding.result === 'met') : asked.slice(0, 1).map(first => asked.reduce((most, one) => sizeOf(one.pair) > sizeOf(most.pair) ? one : most, first))
+  return { result, numbers: joined(found.map(({ pair, finding }) => `${pair.label}: ${finding.words()}`)) }
 }
 
 const sizeOf = ({ areaFall, amplitudeFall }: SitePair) => areaFall.state === 'number' ? areaFall.percent : amplitudeFall.state === 'number' ? amplitudeFall.percent : Number.NEGATIVE_INFINITY

@@ -3,7 +3,7 @@ import { decideOneNerve, decideParameter, idsMet, type Parameters } from './cidp
 import type { Facts } from './facts'
 import { anyOf, criterion, type Criterion, type CriterionText, type Truth } from './finding'
 import { motorNervesOf, type MotorNerve } from './motor-nerves'
-import { askEach } from './nerve-truths'
+import { askEach, type RuleTable } from './nerve-truths'
 import { entrapmentCriterion, entrapmentText, eachOnce, type Assessed, type PatternSet } from './pattern-set'
 import { sensorySupport, sensoryRunIds, sensoryTexts } from './cidp-sensory'
 
@@ -39,9 +39,9 @@ export const cidp2010: PatternSet = {
 function assessCidp2010(facts: Facts): Assessed | null {
   const nerves = motorNervesOf(facts)
   if (nerves.length < 2) return null
-  const parameters = parameters2010(facts, nerves, 50)
+  const parameters = parameters2010(facts, nerves)
   const decide = (id: Exclude<keyof typeof texts, 'probable' | 'possible'>) => criterion(texts[id], decideParameter(parameters, nerves, rules[id]))
-  const probable = { ...parameters, fall: parameters2010(facts, nerves, 30).fall }
+  const probable = { ...parameters, fall: fallTable(facts, nerves, 30) }
   const criteria = [
     ...definiteIds.map(decide),
     criterion(texts.probable, decideParameter(probable, nerves, rules.e)),
@@ -62,19 +62,23 @@ const rules = {
   g: { main: 'duration', beside: 1 },
 } as const
 
-function parameters2010(facts: Facts, nerves: readonly MotorNerve[], fall: 50 | 30): Parameters {
+function parameters2010(facts: Facts, nerves: readonly MotorNerve[]): Parameters {
   const medianAtWrist = facts.input.policy.leaveOutEntrapmentSites ? 'left-out' : 'open'
   return {
     latency: askEach(nerves, distalLatencyRule(facts, { op: 'at-least', full: 150 }, medianAtWrist)),
     velocity: askEach(nerves, velocityRule(facts, { op: 'at-most', full: 70 }, segmentOutside)),
     fLatency: askEach(nerves, fLatencyRule(facts, { op: 'at-least', full: 130, low: 150, lowBelow: 80 })),
     fAbsent: askEach(nerves, fAbsentRule(facts, 20)),
-    fall: askEach(nerves, fallRule(facts, {
-      fall: { op: 'at-least', value: fall }, toErb: { op: 'at-least', value: 50 }, amplitudeAtLeastPercent: 20, withoutTibial: fall === 30, pairCounts: pairOutside,
-    })),
+    fall: fallTable(facts, nerves, 50),
     rise: askEach(nerves, riseRule(facts, { op: 'above', value: 30 }, pairOutside)),
     duration: askEach(nerves, durationRule(durationLimits, 'at-least')),
   }
+}
+
+function fallTable(facts: Facts, nerves: readonly MotorNerve[], percent: 50 | 30): RuleTable {
+  return askEach(nerves, fallRule(facts, {
+    fall: { op: 'at-least', value: percent }, toErb: { op: 'at-least', value: 50 }, amplitudeAtLeastPercent: 20, withoutTibial: percent === 30, pairCounts: pairOutside,
+  }))
 }
 
 function outcomeOf(criteria: readonly Criterion[]): Assessed['outcome'] {

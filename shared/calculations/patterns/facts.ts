@@ -35,11 +35,11 @@ export interface Facts {
 
 /** Gathers what was studied; each run once. */
 export function factsOf(input: PatternInput): Facts {
-  const runs = new Map<string, RunFacts | undefined>()
+  const known = { right: new Map<string, RunFacts | undefined>(), left: new Map<string, RunFacts | undefined>() }
   const run = (technique: string, side: Side) => {
-    const key = `${technique}/${side}`
-    if (!runs.has(key)) runs.set(key, runFacts(input, technique, side))
-    return runs.get(key)
+    const runs = known[side]
+    if (!runs.has(technique)) runs.set(technique, runFacts(input, technique, side))
+    return runs.get(technique)
   }
   return { input, usedRecalled: false, run }
 }

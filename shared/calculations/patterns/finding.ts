@@ -116,7 +116,9 @@ export function atLeast(needed: number, truths: readonly Truth[]): Truth {
 
 /** Distinct, in order, the empty ones left out: "no limit; cold". */
 export function joined(parts: readonly (string | undefined)[]): string {
-  return [...new Set(parts.filter(part => part))].join('; ')
+  const kept: string[] = []
+  for (const part of parts) if (part && !kept.includes(part)) kept.push(part)
+  return kept.join('; ')
 }
 
 /** The finding with what its numbers are of: "distal latency 5.2 ms". */

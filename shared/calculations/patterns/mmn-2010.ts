@@ -1,4 +1,4 @@
-import { definiteIn, overPairs, probableIn } from './change-rules'
+import { definiteIn, overPairs, probableIn, type PairFinding } from './change-rules'
 import type { Facts } from './facts'
 import { allOf, anyOf, criterion, joined, notAssessable, notTruth, type CriterionText, type Finding, type Truth } from './finding'
 import { motorNervesOf, type MotorNerve } from './motor-nerves'
@@ -43,10 +43,10 @@ function assessMmn(facts: Facts): Assessed | null {
   return { outcome: outcomeOf(inOne, atLeastProbable, same), criteria, runIds }
 }
 
-type PairRule = (pair: SitePair, run: MotorNerve['runs'][number], nerve: MotorNerve) => Finding
+type BlockRule = (pair: SitePair, run: MotorNerve['runs'][number], nerve: MotorNerve) => PairFinding
 
 /** The rule asked of every pair of sites that does not lie across an entrapment site. */
-function blockTable(nerves: readonly MotorNerve[], rule: PairRule): RuleTable {
+function blockTable(nerves: readonly MotorNerve[], rule: BlockRule): RuleTable {
   return askEach(nerves, nerve => anyTruth(nerve.runs.map((run) => {
     if (run.facts.cold) return unknown(run.facts.cold)
     const pairs = run.pairs.filter(pair => !pair.entrapment)

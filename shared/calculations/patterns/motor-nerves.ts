@@ -78,8 +78,18 @@ function fReading(facts: Facts, run: RunFacts): Reading {
   return shortest
 }
 
-/** A motor run as the rules look at it. */
+const looked = new WeakMap<RunFacts, MotorRun>()
+
+/** A motor run as the rules look at it; looked at once. */
 export function motorRun(facts: Facts, run: RunFacts): MotorRun {
+  const known = looked.get(run)
+  if (known) return known
+  const made = makeMotorRun(facts, run)
+  looked.set(run, made)
+  return made
+}
+
+function makeMotorRun(facts: Facts, run: RunFacts): MotorRun {
   const usual = usualSite(run.technique)
   return {
     facts: run,

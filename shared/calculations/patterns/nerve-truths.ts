@@ -30,6 +30,7 @@ const order = ['met', 'unknown', 'not-met', 'left-out'] as const
  * anyTruth([{ state: 'not-met', words: '54 m/s' }, { state: 'met', words: '30 m/s' }]).words // => '30 m/s'
  */
 export function anyTruth(truths: readonly NerveTruth[]): NerveTruth {
+  if (truths.length === 1 && truths[0]) return truths[0]
   const state = order.find(one => truths.some(truth => truth.state === one)) ?? 'left-out'
   return { state, words: joined(truths.filter(truth => truth.state === state).map(truth => truth.words)) }
 }
