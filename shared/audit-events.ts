@@ -1,5 +1,6 @@
 import * as z from 'zod'
 import { benchEvents } from './audit-events/bench'
+import { directoryEvents } from './audit-events/directory'
 import { intakeEvents } from './audit-events/intake'
 import { reportEvents } from './audit-events/report'
 import { shelfEvents } from './audit-events/shelf'
@@ -44,6 +45,7 @@ export const auditEvents = {
 
   // Patients, referrals, uploads, bookings, directory, studies, shelf
   ...intakeEvents,
+  ...directoryEvents,
   ...benchEvents,
   ...shelfEvents,
 

@@ -1,17 +1,20 @@
-import { randomBytes, randomUUID } from 'node:crypto'
+import { randomBytes } from 'node:crypto'
 import { TOTP } from 'otpauth'
 import { addPerson } from '#server/services/change-person'
+import { addPhysician } from '#server/services/change-physician'
+import { addPractice, noteHandedOver, renewPassphrase } from '#server/services/change-practice'
 import { addSite, changeSite } from '#server/services/change-site'
 import { actingAs, type Actor, type ServiceContext } from '#server/services/context'
 import { currentHoldings } from '#server/services/current-holdings'
+import { giveDeskAccess } from '#server/services/desk-access'
 import { makeFirstAdministrator, writeFirstRunLink } from '#server/services/first-run'
-import { makePassphrase } from '#server/services/make-passphrase'
 import { confirmSecondFactor, startSecondFactor } from '#server/services/second-factor'
 import { makeSetUpLink, setPassword } from '#server/services/set-up-link'
 import { approveAdoption, proposeAdoption } from '#server/services/adopt-set'
 import { referenceTable } from '#reference-tables/index'
 import { rolesWithSecondFactor, type Role } from '#shared/permissions'
 import { localDate } from '#server/services/site-time'
+import { verifyOtherwise } from '#server/services/verify-address'
 import { organisation, practices, sites, staff } from './people'
 import type { DemoClock } from './clock'
 
@@ -47,8 +50,8 @@ export async function makeOrganisation(context: ServiceContext, clock: DemoClock
   const made = await makeSites(await asAdministrator())
   administrator.siteIds = made.map(site => site.id)
   for (const person of staff.slice(1)) people.push(await makePerson(await asAdministrator(), clock, person, made))
-  const directory = await makeDirectory(context, people)
-  return { sites: made, people, ...directory }
+  const { readers, ...directory } = await makeDirectory(await asAdministrator(), clock, made[0]!.id)
+  return { sites: made, people: [...people, ...readers], ...directory }
 }
 
 async function makeSites(context: ServiceContext): Promise<DemoSite[]> {
@@ -79,22 +82,33 @@ async function makePerson(context: ServiceContext, clock: DemoClock, { key, name
   return { ...person, totpSecret: secret }
 }
 
-async function makeDirectory(context: ServiceContext, people: readonly DemoPerson[]) {
-  const createdAt = context.clock().toISOString()
+/** Practices with a passphrase that was handed over, physicians whose address was checked; one of them opens the desk. */
+async function makeDirectory(context: ServiceContext, clock: DemoClock, siteId: string) {
   const made: DemoPractice[] = []
   const physicians: Organisation['physicians'] = []
-  for (const practice of practices) {
-    const [id, passphrase] = [randomUUID(), makePassphrase()]
-    await context.db.insertInto('practice').values({ id, name: practice.name, town: practice.town, address: `1 Invented Street, ${practice.town}`, phone: '+00 55 0999', passphraseSealed: context.keys.seal(passphrase), passphraseMadeAt: createdAt, passphraseHandedOverAt: createdAt, closedAt: null, createdAt }).execute()
-    made.push({ id, name: practice.name, passphrase })
-    for (const physician of practice.physicians) {
-      const user = people.find(person => 'key' in physician && person.key === physician.key)
-      const physicianId = randomUUID()
-      await context.db.insertInto('physician').values({ id: physicianId, practiceId: id, name: physician.name, title: 'MD', email: `${addressOf(physician.name).split('@')[0]}@${practice.name.toLowerCase().replace(/[^a-z]+/g, '-')}.example`, emailVerifiedAt: createdAt, phone: '+00 55 0998', leftOn: null, userId: user?.id ?? null, createdAt }).execute()
-      physicians.push({ id: physicianId, name: physician.name, practice: practice.name })
+  const readers: DemoPerson[] = []
+  for (const { name, town, physicians: people } of practices) {
+    clock.forward(5)
+    const { id } = await addPractice(context, { name, town, address: `1 Invented Street, ${town}`, phone: '+00 55 0999', deliveryMethod: 'encrypted-pdf' })
+    const { passphrase } = await renewPassphrase(context, id)
+    await noteHandedOver(context, id, { by: 'telephone', on: localDate(context.clock(), organisation.timeZone) })
+    made.push({ id, name, passphrase })
+    for (const person of people) {
+      const email = `${addressOf(person.name).split('@')[0]}@${name.toLowerCase().replace(/[^a-z]+/g, '-')}.example`
+      const physician = await addPhysician(context, { practiceId: id, name: person.name, title: 'MD', email, phone: '+00 55 0998' })
+      await verifyOtherwise(context, physician.id, 'Telephoned the practice; the address was read back.')
+      physicians.push({ id: physician.id, name: person.name, practice: name })
+      if ('key' in person) readers.push(await openDesk(context, { key: person.key, physicianId: physician.id, name: person.name, email, siteId }))
     }
   }
-  return { practices: made, physicians }
+  return { practices: made, physicians, readers }
+}
+
+async function openDesk(context: ServiceContext, { key, physicianId, name, email, siteId }: { key: string, physicianId: string, name: string, email: string, siteId: string }): Promise<DemoPerson> {
+  const { userId, link } = await giveDeskAccess(context, { physicianId, siteId })
+  const password = randomPassword()
+  await setPassword(context, { token: tokenOf(link ?? ''), password })
+  return { key, id: userId, role: 'referring-physician', name, email, password, siteIds: [siteId] }
 }
 
 /** The set that every site uses, proposed by the administrator and approved by the medical director. */

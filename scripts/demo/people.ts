@@ -21,10 +21,9 @@ export const staff = [
   { key: 'neurologist-2', name: 'Dr Casimir Thorne', credentials: 'MD, neurologist', roles: ['neurologist'], sites: [0, 1] },
   { key: 'neurologist-3', name: 'Dr Noor Albright', credentials: 'MD, neurologist', roles: ['neurologist'], sites: [2, 3] },
   { key: 'medical-director', name: 'Dr Henrike Solano', credentials: 'MD, PhD, neurologist', roles: ['medical-director', 'neurologist'], sites: [0, 1, 2, 3] },
-  { key: 'referring-physician', name: 'Dr Piers Lammond', credentials: 'MD', roles: ['referring-physician'], sites: [0] },
 ] as const
 
-/** Two practices hold a physician of the same name: they must be told apart by clinic and town. */
+/** Two practices hold a physician of the same name: they must be told apart by clinic and town. Who has a key opens the desk. */
 export const practices = [
   { name: 'Wharf Lane Surgery', town: 'Harrowmere', physicians: [{ name: 'Dr Piers Lammond', key: 'referring-physician' }, { name: 'Dr Orla Whitcombe' }] },
   { name: 'Mill Street Practice', town: 'Tarnfield', physicians: [{ name: 'Dr Annika Brodeur' }, { name: 'Dr Martin Ashdown' }] },

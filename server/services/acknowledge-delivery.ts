@@ -1,5 +1,5 @@
 import { RateLimiterMemory } from 'rate-limiter-flexible'
-import type { Database } from '#server/database/connection'
+import type { Database, Trx } from '#server/database/connection'
 import { DomainError } from '#shared/errors'
 import type { AcknowledgeView } from '#shared/schemas/delivery'
 import { actingAs, now, type ServiceContext } from './context'
@@ -49,14 +49,17 @@ export async function viewAcknowledge(context: ServiceContext, input: Acknowledg
 export async function acknowledgeDelivery(context: ServiceContext, input: AcknowledgeInput): Promise<AcknowledgeView> {
   const delivery = await deliveryOfToken(context, input)
   const recipient = actingAs(context, { userId: null, label: 'recipient, by the link of the mail', holdings: [] })
-  await context.db.transaction().execute(async (trx) => {
-    const current = await trx.selectFrom('delivery').select(['state', 'acknowledgedAt']).where('id', '=', delivery.id).executeTakeFirstOrThrow()
-    if (current.acknowledgedAt || current.state === 'withdrawn') return
-    await trx.updateTable('delivery').set({ acknowledgedAt: now(context) }).where('id', '=', delivery.id).execute()
-    // While it is being sent or sent again the outbox moves it on; in the other states it stands as it is for people.
-    if (current.state === 'sent' || current.state === 'uncertain' || current.state === 'by-hand') await moveState(recipient, trx, { subject: 'delivery', id: delivery.id, from: ['sent', 'uncertain', 'by-hand'], to: 'acknowledged' })
-    await trx.updateTable('task').set({ doneAt: now(context), resolution: 'acknowledged by the recipient' }).where('subjectId', '=', delivery.id).where('kind', 'in', ['delivery-uncertain', 'delivery-given-up']).where('doneAt', 'is', null).execute()
-    await recordAuditEvent(recipient, trx, { name: 'delivery.acknowledged', subject: 'delivery', subjectId: delivery.id, siteId: delivery.siteId, patientId: delivery.patientId, data: { number: delivery.number, version: delivery.version } })
-  })
+  await context.db.transaction().execute(trx => acknowledgeIn(recipient, trx, delivery))
   return await viewAcknowledge(context, input)
+}
+
+/** Marks a delivery as arrived, in the transaction of whoever says so: the link of the mail or the desk. */
+export async function acknowledgeIn(context: ServiceContext, trx: Trx, delivery: { id: string, siteId: string, patientId: string, number: string, version: number }): Promise<void> {
+  const current = await trx.selectFrom('delivery').select(['state', 'acknowledgedAt']).where('id', '=', delivery.id).executeTakeFirstOrThrow()
+  if (current.acknowledgedAt || current.state === 'withdrawn') return
+  await trx.updateTable('delivery').set({ acknowledgedAt: now(context) }).where('id', '=', delivery.id).execute()
+  // While it is being sent or sent again the outbox moves it on; in the other states it stands as it is for people.
+  if (current.state === 'sent' || current.state === 'uncertain' || current.state === 'by-hand') await moveState(context, trx, { subject: 'delivery', id: delivery.id, from: ['sent', 'uncertain', 'by-hand'], to: 'acknowledged' })
+  await trx.updateTable('task').set({ doneAt: now(context), resolution: 'acknowledged by the recipient' }).where('subjectId', '=', delivery.id).where('kind', 'in', ['delivery-uncertain', 'delivery-given-up']).where('doneAt', 'is', null).execute()
+  await recordAuditEvent(context, trx, { name: 'delivery.acknowledged', subject: 'delivery', subjectId: delivery.id, siteId: delivery.siteId, patientId: delivery.patientId, data: { number: delivery.number, version: delivery.version } })
 }

@@ -21,17 +21,20 @@ interface Wish { siteId: string, role: Role }
  * @throws DomainError 'not-valid' when the address is in use · 'not-allowed' for a role at a site that the actor does not administer
  */
 export async function addPerson(context: ServiceContext, input: PersonInput): Promise<string> {
-  return await context.db.transaction().execute(async (trx) => {
-    const id = randomUUID()
-    await checkAddressFree(trx, input.email, id)
-    await trx.insertInto('user').values({
-      id, email: input.email.toLowerCase(), name: input.name, printedName: input.printedName, credentials: input.credentials,
-      passwordHash: null, totpSecretSealed: null, totpEnabledAt: null, totpLastStep: null, lastSeenAt: null, deactivatedAt: null, createdAt: now(context),
-    }).execute()
-    await recordAuditEvent(context, trx, { name: 'person.added', subject: 'user', subjectId: id, data: {} })
-    await grantRoles(context, trx, id, input.holdings)
-    return id
-  })
+  return await context.db.transaction().execute(trx => addPersonIn(context, trx, input))
+}
+
+/** `addPerson` as a part of something larger. */
+export async function addPersonIn(context: ServiceContext, trx: Trx, input: PersonInput): Promise<string> {
+  const id = randomUUID()
+  await checkAddressFree(trx, input.email, id)
+  await trx.insertInto('user').values({
+    id, email: input.email.toLowerCase(), name: input.name, printedName: input.printedName, credentials: input.credentials,
+    passwordHash: null, totpSecretSealed: null, totpEnabledAt: null, totpLastStep: null, lastSeenAt: null, deactivatedAt: null, createdAt: now(context),
+  }).execute()
+  await recordAuditEvent(context, trx, { name: 'person.added', subject: 'user', subjectId: id, data: {} })
+  await grantRoles(context, trx, id, input.holdings)
+  return id
 }
 
 /**
@@ -67,7 +70,8 @@ async function changeRoles(context: ServiceContext, trx: Trx, id: string, held: 
   await checkAdministratorsLeft(context, trx, ended.filter(holding => holding.role === 'administrator').map(holding => holding.siteId))
 }
 
-async function grantRoles(context: ServiceContext, trx: Trx, userId: string, wishes: readonly Wish[]): Promise<void> {
+/** Gives roles from today on, at sites that the actor administers. @throws DomainError 'not-allowed' */
+export async function grantRoles(context: ServiceContext, trx: Trx, userId: string, wishes: readonly Wish[]): Promise<void> {
   for (const { siteId, role } of wishes) {
     const site = await trx.selectFrom('site').select('timeZone').where('id', '=', siteId).where('closedAt', 'is', null).executeTakeFirst()
     if (!site || !mayAt(context.actor, 'people.write', siteId)) throw new DomainError('not-allowed')

@@ -1,4 +1,5 @@
 import { deliveryFacts } from '#server/database/queries/deliveries'
+import { recipientById } from '#server/database/queries/recipients'
 import { composeMail } from '#server/email/compose-mail'
 import { renderMail } from '#server/email/templates/index'
 import type { MailTransport, SendOutcome } from '#server/email/transport'
@@ -7,6 +8,7 @@ import { now, type ServiceContext } from './context'
 import { reportPdf } from './make-report-pdf'
 import { claimDue, recoverInterrupted, releaseHeld } from './outbox-claims'
 import { settleAttempt, taskForRendering, type Claimed } from './outbox-outcomes'
+import { localDate } from './site-time'
 
 export interface OutboxDeps {
   transport: MailTransport
@@ -60,6 +62,8 @@ async function settleSurely(context: ServiceContext, mail: Claimed, outcome: Sen
 }
 
 async function attempt(context: ServiceContext, transport: MailTransport, mail: Claimed): Promise<SendOutcome> {
+  const hindrance = await hindranceOf(context, mail)
+  if (hindrance) return { kind: 'permanent', because: hindrance }
   let message: Buffer
   try {
     message = await messageOf(context, mail)
@@ -70,6 +74,21 @@ async function attempt(context: ServiceContext, transport: MailTransport, mail: 
     return { kind: 'temporary', because: 'the message or its PDF could not be made' }
   }
   return await transport.send({ from: senderOf(context), to: mail.toAddress }, message, () => markLastByte(context, mail))
+}
+
+/**
+ * What changed in the directory since the mail was queued and forbids it now: they left, the address changed or lost its
+ * verification, the passphrase was replaced and not handed over yet. '' when nothing does. A missing passphrase is found
+ * when the PDF is encrypted.
+ */
+async function hindranceOf(context: ServiceContext, mail: Claimed): Promise<string> {
+  if (!mail.deliveryId) return ''
+  const delivery = await context.db.selectFrom('delivery').innerJoin('site', 'site.id', 'delivery.siteId').innerJoin('practice', 'practice.id', 'delivery.practiceId')
+    .select(['physicianId', 'site.timeZone', 'practice.passphraseSealed']).where('delivery.id', '=', mail.deliveryId).executeTakeFirstOrThrow()
+  const recipient = await recipientById(context.db, delivery.physicianId, localDate(context.clock(), delivery.timeZone))
+  if (!recipient) return 'the physician is not in the directory'
+  if (!recipient.reachable && delivery.passphraseSealed !== null) return recipient.because
+  return recipient.email.toLowerCase() === mail.toAddress.toLowerCase() ? '' : 'the address in the directory changed'
 }
 
 /** @example senderOf({ settings: { mailFrom: 'Clinic <reports@clinic.example>' } }) // => 'reports@clinic.example' */

@@ -16,11 +16,11 @@ export interface Recipient {
 
 async function recipientsById(db: Database, ids: string[], today: string): Promise<Recipient[]> {
   const rows = await db.selectFrom('physician').innerJoin('practice', 'practice.id', 'physician.practiceId')
-    .select(['physician.id as physicianId', 'practiceId', 'physician.name', 'practice.name as practiceName', 'practice.town', 'email', 'emailVerifiedAt', 'passphraseSealed'])
+    .select(['physician.id as physicianId', 'practiceId', 'physician.name', 'practice.name as practiceName', 'practice.town', 'email', 'emailVerifiedAt', 'passphraseSealed', 'passphraseHandedOverAt'])
     .select(sql<number>`practice.closed_at IS NOT NULL OR coalesce(physician.left_on <= ${today}, 0)`.as('left'))
     .where('physician.id', 'in', ids).orderBy('physician.name').orderBy('physician.id').execute()
-  return rows.map(({ emailVerifiedAt, passphraseSealed, left, ...row }) => {
-    const because = left ? 'the physician left the practice' : emailVerifiedAt === null ? 'the address is not verified' : passphraseSealed === null ? 'the practice has no passphrase yet' : ''
+  return rows.map(({ emailVerifiedAt, passphraseSealed, passphraseHandedOverAt, left, ...row }) => {
+    const because = left ? 'the physician left the practice' : emailVerifiedAt === null ? 'the address is not verified' : passphraseSealed === null ? 'the practice has no passphrase yet' : passphraseHandedOverAt === null ? 'the practice was not given its passphrase yet' : ''
     return { ...row, because, reachable: because === '' }
   })
 }

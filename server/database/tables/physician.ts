@@ -7,6 +7,9 @@ export interface PhysicianTable {
   title: Generated<string>
   email: string
   emailVerifiedAt: string | null
+  /** By the code that was mailed, or by another check, which the note describes. */
+  emailVerifiedBy: 'code' | 'other' | null
+  emailVerifiedNote: Generated<string>
   phone: Generated<string>
   leftOn: string | null
   userId: string | null

@@ -9,7 +9,10 @@ export interface PracticeTable {
   deliveryMethod: Generated<'encrypted-pdf' | 'collection-link'>
   passphraseSealed: string | null
   passphraseMadeAt: string | null
+  /** When the hand-over was noted; the day and the way stand beside it. */
   passphraseHandedOverAt: string | null
+  passphraseHandedOverOn: string | null
+  passphraseHandedOverBy: 'telephone' | 'letter' | 'in-person' | null
   closedAt: string | null
   createdAt: string
 }

@@ -1,6 +1,7 @@
 import type * as z from 'zod'
 import type { MailText } from './mail-text'
 import { reportReady, reportReadySchema } from './report-ready'
+import { verifyAddress, verifyAddressSchema } from './verify-address'
 
 interface Template<S extends z.ZodType> { schema: S, render: (data: z.output<S>, appOrigin: string) => MailText }
 const template = <S extends z.ZodType>(schema: S, render: Template<S>['render']): Template<S> => ({ schema, render })
@@ -8,6 +9,7 @@ const template = <S extends z.ZodType>(schema: S, render: Template<S>['render'])
 /** Every mail of the program: its data and its words. A new mail is a file here and a line in this list. */
 export const mailTemplates = {
   'report-ready': template(reportReadySchema, reportReady),
+  'verify-address': template(verifyAddressSchema, verifyAddress),
 } as const
 
 export type MailTemplate = keyof typeof mailTemplates
@@ -18,8 +20,8 @@ export type MailData<T extends MailTemplate> = z.input<(typeof mailTemplates)[T]
  * @throws Error when the template is unknown or its data has another shape
  */
 export function renderMail(name: string, data: unknown, appOrigin: string): MailText {
-  const found = mailTemplates[name as MailTemplate]
-  if (!found) throw new Error('No mail template has this name.')
+  if (!Object.hasOwn(mailTemplates, name)) throw new Error('No mail template has this name.')
+  const found = mailTemplates[name as MailTemplate] as unknown as Template<z.ZodType>
   return found.render(found.schema.parse(data), appOrigin)
 }
 
