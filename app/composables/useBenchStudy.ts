@@ -96,7 +96,14 @@ export function useBenchStudy(first: StudyView) {
   }
 
   /** An act on the server, then a fresh copy. True when it was done; else `problem` says why. */
-  async function act(rest: string, method: 'POST' | 'PUT' | 'PATCH' | 'DELETE', body: object = {}): Promise<boolean> {
+  /** One act after the other: an answer that overtakes a later one would show what is no longer true. */
+  let turn: Promise<unknown> = Promise.resolve()
+  function act(rest: string, method: 'POST' | 'PUT' | 'PATCH' | 'DELETE', body: object = {}): Promise<boolean> {
+    const mine = turn.then(() => actNow(rest, method, body))
+    turn = mine
+    return mine
+  }
+  async function actNow(rest: string, method: 'POST' | 'PUT' | 'PATCH' | 'DELETE', body: object): Promise<boolean> {
     busy.value = true
     problem.value = null
     problemOf.value = rest
