@@ -11,12 +11,12 @@ const answers: Partial<Record<Behaviour, { stage: 'rcpt' | 'data', code: number 
 const refusal = (code: number) => Object.assign(new Error('refused as the test wishes'), { responseCode: code })
 
 /** A mail server on the loopback with a behaviour that tests choose. `taken` holds what it said 250 to, and what it swallowed. */
-export async function smtpSink(port = 0) {
+export async function smtpSink(port = 0, offersTls = false) {
   const state = { behaviour: 'ok' as Behaviour, taken: [] as Buffer[], swallowed: [] as Buffer[], connections: 0 }
   const sockets = new Set<Socket>()
   const server = new SMTPServer({
     authOptional: true,
-    disabledCommands: ['STARTTLS', 'AUTH'],
+    disabledCommands: offersTls ? ['AUTH'] : ['STARTTLS', 'AUTH'],
     logger: false,
     onConnect: (_session, done) => {
       state.connections++
