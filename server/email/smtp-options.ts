@@ -1,3 +1,4 @@
+import { isIP } from 'node:net'
 import type SMTPConnection from 'nodemailer/lib/smtp-connection'
 
 export type SmtpSettings = SMTPConnection.Options & { credentials?: { user: string, pass: string } }
@@ -24,7 +25,7 @@ export function smtpSettings(address: string): SmtpSettings {
     secure,
     requireTLS: !secure && !clear,
     ignoreTLS: clear,
-    tls: { minVersion: 'TLSv1.2', servername: host },
+    tls: { minVersion: 'TLSv1.2', ...(isIP(host) ? {} : { servername: host }) },
     connectionTimeout: 15_000,
     greetingTimeout: 15_000,
     socketTimeout: 60_000,
