@@ -10,7 +10,7 @@ import type { SitePair } from './site-pairs'
 const texts = {
   definite: { id: 'definite', text: 'Definite block outside entrapment sites in one nerve (median, ulnar, fibular): area fall at least 50 %, duration rise at most 30 %, distal amplitude above 1 mV and above 20 % of its lower limit', basis: 'read' },
   probable: { id: 'probable', text: 'At least probable block outside entrapment sites in one nerve: area fall at least 30 % over a long segment of the arm with a duration rise of at most 30 %, or area fall at least 50 %', basis: 'read' },
-  sensory: { id: 'sensory', text: 'Sensory conduction of the same nerve within its limits', basis: 'memory' },
+  sensory: { id: 'sensory', text: 'Sensory conduction of the same nerve within its limits (AAEM 2003; as part of the paper of 2010 from memory)', basis: 'read' },
   twoNerves: { id: 'definite-2003', text: 'Beside, AAEM 2003: definite block in two nerves outside entrapment sites', basis: 'read' },
   allSensory: { id: 'sensory-2003', text: 'Beside, AAEM 2003: sensory studies normal in all nerves tested, three at least', basis: 'read' },
 } as const satisfies Record<string, CriterionText>
