@@ -72,8 +72,10 @@ export const rooms = [
   { id: 'reading', label: 'Reading', path: '/reading', action: 'report.write' },
   { id: 'dispatch', label: 'Dispatch', path: '/dispatch', action: 'delivery.read' },
   { id: 'shelf', label: 'Shelf', path: '/shelf', action: 'shelf.read' },
+  { id: 'directory', label: 'Directory', path: '/directory', action: 'directory.write' },
   { id: 'people', label: 'People', path: '/people', action: 'people.read' },
   { id: 'ledger', label: 'Ledger', path: '/ledger', action: 'audit.read' },
+  { id: 'desk', label: 'Desk', path: '/desk', action: 'desk.read' },
 ] as const satisfies readonly { id: string, label: string, path: string, action: Action }[]
 
 /** Roles whose holders sign or approve: they have the second factor from their first sign-in on. */
