@@ -69,6 +69,6 @@ function judgement(result: Result): string {
  */
 export function verdictWords(result: Result): string {
   const number = result.printUncertainty ? `${result.print} ${result.printUncertainty}` : result.print
-  const value = result.value.kind === 'value' ? withUnit(number, result.unit) : result.print
+  const value = result.value.kind === 'value' ? withUnit(number, result.unit) : result.value.kind === 'not-computable' ? `${result.print}: ${result.value.because}` : result.print
   return [value, judgement(result)].filter(Boolean).join(', ')
 }

@@ -6,7 +6,7 @@ import { tmpdir } from 'node:os'
 import { join, resolve } from 'node:path'
 import { chromium, type Browser, type BrowserContext, type Page } from 'playwright-core'
 import { TOTP } from 'otpauth'
-import { expect, inject } from 'vitest'
+import { expect, inject, type TestContext } from 'vitest'
 import { startMailFake } from '../../scripts/mail-fake.mjs'
 
 export interface DemoPerson { role: string, name: string, email: string, password: string, totpSecret?: string }
@@ -24,6 +24,8 @@ export interface App {
   browser: Browser
   /** A browser window of its own, with every console error and outside request collected. */
   open: (options?: { width?: number, height?: number, dark?: boolean }) => Promise<Window>
+  /** For afterEach: keeps a picture of every window when a test failed. */
+  onFailure: (context: TestContext) => Promise<void>
   close: () => Promise<void>
 }
 export interface Window { page: Page, context: BrowserContext, problems: string[], outside: string[] }
@@ -57,6 +59,7 @@ export async function startApp(environment: Record<string, string> = {}, { empty
   }
   await start()
   const browser = await chromium.launch({ executablePath: process.env.CHROMIUM ?? '/usr/bin/chromium', args: chromiumFlags })
+  const windows: Window[] = []
   const known = empty ? { people: [], practices: [] } : JSON.parse(readFileSync(join(dataDir, 'demo-sign-ins.json'), 'utf8')) as { people: DemoPerson[], practices: DemoPractice[] }
   return {
     origin,
@@ -68,6 +71,9 @@ export async function startApp(environment: Record<string, string> = {}, { empty
       const found = known.people.find(p => p.role === role)
       if (!found) throw new Error(`The demonstration has no ${role}.`)
       return found
+    },
+    onFailure: async ({ task }) => {
+      if (task.result?.state === 'fail') await takePictures(task.name, windows)
     },
     kill,
     restart: async () => {
@@ -87,7 +93,9 @@ export async function startApp(environment: Record<string, string> = {}, { empty
       page.on('request', (request) => {
         if (!request.url().startsWith(origin) && !/^(data|blob|about):/.test(request.url())) outside.push(request.url())
       })
-      return { page, context, problems, outside }
+      const opened = { page, context, problems, outside }
+      windows.push(opened)
+      return opened
     },
     close: async () => {
       await browser.close()
@@ -95,6 +103,15 @@ export async function startApp(environment: Record<string, string> = {}, { empty
       await mail.close()
       rmSync(folder, { recursive: true, force: true })
     },
+  }
+}
+
+/** What every window showed when a test failed, in tests/e2e/out (not in the repository). */
+async function takePictures(name: string, windows: readonly Window[]): Promise<void> {
+  mkdirSync('tests/e2e/out', { recursive: true })
+  for (const [index, { page, problems }] of windows.entries()) {
+    await page.screenshot({ path: `tests/e2e/out/${name.replace(/[^a-z0-9]+/gi, '-').slice(0, 60)}-${index + 1}.png`, fullPage: true }).catch(() => undefined)
+    if (problems.length) console.error(`Window ${index + 1} at ${page.url()}: ${problems.join(' | ')}`)
   }
 }
 
