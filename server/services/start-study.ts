@@ -11,7 +11,7 @@ import { localDate } from './site-time'
 /** The patient of a booked referral is here. */
 export async function noteArrival(context: ServiceContext, { referralId }: { referralId: string }): Promise<void> {
   await context.db.transaction().execute(async (trx) => {
-    const booking = await trx.updateTable('booking').set({ state: 'arrived' }).where('referralId', '=', referralId).where('state', '=', 'booked').returningAll().executeTakeFirst()
+    const booking = await trx.updateTable('booking').set({ state: 'arrived', arrivedAt: now(context) }).where('referralId', '=', referralId).where('state', '=', 'booked').returningAll().executeTakeFirst()
     const referral = await trx.selectFrom('referral').select('patientId').where('id', '=', referralId).executeTakeFirst()
     if (!referral) throw new DomainError('not-found')
     if (!booking) throw new DomainError('wrong-state')

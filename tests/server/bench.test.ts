@@ -30,9 +30,11 @@ describe('the day', () => {
     const [late, early] = [await c.accepted(), await c.accepted()]
     await bookReferral(c.admin, { id: late, ...c.slot({ date: day, time: '23:30', minutes: 20 }) })
     await bookReferral(c.admin, { id: early, ...c.slot({ date: day, time: '00:00' }) })
+    t.clock.minutes(60)
     await noteArrival(by, { referralId: late })
     const list = await viewBenchDay(by, { siteId: c.site.id, date: day })
     expect(list.map(row => [row.referralId, row.state])).toEqual([[early, 'booked'], [late, 'arrived']])
+    expect(list.at(-1)?.stateSince, 'since when the patient waits').toBe(t.context.clock().toISOString())
     const { studyId } = await startStudy(by, { referralId: late })
     const started = (await viewBenchDay(by, { siteId: c.site.id, date: day })).find(row => row.referralId === late)
     expect(started).toMatchObject({ studyId, state: 'planned', room: 'Room 1' })

@@ -11,7 +11,7 @@ function booked(db: Database, { siteId, from, until }: Day) {
   return db.selectFrom('booking').innerJoin('referral', 'referral.id', 'booking.referralId').innerJoin('patient', 'patient.id', 'referral.patientId')
     .leftJoin('study', join => join.onRef('study.referralId', '=', 'referral.id').on('study.state', '<>', 'entered-in-error').on('booking.state', '=', 'attended'))
     .leftJoin('user as technologist', 'technologist.id', 'booking.technologistId')
-    .select(columns).select(['booking.id as bookingId', 'booking.state as bookingState', sql<string>`referral.state_since`.as('since')])
+    .select(columns).select(['booking.id as bookingId', 'booking.state as bookingState', sql<string>`coalesce(booking.arrived_at, referral.state_since)`.as('since')])
     .where('booking.siteId', '=', siteId).where('startsAt', '>=', from).where('startsAt', '<', until).where('booking.state', '<>', 'cancelled')
     .orderBy('startsAt').orderBy('booking.id').execute()
 }

@@ -10,6 +10,7 @@ export interface BookingTable {
   endsAt: string
   state: 'booked' | 'arrived' | 'attended' | 'did-not-attend' | 'cancelled'
   reason: Generated<string>
+  arrivedAt: string | null
   createdAt: string
   createdBy: string
 }
