@@ -8,21 +8,26 @@ const BATCH = 1_000
 const MOST_PROBLEMS = 20
 interface Link { seq: number, previousMac: string, mac: string }
 
+/** Checks both chains, as `checkChains` does, and keeps in the trail that it was done. */
+export async function verifyAudit(context: ServiceContext): Promise<LedgerCheck> {
+  await flushViews(context)
+  const { acts, views, head } = await checkChains(context)
+  const intact = acts.intact && views.intact
+  await context.db.transaction().execute(trx => recordAuditEvent(context, trx, { name: 'audit.verified', subject: 'audit', subjectId: 'both', data: { events: acts.links, views: views.links, intact } }))
+  return { at: now(context), acts, views, head }
+}
+
 /**
  * Recomputes both chains from their first link: a changed, removed, inserted or reordered link shows, and so does a cut-off
  * end, since the proof of the last link needs the key. What this cannot see is a whole older copy of the database put
  * back; the heads printed in reports and kept with backups show that.
- * Reads in batches and lets other requests in between.
+ * Reads in batches and lets other requests in between; writes nothing, so a copy opened for reading will do.
  */
-export async function verifyAudit(context: ServiceContext): Promise<LedgerCheck> {
-  await flushViews(context)
+export async function checkChains(context: Pick<ServiceContext, 'db' | 'keys'>): Promise<Omit<LedgerCheck, 'at'>> {
   const acts = await verifyChain(context.db, AUDIT_HEAD, context.keys.auditMac, after => actsAfter(context.db, after), link => context.keys.auditMac(auditLinkText(link)))
   const views = await verifyChain(context.db, VIEW_HEAD, context.keys.viewMac, after => viewsAfter(context.db, after), link => context.keys.viewMac(viewLinkText(link)))
   await checkPrintedHeads(context.db, acts)
-  const head = await auditHead(context.db)
-  const intact = acts.intact && views.intact
-  await context.db.transaction().execute(trx => recordAuditEvent(context, trx, { name: 'audit.verified', subject: 'audit', subjectId: 'both', data: { events: acts.links, views: views.links, intact } }))
-  return { at: now(context), acts, views, head }
+  return { acts, views, head: await auditHead(context.db) }
 }
 
 function actsAfter(db: Database, seq: number) {
