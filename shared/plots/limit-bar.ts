@@ -55,6 +55,8 @@ function allowedPart(limits: AppliedLimit[], scale: Scale): [number, number] {
   return [lower ? scale.at(lower.value) : 0, upper ? scale.at(upper.value) : 1]
 }
 
+/** Logarithms differ in the last digit between engines: the page drawn by the server has to be the one the browser draws. */
+const hundredths = (pixels: number) => Math.round(pixels * 100) / 100
 const clamp = (share: number) => Math.min(1, Math.max(0, share))
 /** Half a mark's width stays free at both ends. */
 const inset = 3
@@ -73,7 +75,7 @@ export function limitBarGeometry(result: Result, { width, mirrored = false }: Li
   const limits = limitsOf(result.verdict)
   if (limits.length === 0) return null
   const scale = scaleOf(result.quantity, limits)
-  const place = (share: number) => inset + (mirrored ? 1 - share : share) * (width - 2 * inset)
+  const place = (share: number) => hundredths(inset + (mirrored ? 1 - share : share) * (width - 2 * inset))
   const [from, to] = allowedPart(limits, scale).map(place).sort((a, b) => a - b) as [number, number]
   const value = result.value.kind === 'value' ? result.value : null
   const spread = value?.uncertainty
@@ -82,7 +84,7 @@ export function limitBarGeometry(result: Result, { width, mirrored = false }: Li
   return {
     width,
     height: limitBarHeight,
-    allowed: { x: from, width: to - from },
+    allowed: { x: from, width: hundredths(to - from) },
     ticks: limits.map(limit => place(scale.at(limit.value))),
     whisker: spread && spread[1] > spread[0] ? { from: spread[0], to: spread[1] } : null,
     mark: value ? placeMark(scale.at(value.value), place, mirrored) : null,

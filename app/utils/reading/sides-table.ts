@@ -87,6 +87,12 @@ function pairRows(right: Result[], left: Result[], keyOf: (result: Result) => st
   return [...rows.values()]
 }
 
+/** Computed and judged by no limit: folded away until asked for, so that the judged numbers are read first. */
+export function isFurther(row: SidesRow): boolean {
+  const results = [row.right, row.left].filter(result => result !== null)
+  return results.every(result => !result.typed && !result.flagged && result.verdict.kind === 'none') && row.difference === null
+}
+
 /** Side differences stand in the line of the value they compare: `at` of a difference names its quantity. */
 function withDifferences(group: SidesGroup, comparisons: ComparisonAssessment[]): SidesRow[] {
   const ids = [group.right?.runId, group.left?.runId].filter(id => id !== undefined)

@@ -1,3 +1,4 @@
+import type { Assessment } from '#shared/calculations/types'
 import type { DeliveryRow } from '#shared/schemas/delivery'
 import type { ImpressionLine } from '#shared/schemas/report'
 
@@ -28,4 +29,10 @@ export function signSentence(version: number, recipients: readonly Recipient[]):
 
 export function newImpressionLine(id: string): ImpressionLine {
   return { id, words: '', nerve: null, pattern: null, side: null, degree: null, abnormal: null }
+}
+
+/** By which sets and for whom a study was judged, in one line. */
+export function judgedBy({ setsUsed, person }: Pick<Assessment, 'setsUsed' | 'person'>): string {
+  const sets = setsUsed.map(set => `${set.title}, version ${set.version}`).join('; ')
+  return sets ? `limits: ${sets} · for ${person.words}` : `no limits applied · ${person.words}`
 }
