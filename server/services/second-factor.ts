@@ -8,6 +8,7 @@ import type { TotpStart } from '#shared/schemas/user'
 import { now, type ServiceContext } from './context'
 import { recordAuditEvent } from './record-audit-event'
 import { createSession, endSessions } from './sessions'
+import { countOwnCode, forgiveOwnCodes } from './sign-in-limits'
 import { verifyOwnPassword } from './verify-own-password'
 
 const PENDING = 'totp-pending'
@@ -50,10 +51,12 @@ export async function startSecondFactor(context: ServiceContext, user: { id: str
  * Sets the second factor once a code of the new secret, the password and (where one exists) a code of the old factor are
  * right. Every session ends and the present one goes on under a new id.
  * @returns ten recovery codes, shown this once (only their hashes are stored), and the new session's id for the cookie
- * @throws DomainError 'wrong-password' · 'not-valid' for a wrong code · 'link-used' when ten minutes have passed
+ * @throws DomainError 'wrong-password' · 'not-valid' for a wrong code · 'link-used' when ten minutes have passed ·
+ * 'too-many-requests' after ten wrong codes in 15 minutes
  */
 export async function confirmSecondFactor(context: ServiceContext, input: { userId: string, password: string, code: string, currentCode: string, agent: string }): Promise<{ recoveryCodes: string[], sessionId: string }> {
   if (!await verifyOwnPassword(context, input.userId, input.password)) throw new DomainError('wrong-password', { message: 'The password is not right. Nothing was changed.', fields: [{ path: 'password', message: 'The password is not right.' }] })
+  await countOwnCode(context.db, input.userId)
   const codes = Array.from({ length: RECOVERY_CODES }, makeRecoveryCode)
   const sessionId = await context.db.transaction().execute(async (trx) => {
     const user = await trx.selectFrom('user').selectAll().where('id', '=', input.userId).executeTakeFirstOrThrow()
@@ -66,6 +69,7 @@ export async function confirmSecondFactor(context: ServiceContext, input: { user
     await endSessions(context, trx, { userId: input.userId, because: 'second factor set' })
     return await createSession(context, trx, { userId: input.userId, secondFactor: true, agent: input.agent })
   })
+  await forgiveOwnCodes(context.db, input.userId)
   return { recoveryCodes: codes, sessionId }
 }
 

@@ -22,6 +22,8 @@ const limits = {
   accountDay: { points: 90, duration: 24 * 3600 },
   /** Passwords asked again inside a session: signing, change of password or factor. */
   own: { points: 10, duration: QUARTER },
+  /** Codes of the present second factor, asked when it is replaced: counted apart, since a right password forgives its own count. */
+  ownCode: { points: 10, duration: QUARTER },
   /** Calls with a one-time token. The token itself has 256 bits; this keeps the hashing of passwords from being driven by strangers. */
   link: { points: 30, duration: QUARTER },
 } as const
@@ -69,6 +71,15 @@ export async function countOwnAttempt(db: Database, userId: string): Promise<voi
 
 export async function forgiveOwnAttempts(db: Database, userId: string): Promise<void> {
   await limitersOf(db).own.delete(userId)
+}
+
+/** @throws DomainError 'too-many-requests' */
+export async function countOwnCode(db: Database, userId: string): Promise<void> {
+  await consume(db, 'ownCode', userId)
+}
+
+export async function forgiveOwnCodes(db: Database, userId: string): Promise<void> {
+  await limitersOf(db).ownCode.delete(userId)
 }
 
 /** @throws DomainError 'too-many-requests' */

@@ -42,22 +42,25 @@ export async function signIn(context: ServiceContext, input: SignInInput): Promi
   const active = user && !user.deactivatedAt ? user : null
   const right = await verifyPassword(active?.passwordHash, input.password)
   if (!active || !right) return await refuse(context, user, input, !user ? 'no such account' : !active ? 'deactivated account' : 'wrong password')
-  const sessionId = await openSession(context, active, input)
-  if (!sessionId) return await refuse(context, user, input, input.code ? 'wrong second factor' : 'second factor missing')
+  const { sessionId, because } = await openSession(context, active, input)
+  if (!sessionId) return await refuse(context, user, input, because)
   await forgiveAttempt(context.db, attempt)
   return { userId: active.id, sessionId, device: { name: deviceMarkName(context, active.id), mark: makeDeviceMark(context, active.id) } }
 }
 
-async function openSession(context: ServiceContext, user: User, input: SignInInput): Promise<string | null> {
-  const acting = actingAs(context, { userId: user.id, label: user.name, holdings: [] })
+/** Reads the account anew: whoever replaced password or factor while the old ones were checked ended every session. */
+async function openSession(context: ServiceContext, checked: User, input: SignInInput): Promise<{ sessionId?: string, because: string }> {
+  const acting = actingAs(context, { userId: checked.id, label: checked.name, holdings: [] })
   return await context.db.transaction().execute(async (trx) => {
+    const user = await trx.selectFrom('user').selectAll().where('id', '=', checked.id).where('passwordHash', '=', checked.passwordHash).where('deactivatedAt', 'is', null).executeTakeFirst()
+    if (!user) return { because: 'the account changed meanwhile' }
     const factor = user.totpEnabledAt ? await useSecondFactor(acting, trx, user, input.code) : 'none'
-    if (factor === null) return null
+    if (factor === null) return { because: input.code ? 'wrong second factor' : 'second factor missing' }
     if (input.previousSessionId) await endSession(acting, trx, context.keys.tokenHash(input.previousSessionId), 'replaced by a new sign-in')
     const sessionId = await createSession(acting, trx, { userId: user.id, secondFactor: factor !== 'none', agent: input.agent })
     await trx.updateTable('user').set({ lastSeenAt: now(context) }).where('id', '=', user.id).execute()
     await recordAuditEvent(acting, trx, { name: 'session.signed-in', subject: 'user', subjectId: user.id, data: { secondFactor: factor !== 'none', recoveryCode: factor === 'recovery' } })
-    return sessionId
+    return { sessionId, because: '' }
   })
 }
 

@@ -21,34 +21,41 @@ export function isSecure(settings: Pick<Settings, 'appOrigin'>): boolean {
   return settings.appOrigin.startsWith('https:')
 }
 
-/** The value of one cookie in a Cookie header. */
+/** The value of one cookie in a Cookie header; undefined when it is not there or no browser can have sent it so. */
 export function cookieValue(header: string | undefined, name: string): string | undefined {
   for (const part of header?.split(';') ?? []) {
     const at = part.indexOf('=')
-    if (part.slice(0, at).trim() === name) return decodeURIComponent(part.slice(at + 1).trim())
+    if (part.slice(0, at).trim() === name) return decoded(part.slice(at + 1).trim())
   }
   return undefined
+}
+
+function decoded(text: string): string | undefined {
+  try {
+    return decodeURIComponent(text)
+  }
+  catch { return undefined }
 }
 
 /**
  * Decrypting the cookie costs far more than reading the session's row, so the decrypted id is kept, by the hash of the
  * cookie. Only this pure step is cached: whether the session still holds is asked of the database at every request.
  */
-const decoded = new Map<string, { sessionId: string, expiresAt: number }>()
+const decrypted = new Map<string, { sessionId: string, expiresAt: number }>()
 
 export async function sessionIdOf(cookie: string, secret: string, salt: string, nowMs: number): Promise<string | null> {
   const key = createHash('sha256').update(salt).update('\0').update(secret).update('\0').update(cookie).digest('base64')
-  const known = decoded.get(key)
+  const known = decrypted.get(key)
   if (known) {
-    decoded.delete(key)
+    decrypted.delete(key)
     if (known.expiresAt <= nowMs) return null
-    decoded.set(key, known)
+    decrypted.set(key, known)
     return known.sessionId
   }
   const token = await decode({ token: cookie, secret, salt }).catch(() => null)
   if (typeof token?.sid !== 'string') return null
-  if (decoded.size >= CACHE_SIZE) decoded.delete(decoded.keys().next().value!)
-  decoded.set(key, { sessionId: token.sid, expiresAt: (token.exp ?? 0) * 1000 })
+  if (decrypted.size >= CACHE_SIZE) decrypted.delete(decrypted.keys().next().value!)
+  decrypted.set(key, { sessionId: token.sid, expiresAt: (token.exp ?? 0) * 1000 })
   return token.sid
 }
 

@@ -1,5 +1,6 @@
 import { sql } from 'kysely'
 import type { Database, Trx } from '#server/database/connection'
+import type { Role } from '#shared/permissions'
 import type { PageQuery } from '#shared/schemas/common'
 
 /** Every role holding of these people at open sites, past and future ones too; services/current-holdings.ts keeps those that count today. */
@@ -8,6 +9,11 @@ export async function allHoldings(db: Database | Trx, personIds: readonly string
   return await db.selectFrom('roleHolding').innerJoin('site', 'site.id', 'roleHolding.siteId').where('site.closedAt', 'is', null).where('roleHolding.userId', 'in', personIds)
     .select(['roleHolding.id', 'roleHolding.userId', 'roleHolding.siteId', 'site.name as siteName', 'site.timeZone', 'roleHolding.role', 'roleHolding.startsOn', 'roleHolding.endsOn'])
     .orderBy('site.name').orderBy('roleHolding.role').execute()
+}
+
+/** True for whoever holds, held or will hold one of these roles, at whatever site. */
+export async function everHeld(trx: Trx, personId: string, roles: readonly Role[]): Promise<boolean> {
+  return await trx.selectFrom('roleHolding').select('id').where('userId', '=', personId).where('role', 'in', roles).executeTakeFirst() !== undefined
 }
 
 /** People who ever held a role at one of the sites, and people without any role (just added). */
