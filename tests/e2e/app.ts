@@ -160,13 +160,18 @@ const axeSource = createRequire(import.meta.url).resolve('axe-core/axe.min.js')
 
 interface AxeViolation { id: string, help: string, nodes: { target: string[], failureSummary: string }[] }
 
-/** axe on the page as it stands; says which rule and where. */
-export async function expectNoAxeFindings(page: Page) {
+/** What axe finds on the page as it stands: which rule and where. `only` limits it to some rules. */
+export async function axeFindings(page: Page, only: readonly string[] = []): Promise<string[]> {
   // The page's own policy refuses an added script tag, so the source is evaluated.
-  await page.evaluate(readFileSync(axeSource, 'utf8'))
-  const violations = await page.evaluate(async () => {
+  if (!await page.evaluate(() => 'axe' in window)) await page.evaluate(readFileSync(axeSource, 'utf8'))
+  const violations = await page.evaluate(async (rules) => {
     const { axe } = window as unknown as { axe: { run: (root: Document, options: object) => Promise<{ violations: AxeViolation[] }> } }
-    return (await axe.run(document, { runOnly: ['wcag2a', 'wcag2aa', 'wcag21a', 'wcag21aa', 'wcag22aa', 'best-practice'] })).violations
-  })
-  expect(violations.map(v => `${v.id}: ${v.help} at ${v.nodes.slice(0, 4).map(n => n.target.join(' ')).join(' | ')}`)).toEqual([])
+    const tags = ['wcag2a', 'wcag2aa', 'wcag21a', 'wcag21aa', 'wcag22aa', 'best-practice']
+    return (await axe.run(document, { runOnly: rules.length ? rules : tags })).violations
+  }, only)
+  return violations.map(v => `${v.id}: ${v.help} at ${v.nodes.slice(0, 4).map(n => n.target.join(' ')).join(' | ')}`)
+}
+
+export async function expectNoAxeFindings(page: Page) {
+  expect(await axeFindings(page)).toEqual([])
 }
