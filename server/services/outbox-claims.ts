@@ -1,8 +1,9 @@
 import type { Trx } from '#server/database/connection'
+import { laterVersion } from '#server/database/queries/deliveries'
 import type { OutboxMail } from '#server/database/tables/outbox-mail'
 import { now, type ServiceContext } from './context'
 import { moveState } from './move-state'
-import { markUncertain, type Claimed } from './outbox-outcomes'
+import { markUncertain, withdrawSuperseded, type Claimed } from './outbox-outcomes'
 
 /** Longer than the longest attempt: while a lease runs, nobody else touches the mail. */
 export const leaseMinutes = 5
@@ -39,12 +40,16 @@ async function sendAgain(context: ServiceContext, trx: Trx, mail: OutboxMail): P
   if (mail.deliveryId) await moveState(context, trx, { subject: 'delivery', id: mail.deliveryId, from: 'sending', to: 'failed', reason: 'interrupted before anything was accepted; it is tried again' })
 }
 
-/** Takes what is due for this process, each under a lease. */
+/** Takes what is due for this process, each under a lease. A version that was replaced meanwhile stays here. */
 export async function claimDue(context: ServiceContext, owner: string, most: number): Promise<Claimed[]> {
   return await context.db.transaction().execute(async (trx) => {
     const due = await trx.selectFrom('outboxMail').selectAll().where('state', 'in', ['queued', 'failed']).where('dueAt', '<=', now(context)).orderBy('dueAt').orderBy('id').limit(most).execute()
     const claimed: Claimed[] = []
-    for (const mail of due) claimed.push(await claim(context, trx, mail, owner))
+    for (const mail of due) {
+      const replacedBy = mail.deliveryId ? await laterVersion(trx, mail.deliveryId) : undefined
+      if (replacedBy === undefined) claimed.push(await claim(context, trx, mail, owner))
+      else await withdrawSuperseded(context, trx, mail, replacedBy)
+    }
     return claimed
   })
 }

@@ -1,5 +1,5 @@
 import type { Trx } from '#server/database/connection'
-import { deliveryFacts, type DeliveryFacts } from '#server/database/queries/deliveries'
+import { deliveryFacts, laterVersion, type DeliveryFacts } from '#server/database/queries/deliveries'
 import type { OutboxMail } from '#server/database/tables/outbox-mail'
 import type { SendOutcome } from '#server/email/transport'
 import { now, type ServiceContext } from './context'
@@ -44,15 +44,26 @@ async function markSent(context: ServiceContext, trx: Trx, mail: Claimed): Promi
 }
 
 async function markFailed(context: ServiceContext, trx: Trx, mail: Claimed, because: string, permanent: boolean): Promise<void> {
+  const later = mail.deliveryId ? await laterVersion(trx, mail.deliveryId) : undefined
   const wait = retryMinutes[mail.attempts - 1]
-  const final = permanent || wait === undefined
+  const final = permanent || wait === undefined || later !== undefined
   const dueAt = final ? mail.dueAt : new Date(context.clock().getTime() + wait * 60_000).toISOString()
   await trx.updateTable('outboxMail').set({ state: final ? 'given-up' : 'failed', dueAt, leaseOwner: null, leaseUntil: null, lastError: because }).where('id', '=', mail.id).execute()
   const delivery = mail.deliveryId ? await deliveryFacts(trx, mail.deliveryId) : undefined
   if (!delivery) return
-  await moveState(context, trx, { subject: 'delivery', id: delivery.id, from: 'sending', to: final ? 'given-up' : 'failed', reason: because })
+  await moveState(context, trx, { subject: 'delivery', id: delivery.id, from: 'sending', to: final && later === undefined ? 'given-up' : 'failed', reason: because })
   await recordAuditEvent(context, trx, { name: 'delivery.failed', ...about(delivery), data: { ...named(delivery), attempt: mail.attempts, final } })
-  if (final) await createTask(context, trx, { kind: 'delivery-given-up', ...taskSite(delivery), sentence: `${delivery.number}, version ${delivery.version}, could not be mailed to ${delivery.recipient}, ${delivery.practiceName}. Check the address, then send it again or deliver it by hand.` })
+  if (later !== undefined) await withdrawSuperseded(context, trx, mail, later)
+  else if (final) await createTask(context, trx, { kind: 'delivery-given-up', ...taskSite(delivery), sentence: `${delivery.number}, version ${delivery.version}, could not be mailed to ${delivery.recipient}, ${delivery.practiceName}. Check the address, then send it again or deliver it by hand.` })
+}
+
+/** What certainly did not leave and was replaced by a later version must not arrive after it. */
+export async function withdrawSuperseded(context: ServiceContext, trx: Trx, mail: OutboxMail, later: number): Promise<void> {
+  await trx.updateTable('outboxMail').set({ state: 'withdrawn', leaseOwner: null, leaseUntil: null }).where('id', '=', mail.id).execute()
+  const delivery = mail.deliveryId ? await deliveryFacts(trx, mail.deliveryId) : undefined
+  if (!delivery) return
+  await moveState(context, trx, { subject: 'delivery', id: delivery.id, from: ['queued', 'failed'], to: 'withdrawn', reason: `superseded by version ${later}` })
+  await recordAuditEvent(context, trx, { name: 'delivery.withdrawn', ...about(delivery), data: { ...named(delivery), wasSent: false } })
 }
 
 /** Never sent again by the program: only a person can find out, by the Message-ID, whether it arrived. */

@@ -1,5 +1,5 @@
 import type { Trx } from '#server/database/connection'
-import type { DeliveryFacts } from '#server/database/queries/deliveries'
+import { laterVersion, type DeliveryFacts } from '#server/database/queries/deliveries'
 import { recipientById } from '#server/database/queries/recipients'
 import { DomainError } from '#shared/errors'
 import { now, type ServiceContext } from './context'
@@ -12,9 +12,11 @@ import { intactSnapshot } from './verify-version'
 /**
  * Puts a delivery back into the outbox, to the address that the directory has now. The Message-ID stays: if it did arrive
  * the first time, the recipient's program can tell that it is the same mail.
- * @throws DomainError 'not-valid' when the recipient cannot be mailed
+ * @throws DomainError 'not-valid' when the recipient cannot be mailed, or a later version replaces this one
  */
 export async function queueAgain(context: ServiceContext, trx: Trx, delivery: DeliveryFacts, reason: string): Promise<void> {
+  const later = await laterVersion(trx, delivery.id)
+  if (later !== undefined) throw new DomainError('not-valid', { fields: [{ path: 'outcome', message: `Version ${later} replaces this one: it would arrive after its correction. Send version ${later}, or settle this one another way.` }] })
   const site = await trx.selectFrom('site').select('timeZone').where('id', '=', delivery.siteId).executeTakeFirstOrThrow()
   const recipient = await recipientById(trx, delivery.physicianId, localDate(context.clock(), site.timeZone))
   if (!recipient?.reachable) throw new DomainError('not-valid', { fields: [{ path: 'outcome', message: `It cannot be mailed: ${recipient?.because ?? 'the recipient is not in the directory'}.` }] })

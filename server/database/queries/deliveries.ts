@@ -17,6 +17,13 @@ export async function deliveryFacts(db: Database, deliveryId: string) {
 }
 export type DeliveryFacts = NonNullable<Awaited<ReturnType<typeof deliveryFacts>>>
 
+/** The version that replaces the one of this delivery, or undefined while that is the latest. */
+export async function laterVersion(db: Database, deliveryId: string): Promise<number | undefined> {
+  const row = await db.selectFrom('delivery').innerJoin('reportVersion as own', 'own.id', 'delivery.reportVersionId').innerJoin('reportVersion as later', join => join.onRef('later.reportId', '=', 'own.reportId').onRef('later.version', '>', 'own.version'))
+    .select('later.version').where('delivery.id', '=', deliveryId).orderBy('later.version', 'desc').executeTakeFirst()
+  return row?.version
+}
+
 export interface DispatchWish { siteIds: string[], state?: DeliveryState }
 
 const wished = (db: Database, { siteIds, state }: DispatchWish) => db.selectFrom('delivery').where('delivery.siteId', 'in', siteIds)

@@ -22,7 +22,7 @@ export type MailData<T extends MailTemplate> = z.input<(typeof mailTemplates)[T]
 export function renderMail(name: string, data: unknown, appOrigin: string): MailText {
   if (!Object.hasOwn(mailTemplates, name)) throw new Error('No mail template has this name.')
   const found = mailTemplates[name as MailTemplate] as unknown as Template<z.ZodType>
-  return found.render(found.schema.parse(data), appOrigin)
+  return found.render(found.schema.parse(data), new URL(appOrigin).origin)
 }
 
 export type { MailText } from './mail-text'
