@@ -40,6 +40,7 @@ export const auditEvents = {
   'site.added': event(nothing, () => 'added a site'),
   'site.changed': event(fields, data => `changed a site: ${list(data.fields)}`),
   'organisation.set-up': event(nothing, () => 'set up the organisation'),
+  'demonstration.filled': event(z.object({ studies: z.number().int() }), data => `filled the demonstration with ${data.studies} invented studies`),
   'audit.verified': event(z.object({ events: z.number().int(), views: z.number().int(), intact: z.boolean() }), data => `verified the trail: ${data.events} events and ${data.views} views, ${data.intact ? 'intact' : 'NOT intact'}`),
   'record.opened-with-reason': event(because, data => `opened a record outside the own sites: ${data.because}`),
 
