@@ -180,7 +180,7 @@ it('writes the report and marks it ready', async () => {
 it('returns it with a question; the changed latency moves flags and sentences', async () => {
   const reader = neurologist.page
   await button(reader, /Return to bench/).click()
-  await reader.getByLabel('Question').fill('Was the distal latency measured to the onset?')
+  await reader.getByRole('textbox', { name: 'Question', exact: true }).fill('Was the distal latency measured to the onset?')
   await button(reader, 'Return study to bench').click()
   const { page } = technologist
   await visit(page, `${app.origin}/bench/${studyPath}`)
@@ -202,7 +202,7 @@ it('returns it with a question; the changed latency moves flags and sentences', 
 it('changed back and handed over again, it is signed with the password and a meaning', async () => {
   const reader = neurologist.page
   await button(reader, /Return to bench/).click()
-  await reader.getByLabel('Question').fill('The first value was right: enter 5.2 again.')
+  await reader.getByRole('textbox', { name: 'Question', exact: true }).fill('The first value was right: enter 5.2 again.')
   await button(reader, 'Return study to bench').click()
   const { page } = technologist
   await visit(page, `${app.origin}/bench/${studyPath}`)
@@ -218,6 +218,7 @@ it('changed back and handed over again, it is signed with the password and a mea
   await reader.getByText('The password is not right').first().waitFor()
   await reader.getByLabel('Your password, again').fill(app.person('neurologist').password)
   await button(reader, 'Sign report').click()
+  await reader.getByRole('link', { name: 'Open the report' }).click()
   await reader.waitForURL(/\/reports\//)
   await reader.getByRole('heading', { name: 'Impression' }).waitFor()
   expect(await reader.locator('main').innerText()).toContain('RIGHT median neuropathy at the wrist')
