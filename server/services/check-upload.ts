@@ -43,10 +43,19 @@ export function pdfPages(text: string): number {
   return Math.max(objects, ...counts)
 }
 
+/**
+ * Names as a PDF reader takes them: each character may be written as # and two hexadecimal digits (ISO 32000-2, 7.3.5,
+ * from memory). `JS` counts only before a text or a reference: three bytes stand by chance in every larger scan.
+ */
+function hasProgramOrFile(text: string): boolean {
+  const plain = text.replace(/#([0-9A-Fa-f]{2})/g, (_, digits: string) => String.fromCharCode(Number.parseInt(digits, 16)))
+  return /\/(?:JavaScript|Launch|EmbeddedFiles?)\b/.test(plain) || /\/JS\s*(?:[(<]|\d+\s+\d+\s+R)/.test(plain)
+}
+
 function checkPdf(bytes: Uint8Array): Uint8Array {
   const text = Buffer.from(bytes.buffer, bytes.byteOffset, bytes.byteLength).toString('latin1')
   if (!text.startsWith('%PDF-') || !text.slice(-2048).includes('%%EOF')) throw refused('The PDF is cut short or damaged. Nothing was stored.')
-  if (/\/(?:JavaScript|JS|Launch|EmbeddedFiles?)\b/.test(text)) throw refused('The PDF has a program or another file inside. Print it to a new PDF and send that. Nothing was stored.')
+  if (hasProgramOrFile(text)) throw refused('The PDF has a program or another file inside. Print it to a new PDF and send that. Nothing was stored.')
   if (pdfPages(text) > MOST_PDF_PAGES) throw refused(`The PDF has more than ${MOST_PDF_PAGES} pages. Nothing was stored.`)
   return bytes
 }

@@ -32,7 +32,7 @@ type NewVersion = z.output<typeof newVersionSchema>
  * one has not left yet is held back.
  *
  * It rests on the values that were frozen at the first signature, judged by the limits that were used then.
- * @throws DomainError 'wrong-password', 'wrong-state', 'not-valid', 'not-ready'
+ * @throws DomainError 'wrong-password', 'wrong-state', 'changed-meanwhile', 'not-valid', 'not-ready'
  */
 export async function makeNewVersion(context: ServiceContext, { reportId, ...input }: { reportId: string } & NewVersion): Promise<SignedReport> {
   const place = await context.db.selectFrom('report').innerJoin('study', 'study.id', 'report.studyId').select(['study.siteId', 'study.patientId']).where('report.id', '=', reportId).executeTakeFirst()
@@ -46,6 +46,7 @@ async function signNext(context: ServiceContext, trx: Trx, reportId: string, inp
   const study = await trx.selectFrom('study').selectAll().where('id', '=', report.studyId).executeTakeFirstOrThrow()
   const last = await reportVersion(trx, reportId)
   if (!last || !mayMove(reportMoves, last.status, input.kind)) throw new DomainError('wrong-state', { details: { status: last?.status ?? 'preliminary' } })
+  if (input.replaces !== undefined && input.replaces !== last.version) throw new DomainError('changed-meanwhile', { message: `Version ${last.version} was signed meanwhile. Nothing was signed; look at it first.`, details: { version: last.version } })
   const before = intactSnapshot(last)
   const snapshot = await nextSnapshot(context, trx, { before, sha256: last.snapshotSha256, report, study, input })
   const recipients = await recipientsOfVersion(trx, { referralId: study.referralId, reportId }, localDate(context.clock(), snapshot.site.timeZone))

@@ -1,8 +1,10 @@
 import type { Trx } from '#server/database/connection'
 import type { Study } from '#server/database/tables/study'
+import type { Policy } from '#shared/calculations/types'
 import { DomainError } from '#shared/errors'
 import { meanings, type SignInput } from '#shared/schemas/report'
 import { buildSnapshot, signatureOf } from './build-snapshot'
+import { canonicalJson } from './canonical-json'
 import { now, type ServiceContext } from './context'
 import { aboutStudy } from './editable-study'
 import { moveState } from './move-state'
@@ -66,14 +68,14 @@ async function signInside(context: ServiceContext, trx: Trx, studyId: string, in
   const signature = await signatureOf(context, trx, input.meaning, now(context), facts.site.timeZone)
   const snapshot = await buildSnapshot(context, trx, facts, { number: report.number, signature })
   const version = await storeVersion(context, trx, report, snapshot, study, 'preliminary')
-  await moveOn(context, trx, study)
+  await moveOn(context, trx, study, facts.assessed.policy)
   await queueDeliveries(context, trx, { version, snapshot, siteId: study.siteId, patientId: study.patientId }, facts.recipients)
   return { reportId: report.id, version: version.version }
 }
 
-/** The study is read; its referral is answered with the first final report. */
-async function moveOn(context: ServiceContext, trx: Trx, study: Study): Promise<void> {
+/** The study is read and stays judged by what it was signed with; its referral is answered with the first final report. */
+async function moveOn(context: ServiceContext, trx: Trx, study: Study, policy: Policy): Promise<void> {
   await moveState(context, trx, { subject: 'study', id: study.id, from: 'handed-over', to: 'read' })
-  await trx.updateTable('study').set({ readerId: study.readerId ?? context.actor.userId, returnQuestion: '', returnRunId: null }).where('id', '=', study.id).execute()
+  await trx.updateTable('study').set({ readerId: study.readerId ?? context.actor.userId, returnQuestion: '', returnRunId: null, policyJson: canonicalJson(policy) }).where('id', '=', study.id).execute()
   await moveState(context, trx, { subject: 'referral', id: study.referralId, from: 'attended', to: 'answered' })
 }

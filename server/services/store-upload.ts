@@ -13,13 +13,16 @@ import { recordView } from './record-view'
 
 const MOST_FILES = 20
 
+/** A sender may name a file at any length; what comes before its last 300 characters is not looked at. */
+const LONGEST_NAME = 300
+
 /**
  * A name that is safe in a header, a list and a download folder: no path, no control characters, and the ending of what
  * the file really is.
  * @example safeName('..\\..\\scan.pdf.exe', 'pdf') // => 'scan.pdf.pdf'
  */
 export function safeName(sent: string, extension: string): string {
-  const base = (sent.split(/[/\\]/).at(-1) ?? '').replace(/[\p{C}"<>:|?*;%]/gu, '').replace(/\.[^.]{1,8}$/, '').replace(/^[.\s]+|[.\s]+$/g, '').slice(0, 100)
+  const base = (sent.slice(-LONGEST_NAME).split(/[/\\]/).at(-1) ?? '').replace(/[\p{C}"<>:|?*;%]/gu, '').replace(/\.[^.]{1,8}$/, '').replace(/^[.\s]+|[.\s]+$/g, '').slice(0, 100)
   return `${base || 'letter'}.${extension}`
 }
 

@@ -52,11 +52,11 @@ export async function ownVersion(context: ServiceContext, { reportId, version }:
 
 export interface DeskReportView { report: ReportView, deliveryId: string, acknowledgedAt: string | null }
 
-/** The same frozen copy as in the laboratory, with the versions that were sent here. @throws DomainError as `ownVersion` */
+/** The same frozen copy as in the laboratory, with the versions that were sent here; what went back inside stays inside. @throws DomainError as `ownVersion` */
 export async function viewDeskReport(context: ServiceContext, asked: { reportId: string, version?: number }): Promise<DeskReportView> {
   const own = await ownVersion(context, asked)
   const report = await viewReport(context, { reportId: asked.reportId, version: own.version })
-  return { report: { ...report, versions: report.versions.filter(line => own.versions.includes(line.version)) }, deliveryId: own.deliveryId, acknowledgedAt: own.acknowledgedAt }
+  return { report: { ...report, versions: report.versions.filter(line => own.versions.includes(line.version)), route: report.route.map(node => ({ ...node, wentBack: [] })) }, deliveryId: own.deliveryId, acknowledgedAt: own.acknowledgedAt }
 }
 
 /** The stored PDF of such a version, in clear: the connection and the sign-in protect it. @throws DomainError as `ownVersion` */

@@ -61,7 +61,8 @@ export const readySchema = signSchema.pick({ draftRevision: true, fingerprint: t
 export const versionQuerySchema = z.object({ version: z.coerce.number().int().min(1).optional() })
 export type SignInput = z.infer<typeof signSchema>
 
-export const newVersionSchema = z.object({ kind: z.enum(['appended', 'amended', 'corrected', 'entered-in-error']), reason: z.string().trim().min(3, 'Say what changed and why.').max(1000), draft: reportDraftSchema.optional(), password: z.string().min(1, 'Enter your password.').max(1024), meaning: z.enum(meanings) })
+/** `replaces`: the version that the signer had before them; one that was signed meanwhile refuses. */
+export const newVersionSchema = z.object({ replaces: z.number().int().min(1).optional(), kind: z.enum(['appended', 'amended', 'corrected', 'entered-in-error']), reason: z.string().trim().min(3, 'Say what changed and why.').max(1000), draft: reportDraftSchema.optional(), password: z.string().min(1, 'Enter your password.').max(1024), meaning: z.enum(meanings) })
 
 export interface ReadingRow {
   studyId: string

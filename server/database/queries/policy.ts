@@ -3,8 +3,9 @@ import { defaultPolicy } from '#shared/calculations/types'
 import type { Database } from '../connection'
 import type { Study } from '../tables/study'
 
-/** What a study is judged by: its site's temperatures and uncertainties, and the sets in use there on its day. */
-export async function policyOf(db: Database, study: Pick<Study, 'siteId' | 'studyDate' | 'excludedEntrapment'>): Promise<Policy> {
+/** What a study is judged by: its site's temperatures and uncertainties, and the sets in use there on its day; once it is signed, what it was signed with. */
+export async function policyOf(db: Database, study: Pick<Study, 'siteId' | 'studyDate' | 'excludedEntrapment'> & Partial<Pick<Study, 'policyJson'>>): Promise<Policy> {
+  if (study.policyJson) return JSON.parse(study.policyJson) as Policy
   const site = await db.selectFrom('site').select(['handMinimumC', 'footMinimumC', 'distanceUncertaintyMm', 'latencyUncertaintyMs']).where('id', '=', study.siteId).executeTakeFirstOrThrow()
   return { ...defaultPolicy, ...site, leaveOutEntrapmentSites: study.excludedEntrapment === 1, adopted: await adoptedSets(db, study.siteId, study.studyDate) }
 }

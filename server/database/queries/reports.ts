@@ -12,6 +12,11 @@ export async function siteOfReport(db: Database, reportId: string): Promise<stri
   return row?.siteId ?? null
 }
 
+/** The site and the patient of a report, as a look at it is noted. */
+export async function placeOfReport(db: Database, reportId: string): Promise<{ siteId: string, patientId: string } | undefined> {
+  return await db.selectFrom('report').innerJoin('study', 'study.id', 'report.studyId').select(['study.siteId', 'study.patientId']).where('report.id', '=', reportId).executeTakeFirst()
+}
+
 /** The version asked for, or the latest. */
 export async function reportVersion(db: Database, reportId: string, version?: number): Promise<ReportVersion | undefined> {
   return await db.selectFrom('reportVersion').selectAll().where('reportId', '=', reportId)

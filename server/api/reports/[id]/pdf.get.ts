@@ -1,6 +1,6 @@
 import { setResponseHeaders } from 'h3'
 import * as z from 'zod'
-import { siteOfReport } from '#server/database/queries/reports'
+import { placeOfReport, siteOfReport } from '#server/database/queries/reports'
 import { reportPdf } from '#server/services/make-report-pdf'
 import { recordView } from '#server/services/record-view'
 import { versionAsked } from '#server/services/view-report'
@@ -16,7 +16,7 @@ export default defineApiHandler({
   handle: async ({ event, context, params, query }) => {
     const version = await versionAsked(context, params.id, query.version)
     const pdf = await reportPdf(context, version.id)
-    recordView(context, { subject: 'report', subjectId: params.id, siteId: await siteOfReport(context.db, params.id) })
+    recordView(context, { subject: 'report', subjectId: params.id, ...await placeOfReport(context.db, params.id) })
     setResponseHeaders(event, { 'Content-Type': 'application/pdf', 'Content-Disposition': 'inline; filename="report.pdf"', 'X-Content-Type-Options': 'nosniff' })
     return Buffer.from(pdf.bytes)
   },
