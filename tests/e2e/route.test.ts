@@ -16,6 +16,7 @@ let technologist: Window
 let neurologist: Window
 let referralPath = ''
 let studyPath = ''
+let reportNumber = ''
 
 beforeAll(async () => {
   app = await startApp()
@@ -221,7 +222,9 @@ it('changed back and handed over again, it is signed with the password and a mea
   await reader.getByRole('link', { name: 'Open the report' }).click()
   await reader.waitForURL(/\/reports\//)
   await reader.getByRole('heading', { name: 'Impression' }).waitFor()
-  expect(await reader.locator('main').innerText()).toContain('RIGHT median neuropathy at the wrist')
+  const report = await reader.locator('main').innerText()
+  expect(report).toContain('RIGHT median neuropathy at the wrist')
+  reportNumber = /REP-\d{4}-\d+/.exec(report)![0]
   await expectNoAxeFindings(reader)
 })
 
@@ -310,7 +313,7 @@ async function answerChecks(page: Page): Promise<void> {
 
 async function arrived({ mail }: App) {
   for (let tries = 0; tries < 100; tries++) {
-    const found = mail.mails.find(each => /is ready/.test(each.mail.subject ?? ''))
+    const found = mail.mails.find(each => each.mail.subject?.includes(reportNumber))
     if (found) return found.mail
     await new Promise(done => setTimeout(done, 1000))
   }
