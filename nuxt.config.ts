@@ -4,10 +4,8 @@ const root = (path: string) => fileURLToPath(new URL(path, import.meta.url))
 
 export default defineNuxtConfig({
   modules: ['@pinia/nuxt', '@nuxtjs/tailwindcss', 'nuxt-security', '@nuxt/eslint', '@nuxt/test-utils/module'],
-  // Written out so that nobody has to guess: Nuxt 4 keeps the application in app/.
-  srcDir: 'app/',
-  compatibilityDate: '2026-01-01',
-  telemetry: false,
+  components: [{ path: '~/components', pathPrefix: false }],
+  imports: { dirs: ['composables', 'stores'] },
   devtools: { enabled: false },
   css: [
     '@fontsource/ibm-plex-sans/latin-400.css',
@@ -16,22 +14,6 @@ export default defineNuxtConfig({
     '@fontsource/ibm-plex-sans/latin-ext-600.css',
     '@vuepic/vue-datepicker/dist/main.css',
   ],
-  // No manifest request: nothing is fetched that the page does not need.
-  experimental: { appManifest: false },
-  components: [{ path: '~/components', pathPrefix: false }],
-  imports: { dirs: ['composables', 'stores'] },
-  // `reference-tables/` and `migrations/` stand outside the folders that Nuxt knows.
-  alias: {
-    '#reference-tables': root('./reference-tables'),
-    '#migrations': root('./migrations'),
-    '#server': root('./server'),
-  },
-  tailwindcss: { cssPath: '~/assets/css/main.css', configPath: 'tailwind.config.ts', viewer: false },
-  typescript: {
-    strict: true,
-    typeCheck: false,
-    sharedTsConfig: { include: ['../reference-tables/**/*', '../tests/unit/**/*'] },
-  },
   runtimeConfig: {
     dataDir: '.data/orthodrome', // NUXT_DATA_DIR
     keyFile: '', // NUXT_KEY_FILE; empty: <dataDir>.key, beside the data folder and not inside it
@@ -42,11 +24,28 @@ export default defineNuxtConfig({
     idleMinutes: 20, // NUXT_IDLE_MINUTES
     trustProxy: '', // NUXT_TRUST_PROXY: '1' behind one reverse proxy of yours, which then says who calls
   },
-  vite: { server: { watch: { ignored: ['**/.data/**', '**/data/**'] } } },
+  // Written out so that nobody has to guess: Nuxt 4 keeps the application in app/.
+  srcDir: 'app/',
+  // `reference-tables/` and `migrations/` stand outside the folders that Nuxt knows.
+  alias: {
+    '#reference-tables': root('./reference-tables'),
+    '#migrations': root('./migrations'),
+    '#server': root('./server'),
+  },
+  // No manifest request: nothing is fetched that the page does not need.
+  experimental: { appManifest: false },
+  compatibilityDate: '2026-01-01',
   nitro: {
     typescript: { tsConfig: { include: ['../migrations/**/*', '../tests/server/**/*'] } },
     serverAssets: [{ baseName: 'fonts', dir: './assets/fonts' }],
   },
+  vite: { server: { watch: { ignored: ['**/.data/**', '**/data/**'] } } },
+  typescript: {
+    strict: true,
+    typeCheck: false,
+    sharedTsConfig: { include: ['../reference-tables/**/*', '../tests/unit/**/*'] },
+  },
+  telemetry: false,
   eslint: { config: { stylistic: { semi: false, quotes: 'single', indent: 2 } } },
   security: {
     // The routes that need a limit have their own (server/services/sign-in-limits.ts): this one counts pages too.
@@ -71,7 +70,10 @@ export default defineNuxtConfig({
         'upgrade-insecure-requests': false,
       },
       crossOriginEmbedderPolicy: false,
+      // A year, as OWASP ASVS 5.0.0, 3.4.1, asks for; browsers heed it over TLS only.
+      strictTransportSecurity: { maxAge: 31_536_000, includeSubdomains: true },
       referrerPolicy: 'no-referrer',
     },
   },
+  tailwindcss: { cssPath: '~/assets/css/main.css', configPath: 'tailwind.config.ts', viewer: false },
 })
