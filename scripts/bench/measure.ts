@@ -1,5 +1,3 @@
-import { performance } from 'node:perf_hooks'
-
 export interface Figure {
   what: string
   /** What was measured and what it is measured against, each with its unit. */
@@ -38,15 +36,19 @@ export async function against(rounds: number, one: () => Promise<number> | numbe
   return { one: median(pairs.map(pair => pair[0])), other: median(pairs.map(pair => pair[1])), ratio: median(pairs.map(([a, b]) => a / b)) }
 }
 
-/** Milliseconds of processor time for one call, from as many calls as fit into the time: what others do on this machine counts less. */
+/** Processor time of this program so far, in ms. */
+export function usedMs(): number {
+  const { user, system } = process.cpuUsage()
+  return (user + system) / 1000
+}
+
+/** Milliseconds of processor time for one call, from as many calls as fit into so much of it: what others do on this machine counts less. */
 export function timeOf(act: (turn: number) => unknown, forMs: number): number {
-  const from = performance.now()
-  const before = process.cpuUsage()
+  const from = usedMs()
   let turns = 0
   do act(turns++)
-  while (performance.now() - from < forMs)
-  const { user, system } = process.cpuUsage(before)
-  return (user + system) / 1000 / turns
+  while (usedMs() - from < forMs)
+  return (usedMs() - from) / turns
 }
 
 const digits = (value: number) => value >= 100 ? 0 : value >= 10 ? 1 : value >= 1 ? 2 : 3

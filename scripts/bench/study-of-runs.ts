@@ -1,4 +1,5 @@
-import { techniques } from '#shared/catalogue/nerves'
+import { createHash } from 'node:crypto'
+import { techniqueOf } from '#shared/catalogue/nerves'
 import type { Technique } from '#shared/catalogue/types'
 import { usualSettings, usualSites } from '#server/services/lay-out-runs'
 import type { Side } from '#shared/schemas/common'
@@ -13,26 +14,33 @@ function valuesOf(technique: Technique, row: number, shift: number): Record<stri
 }
 const tenth = (value: number) => Math.round(value * 10) / 10
 
-function runOf(technique: Technique, side: Side, shift: number): Run {
-  const id = `${side}-${technique.id}`
-  return { id, technique: technique.id, side, ...usualSettings(technique), rows: usualSites(technique).map((site, row) => ({ id: `${id}-${row}`, site, values: valuesOf(technique, row, shift) })) }
+/** As the database gives them: the length of an id is part of what a copy costs. */
+const idOf = (text: string) => createHash('sha256').update(text).digest('hex').replace(/^(.{8})(.{4})(.{4})(.{4})(.{12}).*$/, '$1-$2-$3-$4-$5')
+
+function runOf(id: string, side: Side, shift: number): Run {
+  const technique = techniqueOf(id)
+  if (!technique) throw new Error(`There is no technique ${id}.`)
+  return { id: idOf(`${side}/${id}`), technique: id, side, ...usualSettings(technique), rows: usualSites(technique).map((site, row) => ({ id: idOf(`${side}/${id}/${row}`), site, values: valuesOf(technique, row, shift) })) }
 }
 
-const studied = techniques.filter(technique => ['motor', 'sensory', 'mixed', 'f-wave'].includes(technique.kind) && technique.limb !== 'face')
-const both: [Technique, Side][] = (['motor', 'sensory', 'f-wave', 'mixed'] as const).flatMap(kind => studied.filter(technique => technique.kind === kind).flatMap(technique => [[technique, 'right'], [technique, 'left']] as [Technique, Side][]))
-/** Kinds mixed as in a real study: every third run is of another kind, both sides together. */
-const order = both.map((pair, index) => ({ pair, at: ((index >> 1) * 7) % (both.length >> 1) * 2 + (index & 1) })).toSorted((a, b) => a.at - b.at).map(({ pair }) => pair)
+/** What is done most stands first; any beginning of the list holds every kind. */
+const order = [
+  'median-motor-apb', 'median-sensory-d2', 'ulnar-motor-adm', 'ulnar-sensory-d5', 'median-f-apb',
+  'tibial-motor-ah', 'sural', 'fibular-motor-edb', 'superficial-fibular', 'tibial-f-ah',
+  'ulnar-f-adm', 'radial-sensory-snuffbox', 'median-mixed-palm', 'ulnar-mixed-palm', 'fibular-motor-ta',
+  'median-sensory-d3', 'ulnar-motor-fdi', 'saphenous', 'medial-antebrachial', 'ulnar-sensory-dorsal',
+].flatMap(id => [[id, 'right'], [id, 'left']] as [string, Side][])
 
 /**
- * A study of so many runs of an invented woman, both sides of each technique.
+ * A study of so many runs of an invented woman, both sides of each technique; some of it outside.
  * @param turn any number; another one gives other values
  */
 export function studyOfRuns(count: number, turn = 0): Study {
-  const shift = turn % 20 / 10
+  const shift = turn % 5 / 10
   if (count > order.length) throw new Error(`There are ${order.length} runs to choose from.`)
   return studySchema.parse({
-    id: `bench-${count}-${turn}`, studyDate: '2026-12-02', patient: { birthDate: '1974-03-14', sexForLimits: 'female' }, heightCm: 162, weightKg: 74, referralSide: 'both',
-    temperatures: (['hand', 'foot'] as const).flatMap(segment => (['right', 'left'] as const).map(side => ({ id: `${segment}-${side}`, segment, side, celsius: 33, warmed: false }))),
-    runs: order.slice(0, count).map(([technique, side]) => runOf(technique, side, shift)),
+    id: idOf(`study/${count}/${turn}`), studyDate: '2026-12-02', patient: { birthDate: '1974-03-14', sexForLimits: 'female' }, heightCm: 162, weightKg: 74, referralSide: 'both',
+    temperatures: (['hand', 'foot'] as const).flatMap(segment => (['right', 'left'] as const).map(side => ({ id: idOf(`${segment}/${side}`), segment, side, celsius: 33, at: '2026-12-02T09:05:00.000Z', method: 'skin probe', warmed: false }))),
+    runs: order.slice(0, count).map(([id, side]) => runOf(id, side, shift)),
   })
 }
