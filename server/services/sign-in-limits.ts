@@ -6,7 +6,7 @@ import { DomainError } from '#shared/errors'
  * How guessing is slowed, and why nobody can lock a colleague out by it.
  *
  * A browser in which a person has signed in before carries a device mark (a cookie that only this server can make, for
- * that one account). Its failures are counted for that device alone: 10 in 15 minutes. Every other attempt is counted
+ * that one account). Its failures are counted for that device alone: 10 in 15 minutes, 90 in 24 hours. Every other attempt is counted
  * twice: by address (40 in 15 minutes) and by account (20 in 15 minutes, 90 in 24 hours; NIST SP 800-63B allows at most
  * 100 failures in a row, from memory). So whoever hammers at a colleague's account, from outside or from the next desk, closes it
  * for unknown browsers for a while; the colleague's own workstation goes on.
@@ -17,6 +17,7 @@ import { DomainError } from '#shared/errors'
 const QUARTER = 15 * 60
 const limits = {
   device: { points: 10, duration: QUARTER },
+  deviceDay: { points: 90, duration: 24 * 3600 },
   address: { points: 40, duration: QUARTER },
   account: { points: 20, duration: QUARTER },
   accountDay: { points: 90, duration: 24 * 3600 },
@@ -44,7 +45,7 @@ function limitersOf(db: Database): Limiters {
 export interface Attempt { address: string, account: string, device: string | null }
 
 function keysOf(attempt: Attempt): [LimitName, string][] {
-  if (attempt.device) return [['device', attempt.device]]
+  if (attempt.device) return [['device', attempt.device], ['deviceDay', attempt.device]]
   return [['address', attempt.address], ['account', attempt.account], ['accountDay', attempt.account]]
 }
 
