@@ -167,7 +167,7 @@ export async function axeFindings(page: Page, only: readonly string[] = []): Pro
   const violations = await page.evaluate(async (rules) => {
     const { axe } = window as unknown as { axe: { run: (root: Document, options: object) => Promise<{ violations: AxeViolation[] }> } }
     const tags = ['wcag2a', 'wcag2aa', 'wcag21a', 'wcag21aa', 'wcag22aa', 'best-practice']
-    return (await axe.run(document, { runOnly: rules.length ? rules : tags })).violations
+    return (await axe.run(document, { runOnly: rules.length ? rules : tags, resultTypes: ['violations'] })).violations
   }, only)
   return violations.map(v => `${v.id}: ${v.help} at ${v.nodes.slice(0, 4).map(n => n.target.join(' ')).join(' | ')}`)
 }
