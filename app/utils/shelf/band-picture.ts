@@ -25,6 +25,7 @@ export function bandPictures(rows: readonly LimitRow[]): BandPicture[] {
 function pictureOf(key: string, rows: readonly LimitRow[]): BandPicture {
   const steps = rows.flatMap(stepOf)
   const values = steps.map(step => step.value)
+  const margin = (Math.max(...values) - Math.min(...values)) / 4 || 1
   const [first] = rows
   return {
     key,
@@ -32,8 +33,8 @@ function pictureOf(key: string, rows: readonly LimitRow[]): BandPicture {
     unit: first?.unit ?? '',
     steps,
     maxAge: Math.max(...steps.map(step => step.toAge), 1),
-    minValue: Math.min(...values, 0),
-    maxValue: Math.max(...values) * 1.15,
+    minValue: Math.min(...values) - margin,
+    maxValue: Math.max(...values) + margin,
   }
 }
 
