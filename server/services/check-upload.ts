@@ -26,7 +26,18 @@ export async function checkUpload(bytes: Uint8Array): Promise<CheckedFile> {
   throw new DomainError('wrong-file-type')
 }
 
-async function encodeAgain(bytes: Uint8Array, format: 'png' | 'jpeg'): Promise<Uint8Array> {
+let turn: Promise<unknown> = Promise.resolve()
+
+/** One picture after the other: decoded, a file of some hundred kilobytes can take 200 MB and every thread of the process. */
+function inTurn<T>(work: () => Promise<T>): Promise<T> {
+  const mine = turn.then(work)
+  turn = mine.catch(() => undefined)
+  return mine
+}
+
+const encodeAgain = (bytes: Uint8Array, format: 'png' | 'jpeg') => inTurn(() => encode(bytes, format))
+
+async function encode(bytes: Uint8Array, format: 'png' | 'jpeg'): Promise<Uint8Array> {
   try {
     const picture = sharp(bytes, { limitInputPixels: MOST_PIXELS, failOn: 'error' }).rotate()
     return await (format === 'png' ? picture.png() : picture.jpeg({ quality: 88 })).toBuffer()

@@ -1,4 +1,5 @@
 import { randomBytes } from 'node:crypto'
+import sharp from 'sharp'
 import { describe, expect, it } from 'vitest'
 import { checkUpload } from '#server/services/check-upload'
 import { safeName } from '#server/services/store-upload'
@@ -36,4 +37,22 @@ describe('a PDF', () => {
   ])('with a program or a file inside is refused, its names spelled out or not: %s', async (inside) => {
     await expect(checkUpload(pdf(inside))).rejects.toMatchObject({ code: 'wrong-file-type' })
   })
+})
+
+it('pictures are decoded one at a time: a small file can hold 40 million pixels, and eight of them took 1.8 GB at once', async () => {
+  const bytes = await sharp({ create: { width: 2000, height: 2000, channels: 3, background: '#888888' } }).jpeg({ progressive: true }).toBuffer()
+  let most = 0
+  const watch = setInterval(() => {
+    const { queue, process } = sharp.counters()
+    most = Math.max(most, queue + process)
+  }, 1)
+  const kept = await Promise.all(Array.from({ length: 5 }, () => checkUpload(bytes)))
+  clearInterval(watch)
+  expect(kept.every(file => file.mediaType === 'image/jpeg')).toBe(true)
+  expect(most).toBe(1)
+})
+it('a damaged picture does not hold up the next one', async () => {
+  const good = await sharp({ create: { width: 20, height: 20, channels: 3, background: '#888888' } }).png().toBuffer()
+  const [bad, next] = await Promise.allSettled([checkUpload(good.subarray(0, good.length - 30)), checkUpload(good)])
+  expect([bad.status, next.status]).toEqual(['rejected', 'fulfilled'])
 })
