@@ -31,7 +31,7 @@ const definiteIds = ['a', 'b', 'c', 'd', 'e', 'f', 'g'] as const
  */
 export const cidp2010: PatternSet = {
   id: 'cidp-efns-pns-2010', version: 1, title: 'CIDP, EFNS/PNS 2010', basis: 'read', scope: 'study',
-  source: 'EFNS/PNS guideline, J Peripher Nerv Syst 2010;15:1-9, doi:10.1111/j.1529-8027.2010.00245.x (citation from memory); conditions read in a university teaching page, percentages and durations in PMC8108415, table 2',
+  source: 'Van den Bergh PYK et al., EFNS/PNS guideline, first revision, Eur J Neurol 2010;17:356-363, doi:10.1111/j.1468-1331.2009.02930.x, also J Peripher Nerv Syst 2010;15:1-9 (citation read); conditions read in a university teaching page, percentages and durations in PMC8108415, table 2',
   criteria: [...Object.values(texts), ...sensoryTexts, entrapmentText],
   assess: assessCidp2010,
 }

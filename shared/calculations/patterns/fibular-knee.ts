@@ -27,7 +27,7 @@ const texts = {
 /** Fibular neuropathy at the knee: two concordant findings across the fibular head, in one muscle or in two. */
 export const fibularKnee: PatternSet = {
   id: 'fibular-knee', version: 1, title: 'Fibular nerve at the knee', basis: 'read', scope: 'side',
-  source: 'Buschbacher RM, fibular motor to EDB, Am J Phys Med Rehabil 1999;78(S) (n = 242, abstract read); tibialis anterior: a teaching page (read); which nerves help: Marciniak C et al., Muscle Nerve 2005;31:520-527, from memory',
+  source: 'Buschbacher RM, fibular motor to EDB, Am J Phys Med Rehabil 1999;78(6 Suppl):S26-S31, doi:10.1097/00002060-199911001-00006 (pages and DOI from memory; n = 242, abstract read); tibialis anterior: a teaching page (read); which nerves help: Marciniak C et al., Muscle Nerve 2005;31:520-527, from memory',
   criteria: Object.values(texts),
   assess: assessKnee,
 }

@@ -26,7 +26,7 @@ const texts = {
 /** Guillain-Barré syndrome by Hadden 1998. Rests on memory. */
 export const gbsHadden: PatternSet = {
   id: 'gbs-hadden-1998', version: 1, title: 'Guillain-Barré syndrome, Hadden 1998', basis: 'memory', scope: 'study',
-  source: 'Hadden RDM et al., Ann Neurol 1998;44:780-788, doi:10.1002/ana.410440512 (DOI from memory); recalled, the axonal wording read in PMC11615645, table 1',
+  source: 'Hadden RDM et al., Ann Neurol 1998;44:780-788, doi:10.1002/ana.410440512 (abstract read); numbers recalled, the axonal wording read in PMC11615645, table 1',
   criteria: [...Object.values(texts), entrapmentText],
   assess: assessHadden,
 }

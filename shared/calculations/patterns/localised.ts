@@ -67,5 +67,5 @@ export function otherNervesNormal(facts: Facts, side: Side, ownNerves: readonly 
   if (judged.length === 0) return notAssessable('no other nerve judged by a limit')
   const flagged = judged.filter(run => run.assessment.results.some(result => result.flagged))
   const names = joined(flagged.map(run => `${sideWords[run.assessment.side]} ${run.technique.label}`))
-  return flagged.length === 0 ? { result: 'met', numbers: `${judged.length} other runs within their limits` } : { result: 'not-met', numbers: `outside: ${names}` }
+  return flagged.length === 0 ? { result: 'met', numbers: `runs within their limits: ${judged.length}` } : { result: 'not-met', numbers: `outside: ${names}` }
 }
