@@ -16,6 +16,8 @@ export default defineConfig({
     name: 'unit',
     environment: 'node',
     include: ['tests/unit/shared/calculations/**/*.test.ts'],
+    // Nothing here changes a module, so the files may share them: loading them again for each change is most of the time.
+    isolate: false,
     exclude: ['**/properties.test.ts', '**/any-study.test.ts', '**/format.test.ts'],
   },
 })

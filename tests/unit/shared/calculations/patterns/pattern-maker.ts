@@ -10,9 +10,16 @@ import { run, studyWith } from '../study-maker'
 /** Studies of nobody and invented sets of limits, for the published criteria. */
 export type Limit = [technique: string, quantity: string, at: string | null, bound: 'upper' | 'lower', value: number, more?: Partial<LimitRow>]
 
+/** Reading a table is slow beside assessing a study: each list of limits is read once. */
+const read = new WeakMap<readonly Limit[], ReferenceTable>()
+
 export function limitsTable(limits: readonly Limit[]): ReferenceTable {
-  return tableOf(limits.map(([technique, quantity, at, bound, value, more], index) =>
+  const known = read.get(limits)
+  if (known) return known
+  const table = tableOf(limits.map(([technique, quantity, at, bound, value, more], index) =>
     limitRow({ id: `row-${index}`, technique, quantity, at, bound, value, unit: '', distanceMm: null, direction: null, amplitudeDefinition: null, percentile: bound === 'upper' ? 97 : 3, ...more })))
+  read.set(limits, table)
+  return table
 }
 
 export interface Given { limits?: readonly Limit[], policy?: Partial<Policy>, study?: Partial<Study> }
