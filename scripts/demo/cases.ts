@@ -64,7 +64,7 @@ export const pictures: ClinicalPicture[] = [
     examination: ['Ankle reflexes absent, vibration reduced at the toes.'],
     diagnosis: 'Length-dependent polyneuropathy',
     severity: (technique, random) => /sural|fibular|tibial/.test(technique) ? random.between(0.35, 1) : random.between(0, 0.35),
-    impression: () => [{ words: 'Length-dependent sensorimotor polyneuropathy, RIGHT and LEFT leg.', nerve: 'sural', side: 'both', abnormal: true }],
+    impression: () => [{ words: 'Length-dependent sensorimotor polyneuropathy of the legs.', nerve: 'sural', side: 'both', abnormal: true }],
   },
   {
     id: 'fibular-head', weight: 8, protocol: 'foot-drop', nerve: 'fibular', limb: 'foot', side: random => random.pick(['right', 'left'] as const),

@@ -67,7 +67,7 @@ async function makePerson(context: ServiceContext, clock: DemoClock, { key, name
   clock.forward(2)
   const email = addressOf(name)
   const siteIds = where.map(index => made[index]!.id)
-  const id = await addPerson(context, { email, name, printedName: credentials ? `${name}, ${credentials}` : name, credentials, holdings: siteIds.flatMap(siteId => roles.map(role => ({ siteId, role }))) })
+  const id = await addPerson(context, { email, name, printedName: name, credentials, holdings: siteIds.flatMap(siteId => roles.map(role => ({ siteId, role }))) })
   const password = randomPassword()
   const answer = await makeSetUpLink(context, id, false)
   if (answer.waiting) throw new Error('A first link needs no second person.')

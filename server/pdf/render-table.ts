@@ -55,9 +55,13 @@ function widthOf(column: TableBlock['columns'][number], isLast: boolean): 'auto'
   return isLast ? '*' : 'auto'
 }
 
+/** So many columns need smaller letters and heads of two lines, or the last one leaves the page. */
+const manyColumns = 9
+
 /** A table with its head repeated on every page; a row is never cut. */
 export function renderTable(table: TableBlock): Content {
-  const head = table.columns.map((column): TableCell => ({ text: printable(column.label), color: ink.faint, noWrap: column.label.length <= longestHead, alignment: column.align === 'bar' ? 'left' : column.align }))
+  const isWide = table.columns.length >= manyColumns
+  const head = table.columns.map((column): TableCell => ({ text: printable(column.label), color: ink.faint, noWrap: !isWide && column.label.length <= longestHead, alignment: column.align === 'bar' ? 'left' : column.align }))
   const body = table.rows.map(row => table.columns.map((column, index) => tableCell(row.cells[index], column.align, row.struck)))
   const content: ContentTable = {
     table: {
@@ -68,7 +72,7 @@ export function renderTable(table: TableBlock): Content {
       body: [head, ...body],
     },
     layout: layoutOf(table),
-    fontSize: size.table,
+    fontSize: isWide ? size.wideTable : size.table,
     margin: [0, 0, 0, 4],
   }
   return content

@@ -14,7 +14,7 @@ import { isTimeZone } from './site-time'
 export const FIRST_RUN = 'first-run'
 const DAY_MS = 86_400_000
 /** Stands on every report until the organisation words its own. */
-const DISCLAIMER = 'This report gives measurements and their reading by the physician who signed it. It supports a clinical decision and does not replace one: it is read together with history and examination.'
+const DISCLAIMER = 'The results in this report support and do not replace clinical judgement. Limits depend on technique, temperature and population. Follow local regulations and licensed practice.'
 type FirstAdministrator = z.output<typeof firstAdministratorSchema>
 
 /**

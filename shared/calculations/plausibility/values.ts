@@ -14,7 +14,7 @@ import { addRemark, OWN_DECISION, type RemarkList } from './remark'
 export function remarkOnValues(list: RemarkList, known: KnownRun, rows: readonly PlacedRow[]): void {
   for (const placed of rows) {
     for (const [quantity, entry] of Object.entries(placed.row.values)) {
-      if (typeof entry === 'number') remarkOnNumber(list, known, placed, quantity as QuantityId, entry)
+      if (typeof entry === 'number') remarkOnNumber(list, known, placed, quantity as QuantityId, entry, placed !== rows[0])
     }
     remarkOnSeries(list, known, placed)
     remarkOnContradiction(list, known, placed)
@@ -33,7 +33,7 @@ function remarkOnSeries(list: RemarkList, known: KnownRun, { row, label }: Place
   })
 }
 
-function remarkOnNumber(list: RemarkList, known: KnownRun, { row, label, site }: PlacedRow, id: QuantityId, value: number): void {
+function remarkOnNumber(list: RemarkList, known: KnownRun, { row, label, site }: PlacedRow, id: QuantityId, value: number, isProximal: boolean): void {
   if (!(id in quantities)) return
   const quantity = quantityOf(id)
   const where = { runId: known.run.id, rowId: row.id, quantity: id }
@@ -48,10 +48,20 @@ function remarkOnNumber(list: RemarkList, known: KnownRun, { row, label, site }:
     addRemark(list, { ...where, code: 'impossible', strength: 'stop', source: OWN_DECISION, sentence: `${name} must be between ${possible.min} and ${possible.max}${unitOf(quantity)}; ${plain(value)} was entered.${slipHint(quantity, value, possible)}` })
     return
   }
-  const { usual } = quantity
+  const usual = usualRange(known, quantity, isProximal)
   if (usual && (value < usual.min - TOLERANCE || value > usual.max + TOLERANCE)) {
     addRemark(list, { ...where, code: 'unusual', strength: 'check', source: OWN_DECISION, sentence: `${name} is usually between ${usual.min} and ${usual.max}${unitOf(quantity)}; ${plain(value)} was entered.${slipHint(quantity, value, usual)}` })
   }
+}
+
+/**
+ * A response to a proximal stimulus comes later: at a usual velocity of 40 m/s and 500 mm after 12 ms more (common practice,
+ * no source).
+ */
+const PROXIMAL_MORE_MS = 12
+function usualRange(known: KnownRun, { id, usual }: Quantity, isProximal: boolean): Quantity['usual'] {
+  const isLater = isProximal && known.technique?.kind === 'motor' && id === 'latencyMs'
+  return usual && isLater ? { min: usual.min, max: usual.max + PROXIMAL_MORE_MS } : usual
 }
 
 const unitOf = (quantity: Quantity) => quantity.unit ? ` ${quantity.unit}` : ''

@@ -104,7 +104,7 @@ function addDrop(maker: RunMaker, placed: PlacedRow, before: Segment, segment: S
   if (!at) return
   const how = { formula: `${roundForPrint(before.velocityMps, 1)} m/s against ${roundForPrint(segment.velocityMps, 1)} m/s`, source: DROP_SOURCE }
   add(maker, placed, { quantity: 'velocityDropMps', at: at.id, label: `velocity drop ${at.label}`, typed: false, supporting: true, asker, how, value: velocityDrop(before, segment, maker.context.expanded) })
-  add(maker, placed, { quantity: 'velocityDropPercent', at: at.id, label: `velocity drop ${at.label}, per cent`, typed: false, supporting: true, asker, how, value: velocityDropPercent(before.velocityMps, segment.velocityMps) })
+  add(maker, placed, { quantity: 'velocityDropPercent', at: at.id, label: `relative velocity drop ${at.label}`, typed: false, supporting: true, asker, how, value: velocityDropPercent(before.velocityMps, segment.velocityMps) })
 }
 
 const changes = [

@@ -41,7 +41,7 @@ export const promptContact: ReportSection<ReportSource> = {
 
 function referredHistory({ referral }: ReportSnapshot): string {
   const onset = referral.onset ? `onset ${referral.onset}` : ''
-  return [referral.symptoms, onset].filter(Boolean).join('; ')
+  return [referral.symptoms.replace(/\.$/, ''), onset].filter(Boolean).join('; ')
 }
 
 function historyParagraphs(snapshot: ReportSnapshot): Block[] {

@@ -71,6 +71,7 @@ describe('questioned', () => {
 
 /** name, runs, the remark that must not come although it is near. */
 const notAsked: [name: string, runs: Run[], part: string][] = [
+  ['a latency of 16 ms from behind the knee', [run('tibial-motor-ah', 'right', [['ankle', { latencyMs: 5.2, amplitudeMv: 9, distanceMm: 80 }], ['popliteal-fossa', { latencyMs: 16, amplitudeMv: 8, distanceMm: 430 }]])], 'unusual'],
   ['a declared short segment', [ulnar(goodUlnar, { latencyMs: 6.4, amplitudeMv: 9.4, distanceMm: 205 }, { latencyMs: 7.4, amplitudeMv: 9.3, distanceMm: 60 }, { shortSegments: true })], 'short-segment'],
   ['20 % larger above', [median(good, { latencyMs: 7.5, amplitudeMv: 9.6, distanceMm: 215 })], 'proximal-larger'],
   ['ulnar forearm fall with slowing', [ulnar(goodUlnar, { latencyMs: 9.0, amplitudeMv: 6.5, distanceMm: 205 })], 'martin-gruber'],
