@@ -61,7 +61,7 @@ const manyColumns = 9
 /** A table with its head repeated on every page; a row is never cut. */
 export function renderTable(table: TableBlock): Content {
   const isWide = table.columns.length >= manyColumns
-  const head = table.columns.map((column): TableCell => ({ text: printable(column.label), color: ink.faint, noWrap: !isWide && column.label.length <= longestHead, alignment: column.align === 'bar' ? 'left' : column.align }))
+  const head = table.columns.map((column): TableCell => ({ text: printable(column.label), color: ink.faint, noWrap: (!isWide || column.label.includes('/')) && column.label.length <= longestHead, alignment: column.align === 'bar' ? 'left' : column.align }))
   const body = table.rows.map(row => table.columns.map((column, index) => tableCell(row.cells[index], column.align, row.struck)))
   const content: ContentTable = {
     table: {

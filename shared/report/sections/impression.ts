@@ -6,7 +6,7 @@ import type { ImpressionLine } from '../../schemas/report'
 /** Side and degree beside the words only where the words do not say them: a side never appears twice or differently. */
 function lineWords(line: ImpressionLine, words: ReportWords): Words[] {
   const said = line.words.toLowerCase()
-  const side = line.side && !(line.side === 'both' ? /bilateral|both/ : new RegExp(`\\b${line.side}\\b`)).test(said) ? `${words.sides[line.side]}: ` : ''
+  const side = line.side && !(line.side === 'both' ? /bilateral|both|\bright\b.*\bleft\b|\bleft\b.*\bright\b/ : new RegExp(`\\b${line.side}\\b`)).test(said) ? `${words.sides[line.side]}: ` : ''
   const degree = line.degree && !said.includes(line.degree.toLowerCase()) ? ` (${line.degree})` : ''
   return withSides(`${side}${capitalSides(line.words)}${degree}`)
 }
