@@ -2,6 +2,7 @@ import type { Page, PageQuery } from '#shared/schemas/common'
 import type { DeliveryRow } from '#shared/schemas/delivery'
 import type { DeliveryState } from '#shared/states'
 import type { Database } from '../connection'
+import { newestFirst } from './newest-first'
 
 export async function siteOfDelivery(db: Database, deliveryId: string): Promise<string | null> {
   const row = await db.selectFrom('delivery').select('siteId').where('id', '=', deliveryId).executeTakeFirst()
@@ -26,19 +27,18 @@ export async function laterVersion(db: Database, deliveryId: string): Promise<nu
 
 export interface DispatchWish { siteIds: string[], state?: DeliveryState }
 
-const wished = (db: Database, { siteIds, state }: DispatchWish) => db.selectFrom('delivery').where('delivery.siteId', 'in', siteIds)
-  .$if(state !== undefined, query => query.where('delivery.state', '=', state ?? 'held'))
-
 /** Deliveries of these sites, the latest change first, with the count of each state. */
 export async function dispatchPage(db: Database, wish: DispatchWish, { page, pageSize }: Pick<PageQuery, 'page' | 'pageSize'>): Promise<Page<DeliveryRow> & { counts: Partial<Record<DeliveryState, number>> }> {
-  const perState = await wished(db, { siteIds: wish.siteIds }).select(['state']).select(eb => eb.fn.countAll<number>().as('count')).groupBy('state').execute()
+  const perState = await db.selectFrom('delivery').where('siteId', 'in', wish.siteIds).select(['state']).select(eb => eb.fn.countAll<number>().as('count')).groupBy('state').execute()
   const counts = Object.fromEntries(perState.map(row => [row.state, row.count])) as Partial<Record<DeliveryState, number>>
   const total = wish.state ? counts[wish.state] ?? 0 : perState.reduce((sum, row) => sum + row.count, 0)
-  const rows = await wished(db, wish)
+  const states = wish.state ? [wish.state] : perState.map(row => row.state)
+  const ids = await newestFirst(db, { table: 'delivery', siteIds: wish.siteIds, states }, { page, pageSize })
+  const rows = await db.selectFrom('delivery').where('delivery.id', 'in', ids)
     .innerJoin('reportVersion', 'reportVersion.id', 'delivery.reportVersionId').innerJoin('report', 'report.id', 'reportVersion.reportId').innerJoin('study', 'study.id', 'report.studyId')
     .innerJoin('patient', 'patient.id', 'study.patientId').innerJoin('site', 'site.id', 'delivery.siteId').innerJoin('physician', 'physician.id', 'delivery.physicianId').innerJoin('practice', 'practice.id', 'delivery.practiceId')
     .leftJoin('outboxMail', 'outboxMail.deliveryId', 'delivery.id')
     .select(['delivery.id', 'report.id as reportId', 'report.number as reportNumber', 'reportVersion.version', 'reportVersion.status', 'familyName', 'givenName', 'recordNumber', 'site.name as siteName', 'physician.name as recipient', 'practice.name as practiceName', 'practice.town', 'delivery.address', 'method', 'delivery.state', 'delivery.stateSince', 'delivery.stateReason', 'holdUntil', 'delivery.attempts', 'messageId', 'study.referralId', 'study.id as studyId'])
-    .orderBy('delivery.stateSince', 'desc').orderBy('delivery.id').limit(pageSize).offset((page - 1) * pageSize).execute()
+    .orderBy('delivery.stateSince', 'desc').orderBy('delivery.id').execute()
   return { rows: rows.map(({ familyName, givenName, ...row }) => ({ ...row, patientName: `${familyName}, ${givenName}` })), total, page, pageSize, counts }
 }
