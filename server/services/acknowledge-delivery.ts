@@ -18,13 +18,14 @@ function limiterOf(db: Database): RateLimiterMemory {
 
 export interface AcknowledgeInput { token: string, /** where the call comes from */ address: string }
 
-async function deliveryOfToken(context: ServiceContext, { token, address }: AcknowledgeInput) {
+/** The delivery that a link stands for. @throws DomainError 'not-found', 'too-many-requests' */
+export async function deliveryOfToken(context: ServiceContext, { token, address }: AcknowledgeInput) {
   const limiter = limiterOf(context.db)
   const used = await limiter.get(address)
   if (used && used.consumedPoints >= wrongLinks.points) throw new DomainError('too-many-requests')
   const delivery = await context.db.selectFrom('delivery').innerJoin('reportVersion', 'reportVersion.id', 'delivery.reportVersionId').innerJoin('report', 'report.id', 'reportVersion.reportId')
-    .innerJoin('study', 'study.id', 'report.studyId').innerJoin('site', 'site.id', 'delivery.siteId').innerJoin('organisation', 'organisation.id', 'site.organisationId')
-    .select(['delivery.id', 'delivery.state', 'delivery.siteId', 'acknowledgedAt', 'report.id as reportId', 'report.number', 'reportVersion.version', 'organisation.name as organisation', 'study.patientId'])
+    .innerJoin('study', 'study.id', 'report.studyId').innerJoin('site', 'site.id', 'delivery.siteId').innerJoin('organisation', 'organisation.id', 'site.organisationId').innerJoin('practice', 'practice.id', 'delivery.practiceId')
+    .select(['delivery.id', 'delivery.state', 'delivery.siteId', 'delivery.method', 'delivery.createdAt', 'delivery.sentAt', 'delivery.reportVersionId', 'practice.passphraseSealed', 'acknowledgedAt', 'report.id as reportId', 'report.number', 'reportVersion.version', 'organisation.name as organisation', 'study.patientId'])
     .where('acknowledgeTokenHash', '=', context.keys.tokenHash(token)).executeTakeFirst()
   if (delivery) return delivery
   await limiter.consume(address).catch(() => undefined)
@@ -39,7 +40,7 @@ export async function viewAcknowledge(context: ServiceContext, input: Acknowledg
   const delivery = await deliveryOfToken(context, input)
   const newer = await context.db.selectFrom('reportVersion').select('id').where('reportId', '=', delivery.reportId).where('version', '>', delivery.version).executeTakeFirst()
   const { number, version, organisation, state, acknowledgedAt } = delivery
-  return { reportNumber: number, version, organisation, superseded: newer !== undefined, withdrawn: state === 'withdrawn', acknowledgedAt }
+  return { reportNumber: number, version, organisation, superseded: newer !== undefined, withdrawn: state === 'withdrawn', acknowledgedAt, collect: delivery.method === 'collection-link' && state !== 'withdrawn' && !newer }
 }
 
 /**

@@ -27,7 +27,7 @@ export async function queueDeliveries(context: ServiceContext, trx: Trx, made: V
 }
 
 type State = 'held' | 'given-up'
-async function insertDelivery(context: ServiceContext, trx: Trx, { version, snapshot, siteId, patientId }: VersionToDeliver, recipient: Recipient, how: { method: 'encrypted-pdf' | 'letter', state: State, reason: string, holdUntil: string | null, tokenHash: string | null }): Promise<string> {
+async function insertDelivery(context: ServiceContext, trx: Trx, { version, snapshot, siteId, patientId }: VersionToDeliver, recipient: Recipient, how: { method: 'encrypted-pdf' | 'collection-link' | 'letter', state: State, reason: string, holdUntil: string | null, tokenHash: string | null }): Promise<string> {
   const id = randomUUID()
   const at = now(context)
   await trx.insertInto('delivery').values({
@@ -43,10 +43,10 @@ async function queueOne(context: ServiceContext, trx: Trx, made: VersionToDelive
   const { snapshot } = made
   const token = newToken()
   const holdUntil = new Date(context.clock().getTime() + holdSeconds * 1000).toISOString()
-  const deliveryId = await insertDelivery(context, trx, made, recipient, { method: 'encrypted-pdf', state: 'held', reason: '', holdUntil, tokenHash: context.keys.tokenHash(token) })
+  const deliveryId = await insertDelivery(context, trx, made, recipient, { method: recipient.deliveryMethod, state: 'held', reason: '', holdUntil, tokenHash: context.keys.tokenHash(token) })
   await queueMail(context, trx, {
     template: 'report-ready', toAddress: recipient.email, deliveryId, dueAt: holdUntil,
-    data: { reportNumber: snapshot.number, version: snapshot.version, status: snapshot.status, organisation: snapshot.organisation.name, siteName: snapshot.site.name, sitePhone: snapshot.site.phone, acknowledgeToken: token },
+    data: { reportNumber: snapshot.number, version: snapshot.version, status: snapshot.status, organisation: snapshot.organisation.name, siteName: snapshot.site.name, sitePhone: snapshot.site.phone, acknowledgeToken: token, method: recipient.deliveryMethod },
   })
 }
 

@@ -114,7 +114,9 @@ async function messageOf(context: ServiceContext, mail: Claimed): Promise<Buffer
 async function attachmentOf(context: ServiceContext, deliveryId: string) {
   const delivery = await deliveryFacts(context.db, deliveryId)
   if (!delivery?.passphraseSealed) throw new Error('The practice has no passphrase: nothing is sent in clear.')
+  // Made now in either case: a mail never says that a report is ready when its PDF cannot be made.
   const pdf = await reportPdf(context, delivery.reportVersionId)
+  if (delivery.method === 'collection-link') return undefined
   const bytes = encryptPdf(pdf.bytes, context.keys.unseal(delivery.passphraseSealed))
   const suffix = delivery.version > 1 ? `-version-${delivery.version}` : ''
   return { filename: `${delivery.number}${suffix}.pdf`, bytes, contentType: 'application/pdf' as const }

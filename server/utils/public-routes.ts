@@ -9,6 +9,7 @@ const publicRoutes: readonly { methods: readonly string[], path: RegExp }[] = [
   { methods: ['GET', 'POST'], path: /^\/api\/first-run$/ },
   { methods: ['POST'], path: /^\/api\/set-password$/ },
   { methods: ['GET', 'POST'], path: /^\/api\/acknowledge\/[^/]+$/ },
+  { methods: ['POST'], path: /^\/api\/acknowledge\/[^/]+\/collect$/ },
 ]
 
 /** @param path without the query */

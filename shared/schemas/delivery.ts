@@ -31,5 +31,6 @@ export const resolveDeliverySchema = z.object({ outcome: z.enum(['arrived', 'sen
 export const finishTaskSchema = z.object({ resolution: z.string().trim().max(500).default('') }).nullish()
 
 /** GET /api/acknowledge/:token: nothing about the patient. */
-export interface AcknowledgeView { reportNumber: string, version: number, organisation: string, superseded: boolean, withdrawn: boolean, acknowledgedAt: string | null }
+export interface AcknowledgeView { reportNumber: string, version: number, organisation: string, superseded: boolean, withdrawn: boolean, acknowledgedAt: string | null, /** the report is collected here, with the passphrase of the practice */ collect: boolean }
+export const collectSchema = z.object({ passphrase: z.string().trim().min(1, 'Enter the passphrase of your practice.').max(400) })
 export interface TaskRow { id: string, kind: string, sentence: string, createdAt: string, dueAt: string | null, siteName: string | null, ownerName: string | null, link: string | null }

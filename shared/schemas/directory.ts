@@ -5,6 +5,7 @@ export interface PhysicianView { id: string, name: string, title: string, email:
 export const physicianSearchSchema = z.object({ search: z.string().max(120).default(''), page: z.coerce.number().int().min(1).default(1), pageSize: z.coerce.number().int().min(1).max(100).default(20) })
 
 export const deliveryMethods = ['encrypted-pdf', 'collection-link'] as const
+export const deliveryWords: Record<(typeof deliveryMethods)[number], string> = { 'encrypted-pdf': 'as an encrypted PDF attached to the mail', 'collection-link': 'by a link in the mail, under which they are collected' }
 export const practiceSchema = z.object({
   name: z.string().trim().min(2, 'Enter the name of the practice.').max(120),
   town: z.string().trim().min(2, 'Enter the town: practices of one name are told apart by it.').max(120),

@@ -302,7 +302,7 @@ describe('what people do about it', () => {
     const from = { token, address: '192.0.2.3' }
     const view = await viewAcknowledge(t.context, from)
     expect(view).toMatchObject({ version: 1, superseded: false, withdrawn: false, acknowledgedAt: null })
-    expect(Object.keys(view).sort()).toEqual(['acknowledgedAt', 'organisation', 'reportNumber', 'superseded', 'version', 'withdrawn'])
+    expect(Object.keys(view).sort()).toEqual(['acknowledgedAt', 'collect', 'organisation', 'reportNumber', 'superseded', 'version', 'withdrawn'])
     expect((await delivery(deliveryId)).state).toBe('sent')
     const first = await acknowledgeDelivery(t.context, from)
     t.clock.minutes(1)

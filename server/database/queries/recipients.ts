@@ -9,6 +9,8 @@ export interface Recipient {
   practiceName: string
   town: string
   email: string
+  /** As the practice chose: the PDF in the mail, or a link that opens with the passphrase. */
+  deliveryMethod: 'encrypted-pdf' | 'collection-link'
   reachable: boolean
   /** Why it cannot be mailed; '' when it can. */
   because: string
@@ -16,7 +18,7 @@ export interface Recipient {
 
 async function recipientsById(db: Database, ids: string[], today: string): Promise<Recipient[]> {
   const rows = await db.selectFrom('physician').innerJoin('practice', 'practice.id', 'physician.practiceId')
-    .select(['physician.id as physicianId', 'practiceId', 'physician.name', 'practice.name as practiceName', 'practice.town', 'email', 'emailVerifiedAt', 'passphraseSealed', 'passphraseHandedOverAt'])
+    .select(['physician.id as physicianId', 'practiceId', 'physician.name', 'practice.name as practiceName', 'practice.town', 'email', 'deliveryMethod', 'emailVerifiedAt', 'passphraseSealed', 'passphraseHandedOverAt'])
     .select(sql<number>`practice.closed_at IS NOT NULL OR coalesce(physician.left_on <= ${today}, 0)`.as('left'))
     .where('physician.id', 'in', ids).orderBy('physician.name').orderBy('physician.id').execute()
   return rows.map(({ emailVerifiedAt, passphraseSealed, passphraseHandedOverAt, left, ...row }) => {

@@ -1,5 +1,8 @@
 import * as z from 'zod'
-import { mailText, type MailText } from './mail-text'
+import { mailText, type MailPart, type MailText } from './mail-text'
+
+/** How long a report can be collected by the link of its mail. */
+export const collectionDays = 30
 
 /** Nothing about the patient: the number is ours and means nothing to anybody else. */
 export const reportReadySchema = z.object({
@@ -11,6 +14,7 @@ export const reportReadySchema = z.object({
   siteName: z.string(),
   sitePhone: z.string(),
   acknowledgeToken: z.string(),
+  method: z.enum(['encrypted-pdf', 'collection-link']).default('encrypted-pdf'),
 })
 export type ReportReady = z.infer<typeof reportReadySchema>
 
@@ -29,6 +33,17 @@ const subjects: Record<ReportReady['status'], string> = {
   'entered-in-error': 'A nerve conduction report is withdrawn',
 }
 
+const attached = (link: string): MailPart[] => [
+  'It is attached as a PDF that opens with your practice\'s passphrase.',
+  { link, label: 'Say that it arrived, or that something looks wrong' },
+  'The link opens a page with a button; no sign-in is needed. The button, not the opening, says that it arrived.',
+]
+const collected = (link: string): MailPart[] => [
+  'Collect it under this link with your practice\'s passphrase; nothing is attached.',
+  { link, label: 'Collect the report' },
+  `The link works for ${collectionDays} days; no sign-in is needed. A button on that page says that the report arrived.`,
+]
+
 /**
  * The mail that brings a report: neutral words, the number, a link to a page with a button. Opening the link alone
  * acknowledges nothing, since mail scanners open links.
@@ -36,13 +51,12 @@ const subjects: Record<ReportReady['status'], string> = {
 export function reportReady(data: ReportReady, appOrigin: string): MailText {
   const version = data.version > 1 ? `, version ${data.version}` : ''
   const replaces = data.version > 1 ? [`It replaces the earlier version. Keep this one.`] : []
+  const link = `${appOrigin}/acknowledge/${encodeURIComponent(data.acknowledgeToken)}`
   const telephone = data.sitePhone ? ` or telephone ${data.sitePhone}` : ''
   return mailText(`${subjects[data.status]} (${data.reportNumber}${version})`, [
     `${opening[data.status]} Reference ${data.reportNumber}${version}.`,
     ...replaces,
-    'It is attached as a PDF that opens with your practice\'s passphrase.',
-    { link: `${appOrigin}/acknowledge/${encodeURIComponent(data.acknowledgeToken)}`, label: 'Say that it arrived, or that something looks wrong' },
-    'The link opens a page with a button; no sign-in is needed. The button, not the opening, says that it arrived.',
+    ...data.method === 'encrypted-pdf' ? attached(link) : collected(link),
     `If this is not meant for you: delete it and tell ${data.siteName}${telephone}. If the passphrase is lost, telephone too: a new one is never sent by mail.`,
     `${data.organisation}, ${data.siteName}`,
   ])

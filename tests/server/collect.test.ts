@@ -1,0 +1,96 @@
+import type { EventHandler } from 'h3'
+import { simpleParser, type ParsedMail } from 'mailparser'
+import { beforeAll, describe, expect, it } from 'vitest'
+import { withdrawDelivery } from '#server/services/change-delivery'
+import { changePractice } from '#server/services/change-practice'
+import { runOutboxOnce } from '#server/services/run-outbox'
+import { TEST_NOW, testContext } from './helpers'
+import { routeFiles, serve } from './http'
+import { readingRoom } from './reading-helpers'
+
+/** A practice that collects its reports: the mail holds a link, the passphrase came another way. */
+const PASSPHRASE = 'seven invented words that nobody has used'
+const t = await testContext()
+const room = await readingRoom(t)
+const admin = t.as(await t.makeUser({ roles: [{ siteId: room.site.id, role: 'administrator' }] }))
+const routes = await Promise.all(routeFiles().filter(route => route.path.startsWith('/api/acknowledge/')).map(async route => ({ ...route, handler: (await import(/* @vite-ignore */ route.file) as { default: EventHandler }).default })))
+const { call } = serve(t, routes)
+const received: Buffer[] = []
+const transport = { send: async (_envelope: unknown, message: Buffer, beforeLastByte: () => Promise<void>) => {
+  await beforeLastByte()
+  received.push(message)
+  return { kind: 'accepted' as const }
+}, close: () => undefined }
+
+/** A report for a practice that collects, its mail and the token of its link. */
+async function mailed() {
+  const practice = await t.makePractice()
+  await changePractice(admin, practice.id, { deliveryMethod: 'collection-link' })
+  const physician = await t.makePhysician({ practiceId: practice.id })
+  const { reportId } = await room.signed({}, { physicianId: physician.id, copyPhysicianIds: [] })
+  const delivery = await t.db.selectFrom('delivery').innerJoin('reportVersion', 'reportVersion.id', 'delivery.reportVersionId').selectAll('delivery').where('reportId', '=', reportId).executeTakeFirstOrThrow()
+  t.clock.minutes(2)
+  await runOutboxOnce(t.context, { transport, owner: 'test' })
+  const mail = await simpleParser(received.at(-1)!)
+  return { mail, delivery, token: /acknowledge\/(\S+)/.exec(mail.text ?? '')![1]! }
+}
+const collect = async (token: string, passphrase: unknown) => await call('POST', `/api/acknowledge/${token}/collect`, { body: { passphrase } })
+const trail = async (id: string) => (await t.db.selectFrom('auditEvent').select('name').where('subjectId', '=', id).where('name', 'like', 'delivery.collect%').orderBy('seq').execute()).map(event => event.name)
+
+describe('a report that is collected', () => {
+  let made: { mail: ParsedMail, delivery: { id: string, method: string }, token: string }
+  beforeAll(async () => {
+    made = await mailed()
+  })
+
+  it('the mail holds the link, no attachment and no word of the passphrase', () => {
+    expect([made.delivery.method, made.mail.attachments]).toEqual(['collection-link', []])
+    expect(made.mail.text).toContain('nothing is attached')
+    expect(made.mail.text).not.toContain(PASSPHRASE)
+  })
+  it('opens with the passphrase as it was written down, and each collection is in the trail', async () => {
+    const answer = await collect(made.token, '  Seven invented  words that nobody has used ')
+    expect([answer.status, answer.headers.get('content-type'), answer.headers.get('cache-control')]).toEqual([200, 'application/pdf', 'no-store'])
+    expect(String(answer.body).slice(0, 5)).toBe('%PDF-')
+    expect(await trail(made.delivery.id)).toEqual(['delivery.collected'])
+  })
+  it('is refused with another passphrase, without one, and with another link', async () => {
+    const wrong = await collect(made.token, 'seven invented words')
+    expect([wrong.status, wrong.body.code, wrong.headers.get('content-type')]).toEqual([422, 'not-valid', expect.stringContaining('json')])
+    expect((await collect(made.token, ' ')).status).toBe(422)
+    expect((await collect('x'.repeat(43), PASSPHRASE)).status).toBe(404)
+    expect((await trail(made.delivery.id)).at(-1)).toBe('delivery.collect-refused')
+  })
+  it('after ten wrong ones even the right one has to wait', async () => {
+    const { token } = await mailed()
+    for (let wrong = 0; wrong < 10; wrong++) await collect(token, `wrong ${wrong}`)
+    expect((await collect(token, PASSPHRASE)).status).toBe(429)
+  })
+  it('collecting is no receipt: the button is', async () => {
+    expect((await call('GET', `/api/acknowledge/${made.token}`)).body).toMatchObject({ collect: true, acknowledgedAt: null })
+  })
+  it('works for 30 days and no longer', async () => {
+    const { token } = await mailed()
+    t.clock.minutes(30 * 1440 - 1)
+    expect((await collect(token, PASSPHRASE)).status).toBe(200)
+    t.clock.minutes(2)
+    expect((await collect(token, PASSPHRASE)).status).toBe(410)
+    t.clock.set(TEST_NOW)
+  })
+  it('ends when the delivery is withdrawn', async () => {
+    const { token, delivery } = await mailed()
+    await withdrawDelivery(admin, { id: delivery.id, reason: 'Sent to the wrong practice' })
+    expect((await collect(token, PASSPHRASE)).status).toBe(410)
+    expect((await call('GET', `/api/acknowledge/${token}`)).body).toMatchObject({ collect: false, withdrawn: true })
+  })
+})
+
+it('a report that is attached cannot be collected by its link', async () => {
+  const physician = await t.makePhysician()
+  await room.signed({}, { physicianId: physician.id, copyPhysicianIds: [] })
+  t.clock.minutes(2)
+  await runOutboxOnce(t.context, { transport, owner: 'test' })
+  const mail = await simpleParser(received.at(-1)!)
+  expect(mail.attachments).toHaveLength(1)
+  expect((await collect(/acknowledge\/(\S+)/.exec(mail.text ?? '')![1]!, PASSPHRASE)).status).toBe(404)
+})
