@@ -20,7 +20,7 @@ export default defineConfig({
       { resolve: { alias }, test: { name: 'unit', environment: 'node', include: ['tests/unit/**/*.test.ts'] } },
       { resolve: { alias }, test: { name: 'server', environment: 'node', include: ['tests/server/**/*.test.ts'], testTimeout: 30_000, hookTimeout: 60_000 } },
       ...withNuxt ? [await nuxtProject()] : [],
-      { resolve: { alias }, test: { name: 'e2e', environment: 'node', include: ['tests/e2e/**/*.test.ts'], testTimeout: 180_000, hookTimeout: 120_000, fileParallelism: false, bail: process.env.CI ? 0 : 1, globalSetup: ['tests/e2e/global-setup.ts'] } },
+      { resolve: { alias }, test: { name: 'e2e', environment: 'node', include: ['tests/e2e/**/*.test.ts'], testTimeout: 480_000, hookTimeout: 240_000, fileParallelism: false, bail: process.env.CI ? 0 : 1, globalSetup: ['tests/e2e/global-setup.ts'] } },
     ],
   },
 })
