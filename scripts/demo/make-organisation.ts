@@ -21,7 +21,7 @@ import type { DemoClock } from './clock'
 export interface DemoPerson { key: string, id: string, role: Role, name: string, email: string, password: string, totpSecret?: string, siteIds: string[] }
 export interface DemoPractice { id: string, name: string, passphrase: string }
 export interface DemoSite { id: string, name: string, rooms: string[], timeZone: string }
-export interface Organisation { sites: DemoSite[], people: DemoPerson[], practices: DemoPractice[], physicians: { id: string, name: string, practice: string }[] }
+export interface Organisation { sites: DemoSite[], people: DemoPerson[], practices: DemoPractice[], physicians: { id: string, name: string, practice: string, /** opens the desk with an account of the demonstration */ hasDesk: boolean }[] }
 
 const addressOf = (name: string) => `${name.replace(/^Dr /, '').toLowerCase().replace(/[^a-z]+/g, '.')}@northmere.example`
 /** 96 random bits, in a form that can be typed. */
@@ -97,7 +97,7 @@ async function makeDirectory(context: ServiceContext, clock: DemoClock, siteId: 
       const email = `${addressOf(person.name).split('@')[0]}@${name.toLowerCase().replace(/[^a-z]+/g, '-')}.example`
       const physician = await addPhysician(context, { practiceId: id, name: person.name, title: 'MD', email, phone: '+00 55 0998' })
       await verifyOtherwise(context, physician.id, 'Telephoned the practice; the address was read back.')
-      physicians.push({ id: physician.id, name: person.name, practice: name })
+      physicians.push({ id: physician.id, name: person.name, practice: name, hasDesk: 'key' in person })
       if ('key' in person) readers.push(await openDesk(context, { key: person.key, physicianId: physician.id, name: person.name, email, siteId }))
     }
   }

@@ -9,11 +9,11 @@ import { as, book, keepQuestions, makeReferral, receiveAndAccept, record, type M
 import { draft, sign } from './read-study'
 
 /** One finished study: from the referral two weeks before to the acknowledged report. */
-export async function makeFinished(maker: Maker, day: Date): Promise<void> {
+export async function makeFinished(maker: Maker, day: Date, { fromDesk = false } = {}): Promise<void> {
   const { clock, random, organisation } = maker
   const site = random.pick(organisation.sites)
   clock.set(plusDays(day, -random.whole(6, 20)))
-  const referral = await makeReferral(maker, site)
+  const referral = await makeReferral(maker, site, { fromDesk })
   clock.forward(random.whole(5, 60))
   await receiveAndAccept(maker, referral)
   const starts = await book(maker, referral, workingTime(day, random.whole(7, 13), random.pick([0, 15, 30, 45])))
