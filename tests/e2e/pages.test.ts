@@ -90,7 +90,10 @@ it.each(rolesInOrder)('the pages of the %s are in order, the others closed', asy
   if (role === 'administrator') reports = (await asker(window.context.request)<Rows<{ reportId: string, siteName: string }>>('/api/dispatch?pageSize=100')).rows
   const mine = files.filter(file => !isPublic(file) && (!actionOf(file) || roleMay(role, actionOf(file)!)))
   expect(await lookAt(mine, role)).toEqual([])
-  for (const file of files.filter(file => !isPublic(file) && !mine.includes(file))) {
+  // The demonstration's medical director is a neurologist as well, whose rooms are looked at under that name.
+  const held: Role[] = role === 'medical-director' ? [role, 'neurologist'] : [role]
+  const closed = files.filter(file => !isPublic(file) && actionOf(file) && !held.some(each => roleMay(each, actionOf(file)!)))
+  for (const file of closed) {
     const path = `/${file.replace(/(\/?index)?\.vue$/, '').replace(/\[\w+\]/, 'none')}`
     expect([path, (await window.context.request.get(`${app.origin}${path}`)).status()]).toEqual([path, 403])
   }
