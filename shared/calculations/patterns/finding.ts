@@ -59,7 +59,6 @@ export function plainNumber(value: number): string {
 }
 
 export const met = (numbers: string, because?: string): Finding => finding('met', numbers, because)
-export const notMet = (numbers: string, because?: string): Finding => finding('not-met', numbers, because)
 export const notAssessable = (because: string, numbers = ''): Finding => finding('not-assessable', numbers, because)
 
 function finding(result: Truth, numbers: string, because?: string): Finding {
@@ -135,9 +134,6 @@ export const every = (...findings: Finding[]): Finding => withReasons(allOf(find
 
 /** Any of these. */
 export const either = (...findings: Finding[]): Finding => withReasons(anyOf(findings.map(one => one.result)), findings)
-
-/** At least so many of these. */
-export const countOf = (needed: number, findings: readonly Finding[]): Finding => withReasons(atLeast(needed, findings.map(one => one.result)), findings)
 
 function withReasons(result: Truth, findings: readonly Finding[]): Finding {
   const numbers = joined(findings.map(one => one.numbers))

@@ -78,6 +78,16 @@ describe('grades of Bland and classes of Padua', () => {
     expect(truths(pattern)).toEqual({ 6: 'not-met', 5: 'not-met', 4: 'not-met', 3: 'met', 2: 'not-met', 1: 'not-met', 0: 'not-met' })
   })
 
+  it('a latency above 6.5 ms is neither grade 3 nor grade 4', () => {
+    const of = (snap: Entry) => truths(pick(patternsOf(hand({ dml: 7.2, cmap: 3, snap }), { limits }), 'bland-2000', 'right'))
+    expect(of(slow)).toMatchObject({ 5: 'met', 4: 'not-met', 3: 'not-met' })
+    expect(of('no-response')).toMatchObject({ 5: 'met', 4: 'not-met', 3: 'not-met' })
+  })
+
+  it('when one grade alone is open, it is named', () => {
+    expect(grade({ dml: 5.4, cmap: 7, snap: slow, ring: null }, { limits: limits.slice(0, 2) })).toBe('not-assessable: not graded; grade 3 not assessable')
+  })
+
   it('a response that is present with a latency above 7.7 ms is questioned', () => {
     const of = (dml: number, snap: Entry) => criterionOf(pick(patternsOf(hand({ dml, cmap: 2, snap }), { limits }), 'bland-2000', 'right'), '5').because
     expect(of(7.8, slow)).toMatch(/unusual with a latency above 7\.7 ms/)
