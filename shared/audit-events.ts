@@ -18,6 +18,7 @@ function event<S extends z.ZodType>(schema: S, sentence: (data: z.output<S>) => 
 const nothing = z.object({})
 const fields = z.object({ fields: z.array(z.string()) })
 const because = z.object({ because: z.string() })
+const absence = z.object({ fromDay: z.string(), toDay: z.string(), coveredBy: z.string() })
 const list = (words: readonly string[]) => words.join(', ')
 
 export const auditEvents = {
@@ -37,6 +38,8 @@ export const auditEvents = {
   'person.deactivated': event(nothing, () => 'deactivated a person'),
   'role.granted': event(z.object({ role: z.string() }), data => `gave the role ${data.role}`),
   'role.ended': event(z.object({ role: z.string() }), data => `ended the role ${data.role}`),
+  'absence.noted': event(absence, data => `noted an absence from ${data.fromDay} to ${data.toDay}, with cover`),
+  'absence.cancelled': event(absence, data => `took back the absence from ${data.fromDay} to ${data.toDay}`),
   'site.added': event(nothing, () => 'added a site'),
   'site.changed': event(fields, data => `changed a site: ${list(data.fields)}`),
   'organisation.set-up': event(nothing, () => 'set up the organisation'),

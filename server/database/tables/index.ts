@@ -1,7 +1,9 @@
+import type { AbsenceTable } from './absence'
 import type { AuditEventTable } from './audit-event'
 import type { BookingTable } from './booking'
 import type { CounterTable } from './counter'
 import type { DeliveryTable } from './delivery'
+import type { EmergencyAccessTable } from './emergency-access'
 import type { MetaTable } from './meta'
 import type { OneTimeLinkTable } from './one-time-link'
 import type { OrganisationTable } from './organisation'
@@ -17,6 +19,7 @@ import type { ReferralTable } from './referral'
 import type { ReportPdfTable } from './report-pdf'
 import type { ReportTable } from './report'
 import type { ReportVersionTable } from './report-version'
+import type { ReportWriterTable } from './report-writer'
 import type { RoleHoldingTable } from './role-holding'
 import type { RowCheckTable } from './row-check'
 import type { SessionTable } from './session'
@@ -43,6 +46,8 @@ export interface Tables {
   user: UserTable
   recoveryCode: RecoveryCodeTable
   roleHolding: RoleHoldingTable
+  absence: AbsenceTable
+  emergencyAccess: EmergencyAccessTable
   session: SessionTable
   oneTimeLink: OneTimeLinkTable
   practice: PracticeTable
@@ -62,6 +67,7 @@ export interface Tables {
   studyTemperature: StudyTemperatureTable
   studyKeptCheck: StudyKeptCheckTable
   report: ReportTable
+  reportWriter: ReportWriterTable
   reportVersion: ReportVersionTable
   reportPdf: ReportPdfTable
   delivery: DeliveryTable

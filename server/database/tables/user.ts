@@ -11,6 +11,8 @@ export interface UserTable {
   totpEnabledAt: string | null
   totpLastStep: number | null
   lastSeenAt: string | null
+  /** 1: writes reports and does not sign them. */
+  inTraining: Generated<number>
   deactivatedAt: string | null
   createdAt: string
 }
