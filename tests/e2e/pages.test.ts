@@ -3,6 +3,7 @@ import { join } from 'node:path'
 import type { APIRequestContext, Page } from 'playwright-core'
 import { afterAll, beforeAll, expect, it } from 'vitest'
 import { roleMay, type Action, type Role } from '#shared/permissions'
+import { policyNames } from '#shared/policies/index'
 import { axeFindings, signIn, startApp, type App, type Window } from './app'
 
 /**
@@ -43,6 +44,8 @@ const addresses: Record<string, (ask: Ask) => Promise<string[]>> = {
   'dispatch/index.vue': async () => ['/dispatch', '/dispatch?state=acknowledged'],
   'shelf/index.vue': async () => ['/shelf'],
   'shelf/[setId].vue': async ask => one(await ask<{ id: string }[]>('/api/shelf/sets')).map(set => `/shelf/${set.id}`),
+  'shelf/policies/index.vue': async () => ['/shelf/policies'],
+  'shelf/policies/[name].vue': async () => policyNames.map(name => `/shelf/policies/${name}`),
   'directory/index.vue': async () => ['/directory'],
   'directory/new.vue': async () => ['/directory/new'],
   'directory/[practiceId].vue': async ask => one((await ask<Rows<{ id: string }>>('/api/directory/practices')).rows).map(row => `/directory/${row.id}`),

@@ -10,6 +10,7 @@ import type { OrganisationTable } from './organisation'
 import type { OutboxMailTable } from './outbox-mail'
 import type { PatientTable } from './patient'
 import type { PhysicianTable } from './physician'
+import type { PolicyVersionTable } from './policy-version'
 import type { PracticeTable } from './practice'
 import type { RecoveryCodeTable } from './recovery-code'
 import type { ReferenceAdoptionTable } from './reference-adoption'
@@ -73,6 +74,7 @@ export interface Tables {
   delivery: DeliveryTable
   outboxMail: OutboxMailTable
   task: TaskTable
+  policyVersion: PolicyVersionTable
   referenceAdoption: ReferenceAdoptionTable
   rowCheck: RowCheckTable
   auditEvent: AuditEventTable

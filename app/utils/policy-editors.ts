@@ -1,0 +1,11 @@
+import type { Component } from 'vue'
+import type { PolicyName } from '#shared/policies/index'
+import ClocksEditor from '~/components/policy/ClocksEditor.vue'
+
+/**
+ * The form of each policy's body. An editor takes the body as v-model (it may change it in place), `errorOf(path)` with
+ * paths that begin with "body.", and `readonly`.
+ */
+export const policyEditors: Record<PolicyName, Component> = {
+  clocks: ClocksEditor,
+}
