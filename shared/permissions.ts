@@ -32,6 +32,8 @@ export const permissions = {
   'study.record': [T, N],
   'study.hand-over': [T, N],
   'study.return': [N],
+  // Who reads what: readers and the director share out what waits.
+  'study.assign': [N, D],
 
   'report.read': [T, N, A, D],
   'report.write': [N],
@@ -60,9 +62,19 @@ export const permissions = {
 
 export type Action = keyof typeof permissions
 
-/** @example roleMay('technologist', 'report.sign') // => false */
-export function roleMay(role: Role, action: Action): boolean {
-  return (permissions[action] as readonly Role[]).includes(role)
+/** What a person in training leaves to a supervisor: they read and write, someone else signs. */
+export const supervisedActions: readonly Action[] = ['report.sign', 'report.correct', 'shelf.approve']
+
+/** What a neurologist may do with one study of a site where they hold no role, for a stated reason and for some hours. */
+export const emergencyActions: readonly Action[] = ['study.read', 'referral.read', 'upload.read', 'report.read', 'report.write', 'report.sign', 'study.return']
+
+/**
+ * @param inTraining of the person, whatever the role
+ * @example roleMay('technologist', 'report.sign') // => false
+ * @example roleMay('neurologist', 'report.sign', true) // => false
+ */
+export function roleMay(role: Role, action: Action, inTraining = false): boolean {
+  return (permissions[action] as readonly Role[]).includes(role) && !(inTraining && supervisedActions.includes(action))
 }
 
 /** The rooms of the bar, in order, each with the action that opens it. */

@@ -53,7 +53,7 @@ export function useSession() {
 
   /** May this person do this at that site (or at any site, when none is named)? */
   function may(action: Action, siteId?: string): boolean {
-    return user.value?.holdings.some(holding => (!siteId || holding.siteId === siteId) && roleMay(holding.role, action)) ?? false
+    return user.value?.holdings.some(holding => (!siteId || holding.siteId === siteId) && roleMay(holding.role, action, user.value?.inTraining)) ?? false
   }
 
   return { user, refresh, signIn, signOut, may }

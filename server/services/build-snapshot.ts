@@ -32,6 +32,14 @@ async function referralPart(db: Database, { referral }: ReadingFacts): Promise<R
   }
 }
 
+/** Everybody who wrote in the draft but the signer, who is named by the signature: a trainee who drafted stays named. */
+async function writersOf(db: Database, reportId: string | undefined, signerId: string): Promise<string> {
+  if (!reportId) return ''
+  const writers = await db.selectFrom('reportWriter').innerJoin('user', 'user.id', 'reportWriter.userId').select(['name', 'printedName', 'credentials', 'inTraining'])
+    .where('reportId', '=', reportId).where('userId', '<>', signerId).orderBy('firstAt').orderBy('userId').execute()
+  return writers.map(({ name, printedName, credentials, inTraining }) => [printedName || name, credentials, inTraining ? 'in training' : ''].filter(Boolean).join(', ')).join('; ')
+}
+
 async function nameOf(db: Database, userId: string | null): Promise<string> {
   if (userId === null) return ''
   const user = await db.selectFrom('user').select(['name', 'printedName', 'credentials']).where('id', '=', userId).executeTakeFirst()
@@ -54,7 +62,6 @@ export async function buildSnapshot(context: ServiceContext, db: Database, facts
   const { site, study, policy, assessment, draft, referral, assessed, report } = facts
   const organisation = await db.selectFrom('organisation').selectAll().where('id', '=', site.organisationId).executeTakeFirstOrThrow()
   const { id, recordNumber, familyName, givenName, birthDate, sexForLimits } = patientView(facts.patient)
-  const drafter = report?.draftedBy && report.draftedBy !== signature.userId ? report.draftedBy : null
   return {
     format: SNAPSHOT_FORMAT,
     demonstration: organisation.demonstration === 1 || context.settings.demonstration,
@@ -74,7 +81,7 @@ export async function buildSnapshot(context: ServiceContext, db: Database, facts
     draft,
     resolvedChecks: resolvedChecks(facts),
     changes: [],
-    draftedBy: await nameOf(db, drafter),
+    draftedBy: await writersOf(db, report?.id, signature.userId),
     signature,
   }
 }

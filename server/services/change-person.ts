@@ -11,7 +11,7 @@ import { recordAuditEvent } from './record-audit-event'
 import { endSessions } from './sessions'
 import { localDate } from './site-time'
 
-export type PersonInput = z.output<typeof personSchema>
+export type PersonInput = Omit<z.output<typeof personSchema>, 'inTraining'> & { inTraining?: boolean }
 export type PersonChanges = Partial<PersonInput>
 interface Wish { siteId: string, role: Role }
 
@@ -29,7 +29,7 @@ export async function addPersonIn(context: ServiceContext, trx: Trx, input: Pers
   const id = randomUUID()
   await checkAddressFree(trx, input.email, id)
   await trx.insertInto('user').values({
-    id, email: input.email.toLowerCase(), name: input.name, printedName: input.printedName, credentials: input.credentials,
+    id, email: input.email.toLowerCase(), name: input.name, printedName: input.printedName, credentials: input.credentials, inTraining: input.inTraining ? 1 : 0,
     passwordHash: null, totpSecretSealed: null, totpEnabledAt: null, totpLastStep: null, lastSeenAt: null, deactivatedAt: null, createdAt: now(context),
   }).execute()
   await recordAuditEvent(context, trx, { name: 'person.added', subject: 'user', subjectId: id, data: {} })
@@ -46,7 +46,7 @@ export async function changePerson(context: ServiceContext, id: string, changes:
     const person = await trx.selectFrom('user').selectAll().where('id', '=', id).executeTakeFirst()
     if (!person) throw new DomainError('not-found')
     const held = await currentHoldings(trx, [id], context.clock())
-    const wanted = { email: changes.email?.toLowerCase(), name: changes.name, printedName: changes.printedName, credentials: changes.credentials }
+    const wanted = { email: changes.email?.toLowerCase(), name: changes.name, printedName: changes.printedName, credentials: changes.credentials, inTraining: changes.inTraining === undefined ? undefined : Number(changes.inTraining) }
     const fields = (Object.keys(wanted) as (keyof typeof wanted)[]).filter(field => wanted[field] !== undefined && wanted[field] !== person[field])
     if (fields.length > 0) {
       checkMayWriteEverywhere(context.actor, held, 'people.write')

@@ -8,6 +8,10 @@ export interface Actor {
   /** The name as the audit trail keeps it. */
   label: string
   holdings: readonly { siteId: string, role: Role }[]
+  /** Writes reports and does not sign them. */
+  inTraining?: boolean
+  /** The stated reason under which this request opens a record outside the own sites, and until when; views keep the reason. */
+  emergency?: { reason: string, until: string }
 }
 
 export interface Settings {
@@ -49,12 +53,12 @@ export function actingAs(context: ServiceContext, actor: Actor): ServiceContext 
 
 /** @example mayAt(actor, 'report.sign', siteId) */
 export function mayAt(actor: Actor, action: Action, siteId: string): boolean {
-  return actor.holdings.some(holding => holding.siteId === siteId && roleMay(holding.role, action))
+  return actor.holdings.some(holding => holding.siteId === siteId && roleMay(holding.role, action, actor.inTraining))
 }
 
 /** Ids of the sites where the actor may do this; each once. */
 export function sitesWhere(actor: Actor, action: Action): string[] {
-  return [...new Set(actor.holdings.filter(holding => roleMay(holding.role, action)).map(holding => holding.siteId))]
+  return [...new Set(actor.holdings.filter(holding => roleMay(holding.role, action, actor.inTraining)).map(holding => holding.siteId))]
 }
 
 /** The moment as the database keeps it: ISO 8601 in UTC, to the millisecond. */

@@ -11,7 +11,7 @@ type Row = Awaited<ReturnType<typeof listRows>>['rows'][number]
 /** Roles at sites that the asker does not administer stay out of sight. */
 function toRow(row: Row, holdings: readonly CurrentHolding[], sites: readonly string[]): PersonRow {
   return {
-    id: row.id, email: row.email, name: row.name, printedName: row.printedName, credentials: row.credentials,
+    id: row.id, email: row.email, name: row.name, printedName: row.printedName, credentials: row.credentials, inTraining: row.inTraining === 1,
     holdings: holdings.filter(holding => holding.userId === row.id && sites.includes(holding.siteId)).map(holding => ({ siteId: holding.siteId, siteName: holding.siteName, role: holding.role as Role })),
     secondFactor: row.totpEnabledAt !== null, lastSeenAt: row.lastSeenAt, deactivated: row.deactivatedAt !== null, hasPassword: row.hasPassword === 1,
   }

@@ -43,7 +43,7 @@ function sessionUserOf(context: ServiceContext, rows: SessionRows): SessionUser 
   const secondFactor = first.totpEnabledAt !== null
   return {
     id: first.id, email: first.email, name: first.name, printedName: first.printedName, credentials: first.credentials,
-    holdings, sites: [...sites.values()], secondFactor,
+    holdings, sites: [...sites.values()], secondFactor, inTraining: first.inTraining === 1,
     mustEnrol: !secondFactor && holdings.some(holding => rolesWithSecondFactor.includes(holding.role)),
     demonstration: context.settings.demonstration, idleMinutes: context.settings.idleMinutes, openTasks: 0,
   }
@@ -57,5 +57,5 @@ export function inForce(holding: { siteId: string | null, timeZone: string | nul
 }
 
 export function actorOf(user: SessionUser): Actor {
-  return { userId: user.id, label: user.name, holdings: user.holdings }
+  return { userId: user.id, label: user.name, holdings: user.holdings, inTraining: user.inTraining }
 }

@@ -32,7 +32,7 @@ export function viewLinkText(view: Omit<ViewEvent, 'mac'>): string {
 export function recordView(context: ServiceContext, view: NewView): void {
   if (!context.actor.userId) return
   const buffer = bufferOf(context.db)
-  const { subject, subjectId, because = '' } = view
+  const { subject, subjectId, because = context.actor.emergency?.reason ?? '' } = view
   const actorId = context.actor.userId
   if (buffer.waiting.some(other => other.actorId === actorId && other.subject === subject && other.subjectId === subjectId && other.because === because)) return
   buffer.waiting.push({ at: now(context), actorId, siteId: view.siteId ?? null, subject, subjectId, patientId: view.patientId ?? null, because })

@@ -46,6 +46,7 @@ export async function saveDraft(context: ServiceContext, { studyId, draft, revis
     }
     const draftJson = canonicalJson(draft)
     if (draftJson === report.draftJson) return report.draftRevision
+    await trx.insertInto('reportWriter').values({ reportId: report.id, userId: context.actor.userId!, firstAt: savedAt }).onConflict(conflict => conflict.doNothing()).execute()
     await trx.updateTable('report').set({ draftJson, draftRevision: revision + 1, readyFingerprint: null, draftedBy: context.actor.userId, draftedAt: savedAt }).where('id', '=', report.id).execute()
     return revision + 1
   })

@@ -19,9 +19,10 @@ import { verifyOwnPassword } from './verify-own-password'
 /**
  * Asks the signer for the password again (21 CFR 11.200(a)(1): at least one component at each signing within a session).
  * A wrong one is kept in the trail. Slow; before the transaction, never inside.
- * @throws DomainError 'wrong-password', 'too-many-requests'
+ * @throws DomainError 'not-allowed' in training, 'wrong-password', 'too-many-requests'
  */
 export async function proveSigner(context: ServiceContext, password: string, about: { subject: string, subjectId: string, siteId: string, patientId: string }): Promise<void> {
+  if (context.actor.inTraining) throw new DomainError('not-allowed', { message: 'Whoever is in training writes the report; a supervisor signs it. Mark it ready to sign.' })
   const right = context.actor.userId !== null && await verifyOwnPassword(context, context.actor.userId, password)
   if (right) return
   await context.db.transaction().execute(trx => recordAuditEvent(context, trx, { name: 'report.not-signed', ...about, data: { because: 'wrong password' } }))

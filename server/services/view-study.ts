@@ -41,5 +41,7 @@ export async function viewStudy(context: ServiceContext, id: string): Promise<St
     readerId, handOverNote, returnQuestion, returnRunId, study, cellRevisions, runRevisions, plannedRunIds, policy, adopted: policy.adopted, assessment, uploads,
     mayRecord: recordable.includes(state) && mayAt(actor, 'study.record', siteId),
     mayRead: mayAt(actor, 'report.write', siteId),
+    maySign: mayAt(actor, 'report.sign', siteId),
+    emergency: actor.emergency ?? null,
   }
 }

@@ -2,6 +2,7 @@ import { defineEventHandler, getQuery, getRouterParams, readBody, setResponseHea
 import type * as z from 'zod'
 import type { Database } from '#server/database/connection'
 import { mayAt, sitesWhere, type ServiceContext } from '#server/services/context'
+import { emergencyAccessFor } from '#server/services/open-in-emergency'
 import { recordRefusal } from '#server/services/record-refusal'
 import { DomainError, errors, type ApiErrorBody, type FieldError } from '#shared/errors'
 import type { Action } from '#shared/permissions'
@@ -69,13 +70,13 @@ export function defineApiHandler<A extends Allow, R, P extends z.ZodType | undef
 /** The wrapper itself, free of the server around it, so that tests can run it on a bare event. */
 export async function runApi<A extends Allow, P, Q, B, R>(event: H3Event, definition: ApiDefinition<A, P, Q, B, R>): Promise<Awaited<R>> {
   const user = checkSession(event, definition)
-  const context = serverContext(event)
-  const sites = isAction(definition.allow) ? await checkAction(event, context, definition.allow) : []
+  const signedIn = serverContext(event)
+  const sites = isAction(definition.allow) ? await checkAction(event, signedIn, definition.allow) : []
   const params = parse(definition.params, getRouterParams(event, { decode: true }), 'not-found') as Output<P>
   const query = parse(definition.query, getQuery(event)) as Output<Q>
   const body = (definition.body ? parse(definition.body, await readJson(event)) : undefined) as Output<B>
   const asked = { params, query, body }
-  if (definition.siteOf && isAction(definition.allow)) await checkSite(event, context, definition.allow, await definition.siteOf(context.db, asked))
+  const context = definition.siteOf && isAction(definition.allow) ? await checkSite(event, signedIn, definition.allow, await definition.siteOf(signedIn.db, asked)) : signedIn
   return await definition.handle({ ...asked, event, context, user: user as never, sites })
 }
 
@@ -100,11 +101,14 @@ async function checkAction(event: H3Event, context: ServiceContext, action: Acti
   return sites
 }
 
-async function checkSite(event: H3Event, context: ServiceContext, action: Action, siteId: string | null): Promise<void> {
+/** @returns the context to act in: with the stated reason where the record was opened in an emergency */
+async function checkSite(event: H3Event, context: ServiceContext, action: Action, siteId: string | null): Promise<ServiceContext> {
   if (siteId === null) throw new DomainError('not-found')
-  if (mayAt(context.actor, action, siteId)) return
+  if (mayAt(context.actor, action, siteId)) return context
+  const opened = await emergencyAccessFor(context, action, siteId, Object.values(getRouterParams(event, { decode: true })))
+  if (opened) return opened
   const worksThere = context.actor.holdings.some(holding => holding.siteId === siteId)
-  await refuse(event, context, action, siteId, worksThere ? 'not-allowed' : 'not-found')
+  return await refuse(event, context, action, siteId, worksThere ? 'not-allowed' : 'not-found')
 }
 
 async function refuse(event: H3Event, context: ServiceContext, action: Action, siteId: string | null, code: 'not-allowed' | 'not-found'): Promise<never> {

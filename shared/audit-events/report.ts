@@ -7,6 +7,7 @@ const delivery = z.object({ number: z.string(), version: z.number().int() })
 /** Reading, signing, delivery. Recipients are named by their id; the words of a report stand in its versions only. */
 export const reportEvents = {
   'study.taken': event(z.object({ from: z.string().nullable() }), data => data.from ? 'took a study over from another reader' : 'took a study to read'),
+  'study.assigned': event(z.object({ from: z.string().nullable(), to: z.string() }), () => 'gave a study to a reader'),
   'study.released': event(z.object({}), () => 'gave a study back to the queue'),
   'study.returned': event(z.object({ runId: z.string().nullable() }), () => 'returned a study to the bench with a question'),
   'report.drafted': event(z.object({ number: z.string() }), data => `began the report ${data.number}`),

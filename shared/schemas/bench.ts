@@ -98,4 +98,8 @@ export interface StudyView {
   uploads: UploadView[]
   mayRecord: boolean
   mayRead: boolean
+  /** False for whoever is in training: they write, a supervisor signs. */
+  maySign: boolean
+  /** Opened without a role at the site, for a stated reason, until this moment. */
+  emergency: { reason: string, until: string } | null
 }

@@ -74,11 +74,17 @@ export interface ReadingRow {
   urgency: Urgency
   state: StudyState
   handedOverAt: string | null
+  stateSince: string
+  siteId: string
   siteName: string
   readerId: string | null
   readerName: string | null
   flagged: number
   hasDraft: boolean
+  /** Marked ready to sign: written in training, for a supervisor, or for later. */
+  ready: boolean
+  /** Where the reader is away today: until when, and who covers. */
+  away: { toDay: string, coveredBy: string, coveredByName: string } | null
 }
 
 /** GET /api/studies/:id/reading, beside the StudyView. */

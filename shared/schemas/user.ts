@@ -12,6 +12,8 @@ export interface SessionUser {
   holdings: { siteId: string, siteName: string, role: Role }[]
   sites: { id: string, name: string, town: string, timeZone: string }[]
   secondFactor: boolean
+  /** Writes reports; a supervisor signs them. */
+  inTraining: boolean
   /** Signers without a second factor can do nothing but set one up. */
   mustEnrol: boolean
   demonstration: boolean
@@ -66,6 +68,7 @@ export const personSchema = z.object({
   name: z.string().trim().min(2, 'Enter the name.').max(120),
   printedName: z.string().trim().max(120).default(''),
   credentials: z.string().trim().max(120).default(''),
+  inTraining: z.boolean().default(false),
   holdings: z.array(z.object({ siteId: z.string(), role: z.enum(roles) })).max(60).default([]),
 })
 /** PATCH: only what is given changes. Written out, because a partial schema would still fill in the defaults. */
@@ -74,9 +77,10 @@ export const personChangesSchema = z.object({
   name: personSchema.shape.name.optional(),
   printedName: z.string().trim().max(120).optional(),
   credentials: z.string().trim().max(120).optional(),
+  inTraining: z.boolean().optional(),
   holdings: personSchema.shape.holdings.unwrap().optional(),
 })
-export interface PersonRow { id: string, email: string, name: string, printedName: string, credentials: string, holdings: { siteId: string, siteName: string, role: Role }[], secondFactor: boolean, lastSeenAt: string | null, deactivated: boolean, hasPassword: boolean }
+export interface PersonRow { id: string, email: string, name: string, printedName: string, credentials: string, inTraining: boolean, holdings: { siteId: string, siteName: string, role: Role }[], secondFactor: boolean, lastSeenAt: string | null, deactivated: boolean, hasPassword: boolean }
 export interface SiteView { id: string, name: string, town: string, address: string, phone: string, timeZone: string, handMinimumC: number, footMinimumC: number, distanceUncertaintyMm: number, latencyUncertaintyMs: number, rooms: string[] }
 export const siteSchema = z.object({ name: z.string().trim().min(2, 'Enter the name.').max(120), town: z.string().trim().min(2, 'Enter the town.').max(120), address: z.string().trim().max(200).default(''), phone: z.string().trim().max(40).default(''), timeZone: z.string().trim().min(2).max(60), handMinimumC: z.coerce.number().min(20).max(37).default(32), footMinimumC: z.coerce.number().min(20).max(37).default(30), distanceUncertaintyMm: z.coerce.number().min(0).max(30).default(5), latencyUncertaintyMs: z.coerce.number().min(0).max(2).default(0.1), rooms: z.array(z.string().trim().min(1).max(60)).min(1, 'Name at least one room.').max(40) })
 export const siteChangesSchema = z.object({

@@ -32,6 +32,7 @@ const addresses: Record<string, (ask: Ask) => Promise<string[]>> = {
     return one(days.flat().filter(row => row.studyId), row => row.state).map(row => `/bench/${row.studyId}`)
   },
   'reading/index.vue': async () => ['/reading', '/reading?state=read'],
+  'reading/emergency.vue': async () => ['/reading/emergency'],
   'reading/[studyId].vue': async (ask) => {
     const waiting = await ask<Rows<{ studyId: string, readerId: string | null }>>('/api/reading?state=handed-over')
     const read = await ask<Rows<{ studyId: string }>>('/api/reading?state=read')

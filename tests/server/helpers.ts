@@ -59,7 +59,7 @@ export async function testContext(changes: Partial<Settings> = {}) {
 export type TestContext = Awaited<ReturnType<typeof testContext>>
 
 function asUser(context: ServiceContext, user: MadeUser): ServiceContext {
-  return actingAs(context, { userId: user.id, label: user.name, holdings: user.holdings })
+  return actingAs(context, { userId: user.id, label: user.name, holdings: user.holdings, inTraining: user.inTraining === 1 })
 }
 
 function makers(context: ServiceContext) {

@@ -5,10 +5,11 @@ import type { Database } from '../connection'
 export interface TaskReader { userId: string, holdings: readonly { siteId: string, role: Role }[] }
 
 const pathOf: Record<string, (id: string) => string> = {
-  delivery: () => '/dispatch',
-  report: id => `/reports/${id}`,
-  referral: id => `/intake/${id}`,
-  study: id => `/reading/${id}`,
+  'delivery': () => '/dispatch',
+  'report': id => `/reports/${id}`,
+  'referral': id => `/intake/${id}`,
+  'study': id => `/reading/${id}`,
+  'emergency-access': id => `/ledger?subjectId=${id}`,
 }
 
 /** Open tasks for this person: own ones, and those of a role held at the task's site; what is due first comes first. */
