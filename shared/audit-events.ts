@@ -41,6 +41,8 @@ export const auditEvents = {
   'absence.noted': event(absence, data => `noted an absence from ${data.fromDay} to ${data.toDay}, with cover`),
   'absence.cancelled': event(absence, data => `took back the absence from ${data.fromDay} to ${data.toDay}`),
   'site.added': event(nothing, () => 'added a site'),
+  'equipment.added': event(z.object({ kind: z.string() }), () => 'added a device to a site'),
+  'equipment.changed': event(z.object({ changes: z.array(z.object({ field: z.string(), before: z.unknown() })) }), data => `changed a device: ${list(data.changes.map(change => change.field))}`),
   'site.changed': event(fields, data => `changed a site: ${list(data.fields)}`),
   'organisation.set-up': event(nothing, () => 'set up the organisation'),
   'demonstration.filled': event(z.object({ studies: z.number().int() }), data => `filled the demonstration with ${data.studies} invented studies`),

@@ -11,7 +11,8 @@ export const referralMoves: Record<ReferralState, readonly ReferralState[]> = {
   'accepted': ['booked', 'declined', 'cancelled', 'entered-in-error'],
   'booked': ['attended', 'did-not-attend', 'accepted', 'declined', 'cancelled', 'entered-in-error'],
   'did-not-attend': ['booked', 'cancelled', 'entered-in-error'],
-  'attended': ['answered', 'entered-in-error'],
+  // Back to booked or accepted when the study was begun under the wrong record; cancelled when it was stopped and nothing follows.
+  'attended': ['answered', 'booked', 'accepted', 'cancelled', 'entered-in-error'],
   'answered': ['entered-in-error'],
   'declined': [],
   'cancelled': [],
@@ -30,7 +31,8 @@ export const studyMoves: Record<StudyState, readonly StudyState[]> = {
   'handed-over': ['returned', 'read', 'entered-in-error'],
   'returned': ['handed-over', 'stopped', 'entered-in-error'],
   'read': ['entered-in-error'],
-  'stopped': ['entered-in-error'],
+  // To the reader for a technical report of what was measured before it was stopped.
+  'stopped': ['handed-over', 'entered-in-error'],
   'entered-in-error': [],
 }
 

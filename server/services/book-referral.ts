@@ -3,21 +3,15 @@ import type { Trx } from '#server/database/connection'
 import type { Referral } from '#server/database/tables/referral'
 import type { Site } from '#server/database/tables/site'
 import { DomainError, type FieldError } from '#shared/errors'
-import { roleMay } from '#shared/permissions'
 import type { BookingInput } from '#shared/schemas/referral'
 import { mayAt, now, type ServiceContext } from './context'
 import { moveState } from './move-state'
+import { peopleWho } from './people-who'
 import { recordAuditEvent } from './record-audit-event'
 import { instantOf, localDate, localTime } from './site-time'
 
 /** Who can be booked as technologist on a day: a role at the site that records, in force on that day. */
-export async function recordersAt(db: Pick<Trx, 'selectFrom'>, siteId: string, date: string): Promise<{ id: string, name: string }[]> {
-  const rows = await db.selectFrom('roleHolding').innerJoin('user', 'user.id', 'roleHolding.userId').select(['user.id', 'user.name', 'role'])
-    .where('siteId', '=', siteId).where('user.deactivatedAt', 'is', null).where('startsOn', '<=', date).where(eb => eb.or([eb('endsOn', 'is', null), eb('endsOn', '>', date)]))
-    .orderBy('user.name').execute()
-  const recorders = rows.filter(row => roleMay(row.role, 'study.record'))
-  return [...new Map(recorders.map(({ id, name }) => [id, { id, name }])).values()]
-}
+export const recordersAt = (db: Pick<Trx, 'selectFrom'>, siteId: string, date: string) => peopleWho(db, 'study.record', siteId, date)
 
 async function checkBooking(context: ServiceContext, trx: Trx, site: Site, booking: BookingInput, starts: Date): Promise<void> {
   const fields: FieldError[] = []

@@ -2,6 +2,7 @@ import type { Database } from '#server/database/connection'
 import { cautionAnswers } from '#server/database/queries/bands'
 import { copiesOf } from '#server/database/queries/referrals'
 import { patientView } from '#server/database/queries/patients'
+import { studyAround } from '#server/database/queries/study-around'
 import { techniqueOf } from '#shared/catalogue/nerves'
 import { SNAPSHOT_FORMAT, type ReportSnapshot } from '#shared/schemas/report'
 import { DomainError } from '#shared/errors'
@@ -57,6 +58,12 @@ export async function signatureOf(context: ServiceContext, db: Database, meaning
   return { userId, name: user.printedName || user.name, credentials: user.credentials, meaning, at, timeZone }
 }
 
+/** What of the circumstances the report says; choices and comments of the bench stay there. */
+async function benchPart(db: Database, { assessed }: ReadingFacts): Promise<ReportSnapshot['bench']> {
+  const { circumstances, overdue, visits, laterEntry, move, stopped, protocol } = await studyAround(db, assessed.record)
+  return { circumstances, overdue, visits, laterEntry, move, stopped, protocol: protocol && { label: protocol.label, version: protocol.version } }
+}
+
 /** The first signed copy: everything the report says, frozen; nothing of it is looked up again later. */
 export async function buildSnapshot(context: ServiceContext, db: Database, facts: ReadingFacts, { number, signature }: { number: string, signature: Signature }): Promise<ReportSnapshot> {
   const { site, study, policy, assessment, draft, referral, assessed, report } = facts
@@ -74,6 +81,7 @@ export async function buildSnapshot(context: ServiceContext, db: Database, facts
     study, studyNumber: assessed.record.number, startedAt: assessed.record.startedAt,
     technologist: await nameOf(db, assessed.record.technologistId),
     handOverNote: assessed.record.handOverNote,
+    bench: await benchPart(db, facts),
     needleExamination: study.runs.some(run => techniqueOf(run.technique)?.kind === 'needle') ? 'Needle examination: see its table.' : '',
     policy, assessment,
     techniques: [...new Set(study.runs.map(run => run.technique))].flatMap(technique => techniqueOf(technique) ?? []),

@@ -1,4 +1,5 @@
 import { randomUUID } from 'node:crypto'
+import type { Trx } from '#server/database/connection'
 import { techniqueOf, techniqueTitle } from '#shared/catalogue/nerves'
 import { DomainError } from '#shared/errors'
 import type { Run } from '#shared/schemas/study'
@@ -30,6 +31,18 @@ export function missingForHandOver({ record, study, assessment, plannedRunIds }:
   return [...confirmed, ...stops, ...unsaid, ...nothing]
 }
 
+/** Values that came from another record were typed for another age and height: somebody looks at them again first. */
+async function uncheckedMove(trx: Trx, id: string): Promise<MissingForHandOver[]> {
+  const move = await trx.selectFrom('studyMove').select('fromStudyId').where('toStudyId', '=', id).where('checkedAt', 'is', null).executeTakeFirst()
+  return move ? [{ key: 'moved-values', sentence: 'The values came from another record. Look at each of them, and confirm that they belong to this patient.' }] : []
+}
+
+/** What lists read without assessing again, for a study that comes to the reader by another way than the hand-over. */
+export async function keepSummary(context: ServiceContext, trx: Trx, id: string): Promise<void> {
+  const summary = summaryOf(await assessStoredStudy({ db: trx }, id))
+  await trx.updateTable('study').set({ handedOverAt: now(context), summaryJson: JSON.stringify(summary) }).where('id', '=', id).execute()
+}
+
 function summaryOf({ assessment, study }: AssessedStudy): StudySummary {
   return {
     flagged: assessment.flagged.length, runs: study.runs.length, calculationVersion: assessment.calculationVersion,
@@ -46,7 +59,7 @@ export async function handOverStudy(context: ServiceContext, { id, note }: { id:
     const assessed = await assessStoredStudy({ db: trx }, id)
     const { record } = assessed
     if (record.state !== 'recording' && record.state !== 'returned') throw new DomainError('wrong-state', { details: { state: record.state } })
-    const missing = missingForHandOver(assessed)
+    const missing = [...missingForHandOver(assessed), ...await uncheckedMove(trx, id)]
     if (missing.length) throw new DomainError('not-ready', { message: 'The study cannot be handed over yet. The list says what is missing.', details: { missing }, fields: missing.map(({ key, sentence }) => ({ path: key, message: sentence })) })
     await moveState(context, trx, { subject: 'study', id, from: ['recording', 'returned'], to: 'handed-over' })
     const summary = summaryOf(assessed)

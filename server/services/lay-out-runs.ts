@@ -3,8 +3,9 @@ import type { Trx } from '#server/database/connection'
 import type { RunSettings } from '#server/database/queries/studies'
 import { techniqueOf } from '#shared/catalogue/nerves'
 import type { Technique } from '#shared/catalogue/types'
-import { protocols } from '#shared/protocols'
+import type { Protocol } from '#shared/protocols'
 import type { ReferralSide, Side } from '#shared/schemas/common'
+import { keptProtocol } from './protocols'
 import { now, type ServiceContext } from './context'
 
 export interface PlannedRun { technique: string, side: Side }
@@ -13,8 +14,7 @@ export interface PlannedRun { technique: string, side: Side }
 export const sidesAsked = (side: ReferralSide | null): Side[] => side === 'right' || side === 'left' ? [side] : ['right', 'left']
 
 /** The runs that a protocol plans, in its order, RIGHT before LEFT. */
-export function plannedRuns(protocolId: string | null, side: ReferralSide | null): PlannedRun[] {
-  const protocol = protocols.find(known => known.id === protocolId)
+export function plannedRuns(protocol: Protocol | null, side: ReferralSide | null): PlannedRun[] {
   return (protocol?.runs ?? []).flatMap(run => (run.side === 'both' ? ['right', 'left'] as const : sidesAsked(side)).map(where => ({ technique: run.technique, side: where })))
 }
 
@@ -48,8 +48,8 @@ export async function isEmptyRun(trx: Trx, runId: string): Promise<boolean> {
  * Lays out what the protocol plans for the confirmed side: adds what is not there, and takes away planned runs of the
  * other side that nobody has written in. Runs with values always stay.
  */
-export async function layOutRuns(context: ServiceContext, trx: Trx, study: { id: string, protocol: string | null }, side: ReferralSide | null): Promise<void> {
-  const wanted = plannedRuns(study.protocol, side)
+export async function layOutRuns(context: ServiceContext, trx: Trx, study: { id: string }, side: ReferralSide | null): Promise<void> {
+  const wanted = plannedRuns(await keptProtocol(trx, study.id), side)
   const there = await trx.selectFrom('studyRun').selectAll().where('studyId', '=', study.id).where('removedAt', 'is', null).orderBy('position').execute()
   const isSame = (a: PlannedRun) => (b: PlannedRun) => a.technique === b.technique && a.side === b.side
   for (const run of there) {

@@ -2,11 +2,11 @@ import type { Trx } from '#server/database/connection'
 import { copiesOf, referralInputOf } from '#server/database/queries/referrals'
 import type { Referral } from '#server/database/tables/referral'
 import { DomainError } from '#shared/errors'
-import { protocols } from '#shared/protocols'
 import { missingForBooking, type Urgency } from '#shared/schemas/referral'
 import type { ReferralState } from '#shared/states'
 import { now, type ServiceContext } from './context'
 import { moveState } from './move-state'
+import { protocolAt } from './protocols'
 import { recordAuditEvent } from './record-audit-event'
 
 /** The steps of a referral that need no more than a word; booking has a file of its own. */
@@ -34,9 +34,9 @@ export async function receiveReferral(context: ServiceContext, { id }: { id: str
  * @throws DomainError 'not-valid' with what is missing for booking, field by field
  */
 export async function acceptReferral(context: ServiceContext, { id, protocol, urgency }: { id: string, protocol: string, urgency?: Urgency }): Promise<void> {
-  if (!protocols.some(known => known.id === protocol)) throw new DomainError('not-valid', { fields: [{ path: 'protocol', message: 'Choose a protocol from the list.' }] })
   await context.db.transaction().execute(async (trx) => {
     const referral = await referralIn(trx, id)
+    if (!await protocolAt(context, trx, { siteId: referral.siteId, id: protocol })) throw new DomainError('not-valid', { fields: [{ path: 'protocol', message: 'Choose a protocol from the list.' }] })
     const before = referralInputOf(referral, await copiesOf(trx, id))
     const missing = missingForBooking({ ...before, urgency: urgency ?? before.urgency })
     if (referral.state === 'received' && missing.length) throw new DomainError('not-valid', { fields: missing })

@@ -65,11 +65,12 @@ async function compareAndSet(context: ServiceContext, trx: Trx, study: Study, ce
   return { answer: { saveId, rowId, field, saved: true, revision, savedAt }, change: { runId, rowId, field, before, after: entry } }
 }
 
-/** When a run was recorded: at its first value. */
+/** When a run was recorded: at its first value, or when the paper says that it is entered from. */
 async function noteFirstValue(context: ServiceContext, trx: Trx, runIds: string[]): Promise<void> {
+  const later = await trx.selectFrom('studyLaterEntry').innerJoin('studyRun', 'studyRun.studyId', 'studyLaterEntry.studyId').select('measuredAt').where('studyRun.id', 'in', runIds).executeTakeFirst()
   const runs = await trx.selectFrom('studyRun').select(['id', 'settingsJson']).where('id', 'in', runIds).execute()
   for (const run of runs) {
     const settings = JSON.parse(run.settingsJson) as RunSettings
-    if (!settings.recordedAt) await trx.updateTable('studyRun').set({ settingsJson: JSON.stringify({ ...settings, recordedAt: now(context) }) }).where('id', '=', run.id).execute()
+    if (!settings.recordedAt) await trx.updateTable('studyRun').set({ settingsJson: JSON.stringify({ ...settings, recordedAt: later?.measuredAt ?? now(context) }) }).where('id', '=', run.id).execute()
   }
 }

@@ -39,18 +39,24 @@ async function saveCopies(trx: Trx, referralId: string, input: ReferralInput): P
   for (const physicianId of copies) await trx.insertInto('referralCopy').values({ referralId, physicianId }).execute()
 }
 
-/** Saves a new referral as a draft, however incomplete. */
-export async function addReferral(context: ServiceContext, input: ReferralInput): Promise<{ id: string }> {
+/** A new referral as a draft, inside a transaction that does more with it. */
+export async function insertReferral(context: ServiceContext, trx: Trx, input: ReferralInput): Promise<{ id: string, number: string }> {
   const createdBy = context.actor.userId
   if (!createdBy) throw new DomainError('not-signed-in')
+  await checkReferences(trx, input)
+  const [id, at] = [randomUUID(), now(context)]
+  const number = await nextNumber(trx, 'referral', context.clock().getUTCFullYear())
+  await trx.insertInto('referral').values({ id, number, ...columnsOf(input), state: 'draft', stateSince: at, createdAt: at, createdBy, protocol: null, receivedAt: null }).execute()
+  await saveCopies(trx, id, input)
+  await writeStateChange(context, trx, { subject: 'referral', id, from: null, to: 'draft' })
+  await recordAuditEvent(context, trx, { name: 'referral.added', subject: 'referral', subjectId: id, siteId: input.siteId, patientId: input.patientId, data: { number } })
+  return { id, number }
+}
+
+/** Saves a new referral as a draft, however incomplete. */
+export async function addReferral(context: ServiceContext, input: ReferralInput): Promise<{ id: string }> {
   return context.db.transaction().execute(async (trx) => {
-    await checkReferences(trx, input)
-    const [id, at] = [randomUUID(), now(context)]
-    const number = await nextNumber(trx, 'referral', context.clock().getUTCFullYear())
-    await trx.insertInto('referral').values({ id, number, ...columnsOf(input), state: 'draft', stateSince: at, createdAt: at, createdBy, protocol: null, receivedAt: null }).execute()
-    await saveCopies(trx, id, input)
-    await writeStateChange(context, trx, { subject: 'referral', id, from: null, to: 'draft' })
-    await recordAuditEvent(context, trx, { name: 'referral.added', subject: 'referral', subjectId: id, siteId: input.siteId, patientId: input.patientId, data: { number } })
+    const { id } = await insertReferral(context, trx, input)
     return { id }
   })
 }

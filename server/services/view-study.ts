@@ -1,10 +1,14 @@
 import type { Database } from '#server/database/connection'
 import { cautionAnswers, patientBand, routeOf } from '#server/database/queries/bands'
+import { equipmentAt } from '#server/database/queries/equipment'
 import { uploadsOf } from '#server/database/queries/referrals'
+import { studyAround } from '#server/database/queries/study-around'
 import { DomainError } from '#shared/errors'
 import type { Confirmation, StudyView } from '#shared/schemas/bench'
+import type { BenchChoices } from '#shared/schemas/bench-day'
 import type { StudyState } from '#shared/states'
 import { assessStoredStudy, type AssessedStudy } from './assess-stored-study'
+import { peopleWho } from './people-who'
 import { mayAt, type ServiceContext } from './context'
 import { recordView } from './record-view'
 
@@ -24,6 +28,12 @@ async function referralPart(db: Database, referralId: string): Promise<StudyView
   return { question: row.clinicalQuestion, symptoms, onset, examination, provisionalDiagnosis, previousStudies, urgency, side, cautions }
 }
 
+async function choicesAt(db: Database, { siteId, studyDate }: AssessedStudy['record']): Promise<BenchChoices> {
+  const site = await db.selectFrom('site').select('roomsJson').where('id', '=', siteId).executeTakeFirstOrThrow()
+  const [supervisors, equipment] = await Promise.all([peopleWho(db, 'report.sign', siteId, studyDate), equipmentAt(db, siteId)])
+  return { rooms: JSON.parse(site.roomsJson) as string[], supervisors, equipment: equipment.filter(each => !each.retired) }
+}
+
 /**
  * Everything the bench and the reading page need of a study, assessed now. Opening it is noted.
  * @throws DomainError 'not-found'
@@ -32,13 +42,13 @@ export async function viewStudy(context: ServiceContext, id: string): Promise<St
   const { db, actor } = context
   const { record, study, policy, assessment, cellRevisions, runRevisions, plannedRunIds } = await assessStoredStudy(context, id)
   const { number, state, stateSince, siteId, referralId, patientId, protocol, readerId, handOverNote, returnQuestion, returnRunId } = record
-  const [band, route, referral, uploads, names] = await Promise.all([patientBand(db, referralId), routeOf(db, referralId), referralPart(db, referralId), uploadsOf(db, referralId), namesOf(db, record)])
+  const [band, route, referral, uploads, names, around, choices] = await Promise.all([patientBand(db, referralId), routeOf(db, referralId), referralPart(db, referralId), uploadsOf(db, referralId), namesOf(db, record), studyAround(db, record), choicesAt(db, record)])
   if (!band) throw new DomainError('not-found')
   recordView(context, { subject: 'study', subjectId: id, siteId, patientId })
   return {
     id, number, state, stateSince, siteId, referralId, patientId, protocol, band, route, referral, ...names,
     confirmation: record.confirmationJson ? JSON.parse(record.confirmationJson) as Confirmation : null,
-    readerId, handOverNote, returnQuestion, returnRunId, study, cellRevisions, runRevisions, plannedRunIds, policy, adopted: policy.adopted, assessment, uploads,
+    readerId, handOverNote, returnQuestion, returnRunId, study, cellRevisions, runRevisions, plannedRunIds, policy, adopted: policy.adopted, assessment, uploads, around, choices,
     mayRecord: recordable.includes(state) && mayAt(actor, 'study.record', siteId),
     mayRead: mayAt(actor, 'report.write', siteId),
     maySign: mayAt(actor, 'report.sign', siteId),

@@ -16,7 +16,10 @@ export const intakeEvents = {
   'referral.cancelled': event(nothing, () => 'cancelled a referral'),
   'referral.booked': event(z.object({ bookingId: z.string(), startsAt: z.string(), instead: z.string().nullable().default(null) }), data => `booked a referral for ${data.startsAt}${data.instead ? ', in place of an earlier booking' : ''}`),
   'referral.not-attended': event(z.object({ bookingId: z.string().nullable() }), () => 'noted that the patient did not attend'),
+  'referral.walked-in': event(z.object({ number: z.string() }), data => `entered the referral ${data.number} of a patient who came without a booking`),
+  'referral.reopened': event(z.object({ to: z.string() }), data => `a referral is ${data.to} again: the study that was begun under it was entered in error`),
   'upload.added': event(upload, data => `added a file (${data.mediaType}, ${data.byteCount} bytes)`),
   'upload.removed': event(upload, data => `removed a file (${data.mediaType}, ${data.byteCount} bytes)`),
+  'booking.arrival-undone': event(z.object({ bookingId: z.string() }), () => 'took back that the patient arrived'),
   'booking.arrived': event(z.object({ bookingId: z.string() }), () => 'noted that the patient arrived'),
 }

@@ -20,6 +20,8 @@ export interface TemperatureContext {
   policy: Policy
   tables: readonly ReferenceTable[]
   thresholds: Map<string, number>
+  /** When each further visit began, in ms, in order; empty when the study was recorded in one visit. */
+  visits: readonly number[]
 }
 
 /** Sorts the readings by limb and side once per study. */
@@ -31,7 +33,7 @@ export function temperatureContext(study: Study, tables: readonly ReferenceTable
     if (list) list.push(reading)
     else readings.set(key, [reading])
   }
-  return { readings, byId: new Map(study.temperatures.map(reading => [reading.id, reading])), policy, tables, thresholds: new Map() }
+  return { readings, byId: new Map(study.temperatures.map(reading => [reading.id, reading])), policy, tables, thresholds: new Map(), visits: (study.visits ?? []).map(visit => Date.parse(visit.startedAt)).sort((a, b) => a - b) }
 }
 
 /**
@@ -73,11 +75,19 @@ export function coldOfRun(context: TemperatureContext, run: Run, technique: Tech
 }
 
 export function readingOfRun(context: TemperatureContext, run: Run, technique: Technique): LimbTemperature | undefined {
+  const visit = visitOf(context, run.recordedAt, context.visits.length)
+  const sameVisit = (reading: LimbTemperature) => visitOf(context, reading.at, 0) === visit
   const named = run.temperatureId === undefined ? undefined : context.byId.get(run.temperatureId)
-  if (named && named.segment === technique.temperatureSegment && named.side === run.side) return named
-  const list = context.readings.get(`${technique.temperatureSegment}/${run.side}`) ?? []
+  if (named && named.segment === technique.temperatureSegment && named.side === run.side && sameVisit(named)) return named
+  const all = context.readings.get(`${technique.temperatureSegment}/${run.side}`) ?? []
+  const list = context.visits.length ? all.filter(sameVisit) : all
   if (list.length < 2) return list[0]
   return latestFor(list, run.recordedAt)
+}
+
+/** Number of the visit that a moment belongs to: 0 is the first. A limb warm last week says nothing about today. */
+function visitOf({ visits }: TemperatureContext, moment: string | undefined, otherwise: number): number {
+  return moment === undefined ? otherwise : visits.filter(start => start <= Date.parse(moment)).length
 }
 
 function latestFor(list: readonly LimbTemperature[], recordedAt: string | undefined): LimbTemperature | undefined {

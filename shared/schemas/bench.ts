@@ -1,6 +1,7 @@
 import * as z from 'zod'
 import { idSchema, isoDateTimeSchema, sideSchema } from './common'
 import { entrySchema, runSchema, type Study } from './study'
+import type { BenchChoices, StudyAround } from './bench-day'
 import type { PatientBand } from './patient'
 import type { RouteNode, UploadView, Urgency } from './referral'
 import type { AdoptedSet, Assessment, Policy } from '../calculations/types'
@@ -21,6 +22,9 @@ export interface BenchRow {
   urgency: Urgency
   state: 'booked' | 'arrived' | StudyState | 'did-not-attend'
   stateSince: string
+  /** When the patient arrived, and how long it took until the study began; null while not known. */
+  arrivedAt: string | null
+  startedAt: string | null
   returnQuestion: string
 }
 
@@ -96,6 +100,8 @@ export interface StudyView {
   adopted: AdoptedSet[]
   assessment: Assessment
   uploads: UploadView[]
+  around: StudyAround
+  choices: BenchChoices
   mayRecord: boolean
   mayRead: boolean
   /** False for whoever is in training: they write, a supervisor signs. */

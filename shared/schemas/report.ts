@@ -5,6 +5,7 @@ import type { Technique } from '../catalogue/types'
 import type { ReportStatus, StudyState } from '../states'
 import type { ReferralInput, Urgency, RouteNode } from './referral'
 import type { PatientBand, PatientView } from './patient'
+import type { ReportBench } from './bench-day'
 import type { Study } from './study'
 
 /** One line of the impression. Nerve or pattern, side and degree are fields beside the words (wrong-side rule). */
@@ -129,6 +130,8 @@ export interface ReportSnapshot {
   startedAt: string | null
   technologist: string
   handOverNote: string
+  /** Circumstances of the recording; left out in copies that were signed before they were kept. */
+  bench?: ReportBench
   needleExamination: string
   policy: Policy
   assessment: Assessment

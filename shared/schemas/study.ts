@@ -102,6 +102,8 @@ export const studySchema = z.object({
   temperatures: z.array(temperatureSchema).max(60).default([]),
   runs: z.array(runSchema).max(200).default([]),
   keptChecks: z.array(keptCheckSchema).max(400).default([]),
+  /** Visits after the first: a temperature serves only the runs of its own visit. */
+  visits: z.array(z.object({ startedAt: isoDateTimeSchema })).max(20).optional(),
 }).superRefine((study, context) => {
   const seen = new Set<string>()
   for (const [index, run] of study.runs.entries()) {

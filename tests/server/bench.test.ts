@@ -11,6 +11,7 @@ import { saveBodySize } from '#server/services/save-body-size'
 import { viewBenchDay } from '#server/services/view-bench-day'
 import { viewStudy } from '#server/services/view-study'
 import { assessStoredStudy } from '#server/services/assess-stored-study'
+import { protocols } from '#shared/protocols'
 import { plannedRuns } from '#server/services/lay-out-runs'
 import { bookReferral } from '#server/services/book-referral'
 import { clinic, eventNames } from './bench-helpers'
@@ -22,7 +23,8 @@ const by = c.technologist
 const confirmation = { identifiers: ['name', 'birth-date'] as ('name' | 'birth-date')[], side: 'right' as const, sideReason: '', cautionsRead: true as const }
 const runsOf = async (id: string) => (await c.study(id)).study.runs
 const titles = async (id: string) => (await runsOf(id)).map(run => `${run.side} ${run.technique}`)
-const [RIGHT, LEFT] = [plannedRuns('carpal-tunnel', 'right'), plannedRuns('carpal-tunnel', 'left')].map(runs => runs.map(run => `${run.side} ${run.technique}`)) as [string[], string[]]
+const carpalTunnel = protocols.find(protocol => protocol.id === 'carpal-tunnel')!
+const [RIGHT, LEFT] = [plannedRuns(carpalTunnel, 'right'), plannedRuns(carpalTunnel, 'left')].map(runs => runs.map(run => `${run.side} ${run.technique}`)) as [string[], string[]]
 
 describe('the day', () => {
   it('lists the bookings of the day in order, then what they became', async () => {

@@ -4,7 +4,7 @@ import type { Database } from '../connection'
 
 interface Day { siteId: string, /** first moment of the day at the site */ from: string, /** first moment of the next */ until: string }
 
-const columns = ['referral.id as referralId', 'familyName', 'givenName', 'birthDate', 'recordNumber', 'clinicalQuestion as question', 'urgency', 'study.id as studyId', 'study.state as studyState', 'study.stateSince as studySince', 'study.returnQuestion', 'startsAt', 'room', 'technologist.name as technologistName'] as const
+const columns = ['referral.id as referralId', 'familyName', 'givenName', 'birthDate', 'recordNumber', 'clinicalQuestion as question', 'urgency', 'study.id as studyId', 'study.state as studyState', 'study.stateSince as studySince', 'study.returnQuestion', 'startsAt', 'room', 'arrivedAt', 'study.createdAt as startedAt', 'technologist.name as technologistName'] as const
 
 /** Who is booked at the site on the day, in order of time. */
 function booked(db: Database, { siteId, from, until }: Day) {
@@ -30,9 +30,9 @@ type Row = Awaited<ReturnType<typeof booked>>[number] | Awaited<ReturnType<typeo
 
 function benchRow(row: Row): BenchRow {
   const state = row.studyState ?? (row.bookingState === 'attended' || row.bookingState === null || row.bookingState === 'cancelled' ? 'planned' : row.bookingState)
-  const { bookingId, referralId, studyId, birthDate, recordNumber, startsAt, room, technologistName, question, urgency } = row
+  const { bookingId, referralId, studyId, birthDate, recordNumber, startsAt, arrivedAt, startedAt, room, technologistName, question, urgency } = row
   return {
-    bookingId, referralId, studyId, patientName: `${row.familyName}, ${row.givenName}`, birthDate, recordNumber, startsAt, room, technologistName, question, urgency,
+    bookingId, referralId, studyId, patientName: `${row.familyName}, ${row.givenName}`, birthDate, recordNumber, startsAt, arrivedAt, startedAt, room, technologistName, question, urgency,
     state, stateSince: row.studySince ?? row.since, returnQuestion: row.studyState === 'returned' ? row.returnQuestion ?? '' : '',
   }
 }

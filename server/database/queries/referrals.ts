@@ -80,6 +80,6 @@ export async function referralView(db: Database, referralId: string, today: stri
 }
 
 export async function siteOfUpload(db: Database, uploadId: string): Promise<string | null> {
-  const row = await db.selectFrom('upload').innerJoin('referral', 'referral.id', 'upload.referralId').select('siteId').where('upload.id', '=', uploadId).where('removedAt', 'is', null).executeTakeFirst()
-  return row?.siteId ?? null
+  const row = await db.selectFrom('upload').leftJoin('referral', 'referral.id', 'upload.referralId').leftJoin('study', 'study.id', 'upload.studyId').select(['referral.siteId as ofReferral', 'study.siteId as ofStudy']).where('upload.id', '=', uploadId).where('removedAt', 'is', null).executeTakeFirst()
+  return row?.ofStudy ?? row?.ofReferral ?? null
 }

@@ -32,13 +32,14 @@ export async function siteOfStudy(db: Database, studyId: string): Promise<string
 export async function loadStudy(db: Database, studyId: string): Promise<StoredStudy | undefined> {
   const record = await studyRecord(db, studyId)
   if (!record) return undefined
-  const [person, runs, rows, cells, temperatures, keptChecks, policy] = await Promise.all([
+  const [person, runs, rows, cells, temperatures, keptChecks, visits, policy] = await Promise.all([
     db.selectFrom('referral').innerJoin('patient', 'patient.id', 'referral.patientId').select(['referral.side', 'patient.birthDate', 'patient.sexForLimits']).where('referral.id', '=', record.referralId).executeTakeFirstOrThrow(),
     db.selectFrom('studyRun').selectAll().where('studyId', '=', studyId).where('removedAt', 'is', null).orderBy('position').orderBy('id').execute(),
     db.selectFrom('studyRow').innerJoin('studyRun', 'studyRun.id', 'studyRow.runId').selectAll('studyRow').where('studyRun.studyId', '=', studyId).where('studyRow.removedAt', 'is', null).orderBy('studyRow.position').orderBy('studyRow.id').execute(),
     db.selectFrom('studyCell').selectAll().where('studyId', '=', studyId).execute(),
     db.selectFrom('studyTemperature').selectAll().where('studyId', '=', studyId).where('removedAt', 'is', null).orderBy('at').orderBy(sql`rowid`).execute(),
     db.selectFrom('studyKeptCheck').select(['key', 'reason']).where('studyId', '=', studyId).orderBy('key').execute(),
+    db.selectFrom('studyVisit').select('startedAt').where('studyId', '=', studyId).orderBy('startedAt').execute(),
     policyOf(db, record),
   ])
   const study: Study = {
@@ -46,7 +47,7 @@ export async function loadStudy(db: Database, studyId: string): Promise<StoredSt
     patient: { birthDate: person.birthDate, sexForLimits: person.sexForLimits },
     heightCm: record.heightCm, weightKg: record.weightKg, referralSide: person.side,
     temperatures: temperatures.map(({ id, segment, side, celsius, at, method, warmed }) => ({ id, segment, side, celsius, at, method, warmed: warmed === 1 })),
-    runs: runsOf(runs, rows, cells), keptChecks,
+    runs: runsOf(runs, rows, cells), keptChecks, ...(visits.length ? { visits } : {}),
   }
   return {
     record, study, policy,

@@ -4,6 +4,7 @@ import type { BookingTable } from './booking'
 import type { CounterTable } from './counter'
 import type { DeliveryTable } from './delivery'
 import type { EmergencyAccessTable } from './emergency-access'
+import type { EquipmentTable } from './equipment'
 import type { MetaTable } from './meta'
 import type { OneTimeLinkTable } from './one-time-link'
 import type { OrganisationTable } from './organisation'
@@ -28,11 +29,17 @@ import type { SiteTable } from './site'
 import type { StateChangeTable } from './state-change'
 import type { StudyCellSaveTable } from './study-cell-save'
 import type { StudyCellTable } from './study-cell'
+import type { StudyCircumstancesTable, StudyEquipmentTable } from './study-circumstances'
+import type { StudyCommentTable } from './study-comment'
 import type { StudyKeptCheckTable } from './study-kept-check'
+import type { StudyLaterEntryTable } from './study-later-entry'
+import type { StudyMoveTable } from './study-move'
+import type { StudyProtocolTable } from './study-protocol'
 import type { StudyRowTable } from './study-row'
 import type { StudyRunTable } from './study-run'
 import type { StudyTable } from './study'
 import type { StudyTemperatureTable } from './study-temperature'
+import type { StudyVisitTable } from './study-visit'
 import type { TaskTable } from './task'
 import type { UploadTable } from './upload'
 import type { UserTable } from './user'
@@ -67,6 +74,14 @@ export interface Tables {
   studyCellSave: StudyCellSaveTable
   studyTemperature: StudyTemperatureTable
   studyKeptCheck: StudyKeptCheckTable
+  equipment: EquipmentTable
+  studyCircumstances: StudyCircumstancesTable
+  studyEquipment: StudyEquipmentTable
+  studyComment: StudyCommentTable
+  studyVisit: StudyVisitTable
+  studyLaterEntry: StudyLaterEntryTable
+  studyMove: StudyMoveTable
+  studyProtocol: StudyProtocolTable
   report: ReportTable
   reportWriter: ReportWriterTable
   reportVersion: ReportVersionTable

@@ -16,6 +16,8 @@ function born({ snapshot }: ReportSource, words: ReportWords): string {
 
 function studied({ snapshot }: ReportSource): string {
   const day = formatDay(snapshot.study.studyDate)
+  const further = (snapshot.bench?.visits ?? []).map(visit => formatDay(visit.day))
+  if (further.length) return [day, ...further].join(' and ')
   return snapshot.startedAt ? `${day}, ${formatClock(snapshot.startedAt, snapshot.site.timeZone)}` : day
 }
 

@@ -3,6 +3,7 @@ import type { ReportSnapshot } from '../../schemas/report'
 import { heading, markSigns, paragraph, withSides, type Block, type ReportSection, type Words } from '../blocks'
 import { formatDay } from '../dates'
 import { runsOf, type ReportSource } from '../source'
+import { circumstanceSentences } from '../circumstances'
 import { reportWords } from '../words'
 
 const labelled = (label: string, text: string): Block => paragraph([{ text: `${label}. `, strong: true }, ...withSides(text)], 'faint')
@@ -33,6 +34,7 @@ function techniqueText(snapshot: ReportSnapshot): string {
     amplitudes(snapshot),
     `Velocity ± its expanded measurement uncertainty, k = 2 (distance ${policy.distanceUncertaintyMm} mm, latency ${policy.latencyUncertaintyMs} ms).`,
     snapshot.technologist ? `Recorded by ${snapshot.technologist}.` : '',
+    ...circumstanceSentences(snapshot),
     snapshot.needleExamination || 'Needle examination not done.',
     ...snapshot.assessment.runs.flatMap(run => run.notDone ? [`${run.title}: not done, ${run.notDone}.`] : []),
     ...qualityNotes(snapshot),
