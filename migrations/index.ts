@@ -3,8 +3,8 @@ import * as firstTables from './2026-12-01-first-tables'
 import * as directoryChecks from './2026-12-10-directory-checks'
 import * as arrival from './2026-12-11-arrival'
 import * as policies from './2026-12-12-a-policies'
-import * as reading from './2026-12-12-reading'
 import * as benchday from './2026-12-12-benchday'
+import * as reading from './2026-12-12-reading'
 
 /** Every migration, in order. Never edit one that has been released; add a new file and a line here. */
 export const migrations: Record<string, Migration> = {
@@ -12,6 +12,6 @@ export const migrations: Record<string, Migration> = {
   '2026-12-10-directory-checks': directoryChecks,
   '2026-12-11-arrival': arrival,
   '2026-12-12-a-policies': policies,
-  '2026-12-12-reading': reading,
   '2026-12-12-benchday': benchday,
+  '2026-12-12-reading': reading,
 }
