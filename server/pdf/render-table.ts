@@ -1,8 +1,10 @@
 import type { Content, ContentTable, CustomTableLayout, TableCell } from 'pdfmake/interfaces'
-import type { Cell, TableBlock, TextCell, Words } from '#shared/report/blocks'
+import type { BarCell, Cell, TableBlock, TextCell, Words } from '#shared/report/blocks'
 import { markSigns, plainText } from '#shared/report/blocks'
 import { limitBarSvg } from '#shared/plots/limit-bar'
+import type { ReportWords } from '#shared/report/words'
 import { printable } from './glyphs'
+import { addTag, type Tag } from './structure'
 import { ink, size } from './style'
 
 const barWidth = 54
@@ -11,10 +13,12 @@ const isShort = (text: string) => text.length <= 30 && /\d/.test(text)
 /** "nerve, recorded from" and "amplitude, mV" stay whole; longer heads take two lines. */
 const longestHead = 20
 
-/** Words as pdfmake takes them: weight, colour, and nothing that the typeface cannot draw. */
-export function runs(words: readonly Words[], colour = ink.ink) {
-  return words.map(part => ({ text: printable(part.text), bold: part.strong ?? false, color: part.faint ? ink.faint : colour }))
+/** Words as pdfmake takes them: weight, colour, the element they belong to, and nothing that the typeface cannot draw. */
+export function runs(words: readonly Words[], tag: Tag, colour = ink.ink) {
+  return words.map(part => ({ text: printable(part.text), bold: part.strong ?? false, color: part.faint ? ink.faint : colour, tag }))
 }
+/** Text of one weight as part of an element. */
+export const tagged = (text: string, tag: Tag) => [{ text: printable(text), tag }]
 
 /** Outside is an arrow, a weight and a colour together: each alone survives a photocopy or a colour-blind eye. */
 function markColour({ mark, doubtful }: TextCell): string {
@@ -23,17 +27,28 @@ function markColour({ mark, doubtful }: TextCell): string {
   return mark && mark !== 'near' ? ink.beyond : ink.ink
 }
 
-function textCell(cell: TextCell, align: 'left' | 'right', struck: boolean): TableCell {
+function textCell(cell: TextCell, tag: Tag, align: 'left' | 'right', struck: boolean): TableCell {
   const colour = struck ? ink.faint : markColour(cell)
-  const sign = cell.mark && !struck ? [{ text: printable(`${markSigns[cell.mark]} `), bold: cell.mark !== 'near', color: colour }] : []
-  const main = { text: [...sign, ...runs(cell.words, colour)], alignment: align, noWrap: align === 'right' && isShort(plainText(cell.words)), ...(struck ? { decoration: 'lineThrough' as const } : {}) }
-  return cell.below ? { stack: [main, { text: printable(cell.below), fontSize: size.footer, color: ink.faint, alignment: align }] } : main
+  const sign = cell.mark && !struck ? [{ text: printable(`${markSigns[cell.mark]} `), bold: cell.mark !== 'near', color: colour, tag }] : []
+  const main = { text: [...sign, ...runs(cell.words, tag, colour)], alignment: align, noWrap: align === 'right' && isShort(plainText(cell.words)), ...(struck ? { decoration: 'lineThrough' as const } : {}) }
+  return cell.below ? { stack: [main, { text: tagged(` ${cell.below}`, tag), fontSize: size.footer, color: ink.faint, alignment: align }] } : main
 }
 
-function tableCell(cell: Cell | undefined, align: 'left' | 'right' | 'bar', struck: boolean): TableCell {
+function barCell({ bar, text }: BarCell, tag: Tag): TableCell {
+  return { svg: limitBarSvg(bar, { width: barWidth, colours: ink }), width: barWidth, margin: [0, 1, 0, 0], tag: addTag(tag, 'Figure', { alt: printable(text) }) }
+}
+
+/** The first cell of a row says what the row is about: it is the head of the row. */
+function tableCell(cell: Cell | undefined, row: Tag, index: number, align: 'left' | 'right' | 'bar', struck: boolean): TableCell {
+  const tag = index === 0 ? addTag(row, 'TH', { scope: 'Row' }) : addTag(row, 'TD')
   if (!cell) return ''
-  if ('bar' in cell) return { svg: limitBarSvg(cell.bar, { width: barWidth, colours: ink }), width: barWidth, margin: [0, 1, 0, 0] }
-  return textCell(cell, align === 'bar' ? 'left' : align, struck)
+  return 'bar' in cell ? barCell(cell, tag) : textCell(cell, tag, align === 'bar' ? 'left' : align, struck)
+}
+
+/** Heads repeated on later pages are artefacts there. A column of bars has no printed head, but a name. */
+function headCell(column: TableBlock['columns'][number], row: Tag, isWide: boolean, barName: string): TableCell {
+  const tag = addTag(row, 'TH', { scope: 'Column', once: true, ...(column.label ? {} : { alt: barName }) })
+  return { text: tagged(column.label, tag), color: ink.faint, noWrap: (!isWide || column.label.includes('/')) && column.label.length <= longestHead, alignment: column.align === 'bar' ? 'left' : column.align }
 }
 
 /** Rules between nerves, none inside one; no vertical lines. */
@@ -59,10 +74,15 @@ function widthOf(column: TableBlock['columns'][number], isLast: boolean): 'auto'
 const manyColumns = 9
 
 /** A table with its head repeated on every page; a row is never cut. */
-export function renderTable(table: TableBlock): Content {
+export function renderTable(table: TableBlock, parent: Tag, words: ReportWords): Content {
   const isWide = table.columns.length >= manyColumns
-  const head = table.columns.map((column): TableCell => ({ text: printable(column.label), color: ink.faint, noWrap: (!isWide || column.label.includes('/')) && column.label.length <= longestHead, alignment: column.align === 'bar' ? 'left' : column.align }))
-  const body = table.rows.map(row => table.columns.map((column, index) => tableCell(row.cells[index], column.align, row.struck)))
+  const tag = addTag(parent, 'Table', { title: printable(table.caption) })
+  const headRow = addTag(tag, 'TR')
+  const head = table.columns.map(column => headCell(column, headRow, isWide, words.columns.bar))
+  const body = table.rows.map((row) => {
+    const rowTag = addTag(tag, 'TR')
+    return table.columns.map((column, index) => tableCell(row.cells[index], rowTag, index, column.align, row.struck))
+  })
   const content: ContentTable = {
     table: {
       headerRows: 1,

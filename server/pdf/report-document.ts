@@ -4,7 +4,9 @@ import { reportBlocks, type ReportSource } from '#shared/report/index'
 import { reportWords } from '#shared/report/words'
 import { printable } from './glyphs'
 import { headlineLevels, renderBlocks } from './render-blocks'
+import { tagged } from './render-table'
 import { stampSvg } from './stamp'
+import { addTag, newTag, type Tag } from './structure'
 import { fontFamily, ink, lineWidth, margins, size } from './style'
 
 /** The product's mark: a line with one gap and a node in it. */
@@ -14,8 +16,8 @@ function rule(width: number, thickness: number, colour: string): Content {
   return { canvas: [{ type: 'line', x1: 0, y1: 0, x2: width, y2: 0, lineWidth: thickness, lineColor: colour }] }
 }
 
-/** Who made it, which version it is: on every page. */
-function header({ snapshot, preliminary }: ReportSource): Content {
+/** Who made it, which version it is: on every page. On the first one the title of the report is its heading. */
+function header({ snapshot, preliminary }: ReportSource, title: Tag): Content {
   const words = reportWords(snapshot.language)
   const status = preliminary ? words.preliminary.toLowerCase() : words.status[snapshot.status]
   const place = [snapshot.organisation.name, snapshot.site.name].filter(Boolean).join(', ')
@@ -25,7 +27,7 @@ function header({ snapshot, preliminary }: ReportSource): Content {
       { columns: [
         { svg: mark, width: 26, margin: [0, 1, 0, 0] },
         { text: printable(place), bold: true, width: '*', fontSize: size.body },
-        { text: printable(`${words.title} · ${words.version(snapshot.version, status)}`), alignment: 'right', width: 'auto', color: ink.faint, fontSize: size.body },
+        { text: tagged(`${words.title} · ${words.version(snapshot.version, status)}`, title), alignment: 'right', width: 'auto', color: ink.faint, fontSize: size.body },
       ], columnGap: 7, margin: [0, 0, 0, 4] },
       rule(lineWidth(snapshot.organisation.paperSize), 1.4, ink.ink),
     ],
@@ -66,30 +68,32 @@ const keepHeadings: TDocumentDefinitions['pageBreakBefore'] = (node, nodes) => {
   return nodes.getFollowingNodesOnPage().length === 0 || top - margins.top > pageInnerHeight - room
 }
 
+/** What is laid out, and the structure tree that its parts point into. */
+export interface ReportPdf { definition: TDocumentDefinitions, structure: Tag }
+
 /**
  * The definition of a report's PDF. pdfmake changes what it is given, so every rendering needs a new one.
  * The date is that of the signature and the rest comes from the frozen copy: the same version gives the same bytes.
- *
- * The document is not tagged: pdfmake's `tagged` writes an empty structure tree, which would claim what is not there.
- * The page of the report is its accessible form.
  */
-export function reportDocument(source: ReportSource): TDocumentDefinitions {
+export function reportDocument(source: ReportSource): ReportPdf {
   const { snapshot } = source
   const words = reportWords(snapshot.language)
   const made = new Date(snapshot.signature.at)
-  return {
+  const structure = newTag('Document')
+  const title = addTag(structure, 'H1', { once: true })
+  const definition: TDocumentDefinitions = {
     info: { title: printable(`${words.title} ${snapshot.number}, ${words.version(snapshot.version, words.status[snapshot.status])}`), author: printable(snapshot.organisation.name), creator: 'Orthodrome', producer: 'Orthodrome', creationDate: made, modDate: made },
     version: '1.7',
     language: snapshot.language,
-    displayTitle: true,
     compress: true,
     pageSize: snapshot.organisation.paperSize,
     pageMargins: [margins.left, margins.top, margins.right, margins.bottom],
     defaultStyle: { font: fontFamily, fontSize: size.body, color: ink.ink, lineHeight: 1.12 },
-    header: () => header(source),
+    header: () => header(source, title),
     footer: footer(source),
     ...(stamp(source) ? { background: (_page: number, paper: { width: number, height: number }) => ({ svg: stampSvg(stamp(source), paper), width: paper.width, height: paper.height }) } : {}),
-    content: reportBlocks(source).flatMap(part => renderBlocks(part.blocks, snapshot)),
+    content: reportBlocks(source).flatMap(part => renderBlocks(part.blocks, snapshot, structure)),
     pageBreakBefore: keepHeadings,
   }
+  return { definition, structure }
 }

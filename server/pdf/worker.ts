@@ -1,9 +1,7 @@
-import { join } from 'node:path'
 import { parentPort, workerData } from 'node:worker_threads'
-import pdfmake from 'pdfmake'
 import type { ReportSource } from '#shared/report/index'
+import { makePdf } from './make-pdf'
 import { reportDocument } from './report-document'
-import { fontFamily } from './style'
 
 /**
  * Entry of the PDF thread. Making a PDF is a third of a second of pure computing; here it blocks nobody.
@@ -13,18 +11,10 @@ export interface PdfJob { id: number, source: ReportSource }
 export type PdfAnswer = { id: number, bytes: Uint8Array } | { id: number, error: string }
 
 const { fontsDir } = workerData as { fontsDir: string }
-const face = (name: string) => join(fontsDir, `IBMPlexSans-${name}.ttf`)
-
-// Real paths: text inside SVG ignores pdfmake's virtual files, and buffers are refused.
-pdfmake.setFonts({ [fontFamily]: { normal: face('Regular'), bold: face('SemiBold'), italics: face('Italic'), bolditalics: face('SemiBold') } })
-// A document definition can name addresses and files; none of ours does, and none shall.
-pdfmake.setUrlAccessPolicy(() => false)
-pdfmake.setLocalAccessPolicy((path: string) => path.startsWith(fontsDir))
 
 async function answer({ id, source }: PdfJob): Promise<PdfAnswer> {
   try {
-    const buffer = await pdfmake.createPdf(reportDocument(source)).getBuffer()
-    return { id, bytes: new Uint8Array(buffer) }
+    return { id, bytes: await makePdf(reportDocument(source), fontsDir) }
   }
   catch (error) {
     return { id, error: error instanceof Error ? error.name : 'unknown' }

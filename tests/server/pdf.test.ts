@@ -32,12 +32,12 @@ async function pathOf(name: string): Promise<string> {
 const fold = (text: string) => text.normalize('NFKC')
 
 describe.each(Object.keys(reportStudies))('the PDF of: %s', (name) => {
-  it('is sound, has its title and language, embeds its fonts and claims no tags', async () => {
+  it('is sound, has its title and language, embeds its fonts and is tagged', async () => {
     const path = await pathOf(name)
     expect(run('qpdf', '--check', path)).toContain('No syntax or stream encoding errors')
     const info = run('pdfinfo', path)
     expect(info).toMatch(/Title: +Report of nerve conduction studies REP-2026-000012, version 1/)
-    expect(info).toMatch(/Tagged: +no/)
+    expect(info).toMatch(/Tagged: +yes/)
     expect(info).toMatch(/JavaScript: +no/)
     const catalog = run('qpdf', '--json=2', path)
     expect(catalog).toContain('"/Lang": "u:en"')
