@@ -64,6 +64,13 @@ describe('chance', () => {
   it.each([[5, 0.025, 1, 11.9], [9, 0.025, 1, 20.4], [20, 0.05, 1, 64.2], [30, 0.03, 1, 59.9], [20, 0.025, 2, 8.8], [30, 0.025, 2, 17.2]])('%i limits at %f: at least %i outside in %f % (formula collection F7.4, derived)', (count, tail, seen, percent) => {
     expect(100 * probabilityAtLeast(Array.from({ length: count }, () => tail), seen)).toBeCloseTo(percent, 1)
   })
+  it.each([1, 2, 5, 9, 10, 20, 30, 60])('%i trials, against the statistics library at every count', (n) => {
+    for (const p of [0.01, 0.025, 0.03, 0.05, 0.5]) {
+      for (let seen = 1; seen <= Math.min(n, 8); seen++) expect(probabilityAtLeast(Array.from({ length: n }, () => p), seen)).toBeCloseTo(1 - jstat.jStat.binomial.cdf(seen - 1, n, p), 10)
+    }
+  })
+  it('two unequal tails both seen', () => expect(probabilityAtLeast([0.03, 0.05], 2)).toBeCloseTo(0.0015, 12))
+  it('nothing applied: none seen is certain, one impossible', () => expect([probabilityAtLeast([], 0), probabilityAtLeast([], 1)]).toEqual([1, 0]))
   it('none seen is certain, more than there are is impossible', () => expect([probabilityAtLeast([0.03], 0), probabilityAtLeast([0.03], 2)]).toEqual([1, 0]))
   it('unequal tails', () => expect(probabilityAtLeast([0.03, 0.05], 1)).toBeCloseTo(1 - 0.97 * 0.95, 12))
   it('counts limits at both ends of the scale alike, and leaves out those without a percentile', () => {
