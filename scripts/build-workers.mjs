@@ -9,18 +9,22 @@ import { build } from 'esbuild'
 
 const root = fileURLToPath(new URL('..', import.meta.url))
 const fontsDir = join(root, 'server/assets/fonts')
-// CommonJS, so that pdfkit finds its `__dirname`. The name says "worker" and not the library.
-const entry = { source: join(root, 'server/pdf/worker.ts'), name: 'pdf' }
+// CommonJS, so that pdfkit finds its `__dirname`. The names say what the thread does and not the library.
+const sources = {
+  'pdf': join(root, 'server/pdf/worker.ts'),
+  'long-read': join(root, 'server/services/long-reads/worker.ts'),
+}
 
-async function bundle() {
+async function bundle(name) {
   const result = await build({
-    entryPoints: [entry.source],
+    entryPoints: [sources[name]],
     bundle: true,
     write: false,
     platform: 'node',
     format: 'cjs',
     target: 'node20',
-    alias: { '#shared': join(root, 'shared') },
+    alias: { '#shared': join(root, 'shared'), '#server': join(root, 'server'), '#reference-tables': join(root, 'reference-tables'), '#migrations': join(root, 'migrations') },
+    external: ['better-sqlite3'],
     legalComments: 'none',
     logLevel: 'warning',
   })
@@ -34,18 +38,18 @@ function writeWhole(file, contents) {
   renameSync(part, file)
 }
 
-/** For development and tests: the bundled worker and the folder of its fonts. */
-export async function buildWorkerIntoCache() {
-  const contents = await bundle()
+/** For development and tests: the bundled worker and, for the PDF thread, the folder of its fonts. */
+export async function buildWorkerIntoCache(name = 'pdf') {
+  const contents = await bundle(name)
   const hash = createHash('sha256').update(contents).digest('hex').slice(0, 16)
-  const file = join(root, `node_modules/.cache/orthodrome/${entry.name}-${hash}.cjs`)
+  const file = join(root, `node_modules/.cache/orthodrome/${name}-${hash}.cjs`)
   if (!existsSync(file)) writeWhole(file, contents)
   return { file, fontsDir }
 }
 
 /** For the built server. */
 export async function buildWorkersIntoOutput(outDir = join(root, '.output/server/workers')) {
-  writeWhole(join(outDir, `${entry.name}.cjs`), await bundle())
+  for (const name of Object.keys(sources)) writeWhole(join(outDir, `${name}.cjs`), await bundle(name))
   mkdirSync(join(outDir, 'fonts'), { recursive: true })
   for (const name of readdirSync(fontsDir)) copyFileSync(join(fontsDir, name), join(outDir, 'fonts', name))
   return outDir

@@ -55,6 +55,7 @@ export const permissions = {
   'site.read': [T, N, A, D],
   'site.write': [A],
   'audit.read': [A, D],
+  'overview.read': [A, D],
   'task.read': [T, N, A, D],
 
   // The desk of a referring physician: own referrals and final reports of own patients only.
@@ -87,6 +88,7 @@ export const rooms = [
   { id: 'shelf', label: 'Shelf', path: '/shelf', action: 'shelf.read' },
   { id: 'directory', label: 'Directory', path: '/directory', action: 'directory.write' },
   { id: 'people', label: 'People', path: '/people', action: 'people.read' },
+  { id: 'overview', label: 'Overview', path: '/overview', action: 'overview.read' },
   { id: 'ledger', label: 'Ledger', path: '/ledger', action: 'audit.read' },
   { id: 'desk', label: 'Desk', path: '/desk', action: 'desk.read' },
 ] as const satisfies readonly { id: string, label: string, path: string, action: Action }[]

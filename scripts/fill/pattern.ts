@@ -82,7 +82,7 @@ export function makePattern(setting: Setting, place: Place, policy: Policy, rand
   const row = study.runs[0]!.rows[0]!
   const draft = madeDraft(picture, side, assessment.flagged.length > 0, random)
   const words = { question: random.pick(picture.question), symptoms: random.pick(picture.symptoms), onset: `${random.whole(2, 30)} months ago`, examination: random.pick(picture.examination) }
-  const summary: StudySummary = { flagged: assessment.flagged.length, runs: 1, calculationVersion: assessment.calculationVersion, openChecks: 0 }
+  const summary: StudySummary = { flagged: assessment.flagged.length, runs: 1, calculationVersion: assessment.calculationVersion, openChecks: 0, checks: {} }
   return {
     place, picture, side, technique, ...words, person, celsius,
     settingsJson: JSON.stringify(usualSettings(techniqueOf(technique)!)),

@@ -12,7 +12,14 @@ import { recordAuditEvent } from './record-audit-event'
 export interface MissingForHandOver { key: string, sentence: string, runId?: string }
 
 /** What lists read without assessing again: kept with the study at hand-over. */
-export interface StudySummary { flagged: number, runs: number, openChecks: number, calculationVersion: string }
+export interface StudySummary {
+  flagged: number
+  runs: number
+  openChecks: number
+  /** Questions that stood at hand-over, by kind: how many, and how many were kept with a reason. */
+  checks: Record<string, { asked: number, kept: number }>
+  calculationVersion: string
+}
 
 const isEmpty = (run: Run) => run.rows.every(row => Object.keys(row.values).length === 0 && !row.series?.length && Object.keys(row.ordinals ?? {}).length === 0)
 
@@ -46,8 +53,19 @@ export async function keepSummary(context: ServiceContext, trx: Trx, id: string)
 function summaryOf({ assessment, study }: AssessedStudy): StudySummary {
   return {
     flagged: assessment.flagged.length, runs: study.runs.length, calculationVersion: assessment.calculationVersion,
-    openChecks: assessment.remarks.filter(remark => remark.strength === 'check' && !remark.kept).length,
+    openChecks: assessment.remarks.filter(remark => remark.strength === 'check' && !remark.kept).length, checks: checksOf(assessment),
   }
+}
+
+function checksOf({ remarks }: AssessedStudy['assessment']): StudySummary['checks'] {
+  const checks: StudySummary['checks'] = {}
+  for (const { key, strength, kept } of remarks) {
+    if (strength !== 'check') continue
+    const one = checks[key.split('/')[0] ?? ''] ??= { asked: 0, kept: 0 }
+    one.asked += 1
+    if (kept) one.kept += 1
+  }
+  return checks
 }
 
 /**

@@ -3,6 +3,7 @@ import { join } from 'node:path'
 import type { APIRequestContext, Page } from 'playwright-core'
 import { afterAll, beforeAll, expect, it } from 'vitest'
 import { roleMay, type Action, type Role } from '#shared/permissions'
+import type { OverviewView } from '#shared/schemas/overview'
 import { policyNames } from '#shared/policies/index'
 import { axeFindings, signIn, startApp, type App, type Window } from './app'
 
@@ -47,6 +48,11 @@ const addresses: Record<string, (ask: Ask) => Promise<string[]>> = {
   'shelf/[setId].vue': async ask => one(await ask<{ id: string }[]>('/api/shelf/sets')).map(set => `/shelf/${set.id}`),
   'shelf/policies/index.vue': async () => ['/shelf/policies'],
   'shelf/policies/[name].vue': async () => policyNames.map(name => `/shelf/policies/${name}`),
+  'overview/index.vue': async () => ['/overview'],
+  'overview/[indicator].vue': async (ask) => {
+    const view = await ask<OverviewView>('/api/overview')
+    return (['no-show', 'sign'] as const).flatMap(id => view.sites.slice(0, 1).map(site => `/overview/${id}?month=${view.months.at(-1)}&site=${site.id}`))
+  },
   'directory/index.vue': async () => ['/directory'],
   'directory/new.vue': async () => ['/directory/new'],
   'directory/[practiceId].vue': async ask => one((await ask<Rows<{ id: string }>>('/api/directory/practices')).rows).map(row => `/directory/${row.id}`),
