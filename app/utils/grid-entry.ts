@@ -1,3 +1,4 @@
+import { possibleRange } from '#shared/catalogue/possible-range'
 import type { Quantity } from '#shared/catalogue/quantities'
 import type { StimulationSite } from '#shared/catalogue/types'
 import { absenceLabels, absences, type Absence, type Entry } from '#shared/schemas/study'
@@ -10,9 +11,6 @@ export interface EntryPlace {
   site?: StimulationSite
   /** "ankle to below the fibular head": named in the sentence. */
   segmentLabel?: string
-  /** A distance to the next site of a motor run: under 80 mm it must be declared. */
-  isSegment?: boolean
-  shortSegments?: boolean
 }
 
 /** One letter each, at the start of a cell. */
@@ -43,24 +41,18 @@ function slipQuestion(value: number, quantity: Quantity, range: { min: number, m
   return slip ? ` Was ${value} read in ${slip.unit}? Look at the trace again and enter the ${quantity.label} in ${quantity.unit}.` : ''
 }
 
-const minimumSegmentMm = 80
-
-function distanceStop(value: number, quantity: Quantity, { site, segmentLabel, isSegment, shortSegments }: EntryPlace): string | null {
-  const limits = site?.segmentMm
-  if (!limits) return null
-  const where = segmentLabel ? ` (${segmentLabel})` : ''
-  const usual = { min: limits.usualMin, max: limits.usualMax }
-  if (value < limits.possibleMin || value > limits.possibleMax) return `Distance${where} must be between ${limits.possibleMin} and ${limits.possibleMax} mm.${slipQuestion(value, quantity, usual)}`
-  const least = Math.min(minimumSegmentMm, limits.usualMin)
-  if (isSegment && !shortSegments && value < least) return `${value} mm is too short for this segment${where}: under ${least} mm the run must be declared a short-segment study first.${slipQuestion(value, quantity, usual)}`
-  return null
+/** Only what cannot be right is stopped; what is unlikely is questioned beside the cell, and stored. */
+function rangeStop(value: number, quantity: Quantity, { site, segmentLabel }: EntryPlace): string | null {
+  const range = possibleRange(quantity, site)
+  if (!range || (value >= range.min && value <= range.max)) return null
+  if (value === 0) return '0 is no reading. When nothing was recorded, press n for no response or x for technical.'
+  const where = quantity.kind === 'distance' && segmentLabel ? ` (${segmentLabel})` : ''
+  return `${capital(quantity.label)}${where} must be between ${withUnit(`${range.min} and ${range.max}`, quantity.unit)}.${slipQuestion(value, quantity, usualRange(quantity, site) ?? range)}`
 }
 
-function rangeStop(value: number, quantity: Quantity, place: EntryPlace): string | null {
-  const range = quantity.possible
-  if (value === 0 && range && range.min > 0) return '0 is no reading. When nothing was recorded, press n for no response or x for technical.'
-  if (range && (value < range.min || value > range.max)) return `${capital(quantity.label)} must be between ${withUnit(`${range.min} and ${range.max}`, quantity.unit)}.${slipQuestion(value, quantity, quantity.usual ?? range)}`
-  return quantity.kind === 'distance' ? distanceStop(value, quantity, place) : null
+function usualRange(quantity: Quantity, site: StimulationSite | undefined): { min: number, max: number } | undefined {
+  const segment = quantity.id === 'distanceMm' ? site?.segmentMm : undefined
+  return segment ? { min: segment.usualMin, max: segment.usualMax } : quantity.usual
 }
 
 function decimalsStop(digits: string, quantity: Quantity): string | null {

@@ -26,9 +26,9 @@ export function rowHead(technique: Technique): string {
 export function entryPlace(technique: Technique, run: Run, rowIndex: number): EntryPlace {
   const row = run.rows[rowIndex]
   const site = row && siteIn(technique, row.site)
-  const isSegment = technique.kind === 'motor' && rowIndex > 0
+  const isSegment = technique.kind === 'motor' && rowIndex > 0 && !site?.aside
   const segmentLabel = isSegment ? `${rowLabel(technique, run.rows[rowIndex - 1]!)} to ${site?.label ?? row?.site}` : `${site?.label ?? ''} to the recording electrode`
-  return { site, segmentLabel, isSegment, shortSegments: run.shortSegments }
+  return { site, segmentLabel }
 }
 
 /** "abductor pollicis brevis · 80 mm · antidromic": what stands small behind the title. */

@@ -1,5 +1,6 @@
 import type { QuantityId } from '#shared/catalogue/quantities'
 import type { RunKind, Technique } from '#shared/catalogue/types'
+import { siteOf } from '#shared/catalogue/nerves'
 import type { Run, RunRow } from '#shared/schemas/study'
 
 export type RunProgress = 'left' | 'begun' | 'done' | 'not-done'
@@ -18,8 +19,9 @@ const isAbsence = (value: unknown) => typeof value === 'string'
 const hasAnything = (row: RunRow) => Object.keys(row.values).length > 0 || (row.series?.length ?? 0) > 0 || Object.keys(row.ordinals ?? {}).length > 0
 
 /** An absence in one cell (no response) answers for the whole row; so does a series. */
-function rowIsDone(row: RunRow, kind: RunKind): boolean {
-  const ids = needed[kind]
+function rowIsDone(row: RunRow, { id, kind }: Technique): boolean {
+  // Beside the nerve's line the size alone is asked for.
+  const ids = siteOf(id, row.site)?.aside ? (['amplitudeMv'] as const) : needed[kind]
   if (!ids || (row.series?.length ?? 0) > 0) return hasAnything(row)
   return ids.every(id => row.values[id] !== undefined) || Object.values(row.values).some(isAbsence)
 }
@@ -32,7 +34,7 @@ function rowIsDone(row: RunRow, kind: RunKind): boolean {
 export function runProgress(technique: Technique, run: Run): RunProgress {
   if (run.notDoneBecause) return 'not-done'
   if (!run.rows.some(hasAnything)) return 'left'
-  return run.rows.every(row => rowIsDone(row, technique.kind)) ? 'done' : 'begun'
+  return run.rows.every(row => rowIsDone(row, technique)) ? 'done' : 'begun'
 }
 
 export const progressWords: Record<RunProgress, string> = { 'left': 'left to do', 'begun': 'begun', 'done': 'done', 'not-done': 'not done, with a reason' }

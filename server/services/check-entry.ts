@@ -1,3 +1,4 @@
+import { possibleRange } from '#shared/catalogue/possible-range'
 import { quantityOf } from '#shared/catalogue/quantities'
 import type { Quantity } from '#shared/catalogue/quantities'
 import { siteOf } from '#shared/catalogue/nerves'
@@ -16,14 +17,9 @@ function decimalsOf(value: number): number {
   return Math.max(0, fraction.length - Number(exponent))
 }
 
-function rangeOf(quantity: Quantity, technique: Technique, site: string): { min: number, max: number } | undefined {
-  const segment = quantity.kind === 'distance' ? siteOf(technique.id, site)?.segmentMm : undefined
-  return segment ? { min: segment.possibleMin, max: segment.possibleMax } : quantity.possible
-}
-
 function checkNumber(value: number, quantity: Quantity, technique: Technique, site: string): string | null {
   const label = capital(quantity.label)
-  const range = rangeOf(quantity, technique, site)
+  const range = possibleRange(quantity, siteOf(technique.id, site))
   if (value === 0 && range && range.min > 0) return `${label} 0 is not a value. Enter "no response", "technical", "not done" or "stopped".`
   if (range && (value < range.min || value > range.max)) return `${label} must be between ${range.min} and ${range.max}${unitWords(quantity.unit)}.`
   if (decimalsOf(value) > quantity.typedDecimals) return quantity.typedDecimals === 0 ? `${label} must be a whole number.` : `${label} takes at most ${quantity.typedDecimals} decimal${quantity.typedDecimals === 1 ? '' : 's'}.`

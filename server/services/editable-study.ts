@@ -2,6 +2,8 @@ import type { Trx } from '#server/database/connection'
 import type { Study } from '#server/database/tables/study'
 import { DomainError } from '#shared/errors'
 import type { ServiceContext } from './context'
+import { assessStoredStudy } from './assess-stored-study'
+import { recordAuditEvent } from './record-audit-event'
 import { withdrawReady } from './withdraw-ready'
 
 /**
@@ -19,7 +21,20 @@ export async function editableStudy(trx: Trx, studyId: string): Promise<Study> {
 /** Every change of what was recorded ends with this. */
 export async function studyChanged(context: ServiceContext, trx: Trx, study: Study): Promise<void> {
   await trx.updateTable('study').set({ revision: study.revision + 1 }).where('id', '=', study.id).execute()
+  await reopenAnswered(context, trx, study)
   await withdrawReady(context, trx, { studyId: study.id })
+}
+
+/** A reason speaks of what stood when it was given: where a change took that away, its question is open again. */
+async function reopenAnswered(context: ServiceContext, trx: Trx, study: Study): Promise<void> {
+  const kept = await trx.selectFrom('studyKeptCheck').select(['key', 'reason']).where('studyId', '=', study.id).execute()
+  if (kept.length === 0) return
+  const { remarks } = (await assessStoredStudy({ db: trx }, study.id)).assessment
+  const standing = new Set(remarks.filter(remark => remark.kept !== undefined).map(remark => remark.key))
+  for (const { key, reason } of kept.filter(one => !standing.has(one.key))) {
+    await trx.deleteFrom('studyKeptCheck').where('studyId', '=', study.id).where('key', '=', key).execute()
+    await recordAuditEvent(context, trx, { name: 'study.check-reopened', ...aboutStudy(study), data: { key, reason } })
+  }
 }
 
 /** How an audit event names a study. */

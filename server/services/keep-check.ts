@@ -1,47 +1,33 @@
 import type { Trx } from '#server/database/connection'
-import type { Study } from '#server/database/tables/study'
+import { cellsBehind } from '#shared/calculations/plausibility/kept-answer'
+import { DomainError } from '#shared/errors'
+import { assessStoredStudy } from './assess-stored-study'
 import { now, type ServiceContext } from './context'
 import { aboutStudy, editableStudy, studyChanged } from './editable-study'
 import { recordAuditEvent } from './record-audit-event'
-import { DomainError } from '#shared/errors'
 
-/** Keeps a questioned value, with the reason that goes with it into the report. */
+async function askedNow(trx: Trx, id: string, key: string) {
+  const { study, assessment } = await assessStoredStudy({ db: trx }, id)
+  const remark = assessment.remarks.find(one => one.key === key && one.strength === 'check')
+  if (!remark) throw new DomainError('not-valid', { fields: [{ path: 'key', message: 'This is not asked any more: the values changed meanwhile.' }] })
+  return { sentence: remark.sentence, cellsJson: JSON.stringify(cellsBehind(study, remark)) }
+}
+
+/**
+ * Keeps a questioned value, with the reason that goes with it into the report. The reason is bound to the question as it
+ * is worded now and to the values it rests on: when they change it is asked again.
+ * @throws DomainError 'not-valid' when the question is not asked (any more)
+ */
 export async function keepCheck(context: ServiceContext, { id, key, reason }: { id: string, key: string, reason: string }): Promise<void> {
   const keptBy = context.actor.userId
   if (!keptBy) throw new DomainError('not-signed-in')
   await context.db.transaction().execute(async (trx) => {
     const study = await editableStudy(trx, id)
-    const values = { reason, keptBy, keptAt: now(context) }
+    const values = { reason, ...await askedNow(trx, id, key), keptBy, keptAt: now(context) }
     await trx.insertInto('studyKeptCheck').values({ studyId: id, key, ...values }).onConflict(conflict => conflict.columns(['studyId', 'key']).doUpdateSet(values)).execute()
     await studyChanged(context, trx, study)
     await recordAuditEvent(context, trx, { name: 'study.check-kept', ...aboutStudy(study), data: { key, reason } })
   })
-}
-
-export interface Corrected { runId: string, rowId: string, field: string, before: unknown }
-
-/**
- * A reason speaks of the value that stood when it was given: once that is corrected, its questions are open again, those
- * about the row's or the run's derived values too. A value that is entered for the first time takes no reason away.
- */
-export async function reopenCorrected(context: ServiceContext, trx: Trx, study: Study, changes: readonly Corrected[]): Promise<void> {
-  const corrected = changes.filter(change => change.before !== null)
-  if (corrected.length === 0) return
-  const kept = await trx.selectFrom('studyKeptCheck').select(['key', 'reason']).where('studyId', '=', study.id).execute()
-  for (const { key, reason } of kept.filter(check => corrected.some(change => concerns(check.key, change)))) {
-    await trx.deleteFrom('studyKeptCheck').where('studyId', '=', study.id).where('key', '=', key).execute()
-    await recordAuditEvent(context, trx, { name: 'study.check-reopened', ...aboutStudy(study), data: { key, reason } })
-  }
-}
-
-/** Questions that compare one cell with its own range; all others rest on several values of the run. */
-const ofOneCell = ['unusual', 'distance-unusual', 'short-segment', 'latency-too-short', 'h-range']
-
-/** A key is code, run, row, quantity. */
-function concerns(key: string, { runId, rowId, field }: Corrected): boolean {
-  const [code = '', run, row, quantity] = key.split('/')
-  if (run !== runId) return false
-  return !ofOneCell.includes(code) || quantity === undefined || (row === rowId && quantity === field)
 }
 
 /** Asks the question again. */

@@ -19,8 +19,8 @@ export function plannedRuns(protocol: Protocol | null, side: ReferralSide | null
 }
 
 /** The technique's own habits; the technologist says where it was done otherwise. */
-export function usualSettings({ direction, amplitudeDefinition }: Technique): RunSettings {
-  return { ...(direction ? { direction } : {}), ...(amplitudeDefinition ? { amplitudeDefinition } : {}) }
+export function usualSettings({ direction, amplitudeDefinition, shortSegments }: Technique): RunSettings {
+  return { ...(direction ? { direction } : {}), ...(amplitudeDefinition ? { amplitudeDefinition } : {}), ...(shortSegments ? { shortSegments } : {}) }
 }
 
 /** The stimulation sites that stand ready when a run is added. */

@@ -7,7 +7,6 @@ import type { SaveCell, SavedCell } from '#shared/schemas/bench'
 import { checkEntry } from './check-entry'
 import { now, type ServiceContext } from './context'
 import { aboutStudy, editableStudy, studyChanged } from './editable-study'
-import { reopenCorrected } from './keep-check'
 import { recordAuditEvent } from './record-audit-event'
 
 interface Change { runId: string, rowId: string, field: string, before: unknown, after: unknown }
@@ -28,7 +27,6 @@ export async function saveCells(context: ServiceContext, { id, cells }: { id: st
     const changes = outcomes.flatMap(outcome => outcome.change ?? [])
     if (changes.length > 0) {
       await noteFirstValue(context, trx, [...new Set(changes.map(change => change.runId))])
-      await reopenCorrected(context, trx, study, changes)
       await studyChanged(context, trx, study)
       await recordAuditEvent(context, trx, { name: 'study.cells-saved', ...aboutStudy(study), data: { cells: changes } })
     }

@@ -34,6 +34,14 @@ async function checkRepeats(trx: Trx, studyId: string, run: { technique: string,
   if (!earlier || repeats === run.id || earlier.technique !== run.technique || earlier.side !== run.side) throw wrong('repeats', 'A repeat must be of the same technique and side in this study.')
 }
 
+/** More than any patient bears, and what the bench is measured with twice over. */
+export const MOST_RUNS = 80
+
+async function checkRoom(trx: Trx, studyId: string): Promise<void> {
+  const { count } = await trx.selectFrom('studyRun').select(eb => eb.fn.countAll<number>().as('count')).where('studyId', '=', studyId).where('removedAt', 'is', null).executeTakeFirstOrThrow()
+  if (count >= MOST_RUNS) throw wrong('technique', `A study has at most ${MOST_RUNS} runs. Take a blank run away, or go on in a second study.`)
+}
+
 /** Makes room behind a run, or at the end. */
 async function positionAfter(trx: Trx, studyId: string, afterRunId: string | undefined): Promise<number> {
   const runs = await trx.selectFrom('studyRun').select(['id', 'position']).where('studyId', '=', studyId).where('removedAt', 'is', null).orderBy('position').execute()
@@ -49,6 +57,7 @@ export async function addRun(context: ServiceContext, { id, technique: technique
   if (!technique) throw wrong('technique', 'Choose a technique of the catalogue.')
   return context.db.transaction().execute(async (trx) => {
     const study = await editableStudy(trx, id)
+    await checkRoom(trx, id)
     if (repeats) await checkRepeats(trx, id, { technique: techniqueId, side }, repeats)
     const sites = await sitesFor(trx, id, technique, repeats)
     const position = await positionAfter(trx, id, afterRunId ?? repeats)

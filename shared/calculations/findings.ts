@@ -1,5 +1,6 @@
 import { techniqueTitle } from '../catalogue/nerves'
 import type { Technique } from '../catalogue/types'
+import { fingerprint } from './fingerprint'
 import { STANDS_FOR } from './make-result'
 import { decimalsFor, quantityInfo } from './quantity-info'
 import { printLimit } from './round-for-print'
@@ -31,14 +32,7 @@ export function draftFindings(context: StudyContext, runs: readonly RunAssessmen
 }
 
 function sentence(key: string, runIds: string[], text: string): FindingSentence {
-  return { key, runIds, text, fingerprint: hash(text) }
-}
-
-/** FNV-1a over the sentence: it holds every number, limit and word it was made from. */
-function hash(text: string): string {
-  let state = 0x811C9DC5
-  for (let index = 0; index < text.length; index += 1) state = Math.imul(state ^ text.charCodeAt(index), 0x01000193)
-  return (state >>> 0).toString(16).padStart(8, '0')
+  return { key, runIds, text, fingerprint: fingerprint(text) }
 }
 
 function runText(known: KnownRun, run: RunAssessment): string {
@@ -46,7 +40,8 @@ function runText(known: KnownRun, run: RunAssessment): string {
   if (run.notDone !== undefined) return `${title}: ${run.notDone}.`
   if (known.technique?.kind === 'needle') return needleText(title, known, known.technique)
   if (!known.measured) return `${title}: nothing recorded.`
-  const told = run.results.filter(isTold)
+  const beside = new Set(known.asides.map(({ row }) => row.id))
+  const told = run.results.filter(result => isTold(result) || (beside.has(result.rowId ?? '') && result.quantity === 'amplitudeMv'))
   const cold = coldWords(run)
   if (told.length === 0) return `${title}: ${run.results.length > 0 ? 'recorded, nothing to judge' : 'nothing recorded'}${cold}.`
   const judged = told.filter(result => result.verdict.kind === 'within')

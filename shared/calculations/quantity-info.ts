@@ -24,6 +24,7 @@ const own = (id: string, label: string, unit: string, printDecimals: number, col
 
 /** Computed numbers beyond those that the reference sets have limits for. */
 const ownQuantities: QuantityInfo[] = [
+  own('stepLatencyMs', 'latency step', 'ms', 2, 'lengthens'),
   own('segmentVelocityMps', 'segment velocity', 'm/s', 0, 'slows'),
   own('amplitudeFallFromDistalPercent', 'amplitude fall from the most distal site', '%', 0, 'none'),
   own('amplitudeFallMv', 'amplitude fall', 'mV', 1, 'none'),

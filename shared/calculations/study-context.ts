@@ -24,8 +24,10 @@ export interface KnownRun {
   bearing: ColdBearing
   supersededBy?: string
   measured: boolean
-  /** Its rows, distal to proximal. */
+  /** Its rows along the nerve, distal to proximal. */
   rows: readonly PlacedRow[]
+  /** Rows beside the nerve's line: another nerve stimulated, the same muscle recorded. */
+  asides: readonly PlacedRow[]
   /** The row of the usual distal site: what comparisons and side differences use. */
   usual: PlacedRow | undefined
 }
@@ -93,8 +95,9 @@ function knownRuns(study: Study, tables: readonly ReferenceTable[], policy: Poli
     const technique = techniqueOf(run.technique)
     const cold = coldOfRun(temperatures, run, technique)
     const bearing: ColdBearing = countsAsCold(cold, run) ? { state: 'all', words: cold.because } : notCold
-    const rows = technique ? placedRows(run, technique) : []
-    return { run, technique, cold, bearing, measured: isMeasured(run), rows, usual: technique && rows[usualIndex(rows, technique)] }
+    const placed = technique ? placedRows(run, technique) : []
+    const rows = placed.filter(one => !one.site?.aside)
+    return { run, technique, cold, bearing, measured: isMeasured(run), rows, asides: placed.filter(one => one.site?.aside), usual: technique && rows[usualIndex(rows, technique)] }
   })
 }
 

@@ -7,8 +7,8 @@ import type { StimulationSite } from './types'
  */
 type Range = NonNullable<StimulationSite['segmentMm']>
 
-const range = (usualMin: number, usualMax: number, possibleMax: number): Range =>
-  ({ usualMin, usualMax, possibleMin: 10, possibleMax })
+const range = (usualMin: number, usualMax: number, possibleMax: number, possibleMin = 10): Range =>
+  ({ usualMin, usualMax, possibleMin, possibleMax })
 
 export const distances = {
   /** Most distal stimulus to the recording electrode of a hand or foot muscle. */
@@ -27,8 +27,13 @@ export const distances = {
   axillaToErb: range(100, 300, 450),
   radialForearm: range(120, 320, 500),
   spiralGroove: range(80, 200, 350),
-  ankleToFibularHead: range(220, 450, 700),
+  /** Whole lower legs: under 60 mm not even a newborn's (common practice), so 33 is a reading in centimetres. */
+  ankleToFibularHead: range(220, 450, 700, 60),
   acrossFibularHead: range(60, 140, 300),
-  ankleToPoplitealFossa: range(300, 500, 800),
+  ankleToPoplitealFossa: range(300, 500, 800, 60),
   acrossInguinalLigament: range(50, 140, 250),
+  /** Steps of a short-segment study, 20 mm: common practice. */
+  shortStep: range(15, 25, 60),
+  /** To a muscle of another nerve's stimulus beside the line: only context. */
+  aside: range(40, 450, 800),
 } as const satisfies Record<string, Range>

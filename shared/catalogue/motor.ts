@@ -12,6 +12,25 @@ const motorColumns: QuantityId[] = ['latencyMs', 'amplitudeMv', 'durationMs', 'a
 const axilla: StimulationSite = { id: 'axilla', label: 'axilla', segmentMm: distances.upperArm, segment: { id: 'upper-arm', label: 'upper arm' } }
 const erb: StimulationSite = { id: 'erb', label: 'Erb\'s point', segmentMm: distances.axillaToErb, segment: { id: 'axilla-erb', label: 'axilla to Erb\'s point' } }
 
+const aside = (id: string, label: string): StimulationSite => ({ id, label, aside: true, segmentMm: distances.aside })
+/** Where fibres may cross in the forearm or at the ankle: the other nerve stimulated, the same muscle recorded. */
+const ulnarAsides = [aside('ulnar-wrist', 'ulnar nerve at the wrist'), aside('ulnar-elbow', 'ulnar nerve below the elbow')]
+const medianAsides = [aside('median-wrist', 'median nerve at the wrist'), aside('median-elbow', 'median nerve at the elbow')]
+const accessoryFibular = aside('lateral-malleolus', 'behind the lateral malleolus')
+
+/**
+ * Short segments of 20 mm, the most distal site first (steps of 20 mm: common practice). The first distance runs to the
+ * recording electrode, the others to the step before.
+ */
+function shortSteps(names: readonly (readonly [id: string, label: string])[], first: StimulationSite['segmentMm']): StimulationSite[] {
+  return names.map(([id, label], index) => index === 0
+    ? { id, label, usual: true, segmentMm: first }
+    : { id, label, usual: true, standardDistanceMm: 20, segmentMm: distances.shortStep, segment: { id: `step-${index}`, label: `step to ${label}`, entrapment: true } })
+}
+const elbowSteps = [['elbow-minus-4', '4 cm below the epicondyle'], ['elbow-minus-2', '2 cm below the epicondyle'], ['elbow-0', 'medial epicondyle'], ['elbow-plus-2', '2 cm above the epicondyle'], ['elbow-plus-4', '4 cm above the epicondyle']] as const
+const kneeSteps = [['head-minus-4', '4 cm below the fibular head'], ['head-minus-2', '2 cm below the fibular head'], ['head-0', 'fibular head'], ['head-plus-2', '2 cm above the fibular head'], ['head-plus-4', '4 cm above the fibular head']] as const
+const noShortLimits = 'No shipped set has limits for short segments; the steps are compared with each other.'
+
 const medianSites: StimulationSite[] = [
   { id: 'palm', label: 'palm', segmentMm: distances.palm },
   { id: 'wrist', label: 'wrist', usual: true, segmentMm: distances.distalMotor, segment: { id: 'wrist-palm', label: 'wrist to palm', entrapment: true } },
@@ -58,7 +77,7 @@ const motor = (entry: Entry): Technique =>
 export const motorTechniques: readonly Technique[] = [
   motor({
     id: 'median-motor-apb', nerve: 'median', label: 'median motor', roots: 'C8, T1', limb: 'arm', temperatureSegment: 'hand',
-    recording: { id: 'apb', label: 'abductor pollicis brevis', short: 'APB' }, standardDistanceMm: 80, sites: medianSites,
+    recording: { id: 'apb', label: 'abductor pollicis brevis', short: 'APB' }, standardDistanceMm: 80, sites: [...medianSites, ...ulnarAsides],
   }),
   motor({
     id: 'median-motor-lumbrical', nerve: 'median', label: 'median motor, second lumbrical', roots: 'C8, T1', limb: 'arm', temperatureSegment: 'hand',
@@ -66,11 +85,15 @@ export const motorTechniques: readonly Technique[] = [
   }),
   motor({
     id: 'ulnar-motor-adm', nerve: 'ulnar', label: 'ulnar motor', roots: 'C8, T1', limb: 'arm', temperatureSegment: 'hand',
-    recording: { id: 'adm', label: 'abductor digiti minimi', short: 'ADM' }, standardDistanceMm: 80, sites: ulnarSites,
+    recording: { id: 'adm', label: 'abductor digiti minimi', short: 'ADM' }, standardDistanceMm: 80, sites: [...ulnarSites, ...medianAsides],
   }),
   motor({
     id: 'ulnar-motor-fdi', nerve: 'ulnar', label: 'ulnar motor, first dorsal interosseous', roots: 'C8, T1', limb: 'arm', temperatureSegment: 'hand',
-    recording: { id: 'fdi', label: 'first dorsal interosseous', short: 'FDI' }, standardDistanceMm: 100, sites: ulnarSites,
+    recording: { id: 'fdi', label: 'first dorsal interosseous', short: 'FDI' }, standardDistanceMm: 100, sites: [...ulnarSites, ...medianAsides],
+  }),
+  motor({
+    id: 'ulnar-motor-adm-short', nerve: 'ulnar', label: 'ulnar motor, short segments across the elbow', roots: 'C8, T1', limb: 'arm', temperatureSegment: 'hand',
+    recording: { id: 'adm', label: 'abductor digiti minimi', short: 'ADM' }, shortSegments: true, withoutLimits: noShortLimits, sites: shortSteps(elbowSteps, distances.forearm),
   }),
   motor({
     id: 'ulnar-motor-interosseous', nerve: 'ulnar', label: 'ulnar motor, interosseous beside second lumbrical', roots: 'C8, T1', limb: 'arm', temperatureSegment: 'hand',
@@ -101,7 +124,11 @@ export const motorTechniques: readonly Technique[] = [
   motor({
     id: 'fibular-motor-edb', nerve: 'fibular', label: 'fibular motor', roots: 'L5, S1', limb: 'leg', temperatureSegment: 'foot',
     recording: { id: 'edb', label: 'extensor digitorum brevis', short: 'EDB' }, standardDistanceMm: 80,
-    sites: [{ id: 'ankle', label: 'ankle', usual: true, segmentMm: distances.distalMotor }, ...fibularHead(false)],
+    sites: [{ id: 'ankle', label: 'ankle', usual: true, segmentMm: distances.distalMotor }, ...fibularHead(false), accessoryFibular],
+  }),
+  motor({
+    id: 'fibular-motor-edb-short', nerve: 'fibular', label: 'fibular motor, short segments across the fibular head', roots: 'L5, S1', limb: 'leg', temperatureSegment: 'foot',
+    recording: { id: 'edb', label: 'extensor digitorum brevis', short: 'EDB' }, shortSegments: true, withoutLimits: noShortLimits, sites: shortSteps(kneeSteps, distances.ankleToFibularHead),
   }),
   motor({
     id: 'fibular-motor-ta', nerve: 'fibular', label: 'fibular motor, tibialis anterior', roots: 'L4, L5', limb: 'leg', temperatureSegment: 'foot',

@@ -20,6 +20,11 @@ export interface StimulationSite {
   standardDistanceMm?: number
   /** Laid out when the run is added; the others are one keystroke away. */
   usual?: boolean
+  /**
+   * Beside the nerve's own line: another nerve or branch, recorded from the same muscle to see whether fibres cross. It
+   * makes no segment and stands in no order; its distance is not needed.
+   */
+  aside?: boolean
 }
 
 /**
@@ -49,6 +54,8 @@ export interface Technique {
   quantities: QuantityId[]
   /** Ordinal or text columns (needle examination): id, label, choices. */
   ordinals?: { id: string, label: string, choices: readonly string[] }[]
+  /** A short-segment study by itself: its segments under 80 mm need no declaration. */
+  shortSegments?: boolean
   /** Said on screen where no shipped set has a limit for it. */
   withoutLimits?: string
 }

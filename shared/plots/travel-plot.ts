@@ -42,6 +42,12 @@ interface Placed { row: RunRow, ms: number, mm: number }
 /** The path of one side's run that can be drawn; the other side's stands behind it. */
 export interface OtherSide { run: Run }
 
+/** A stimulus to another nerve has no place on this one's line. */
+function alongTheNerve(run: Run, technique: Technique): Run {
+  const beside = new Set(technique.sites.filter(site => site.aside).map(site => site.id))
+  return { ...run, rows: run.rows.filter(row => !beside.has(row.site)) }
+}
+
 /** Rows with a latency, at their distance along the limb. A missing distance ends the chain: what lies beyond has no place. */
 function placeRows(run: Run): Placed[] {
   const placed: Placed[] = []
@@ -133,10 +139,11 @@ function frameOf(placed: Placed[], others: Placed[], width: number, height: numb
  * @param other the same technique on the other side, drawn dashed behind it
  * @example travelPlotGeometry(run, runAssessment, technique)?.segments[0]?.words // => '59 m/s'
  */
-export function travelPlotGeometry(run: Run, assessment: RunAssessment | undefined, technique: Technique, other?: OtherSide, { width = 296, height = 210 } = {}): TravelPlotGeometry | null {
+export function travelPlotGeometry(recorded: Run, assessment: RunAssessment | undefined, technique: Technique, other?: OtherSide, { width = 296, height = 210 } = {}): TravelPlotGeometry | null {
   if (technique.kind !== 'motor') return null
+  const run = alongTheNerve(recorded, technique)
   const placed = placeRows(run)
-  const others = other ? placeRows(other.run) : []
+  const others = other ? placeRows(alongTheNerve(other.run, technique)) : []
   if (placed.length === 0) return null
   const { area, timeTicks, distanceTicks, ...frame } = frameOf(placed, others, width, height)
   const pairs = neighbours(run, placed)

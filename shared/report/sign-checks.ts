@@ -1,4 +1,5 @@
-import type { Assessment } from '../calculations/types'
+import { fingerprint } from '../calculations/fingerprint'
+import type { Assessment, RunAssessment } from '../calculations/types'
 import { techniqueOf } from '../catalogue/nerves'
 import type { Side } from '../schemas/common'
 import type { ImpressionLine, ReadingView, ReportDraft, SignCheck } from '../schemas/report'
@@ -101,25 +102,29 @@ function sidesElsewhere(input: SignCheckInput): Found[] {
   })
 }
 
+/** The numbers of these runs as they stand: an answer holds for them, not for what is corrected later. */
+const numbersOf = (runs: readonly RunAssessment[]) => fingerprint(runs.flatMap(run => run.results.filter(result => result.typed).map(result => `${result.key}=${result.print}`)).join(';'))
+
 /** Cold runs that were not repeated warm, and limbs without a temperature, which count as cold. */
 function temperatures({ assessment }: SignCheckInput): Found[] {
   const open = assessment.runs.filter(run => !run.supersededBy && !run.notDone && run.results.length > 0)
   const cold = open.filter(run => run.cold.state === 'cold' && run.results.some(result => result.verdict.kind === 'cold'))
   const unknown = open.filter(run => run.cold.state === 'unknown')
   return [
-    ...cold.map(run => check(`cold/${run.runId}`, `${run.title} was recorded cold${run.cold.celsius === null ? '' : ` (${run.cold.celsius.toFixed(1)} °C)`} and not repeated warm.`, { runId: run.runId })),
-    ...unknown.length > 0 ? [check('temperature-missing', `No temperature was recorded for: ${unknown.map(run => run.title).join('; ')}. It counts as cold.`)] : [],
+    ...cold.map(run => check(`cold/${run.runId}`, `${run.title} was recorded cold${run.cold.celsius === null ? '' : ` (${run.cold.celsius.toFixed(1)} °C)`} and not repeated warm.`, { runId: run.runId, about: numbersOf([run]) })),
+    ...unknown.length > 0 ? [check('temperature-missing', `No temperature was recorded for: ${unknown.map(run => run.title).join('; ')}. It counts as cold.`, { about: numbersOf(unknown) })] : [],
   ]
 }
 
 /** What the program questioned: kept with a reason at the bench, or still open. */
 function questions({ assessment, study }: SignCheckInput): Found[] {
-  const kept = new Set(study.keptChecks.map(item => item.key))
+  const kept = new Set(study.keptChecks.filter(item => item.sentence === undefined).map(item => item.key))
   return assessment.remarks.flatMap((remark): Found[] => {
-    const rest = remark.runId ? { runId: remark.runId } : {}
+    const run = assessment.runs.filter(one => one.runId === remark.runId)
+    const rest = remark.runId ? { runId: remark.runId, about: fingerprint(remark.sentence + numbersOf(run)) } : { about: fingerprint(remark.sentence) }
     if (remark.strength === 'stop') return [stop(`remark/${remark.key}`, `${remark.sentence} Return the study to the bench.`, rest)]
     if (remark.strength !== 'check') return []
-    return kept.has(remark.key) ? [{ key: `kept/${remark.key}`, strength: 'ok', sentence: `Kept at the bench: ${remark.sentence}`, answerable: false, ...rest }] : [check(`remark/${remark.key}`, remark.sentence, rest)]
+    return remark.kept !== undefined || kept.has(remark.key) ? [{ key: `kept/${remark.key}`, strength: 'ok', sentence: `Kept at the bench: ${remark.sentence}`, answerable: false, ...rest }] : [check(`remark/${remark.key}`, remark.sentence, rest)]
   })
 }
 
@@ -140,7 +145,9 @@ function withoutLimits({ assessment }: SignCheckInput): Found[] {
 function isolated({ assessment, draft }: SignCheckInput): Found[] {
   if (draft.technicalOnly || assessment.flagged.length !== 1) return []
   const run = assessment.runs.find(candidate => candidate.results.some(result => result.key === assessment.flagged[0]))
-  return [check('isolated', `A single value is outside its limit. ${assessment.chance.sentence} Say what it means here.`, run ? { runId: run.runId } : {})]
+  const result = run?.results.find(one => one.key === assessment.flagged[0])
+  const about = fingerprint(`${assessment.flagged[0]}=${result?.print ?? ''}`)
+  return [check('isolated', `A single value is outside its limit. ${assessment.chance.sentence} Say what it means here.`, { about, ...(run ? { runId: run.runId } : {}) })]
 }
 
 function people({ namesakes, recipients }: SignCheckInput): Found[] {
@@ -155,7 +162,7 @@ function answered(found: Found, { draft, assessment, study }: SignCheckInput): S
   const runId = found.key.startsWith('cold/') ? found.runId : undefined
   const cold = draft.interpretCold.find(item => item.runId === runId)?.reason
   const kept = found.key.startsWith('kept/') ? study.keptChecks.find(item => `kept/${item.key}` === found.key)?.reason ?? assessment.remarks.find(remark => `kept/${remark.key}` === found.key)?.kept : undefined
-  const reason = kept ?? cold ?? (found.answerable ? draft.resolved.find(item => item.key === found.key)?.reason : undefined)
+  const reason = kept ?? cold ?? (found.answerable ? draft.resolved.find(item => item.key === found.key && (item.about === undefined || item.about === found.about))?.reason : undefined)
   return reason ? { ...found, resolvedBecause: reason } : found
 }
 

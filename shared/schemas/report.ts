@@ -36,7 +36,7 @@ export const reportDraftSchema = z.object({
   limitations: z.array(z.string().trim().min(1).max(500)).max(20).default([]),
   recommendation: z.string().max(2000).default(''),
   /** Pre-sign questions answered with a reason: key of the question. */
-  resolved: z.array(z.object({ key: z.string().max(200), reason: z.string().trim().min(3).max(500) })).max(100).default([]),
+  resolved: z.array(z.object({ key: z.string().max(200), reason: z.string().trim().min(3).max(500), /** what was answered, as `SignCheck.about` had it: a value that changed since asks again */ about: z.string().max(20).optional() })).max(100).default([]),
   /** Runs recorded cold that the reader interprets, with the reason that is printed. */
   interpretCold: z.array(z.object({ runId: idSchema, reason: z.string().trim().min(3).max(500) })).max(100).default([]),
   leaveOutEntrapmentSites: z.boolean().default(false),
@@ -47,7 +47,7 @@ export type ReportDraft = z.infer<typeof reportDraftSchema>
 export const saveDraftSchema = z.object({ draft: reportDraftSchema, revision: z.number().int().min(0) })
 
 /** One item of the check before signing. */
-export interface SignCheck { key: string, strength: 'stop' | 'check' | 'ok', sentence: string, /** may it be answered with a reason, or must it be mended */ answerable: boolean, resolvedBecause?: string, runId?: string }
+export interface SignCheck { key: string, strength: 'stop' | 'check' | 'ok', sentence: string, /** may it be answered with a reason, or must it be mended */ answerable: boolean, resolvedBecause?: string, runId?: string, /** fingerprint of the numbers it speaks of, where its key does not say them */ about?: string }
 
 export const signSchema = z.object({
   password: z.string().min(1, 'Enter your password.').max(1024),

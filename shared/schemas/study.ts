@@ -84,8 +84,20 @@ export const temperatureSchema = z.object({
 })
 export type LimbTemperature = z.infer<typeof temperatureSchema>
 
-/** A question of the program that the technologist answered with a reason and kept. `key` is `Remark.key`. */
-export const keptCheckSchema = z.object({ key: z.string().max(200), reason: z.string().min(1).max(500) })
+/** What one cell holds, whatever its kind: an entry, a step of a scale, a series. */
+export const cellContentSchema = z.union([entrySchema, z.string().max(200), z.array(entrySchema).max(200)])
+
+/**
+ * A question of the program that the technologist answered with a reason and kept. `key` is `Remark.key`.
+ * The answer is bound to what it answered: the words of the question and the cells (`rowId/field`) it rested on. When one
+ * of them changes the question is open again. An answer without them is bound to its key alone.
+ */
+export const keptCheckSchema = z.object({
+  key: z.string().max(200), reason: z.string().min(1).max(500),
+  sentence: z.string().max(2000).optional(),
+  cells: z.record(z.string().max(140), cellContentSchema).optional(),
+})
+export type KeptCheck = z.infer<typeof keptCheckSchema>
 
 export const studySchema = z.object({
   format: z.literal(STUDY_FORMAT).default(STUDY_FORMAT),

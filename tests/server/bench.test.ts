@@ -270,12 +270,16 @@ describe('handing over', () => {
 describe('questions and readiness', () => {
   it('keeps and reopens a questioned value', async () => {
     const id = await c.recording()
-    await keepCheck(by, { id, key: 'a/b', reason: 'measured twice' })
-    await keepCheck(by, { id, key: 'a/b', reason: 'measured three times' })
-    expect((await c.study(id)).study.keptChecks).toEqual([{ key: 'a/b', reason: 'measured three times' }])
-    await reopenCheck(by, { id, key: 'a/b' })
+    await c.type(id, 'median-motor-apb', 'right', [{ latencyMs: 19.5, amplitudeMv: 6, distanceMm: 80 }])
+    const { key, sentence } = (await assessStoredStudy(t.context, id)).assessment.remarks.find(remark => remark.code === 'unusual')!
+    await keepCheck(by, { id, key, reason: 'measured twice' })
+    await keepCheck(by, { id, key, reason: 'measured three times' })
+    const row = (await c.study(id)).study.runs.find(run => run.technique === 'median-motor-apb')!.rows[0]!.id
+    expect((await c.study(id)).study.keptChecks).toEqual([{ key, reason: 'measured three times', sentence, cells: { [`${row}/latencyMs`]: 19.5 } }])
+    await reopenCheck(by, { id, key })
     expect((await c.study(id)).study.keptChecks).toEqual([])
-    await expect(reopenCheck(by, { id, key: 'a/b' })).rejects.toMatchObject({ code: 'not-found' })
+    await expect(reopenCheck(by, { id, key })).rejects.toMatchObject({ code: 'not-found' })
+    await expect(keepCheck(by, { id, key: 'a/b', reason: 'measured twice' })).rejects.toMatchObject({ code: 'not-valid' })
   })
   it('any change of a returned study takes back "ready to sign" and says so once', async () => {
     const id = await c.recording()

@@ -1,6 +1,6 @@
 import { sql } from 'kysely'
 import type { Policy } from '#shared/calculations/types'
-import { STUDY_FORMAT, type Run, type RunRow, type Study } from '#shared/schemas/study'
+import { STUDY_FORMAT, type KeptCheck, type Run, type RunRow, type Study } from '#shared/schemas/study'
 import type { Database } from '../connection'
 import type { StudyCell } from '../tables/study-cell'
 import type { Study as StudyRecord } from '../tables/study'
@@ -38,7 +38,7 @@ export async function loadStudy(db: Database, studyId: string): Promise<StoredSt
     db.selectFrom('studyRow').innerJoin('studyRun', 'studyRun.id', 'studyRow.runId').selectAll('studyRow').where('studyRun.studyId', '=', studyId).where('studyRow.removedAt', 'is', null).orderBy('studyRow.position').orderBy('studyRow.id').execute(),
     db.selectFrom('studyCell').selectAll().where('studyId', '=', studyId).execute(),
     db.selectFrom('studyTemperature').selectAll().where('studyId', '=', studyId).where('removedAt', 'is', null).orderBy('at').orderBy(sql`rowid`).execute(),
-    db.selectFrom('studyKeptCheck').select(['key', 'reason']).where('studyId', '=', studyId).orderBy('key').execute(),
+    db.selectFrom('studyKeptCheck').select(['key', 'reason', 'sentence', 'cellsJson']).where('studyId', '=', studyId).orderBy('key').execute(),
     db.selectFrom('studyVisit').select('startedAt').where('studyId', '=', studyId).orderBy('startedAt').execute(),
     policyOf(db, record),
   ])
@@ -47,7 +47,9 @@ export async function loadStudy(db: Database, studyId: string): Promise<StoredSt
     patient: { birthDate: person.birthDate, sexForLimits: person.sexForLimits },
     heightCm: record.heightCm, weightKg: record.weightKg, referralSide: person.side,
     temperatures: temperatures.map(({ id, segment, side, celsius, at, method, warmed }) => ({ id, segment, side, celsius, at, method, warmed: warmed === 1 })),
-    runs: runsOf(runs, rows, cells), keptChecks, ...(visits.length ? { visits } : {}),
+    runs: runsOf(runs, rows, cells),
+    keptChecks: keptChecks.map(({ key, reason, sentence, cellsJson }) => ({ key, reason, ...(sentence === null ? {} : { sentence }), ...(cellsJson === null ? {} : { cells: JSON.parse(cellsJson) as KeptCheck['cells'] }) })),
+    ...(visits.length ? { visits } : {}),
   }
   return {
     record, study, policy,

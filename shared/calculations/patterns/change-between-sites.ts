@@ -1,3 +1,4 @@
+import { siteOf } from '../../catalogue/nerves'
 import type { Side } from '../../schemas/common'
 import { definiteIn, dispersionIn, overPairs, probableIn, ratioIn, type PairRule } from './change-rules'
 import type { Facts, RunFacts } from './facts'
@@ -47,7 +48,7 @@ function assessChange(facts: Facts, side: Side): Assessed | null {
   return { outcome: outcomeOf(asked), criteria, runIds: eachOnce(asked.map(({ run }) => run.id)) }
 }
 
-const sitesStimulated = ({ assessment }: RunFacts) => new Set(assessment.results.filter(result => result.quantity === 'amplitudeMv' || result.quantity === 'areaMvMs').map(result => result.at)).size
+const sitesStimulated = ({ assessment }: RunFacts) => new Set(assessment.results.filter(result => (result.quantity === 'amplitudeMv' || result.quantity === 'areaMvMs') && !siteOf(assessment.technique, result.at ?? '')?.aside).map(result => result.at)).size
 
 function findingsOf(facts: Facts, run: MotorRun, arm: boolean): Record<TextId, Finding> {
   const pairs = run.pairs.filter(pair => !facts.input.policy.leaveOutEntrapmentSites || !pair.entrapment)

@@ -1,5 +1,5 @@
 import type { Facts } from './facts'
-import { allOf, anyOf, criterion, notTruth, type CriterionText, type Finding } from './finding'
+import { allOf, anyOf, criterion, joined, notTruth, type CriterionText, type Finding } from './finding'
 import { amplitudeTable, anyFeature, featureCriterion, featuresOf, inNerves, strictly, type FeatureBars, type Features } from './gbs-features'
 import { motorNervesOf, type MotorNerve } from './motor-nerves'
 import { decideNerves, namesMet, nerveWords, withOther, type RuleTable } from './nerve-truths'
@@ -60,7 +60,9 @@ function axonalOf(facts: Facts, nerves: readonly MotorNerve[], { fAbsent, fall }
   const lowOrFall = anyFeature([low, fall], nerves)
   const one = decideNerves(fAbsent, 1, holds => withOther(nerves, 1, nerve => holds(fAbsent, nerve), nerve => holds(lowOrFall, nerve)))
   const parts = [inNerves(low, nerves, 2), inNerves(fAbsent, nerves, 2), inNerves(fall, nerves, 2), one]
-  return { result: allOf([notTruth(demyelinating.result), anyOf(parts.map(part => part.result))]), numbers: nerveWords(low, ['met', 'not-met']) }
+  const result = allOf([notTruth(demyelinating.result), anyOf(parts.map(part => part.result))])
+  const because = result === 'not-assessable' ? joined([demyelinating, ...parts].map(part => part.because)) || 'no amplitude or F-wave of two nerves to judge' : ''
+  return { result, numbers: nerveWords(low, ['met', 'not-met']), ...(because && { because }) }
 }
 
 function outcomeOf(demyelinating: Finding, axonal: Finding): Assessed['outcome'] {

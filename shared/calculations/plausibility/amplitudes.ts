@@ -5,6 +5,7 @@ import { roundForPrint } from '../round-for-print'
 import { isFastTrain, trainOf } from '../runs/reflexes-and-trains'
 import type { PlacedRow } from '../placed-rows'
 import type { KnownRun } from '../study-context'
+import { absenceLabels } from '../../schemas/study'
 import type { Remark, RunAssessment } from '../types'
 import { addRemark, type RemarkList } from './remark'
 
@@ -31,12 +32,24 @@ function remarkOnPair(list: RemarkList, known: KnownRun, previous: PlacedRow, pl
   const fall = 100 * (1 - proximal / distal)
   const where = { runId: known.run.id, rowId: placed.row.id, quantity: 'amplitudeMv' }
   remarkOnStimulus(list, known, previous, placed, fall)
+  const beside = besideWords(known)
   if (-fall > NOTABLE_PERCENT) {
-    addRemark(list, { ...where, code: 'proximal-larger', strength: 'check', source: ANOMALY_SOURCE, sentence: `The amplitude at ${placed.label} is ${roundForPrint(-fall, 0)} % larger than at ${previous.label}: ${largerReason(known)}`, ...larger(known) })
+    const sentence = `The amplitude at ${placed.label} is ${roundForPrint(-fall, 0)} % larger than at ${previous.label}: ${largerReason(known)}`
+    addRemark(list, { ...where, code: 'proximal-larger', source: ANOMALY_SOURCE, ...(beside ? { strength: 'note', sentence: `${sentence} ${beside}` } : { strength: 'check', sentence, ...larger(known) }) })
   }
   else if (fall > NOTABLE_PERCENT && isUlnarForearm(known, placed) && !isSlowed(assessed, placed)) {
-    addRemark(list, { ...where, code: 'martin-gruber', strength: 'check', source: ANOMALY_SOURCE, sentence: `The amplitude falls by ${roundForPrint(fall, 0)} % from ${previous.label} to ${placed.label} without slowing: fibres may cross from the median nerve in the forearm.`, suggestion: medianAtElbow(known) })
+    const sentence = `The amplitude falls by ${roundForPrint(fall, 0)} % from ${previous.label} to ${placed.label} without slowing: fibres may cross from the median nerve in the forearm.`
+    addRemark(list, { ...where, code: 'martin-gruber', source: ANOMALY_SOURCE, ...(beside ? { strength: 'note', sentence: `${sentence} ${beside}` } : { strength: 'check', sentence, suggestion: medianAtElbow(known) }) })
   }
+}
+
+/** What stimulating beside the line gave: once it was looked at, the question is the reader's. */
+function besideWords({ asides }: KnownRun): string {
+  const said = asides.flatMap(({ row, label }) => {
+    const amplitude = row.values.amplitudeMv
+    return amplitude === undefined ? [] : [`${label} ${typeof amplitude === 'number' ? `${roundForPrint(amplitude, 1)} mV` : absenceLabels[amplitude]}`]
+  })
+  return said.length > 0 ? `Stimulated beside it, in the same muscle: ${said.join(', ')}.` : ''
 }
 
 function largerReason(known: KnownRun): string {

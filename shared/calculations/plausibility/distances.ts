@@ -30,13 +30,21 @@ function remarkOnSegment(list: RemarkList, known: KnownRun, { row, site, label }
   const where = { runId: known.run.id, rowId: row.id, quantity: 'distanceMm' }
   const isSegment = known.technique?.kind === 'motor' && index > 0
   if (isSegment && distance < SHORT_SEGMENT_MM) {
-    if (!known.run.shortSegments) addRemark(list, { ...where, code: 'short-segment', strength: 'check', sentence: `The segment to ${label} is ${distance} mm, under ${SHORT_SEGMENT_MM} mm: a small slip of the tape changes the velocity much. Declare a short-segment study or measure again.`, source: 'Maynard and Stolov 1972, from memory (about 100 mm); Landau et al. 2003, from memory (60 mm)' })
+    const hint = centimetres(distance, site.segmentMm)
+    if (!isShort(known)) addRemark(list, { ...where, code: 'short-segment', strength: 'check', sentence: `The segment to ${label} is ${distance} mm, under ${SHORT_SEGMENT_MM} mm: a small slip of the tape changes the velocity much. Declare a short-segment study or measure again.${hint}`, source: 'Maynard and Stolov 1972, from memory (about 100 mm); Landau et al. 2003, from memory (60 mm)' })
     return
   }
   if (distance >= usualMin && distance <= usualMax) return
-  const hint = distance * 10 >= usualMin && distance * 10 <= usualMax ? ' Were centimetres entered? Enter millimetres.' : ''
-  addRemark(list, { ...where, code: 'distance-unusual', strength: 'check', source: OWN_DECISION, sentence: `Distance at ${label} is usually between ${usualMin} and ${usualMax} mm in adults; ${distance} was entered.${hint}` })
+  addRemark(list, { ...where, code: 'distance-unusual', strength: 'check', source: OWN_DECISION, sentence: `Distance at ${label} is usually between ${usualMin} and ${usualMax} mm in adults; ${distance} was entered.${centimetres(distance, site.segmentMm)}` })
 }
+
+const centimetres = (distance: number, { usualMin, usualMax }: { usualMin: number, usualMax: number }) =>
+  distance * 10 >= usualMin && distance * 10 <= usualMax ? ' Were centimetres entered? Enter millimetres.' : ''
+function isShortStep(known: KnownRun, rowId: string | undefined): boolean {
+  const distance = known.rows.find(({ row }) => row.id === rowId)?.row.values.distanceMm
+  return isShort(known) && typeof distance === 'number' && distance < SHORT_SEGMENT_MM
+}
+const isShort = ({ run, technique }: KnownRun) => run.shortSegments === true || technique?.shortSegments === true
 
 /** Faster than a nerve carries, even without the time in the muscle: a latency far too short for its distance. */
 function remarkOnDistalTime(list: RemarkList, known: KnownRun, { row, label }: PlacedRow, index: number): void {
@@ -49,7 +57,8 @@ function remarkOnDistalTime(list: RemarkList, known: KnownRun, { row, label }: P
 function remarkOnVelocity(list: RemarkList, result: Result, known: KnownRun): void {
   const velocity = numberOf(result.value)
   const { possible, usual } = quantityOf('velocityMps')
-  if (velocity === null || !possible || !usual) return
+  // Over 20 mm a tenth of a millisecond moves the velocity by half: the step itself is what is looked at.
+  if (velocity === null || !possible || !usual || isShortStep(known, result.rowId)) return
   const where = { runId: result.runId, rowId: result.rowId, quantity: result.quantity }
   const said = `${capital(result.label)} comes to ${roundForPrint(velocity, velocity < 10 ? 1 : 0)} m/s`
   if (velocity < possible.min || velocity > possible.max) {

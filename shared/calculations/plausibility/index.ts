@@ -3,7 +3,7 @@ import type { ComparisonAssessment, Remark, RunAssessment } from '../types'
 import { remarkOnAmplitudes } from './amplitudes'
 import { remarkOnDistances } from './distances'
 import { remarkOnOrder } from './order'
-import type { RemarkList } from './remark'
+import { remarkList } from './remark'
 import { remarkOnStudy } from './study-wide'
 import { remarkOnTemperatures } from './temperatures'
 import { remarkOnValues } from './values'
@@ -14,12 +14,12 @@ import { remarkOnValues } from './values'
  * seen only across runs. The word for a nerve that does not carry on is not used: numbers alone do not say it.
  */
 export function findRemarks(context: StudyContext, runs: readonly RunAssessment[], comparisons: readonly ComparisonAssessment[]): Remark[] {
-  const list: RemarkList = { remarks: [], kept: new Map(context.study.keptChecks.map(one => [one.key, one.reason])) }
+  const list = remarkList(context.study)
   for (const [index, known] of context.runs.entries()) {
     const assessed = runs[index]
     if (!known.technique || !assessed || known.supersededBy !== undefined) continue
     const { rows } = known
-    remarkOnValues(list, known, rows)
+    remarkOnValues(list, known, [...rows, ...known.asides])
     remarkOnOrder(list, known, rows)
     remarkOnDistances(list, known, rows, assessed)
     remarkOnAmplitudes(list, known, rows, assessed)

@@ -1,12 +1,24 @@
 import type { Side } from '../../schemas/common'
+import type { KeptCheck, Study } from '../../schemas/study'
 import type { KnownRun } from '../study-context'
 import type { Remark } from '../types'
 import { sideWords } from '../words'
+import { cellsOf, holdsStill } from './kept-answer'
 
-/** Collects remarks; a reason with which one was kept stays with its key. Nothing that cannot be right can be kept. */
+/**
+ * Collects remarks. A reason with which one was kept stays as long as what it answered does: the same words, the same
+ * values. Nothing that cannot be right can be kept.
+ */
 export interface RemarkList {
   remarks: Remark[]
-  kept: ReadonlyMap<string, string>
+  kept: ReadonlyMap<string, KeptCheck>
+}
+
+/** An empty list for this study, with the answers whose values still stand. */
+export function remarkList(study: Study): RemarkList {
+  const now = study.keptChecks.length > 0 ? cellsOf(study) : new Map<string, never>()
+  const standing = study.keptChecks.filter(({ cells }) => !cells || holdsStill(cells, now))
+  return { remarks: [], kept: new Map(standing.map(one => [one.key, one])) }
 }
 
 export type RemarkInput = Omit<Remark, 'key' | 'kept' | 'source'> & { source?: string }
@@ -18,7 +30,8 @@ export function addRemark(list: RemarkList, input: RemarkInput): void {
   const key = [input.code, input.runId, input.rowId, input.quantity].filter(part => part !== undefined).join('/')
   const remark: Remark = { key, source: COMMON_PRACTICE, ...input }
   const kept = list.kept.get(key)
-  if (kept !== undefined && remark.strength !== 'stop') remark.kept = kept
+  const answersThis = kept !== undefined && (kept.sentence === undefined || kept.sentence === remark.sentence)
+  if (answersThis && remark.strength !== 'stop') remark.kept = kept.reason
   list.remarks.push(remark)
 }
 

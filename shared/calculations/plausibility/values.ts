@@ -1,3 +1,4 @@
+import { possibleRange } from '../../catalogue/possible-range'
 import { quantities, quantityOf, type Quantity, type QuantityId } from '../../catalogue/quantities'
 import { quantityInfo } from '../quantity-info'
 import { roundForPrint } from '../round-for-print'
@@ -43,7 +44,7 @@ function remarkOnNumber(list: RemarkList, known: KnownRun, { row, label, site }:
     addRemark(list, { ...where, code: 'zero', strength: 'stop', source: OWN_DECISION, sentence: value === 0 ? `${name}: 0 is no measurement. Enter no response, technical, not done or stopped.` : `${name} must be above 0.` })
     return
   }
-  const possible = id === 'distanceMm' && site?.segmentMm ? { min: site.segmentMm.possibleMin, max: site.segmentMm.possibleMax } : quantity.possible
+  const possible = possibleRange(quantity, site)
   if (possible && (value < possible.min - TOLERANCE || value > possible.max + TOLERANCE)) {
     addRemark(list, { ...where, code: 'impossible', strength: 'stop', source: OWN_DECISION, sentence: `${name} must be between ${possible.min} and ${possible.max}${unitOf(quantity)}; ${plain(value)} was entered.${slipHint(quantity, value, possible)}` })
     return

@@ -42,11 +42,24 @@ export function assessMotor(maker: RunMaker): void {
     if (!previous || previous.row.site === placed.row.site || !isStarted(placed)) continue
     const place = segmentOf(previous, placed)
     const segment = addVelocity(maker, previous, placed, place, asker)
+    if (segment && isShort(maker)) addStep(maker, placed, segment, place)
     if (segment && before && placed.site?.segment?.entrapment) addDrop(maker, placed, before, segment, asker)
     addChanges(maker, previous, placed, index, place, asker)
     if (segment && index === distalIndex + 1) addDistalIndices(maker, previous, segment, distalDistance, asker)
     before = segment
   }
+  // Another nerve beside the line: what was typed, never judged and never part of a segment.
+  for (const placed of maker.asides) addTyped(maker, placed, { place: `, ${placed.label}`, askAt: null, supporting: always })
+}
+
+const isShort = ({ run, technique }: RunMaker) => run.shortSegments === true || technique.shortSegments === true
+
+/** The time over one short segment: over 20 mm it tells more than a velocity, whose uncertainty is as large as itself. */
+function addStep(maker: RunMaker, placed: PlacedRow, { timeMs }: Segment, place: Place): void {
+  add(maker, placed, {
+    quantity: 'stepLatencyMs', at: place.id, label: `latency step${place.words}`, typed: false,
+    value: valueOf(timeMs, Math.SQRT2 * maker.context.expanded.latencyMs), how: { formula: 'latency here - latency at the step before', source: 'arithmetic' },
+  })
 }
 
 const always = () => true

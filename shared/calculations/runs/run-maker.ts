@@ -16,17 +16,18 @@ export interface RunMaker {
   run: Run
   technique: Technique
   rows: readonly PlacedRow[]
+  asides: readonly PlacedRow[]
   owners: ReadonlyMap<RunRow, Owner>
   results: Result[]
 }
 
 export function runMaker(context: StudyContext, known: KnownRun, technique: Technique): RunMaker {
-  const { run, rows } = known
+  const { run, rows, asides } = known
   const owners = new Map<RunRow, Owner>()
-  for (const { row } of rows) {
+  for (const { row } of [...rows, ...asides]) {
     owners.set(row, { keyStart: `${run.id}/${row.id}/`, runId: run.id, rowId: row.id, side: run.side, cold: known.bearing, supersededBy: known.supersededBy })
   }
-  return { context, known, run, technique, rows, owners, results: [] }
+  return { context, known, run, technique, rows, asides, owners, results: [] }
 }
 
 /**
@@ -69,7 +70,8 @@ const notJudged = new Set(['distanceMm', 'stimulusMa', 'stimulusCount', 'respons
 export interface TypedOptions {
   /** Follows the name of the quantity: " at wrist", or nothing. */
   place: string
-  asker: LimitAsker
+  /** Left out where nothing of the row is judged. */
+  asker?: LimitAsker
   /** Place that limits are asked for; null for those that have none. */
   askAt: string | null
   supporting: (quantity: QuantityId) => boolean

@@ -3,7 +3,7 @@ import { quantities } from '../../../../shared/catalogue/quantities'
 import { siteOf } from '../../../../shared/catalogue/nerves'
 import { entryText, parseEntry, parseSeries, type EntryPlace } from '../../../../app/utils/grid-entry'
 
-const leg: EntryPlace = { site: siteOf('fibular-motor-edb', 'below-fibular-head'), segmentLabel: 'ankle to below fibular head', isSegment: true }
+const leg: EntryPlace = { site: siteOf('fibular-motor-edb', 'below-fibular-head'), segmentLabel: 'ankle to below fibular head' }
 
 describe('what is taken', () => {
   it.each([
@@ -56,19 +56,24 @@ describe('what is stopped, and with which sentence', () => {
 })
 
 describe('a distance is judged by its segment', () => {
+  const at = (technique: string, site: string): EntryPlace => ({ site: siteOf(technique, site) })
   it.each([
-    { typed: '33', place: leg, says: '33 mm is too short for this segment (ankle to below fibular head): under 80 mm the run must be declared a short-segment study first. Was 33 read in cm?' },
-    { typed: '9', place: leg, says: 'Distance must be between 10 and 900 mm.' },
-    { typed: '800', place: leg, says: 'must be between 10 and 700 mm' },
+    { typed: '33', place: leg, says: 'Distance (ankle to below fibular head) must be between 60 and 700 mm. Was 33 read in cm? Look at the trace again' },
+    { typed: '38', place: at('tibial-motor-ah', 'popliteal-fossa'), says: 'must be between 60 and 800 mm. Was 38 read in cm?' },
+    { typed: '9', place: at('median-motor-apb', 'elbow'), says: 'Distance must be between 10 and 500 mm.' },
+    { typed: '0', place: leg, says: '0 is no reading.' },
+    { typed: '800', place: leg, says: 'must be between 60 and 700 mm' },
   ])('$typed stopped', ({ typed, place, says }) => {
     const parsed = parseEntry(typed, quantities.distanceMm, place)
     expect(parsed.kind === 'stop' && parsed.sentence).toContain(says)
   })
+  // What is unlikely is questioned by the assessment and stored, here as on the server: one rule.
   it.each([
     { typed: '330', place: leg },
-    { typed: '530', place: leg }, // questioned by the assessment, not stopped here
-    { typed: '33', place: { ...leg, shortSegments: true } },
-    { typed: '65', place: { site: siteOf('fibular-motor-edb', 'above-fibular-head'), isSegment: true } },
+    { typed: '530', place: leg },
+    { typed: '65', place: at('fibular-motor-edb', 'above-fibular-head') },
+    { typed: '22', place: at('median-motor-apb', 'elbow') },
+    { typed: '20', place: at('ulnar-motor-adm-short', 'elbow-0') },
   ])('$typed taken', ({ typed, place }) => {
     expect(parseEntry(typed, quantities.distanceMm, place)).toEqual({ kind: 'entry', entry: Number(typed) })
   })

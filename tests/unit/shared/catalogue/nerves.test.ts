@@ -63,7 +63,7 @@ describe('the catalogue', () => {
 
   it.each(techniques.filter(({ kind }) => kind === 'motor'))('$id names the segment at every site but the most distal', (technique) => {
     expect(technique.sites[0]!.segment).toBeUndefined()
-    expect(technique.sites.slice(1).every(site => site.segment)).toBe(true)
+    expect(technique.sites.slice(1).every(site => site.segment ?? site.aside)).toBe(true)
   })
 
   /** Usual adult distances: common practice. */

@@ -133,4 +133,17 @@ describe('the other points', () => {
     const checks = signChecks(input({ ...more, study: kept }))
     expect(checks.find(check => check.key === 'kept/k1')).toMatchObject({ strength: 'ok', resolvedBecause: 'Measured twice' })
   })
+
+  /** "Old injury" was said of the value that stood then. */
+  it.each(['isolated', 'temperature-missing'])('an answer to %s does not outlive the value it was given for', (key) => {
+    const at = (latencyMs: number): Partial<SignCheckInput> => {
+      const one = runWith('rm', 'median-motor-apb', 'right', [{ site: 'wrist', values: { latencyMs }, verdicts: { latencyMs: above(4.4, 'ms') } }])
+      const run = { ...one.assessment, cold: { state: 'unknown' as const, celsius: null, thresholdC: 32, because: '' } }
+      return { study: studyOf([one.run]), assessment: { ...assessmentOf([run]), flagged: run.results.filter(result => result.flagged).map(result => result.key) } }
+    }
+    const { about } = signChecks(input(at(5.2))).find(check => check.key === key)!
+    const draft = { ...draftOf(), resolved: [{ key, reason: 'Old injury.', about }] }
+    expect(open(input({ ...at(5.2), draft }))).not.toContain(key)
+    expect(open(input({ ...at(6.1), draft }))).toContain(key)
+  })
 })
