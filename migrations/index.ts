@@ -4,8 +4,8 @@ import * as directoryChecks from './2026-12-10-directory-checks'
 import * as arrival from './2026-12-11-arrival'
 import * as policies from './2026-12-12-a-policies'
 import * as benchday from './2026-12-12-benchday'
-import * as reading from './2026-12-12-reading'
 import * as kinds from './2026-12-12-kinds'
+import * as reading from './2026-12-12-reading'
 
 /** Every migration, in order. Never edit one that has been released; add a new file and a line here. */
 export const migrations: Record<string, Migration> = {
@@ -14,6 +14,6 @@ export const migrations: Record<string, Migration> = {
   '2026-12-11-arrival': arrival,
   '2026-12-12-a-policies': policies,
   '2026-12-12-benchday': benchday,
-  '2026-12-12-reading': reading,
   '2026-12-12-kinds': kinds,
+  '2026-12-12-reading': reading,
 }
