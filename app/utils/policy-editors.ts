@@ -1,5 +1,7 @@
 import type { Component } from 'vue'
 import type { PolicyName } from '#shared/policies/index'
+import PhrasesEditor from '~/components/policy/PhrasesEditor.vue'
+import PromptContactEditor from '~/components/policy/PromptContactEditor.vue'
 import ClocksEditor from '~/components/policy/ClocksEditor.vue'
 
 /**
@@ -7,5 +9,7 @@ import ClocksEditor from '~/components/policy/ClocksEditor.vue'
  * paths that begin with "body.", and `readonly`.
  */
 export const policyEditors: Record<PolicyName, Component> = {
-  clocks: ClocksEditor,
+  'clocks': ClocksEditor,
+  'phrases': PhrasesEditor,
+  'prompt-contact': PromptContactEditor,
 }

@@ -30,7 +30,7 @@ export async function draft(maker: Maker, referral: MadeReferral, studyId: strin
   })
   const first = await saveDraft(context, { studyId, draft: written, revision: 0 })
   const open = first.view.checks.filter(check => isOpen(check))
-  if (open.length) await saveDraft(context, { studyId, draft: { ...written, resolved: open.map(check => ({ key: check.key, reason: 'Seen; does not change the reading.' })) }, revision: first.revision })
+  if (open.length) await saveDraft(context, { studyId, draft: { ...written, resolved: open.map(check => ({ key: check.key, about: check.about, reason: 'Seen; does not change the reading.' })) }, revision: first.revision })
 }
 
 /** Signs when nothing stands in the way; returns null when something does, and the study stays with the reader. */

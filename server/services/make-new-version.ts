@@ -1,12 +1,14 @@
 import { referenceTable } from '#reference-tables/index'
 import type { Trx } from '#server/database/connection'
 import { namesakesToTellApart } from '#server/database/queries/patients'
+import { policyInForce } from '#server/database/queries/policies'
 import { recipientsOfVersion } from '#server/database/queries/recipients'
 import { reportVersion } from '#server/database/queries/reports'
 import type { Report } from '#server/database/tables/report'
 import type { Study as StudyRecord } from '#server/database/tables/study'
 import { assessStudy } from '#shared/calculations/assess-study'
 import { DomainError } from '#shared/errors'
+import { promptFindings } from '#shared/policies/prompt-contact'
 import { differences, onlyAdds } from '#shared/report/differences'
 import { signChecks } from '#shared/report/sign-checks'
 import type { newVersionSchema, ReportDraft, ReportSnapshot } from '#shared/schemas/report'
@@ -97,11 +99,14 @@ function reassess(before: ReportSnapshot, draft: ReportDraft): Pick<ReportSnapsh
 
 async function checksOf(context: ServiceContext, trx: Trx, next: ReportSnapshot, study: StudyRecord) {
   const others = await namesakesToTellApart(trx, next.patient)
-  const recipients = await recipientsOfVersion(trx, { referralId: study.referralId, reportId: '' }, localDate(context.clock(), next.site.timeZone))
+  const today = localDate(context.clock(), next.site.timeZone)
+  const recipients = await recipientsOfVersion(trx, { referralId: study.referralId, reportId: '' }, today)
+  const { body } = await policyInForce(trx, 'prompt-contact', study.siteId, today)
   return signChecks({
     study: next.study, assessment: next.assessment, draft: next.draft, findings: mergeFindings(next.assessment, next.draft),
     clinicalQuestion: next.referral.clinicalQuestion, language: next.language, recipients,
     namesakes: others.map(other => ({ recordNumber: other.recordNumber, name: `${other.familyName}, ${other.givenName}`, birthDate: other.birthDate })),
+    promptFindings: next.draft.technicalOnly ? [] : promptFindings(body, next.assessment, next.draft),
   })
 }
 

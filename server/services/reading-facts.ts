@@ -1,4 +1,5 @@
 import type { Database } from '#server/database/connection'
+import { policyInForce } from '#server/database/queries/policies'
 import { namesakesToTellApart } from '#server/database/queries/patients'
 import { recipientsOfReferral, recipientsOfVersion, type Recipient } from '#server/database/queries/recipients'
 import { referralRecord } from '#server/database/queries/referrals'
@@ -10,6 +11,8 @@ import type { Site } from '#server/database/tables/site'
 import { assessStudy } from '#shared/calculations/assess-study'
 import type { Assessment, Policy } from '#shared/calculations/types'
 import { DomainError } from '#shared/errors'
+import { suggestPhrases } from '#shared/policies/phrases'
+import { promptFindings } from '#shared/policies/prompt-contact'
 import { signChecks } from '#shared/report/sign-checks'
 import { reportDraftSchema, type ReadingView, type ReportDraft, type SignCheck } from '#shared/schemas/report'
 import type { Study } from '#shared/schemas/study'
@@ -33,6 +36,8 @@ export interface ReadingFacts {
   recipients: Recipient[]
   namesakes: ReadingView['namesakes']
   checks: SignCheck[]
+  phrases: ReadingView['phrases']
+  promptContact: ReadingView['promptContact']
 }
 
 /** The draft as stored; a blank one where nothing was written yet. */
@@ -70,6 +75,16 @@ async function recipientsOf(db: Database, referralId: string, report: Report | u
   return report ? await recipientsOfVersion(db, { referralId, reportId: report.id }, today) : await recipientsOfReferral(db, referralId, today)
 }
 
+/** What the organisation says of its own: phrases that fit, and findings that call for prompt contact. */
+async function ownWords(db: Database, { siteId, today, assessment, draft, language }: { siteId: string, today: string, assessment: Assessment, draft: ReportDraft, language: string }): Promise<Pick<ReadingFacts, 'phrases' | 'promptContact'>> {
+  const phrases = await policyInForce(db, 'phrases', siteId, today)
+  const { body } = await policyInForce(db, 'prompt-contact', siteId, today)
+  return {
+    phrases: suggestPhrases(phrases.body, phrases.version, assessment, language),
+    promptContact: { list: body.findings.map(finding => finding.label), found: draft.technicalOnly ? [] : promptFindings(body, assessment, draft) },
+  }
+}
+
 /**
  * @param db the transaction where something is decided on it, else the database
  * @throws DomainError 'not-found'
@@ -88,9 +103,11 @@ export async function readingFacts(context: ServiceContext, db: Database, studyI
   const chosen = withReaderChoices(assessed, draft)
   const assessment = draft.interpretCold.length > 0 || draft.leaveOutEntrapmentSites ? assessStudy(chosen.study, assessed.tables, chosen.policy) : assessed.assessment
   const findings = mergeFindings(assessment, draft)
-  const recipients = await recipientsOf(db, record.referralId, report, localDate(new Date(now(context)), site.timeZone))
+  const today = localDate(new Date(now(context)), site.timeZone)
+  const recipients = await recipientsOf(db, record.referralId, report, today)
+  const own = await ownWords(db, { siteId: site.id, today, assessment, draft, language: referral.reportLanguage })
   const others = await namesakesToTellApart(db, patient)
   const namesakes = others.map(other => ({ recordNumber: other.recordNumber, name: `${other.familyName}, ${other.givenName}`, birthDate: other.birthDate }))
-  const checks = signChecks({ study: chosen.study, assessment, draft, findings, clinicalQuestion: referral.clinicalQuestion, language: referral.reportLanguage, recipients, namesakes })
-  return { assessed, report, referral, patient, site, draft, ...chosen, assessment, findings, recipients, namesakes, checks }
+  const checks = signChecks({ study: chosen.study, assessment, draft, findings, clinicalQuestion: referral.clinicalQuestion, language: referral.reportLanguage, recipients, namesakes, promptFindings: own.promptContact.found })
+  return { assessed, report, referral, patient, site, draft, ...chosen, assessment, findings, recipients, namesakes, checks, ...own }
 }

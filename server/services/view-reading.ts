@@ -25,6 +25,8 @@ export async function viewReading(context: ServiceContext, studyId: string, db: 
     readyToSign: report?.readyFingerprint === assessed.fingerprint,
     versions: versions.map(({ id, version, status, signedAt, signedName }) => ({ id, version, status, signedAt, signedName })),
     namesakes,
+    phrases: facts.phrases,
+    promptContact: facts.promptContact,
     recipients: recipients.map(({ name, practiceName, town }) => ({ name, practiceName, town })),
     ...(draft.interpretCold.length > 0 || draft.leaveOutEntrapmentSites ? { assessment: facts.assessment } : {}),
   }

@@ -1,5 +1,7 @@
 import type * as z from 'zod'
 import { clocks } from './clocks'
+import { phrases } from './phrases'
+import { promptContact } from './prompt-contact'
 
 /**
  * Every policy, one entry each. To add one: a file here with its schema and initial body, a line here, and an editor
@@ -7,6 +9,8 @@ import { clocks } from './clocks'
  */
 export const policies = {
   clocks,
+  phrases,
+  'prompt-contact': promptContact,
 } as const
 
 export type PolicyName = keyof typeof policies

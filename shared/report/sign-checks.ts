@@ -17,6 +17,8 @@ export interface SignCheckInput {
   language: string
   recipients: { name: string, reachable: boolean, because: string }[]
   namesakes: ReadingView['namesakes']
+  /** What of this study stands on the organisation's list of findings that call for prompt contact. */
+  promptFindings?: readonly { id: string, label: string, because: string }[]
 }
 
 type Found = Omit<SignCheck, 'resolvedBecause'>
@@ -150,6 +152,17 @@ function isolated({ assessment, draft }: SignCheckInput): Found[] {
   return [check('isolated', `A single value is outside its limit. ${assessment.chance.sentence} Say what it means here.`, { about, ...(run ? { runId: run.runId } : {}) })]
 }
 
+/** A finding of the organisation's list: the record of who was told answers it, or a reason why nobody was. */
+function promptContact({ draft, promptFindings = [] }: SignCheckInput): Found[] {
+  const contact = draft.promptContact
+  const complete = contact !== null && [contact.who, contact.at, contact.means].every(text => text.trim() !== '')
+  const incomplete = contact !== null && !complete ? [stop('prompt-contact', 'Prompt contact: enter who was told, when and by which means, or take the record away.')] : []
+  const asked = promptFindings.map(({ id, label, because }): Found => complete
+    ? { key: `prompt/${id}`, strength: 'ok', sentence: `Prompt contact is recorded (${label}).`, answerable: false }
+    : check(`prompt/${id}`, `"${label}" calls for prompt contact here (${because}). Record who was told, or say why nobody was.`))
+  return [...incomplete, ...asked]
+}
+
 function people({ namesakes, recipients }: SignCheckInput): Found[] {
   return [
     ...namesakes.map(other => check(`namesake/${other.recordNumber}`, `There is another ${other.name}, born ${formatDay(other.birthDate)}, ${other.recordNumber}. Say how you told them apart.`)),
@@ -158,11 +171,28 @@ function people({ namesakes, recipients }: SignCheckInput): Found[] {
   ]
 }
 
-function answered(found: Found, { draft, assessment, study }: SignCheckInput): SignCheck {
+/** Questions about people rest on the directory and the register, not on what was measured. */
+const aboutPeople = /^(?:namesake|recipient|no-recipient)/
+
+/**
+ * What an answer was given to: the words of the question and the numbers it is about. For a side, everything that is
+ * flagged; else the results of the runs that the question names.
+ */
+function basisOf({ key, sentence, runId }: Found, { assessment }: SignCheckInput): string | undefined {
+  if (aboutPeople.test(key)) return undefined
+  const named = assessment.runs.filter(run => run.runId === runId || sentence.includes(run.title))
+  const numbers = named.flatMap(run => run.results.map(result => `${result.key}=${result.print}`))
+  return fingerprint([sentence, ...numbers, ...assessment.flagged].join('\n'))
+}
+
+function answered(plain: Found, input: SignCheckInput): SignCheck {
+  const { draft, assessment, study } = input
+  const about = plain.about ?? basisOf(plain, input)
+  const found = { ...plain, ...about && { about } }
   const runId = found.key.startsWith('cold/') ? found.runId : undefined
   const cold = draft.interpretCold.find(item => item.runId === runId)?.reason
   const kept = found.key.startsWith('kept/') ? study.keptChecks.find(item => `kept/${item.key}` === found.key)?.reason ?? assessment.remarks.find(remark => `kept/${remark.key}` === found.key)?.kept : undefined
-  const reason = kept ?? cold ?? (found.answerable ? draft.resolved.find(item => item.key === found.key && (item.about === undefined || item.about === found.about))?.reason : undefined)
+  const reason = kept ?? cold ?? (found.answerable ? draft.resolved.find(item => item.key === found.key && item.about === found.about)?.reason : undefined)
   return reason ? { ...found, resolvedBecause: reason } : found
 }
 
@@ -173,7 +203,7 @@ function answered(found: Found, { draft, assessment, study }: SignCheckInput): S
  * @example signChecks(input).filter(isOpen) // => what still stands in the way
  */
 export function signChecks(input: SignCheckInput): SignCheck[] {
-  const found = [missing, unreviewed, wrongSides, sidesElsewhere, temperatures, questions, withoutLimits, isolated, people].flatMap(part => part(input))
+  const found = [missing, unreviewed, wrongSides, sidesElsewhere, temperatures, questions, withoutLimits, isolated, promptContact, people].flatMap(part => part(input))
   const once = found.filter((item, index) => found.findIndex(other => other.key === item.key) === index)
   return once.map(item => answered(item, input))
 }

@@ -77,5 +77,8 @@ const en = {
 export type ReportWords = typeof en
 const languages: Record<string, ReportWords> = { en }
 
+/** Languages that a report can be written in, English first. */
+export const reportLanguages: readonly string[] = Object.keys(languages)
+
 /** The words of a language; English where there are none. */
 export const reportWords = (language: string): ReportWords => languages[language] ?? en

@@ -19,6 +19,8 @@ export const impressionLineSchema = z.object({
   degree: z.string().max(60).nullable().default(null),
   /** Does the line call it abnormal? null: not said. */
   abnormal: z.boolean().nullable().default(null),
+  /** The organisation's phrase that the line began from, with its version ("median-wrist@3"); the words may have been changed since. */
+  phrase: z.string().max(80).nullable().optional(),
 })
 export type ImpressionLine = z.infer<typeof impressionLineSchema>
 
@@ -48,6 +50,9 @@ export const saveDraftSchema = z.object({ draft: reportDraftSchema, revision: z.
 
 /** One item of the check before signing. */
 export interface SignCheck { key: string, strength: 'stop' | 'check' | 'ok', sentence: string, /** may it be answered with a reason, or must it be mended */ answerable: boolean, resolvedBecause?: string, runId?: string, /** fingerprint of the numbers it speaks of, where its key does not say them */ about?: string }
+
+/** A phrase of the organisation for this study. `fits`: its conditions are met, and `because` says by what. Never chosen beforehand. */
+export interface PhraseSuggestion { id: string, key: string, words: string, side: ImpressionLine['side'], nerve: string | null, pattern: string | null, abnormal: boolean | null, fits: boolean, because: string }
 
 export const signSchema = z.object({
   password: z.string().min(1, 'Enter your password.').max(1024),
@@ -99,6 +104,9 @@ export interface ReadingView {
   checks: SignCheck[]
   fingerprint: string
   readyToSign: boolean
+  phrases: PhraseSuggestion[]
+  /** Findings that call for prompt contact by the organisation's list, and those of them that are found here. */
+  promptContact: { list: string[], found: { id: string, label: string, because: string }[] }
   versions: { id: string, version: number, status: ReportStatus, signedAt: string, signedName: string }[]
   namesakes: { recordNumber: string, name: string, birthDate: string }[]
   /** Who would receive a version signed now: the referring physician, the copies, or everyone who had an earlier version. */

@@ -177,7 +177,7 @@ describe('signing', () => {
     const [side] = view.checks.filter(check => check.key.startsWith('side/'))
     expect(side?.sentence).toContain('but on the RIGHT there is')
     await expect(signReport(room.reader, await room.lookedAt(id))).rejects.toMatchObject({ code: 'not-ready' })
-    await saveDraft(room.reader, { studyId: id, draft: { ...wrong, resolved: [{ key: side!.key, reason: 'Known from the last study' }] }, revision: 1 })
+    await saveDraft(room.reader, { studyId: id, draft: { ...wrong, resolved: [{ key: side!.key, about: side!.about, reason: 'Known from the last study' }] }, revision: 1 })
     const { reportId } = await signReport(room.reader, await room.lookedAt(id))
     const { snapshot } = await viewReport(room.reader, { reportId })
     expect(snapshot.resolvedChecks).toEqual([{ key: side!.key, sentence: side!.sentence, reason: 'Known from the last study' }])

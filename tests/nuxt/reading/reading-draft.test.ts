@@ -7,7 +7,7 @@ import { reportDraftSchema, type ReadingView, type ReportDraft } from '#shared/s
 import { useReadingDraft } from '~/composables/useReadingDraft'
 
 const viewOf = (draft: Partial<ReportDraft> = {}, draftRevision = 3): ReadingView => ({
-  reportId: 'r', number: null, draft: { ...reportDraftSchema.parse({}), ...draft }, draftRevision, findings: [], checks: [], fingerprint: 'f', readyToSign: false, versions: [], namesakes: [],
+  reportId: 'r', number: null, draft: { ...reportDraftSchema.parse({}), ...draft }, draftRevision, findings: [], checks: [], fingerprint: 'f', readyToSign: false, phrases: [], promptContact: { list: [], found: [] }, versions: [], namesakes: [],
 })
 const saves: { draft: ReportDraft, revision: number }[] = []
 let answer: (body: { draft: ReportDraft, revision: number }) => unknown

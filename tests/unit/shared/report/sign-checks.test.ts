@@ -81,7 +81,7 @@ describe('the wrong-side rule', () => {
   it('is resolved with a reason, and asks again when the words change', () => {
     const wrong = line('LEFT median neuropathy.')
     const [stop] = sideStops(wrong)
-    const resolved = [{ key: stop!.key, reason: 'Known from before' }]
+    const resolved = [{ key: stop!.key, about: stop!.about, reason: 'Known from before' }]
     expect(open(input({ draft: { ...draftOf(), impression: [wrong], resolved } }))).toEqual([])
     expect(open(input({ draft: { ...draftOf(), impression: [line('LEFT median neuropathy, severe.')], resolved } })).length).toBe(1)
   })
