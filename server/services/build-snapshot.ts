@@ -8,6 +8,7 @@ import { SNAPSHOT_FORMAT, type ReportSnapshot } from '#shared/schemas/report'
 import { DomainError } from '#shared/errors'
 import { isOpen } from '#shared/report/sign-checks'
 import type { ServiceContext } from './context'
+import { printedNameOf } from './printed-name'
 import type { ReadingFacts } from './reading-facts'
 
 type Signature = ReportSnapshot['signature']
@@ -39,12 +40,6 @@ async function writersOf(db: Database, reportId: string | undefined, signerId: s
   const writers = await db.selectFrom('reportWriter').innerJoin('user', 'user.id', 'reportWriter.userId').select(['name', 'printedName', 'credentials', 'inTraining'])
     .where('reportId', '=', reportId).where('userId', '<>', signerId).orderBy('firstAt').orderBy('userId').execute()
   return writers.map(({ name, printedName, credentials, inTraining }) => [printedName || name, credentials, inTraining ? 'in training' : ''].filter(Boolean).join(', ')).join('; ')
-}
-
-async function nameOf(db: Database, userId: string | null): Promise<string> {
-  if (userId === null) return ''
-  const user = await db.selectFrom('user').select(['name', 'printedName', 'credentials']).where('id', '=', userId).executeTakeFirst()
-  return user ? [user.printedName || user.name, user.credentials].filter(Boolean).join(', ') : ''
 }
 
 /**
@@ -79,7 +74,7 @@ export async function buildSnapshot(context: ServiceContext, db: Database, facts
     patient: { id, recordNumber, familyName, givenName, birthDate, sexForLimits },
     referral: await referralPart(db, facts),
     study, studyNumber: assessed.record.number, startedAt: assessed.record.startedAt,
-    technologist: await nameOf(db, assessed.record.technologistId),
+    technologist: await printedNameOf(db, assessed.record.technologistId),
     handOverNote: assessed.record.handOverNote,
     bench: await benchPart(db, facts),
     needleExamination: study.runs.some(run => techniqueOf(run.technique)?.kind === 'needle') ? 'Needle examination: see its table.' : '',

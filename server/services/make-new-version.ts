@@ -1,4 +1,3 @@
-import { referenceTable } from '#reference-tables/index'
 import type { Trx } from '#server/database/connection'
 import { namesakesToTellApart } from '#server/database/queries/patients'
 import { policyInForce } from '#server/database/queries/policies'
@@ -6,34 +5,38 @@ import { recipientsOfVersion } from '#server/database/queries/recipients'
 import { reportVersion } from '#server/database/queries/reports'
 import type { Report } from '#server/database/tables/report'
 import type { Study as StudyRecord } from '#server/database/tables/study'
-import { assessStudy } from '#shared/calculations/assess-study'
 import { DomainError } from '#shared/errors'
 import { promptFindings } from '#shared/policies/prompt-contact'
+import type { Correction } from '#shared/report/corrections'
 import { differences, onlyAdds } from '#shared/report/differences'
+import { mergeFindings } from '#shared/report/reader-choices'
 import { signChecks } from '#shared/report/sign-checks'
 import type { newVersionSchema, ReportDraft, ReportSnapshot } from '#shared/schemas/report'
 import { mayMove, reportMoves } from '#shared/states'
 import type * as z from 'zod'
 import { resolvedChecks, signatureOf } from './build-snapshot'
 import { now, type ServiceContext } from './context'
+import { storeCorrections } from './correct-values'
 import { createTask } from './create-task'
 import { moveState } from './move-state'
 import { queueDeliveries, withdrawUnsent } from './queue-deliveries'
-import { mergeFindings, withReaderChoices } from './reading-facts'
+import { moveToRightRecord } from './move-to-right-record'
+import { reassess } from './reassess-version'
 import { refuseOpenChecks } from './save-draft'
 import { checkMeaning, proveSigner, type SignedReport } from './sign-report'
 import { localDate } from './site-time'
 import { storeVersion } from './store-version'
 import { intactSnapshot } from './verify-version'
 
-type NewVersion = z.output<typeof newVersionSchema>
+type NewVersion = Omit<z.output<typeof newVersionSchema>, 'corrections'> & { corrections?: Correction[] }
 
 /**
  * Signs a later version beside the earlier ones: added to, amended, corrected or entered in error (HL7 FHIR R4,
  * DiagnosticReport.status; never back to final). It goes to everyone who had an earlier version; what of the earlier
  * one has not left yet is held back.
  *
- * It rests on the values that were frozen at the first signature, judged by the limits that were used then.
+ * It rests on the values that were frozen in the version before, judged by the limits that were used then. Only a
+ * correction changes values: the new version is computed from the corrected ones, and the old one keeps its own.
  * @throws DomainError 'wrong-password', 'wrong-state', 'changed-meanwhile', 'not-valid', 'not-ready'
  */
 export async function makeNewVersion(context: ServiceContext, { reportId, ...input }: { reportId: string } & NewVersion): Promise<SignedReport> {
@@ -55,7 +58,8 @@ async function signNext(context: ServiceContext, trx: Trx, reportId: string, inp
   const version = await storeVersion(context, trx, report, snapshot, study, last.status)
   await withdrawUnsent(context, trx, reportId, `superseded by version ${snapshot.version}`)
   await queueDeliveries(context, trx, { version, snapshot, siteId: study.siteId, patientId: study.patientId }, recipients)
-  if (input.kind === 'entered-in-error') await closeStudy(context, trx, study, report)
+  if (input.kind === 'corrected') await storeCorrections(context, trx, study, before.study, input.corrections ?? [])
+  if (input.kind === 'entered-in-error') await closeStudy(context, trx, study, report, input.rightReferralId)
   return { reportId, version: snapshot.version }
 }
 
@@ -63,7 +67,7 @@ interface Next { before: ReportSnapshot, sha256: string, report: Report, study: 
 
 async function nextSnapshot(context: ServiceContext, trx: Trx, { before, sha256, input, study }: Next): Promise<ReportSnapshot> {
   const draft = draftFor(input, before)
-  const reassessed = reassess(before, draft)
+  const reassessed = reassess(before, draft, input.corrections ?? [])
   const next: ReportSnapshot = {
     ...before, ...reassessed, draft, draftedBy: '',
     version: before.version + 1, status: input.kind, reason: input.reason, supersedes: { version: before.version, sha256 },
@@ -78,23 +82,19 @@ async function nextSnapshot(context: ServiceContext, trx: Trx, { before, sha256,
   return { ...complete, changes: differences(before, complete) }
 }
 
+/** Values are mended by a correction, and nothing else mends them. */
+function checkCorrections({ kind, corrections = [] }: NewVersion): void {
+  if (corrections.length > 0 && kind !== 'corrected') throw new DomainError('not-valid', { fields: [{ path: 'kind', message: 'A changed value is a correction. Choose "corrected", or put the value back.' }] })
+}
+
 /** @throws DomainError 'not-valid' when an addition changes what was signed, or a change says nothing new */
-function draftFor({ kind, draft }: NewVersion, before: ReportSnapshot): ReportDraft {
+function draftFor(input: NewVersion, before: ReportSnapshot): ReportDraft {
+  const { kind, draft } = input
+  checkCorrections(input)
   if (kind === 'entered-in-error') return before.draft
   if (!draft) throw new DomainError('not-valid', { fields: [{ path: 'draft', message: 'Write what the new version says.' }] })
   if (kind === 'appended' && !onlyAdds(before.draft, draft)) throw new DomainError('not-valid', { fields: [{ path: 'kind', message: 'An addition leaves what was signed as it is. Choose "amended" or "corrected", or put the old text back.' }] })
   return draft
-}
-
-/** The frozen values judged again only where the reader's own choices changed; with the sets of that time. */
-function reassess(before: ReportSnapshot, draft: ReportDraft): Pick<ReportSnapshot, 'study' | 'policy' | 'assessment' | 'findings'> {
-  const same = JSON.stringify([draft.interpretCold, draft.leaveOutEntrapmentSites]) === JSON.stringify([before.draft.interpretCold, before.draft.leaveOutEntrapmentSites])
-  const runs = before.study.runs.map(({ interpretColdBecause: _, ...run }) => run)
-  const chosen = same ? before : withReaderChoices({ study: { ...before.study, runs }, policy: before.policy }, draft)
-  const tables = before.policy.adopted.flatMap(set => referenceTable(set.setId, set.version) ?? [])
-  const assessment = same ? before.assessment : assessStudy(chosen.study, tables, chosen.policy)
-  const findings = mergeFindings(assessment, draft).filter(finding => !finding.left).map(({ key, runIds, text, edited }) => ({ key, runIds, text, edited }))
-  return { study: chosen.study, policy: chosen.policy, assessment, findings }
 }
 
 async function checksOf(context: ServiceContext, trx: Trx, next: ReportSnapshot, study: StudyRecord) {
@@ -110,8 +110,10 @@ async function checksOf(context: ServiceContext, trx: Trx, next: ReportSnapshot,
   })
 }
 
-/** Report and values are withdrawn together; where they belong is for people to settle. */
-async function closeStudy(context: ServiceContext, trx: Trx, study: StudyRecord, report: Report): Promise<void> {
+/** Report and values are withdrawn together; where they belong the signer says, or people settle. */
+async function closeStudy(context: ServiceContext, trx: Trx, study: StudyRecord, report: Report, rightReferralId: string | undefined): Promise<void> {
   await moveState(context, trx, { subject: 'study', id: study.id, from: 'read', to: 'entered-in-error', reason: `${report.number} was entered in error` })
-  await createTask(context, trx, { kind: 'entered-in-error', subject: 'referral', subjectId: study.referralId, siteId: study.siteId, ownerRole: 'administrator', sentence: `${report.number} was entered in error and withdrawn. Enter the study in the right record, and see that its physician gets a report.` })
+  const moved = rightReferralId ? await moveToRightRecord(context, trx, study, rightReferralId) : undefined
+  const next = moved ? `Its values stand in the right record now as ${moved.number} and wait for a signature there.` : 'Enter the study in the right record, and see that its physician gets a report.'
+  await createTask(context, trx, { kind: 'entered-in-error', subject: 'referral', subjectId: study.referralId, siteId: study.siteId, ownerRole: 'administrator', sentence: `${report.number} was entered in error and withdrawn. See that everyone who had it deletes it. ${next}` })
 }

@@ -1,4 +1,5 @@
 import type { Database } from '#server/database/connection'
+import { earlierStudies, type EarlierReport } from '#server/database/queries/earlier-studies'
 import { policyInForce } from '#server/database/queries/policies'
 import { namesakesToTellApart } from '#server/database/queries/patients'
 import { recipientsOfReferral, recipientsOfVersion, type Recipient } from '#server/database/queries/recipients'
@@ -9,15 +10,18 @@ import type { Referral } from '#server/database/tables/referral'
 import type { Report } from '#server/database/tables/report'
 import type { Site } from '#server/database/tables/site'
 import { assessStudy } from '#shared/calculations/assess-study'
+import { compareWithEarlier } from '#shared/calculations/compare-with-earlier'
 import type { Assessment, Policy } from '#shared/calculations/types'
 import { DomainError } from '#shared/errors'
 import { suggestPhrases } from '#shared/policies/phrases'
 import { promptFindings } from '#shared/policies/prompt-contact'
+import { mergeFindings, withReaderChoices } from '#shared/report/reader-choices'
 import { signChecks } from '#shared/report/sign-checks'
 import { reportDraftSchema, type ReadingView, type ReportDraft, type SignCheck } from '#shared/schemas/report'
 import type { Study } from '#shared/schemas/study'
 import { assessStoredStudy, type AssessedStudy } from './assess-stored-study'
 import { now, type ServiceContext } from './context'
+import { printedNameOf } from './printed-name'
 import { localDate } from './site-time'
 
 /** Everything the reading page shows and a signature freezes, read together so that it fits together. */
@@ -36,6 +40,8 @@ export interface ReadingFacts {
   recipients: Recipient[]
   namesakes: ReadingView['namesakes']
   checks: SignCheck[]
+  /** Signed studies of the same person before this one. */
+  earlier: EarlierReport[]
   phrases: ReadingView['phrases']
   promptContact: ReadingView['promptContact']
 }
@@ -43,32 +49,6 @@ export interface ReadingFacts {
 /** The draft as stored; a blank one where nothing was written yet. */
 export function draftOf(report: Report | undefined): ReportDraft {
   return reportDraftSchema.parse(report ? JSON.parse(report.draftJson) : {})
-}
-
-/** The study as the reader wants it judged: each choice carries its reason, which is printed. */
-export function withReaderChoices({ study, policy }: { study: Study, policy: Policy }, draft: ReportDraft): { study: Study, policy: Policy } {
-  const reasonOf = (runId: string) => draft.interpretCold.find(item => item.runId === runId)?.reason
-  const runs = study.runs.map((run) => {
-    const reason = reasonOf(run.id)
-    return reason ? { ...run, interpretColdBecause: reason } : run
-  })
-  return { study: { ...study, runs }, policy: { ...policy, leaveOutEntrapmentSites: policy.leaveOutEntrapmentSites || draft.leaveOutEntrapmentSites } }
-}
-
-/**
- * The sentences as made from the rows now, with the reader's wording where one was edited. An edited sentence whose
- * numbers changed is kept and marked, and so is one whose row is gone: nothing that a person wrote vanishes.
- */
-export function mergeFindings(assessment: Assessment, draft: ReportDraft): ReadingView['findings'] {
-  const made = assessment.findings.map((finding) => {
-    const edited = draft.editedFindings.find(item => item.key === finding.key)
-    const { key, runIds, text } = finding
-    if (!edited) return { key, runIds, text, edited: false, needsReview: false, left: false }
-    return { key, runIds, text: edited.text, edited: edited.text !== text, needsReview: edited.fingerprint !== finding.fingerprint, left: edited.left }
-  })
-  const orphans = draft.editedFindings.filter(item => !item.left && !assessment.findings.some(finding => finding.key === item.key))
-    .map(item => ({ key: item.key, runIds: [], text: item.text, edited: true, needsReview: true, left: false }))
-  return [...made, ...orphans]
 }
 
 async function recipientsOf(db: Database, referralId: string, report: Report | undefined, today: string): Promise<Recipient[]> {
@@ -101,7 +81,10 @@ export async function readingFacts(context: ServiceContext, db: Database, studyI
   if (!referral || !patient || !site) throw new DomainError('not-found')
   const draft = draftOf(report)
   const chosen = withReaderChoices(assessed, draft)
-  const assessment = draft.interpretCold.length > 0 || draft.leaveOutEntrapmentSites ? assessStudy(chosen.study, assessed.tables, chosen.policy) : assessed.assessment
+  const judged = draft.interpretCold.length > 0 || draft.leaveOutEntrapmentSites ? assessStudy(chosen.study, assessed.tables, chosen.policy) : assessed.assessment
+  const earlier = await earlierStudies(db, { studyId, patientId: record.patientId, studyDate: record.studyDate })
+  const technologist = await printedNameOf(db, record.technologistId)
+  const assessment = { ...judged, changes: compareWithEarlier(judged, earlier, { siteName: site.name, technologist }) }
   const findings = mergeFindings(assessment, draft)
   const today = localDate(new Date(now(context)), site.timeZone)
   const recipients = await recipientsOf(db, record.referralId, report, today)
@@ -109,5 +92,5 @@ export async function readingFacts(context: ServiceContext, db: Database, studyI
   const others = await namesakesToTellApart(db, patient)
   const namesakes = others.map(other => ({ recordNumber: other.recordNumber, name: `${other.familyName}, ${other.givenName}`, birthDate: other.birthDate }))
   const checks = signChecks({ study: chosen.study, assessment, draft, findings, clinicalQuestion: referral.clinicalQuestion, language: referral.reportLanguage, recipients, namesakes, promptFindings: own.promptContact.found })
-  return { assessed, report, referral, patient, site, draft, ...chosen, assessment, findings, recipients, namesakes, checks, ...own }
+  return { assessed, report, referral, patient, site, draft, ...chosen, assessment, findings, recipients, namesakes, checks, earlier, ...own }
 }

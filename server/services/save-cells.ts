@@ -38,9 +38,9 @@ async function saveCell(context: ServiceContext, trx: Trx, study: Study, cell: S
   const { saveId, rowId, field, entry } = cell
   const repeated = await trx.selectFrom('studyCellSave').select(['rowId', 'field', 'revision', 'savedAt']).where('studyId', '=', study.id).where('saveId', '=', saveId).executeTakeFirst()
   if (repeated) return { answer: { saveId, rowId: repeated.rowId, field: repeated.field, saved: true, revision: repeated.revision, savedAt: repeated.savedAt } }
-  // A repeat is answered even after hand-over; anything new needs a study that is being recorded.
-  await editableStudy(trx, study.id)
   const row = await trx.selectFrom('studyRow').innerJoin('studyRun', 'studyRun.id', 'studyRow.runId').select(['runId', 'site', 'technique']).where('studyRow.id', '=', rowId).where('studyId', '=', study.id).where('studyRow.removedAt', 'is', null).where('studyRun.removedAt', 'is', null).executeTakeFirst()
+  // A repeat is answered even after hand-over; anything new needs a study that is being recorded.
+  await editableStudy(trx, study.id, { actorId: context.actor.userId, technique: row?.technique })
   const technique = row && techniqueOf(row.technique)
   const refused = technique ? checkEntry(technique, row.site, field, entry) : 'The row was removed meanwhile.'
   if (!row || refused) return { answer: { saveId, rowId, field, saved: false, because: 'not-valid', message: refused ?? '' } }

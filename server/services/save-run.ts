@@ -56,7 +56,7 @@ export async function addRun(context: ServiceContext, { id, technique: technique
   const technique = techniqueOf(techniqueId)
   if (!technique) throw wrong('technique', 'Choose a technique of the catalogue.')
   return context.db.transaction().execute(async (trx) => {
-    const study = await editableStudy(trx, id)
+    const study = await editableStudy(trx, id, { actorId: context.actor.userId, technique: techniqueId })
     await checkRoom(trx, id)
     if (repeats) await checkRepeats(trx, id, { technique: techniqueId, side }, repeats)
     const sites = await sitesFor(trx, id, technique, repeats)
@@ -103,8 +103,8 @@ export async function changeRun(context: ServiceContext, { id, runId, revision, 
  */
 export async function removeRun(context: ServiceContext, { id, runId, reason }: { id: string, runId: string, reason: string }): Promise<void> {
   await context.db.transaction().execute(async (trx) => {
-    const study = await editableStudy(trx, id)
     const run = await runIn(trx, id, runId)
+    const study = await editableStudy(trx, id, { actorId: context.actor.userId, technique: run.technique })
     const needsReason: FieldError[] = run.planned === 1 || !await isEmptyRun(trx, runId) ? [{ path: 'reason', message: run.planned === 1 ? 'The protocol plans this run. Say why it is removed.' : 'The run has values. Say why it is removed.' }] : []
     if (needsReason.length && reason.length < 3) throw new DomainError('not-valid', { fields: needsReason })
     await trx.updateTable('studyRun').set({ removedAt: now(context) }).where('id', '=', runId).execute()

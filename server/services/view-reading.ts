@@ -14,6 +14,7 @@ export async function viewReading(context: ServiceContext, studyId: string, db: 
   const { assessed, report, draft, findings, checks, namesakes, recipients } = facts
   const versions = report ? await versionLines(db, report.id) : []
   recordView(context, { subject: 'study', subjectId: studyId, siteId: assessed.record.siteId, patientId: assessed.record.patientId })
+  for (const { reportId, siteId } of facts.earlier) recordView(context, { subject: 'report', subjectId: reportId, siteId, patientId: assessed.record.patientId, because: `earlier study beside ${assessed.record.number}` })
   return {
     reportId: report?.id ?? null,
     number: report?.number ?? null,
@@ -28,6 +29,6 @@ export async function viewReading(context: ServiceContext, studyId: string, db: 
     phrases: facts.phrases,
     promptContact: facts.promptContact,
     recipients: recipients.map(({ name, practiceName, town }) => ({ name, practiceName, town })),
-    ...(draft.interpretCold.length > 0 || draft.leaveOutEntrapmentSites ? { assessment: facts.assessment } : {}),
+    ...(draft.interpretCold.length > 0 || draft.leaveOutEntrapmentSites || facts.earlier.length > 0 ? { assessment: facts.assessment } : {}),
   }
 }

@@ -1,4 +1,9 @@
+import type { RunAssessment } from '../calculations/types'
+import { quantities } from '../catalogue/quantities'
+import { siteOf } from '../catalogue/nerves'
 import type { ReportChange, ReportDraft, ReportSnapshot } from '../schemas/report'
+import { absenceLabels, type Absence, type Run, type RunRow } from '../schemas/study'
+import { entryIn } from './corrections'
 
 type Texts = Pick<ReportDraft, 'history' | 'examination' | 'correlation' | 'recommendation'> & { impression: string, limitations: string, promptContact: string }
 
@@ -16,8 +21,8 @@ function textsOf(draft: ReportDraft): Texts {
 const labels: Record<keyof Texts, string> = { impression: 'Impression', correlation: 'Clinical correlation', limitations: 'Limitations', recommendation: 'Recommendation', promptContact: 'Prompt contact', history: 'History', examination: 'Examination' }
 
 /**
- * What a later version says differently, in the order of the report: the reader's texts, then the findings, sentence by
- * sentence.
+ * What a later version says differently, in the order of the report: the reader's texts, then values that were mended,
+ * then the findings, sentence by sentence.
  *
  * @example differences(first, second) // => [{ what: 'Impression', before: 'RIGHT …', after: 'LEFT …' }]
  */
@@ -28,7 +33,7 @@ export function differences(before: ReportSnapshot, after: ReportSnapshot): Repo
   const textOf = (snapshot: ReportSnapshot, key: string) => snapshot.findings.find(finding => finding.key === key)?.text ?? ''
   const findings = keys.filter(key => textOf(before, key) !== textOf(after, key)).map(key => ({ what: 'Findings', before: textOf(before, key), after: textOf(after, key) }))
   const technical = before.draft.technicalOnly === after.draft.technicalOnly ? [] : [{ what: 'Kind of report', before: kindWords(before), after: kindWords(after) }]
-  return [...technical, ...texts, ...findings]
+  return [...technical, ...texts, ...valueChanges(before, after), ...findings]
 }
 
 const kindWords = ({ draft }: ReportSnapshot) => draft.technicalOnly ? 'technical, without interpretation' : 'with interpretation'
@@ -41,4 +46,37 @@ export function onlyAdds(before: ReportDraft, after: ReportDraft): boolean {
   const [old, now] = [textsOf(before), textsOf(after)]
   const kept = (Object.keys(labels) as (keyof Texts)[]).every(key => now[key].startsWith(old[key]))
   return kept && before.technicalOnly === after.technicalOnly && JSON.stringify(before.editedFindings) === JSON.stringify(after.editedFindings) && JSON.stringify(before.interpretCold) === JSON.stringify(after.interpretCold) && before.leaveOutEntrapmentSites === after.leaveOutEntrapmentSites
+}
+
+const titleOf = (runs: readonly RunAssessment[], run: Run) => runs.find(each => each.runId === run.id)?.title ?? run.technique
+
+/** Runs that went, sides that changed, and cells, each with what stood there. */
+function valueChanges(before: ReportSnapshot, after: ReportSnapshot): ReportChange[] {
+  return before.study.runs.flatMap((old): ReportChange[] => {
+    const now = after.study.runs.find(run => run.id === old.id)
+    const title = titleOf(before.assessment.runs, old)
+    if (!now) return [{ what: 'Run', before: title, after: '' }]
+    const side = now.side === old.side ? [] : [{ what: 'Side', before: title, after: titleOf(after.assessment.runs, now) }]
+    return [...side, ...old.rows.flatMap(row => cellChanges(now, titleOf(after.assessment.runs, now), row, now.rows.find(each => each.id === row.id)))]
+  })
+}
+
+const fieldsOf = (row: RunRow | undefined) => row ? [...Object.keys(row.values), ...row.series ? ['series'] : [], ...Object.keys(row.ordinals ?? {}).map(id => `ordinal:${id}`)] : []
+
+function cellChanges(run: Run, title: string, old: RunRow, now: RunRow | undefined): ReportChange[] {
+  const fields = [...new Set([...fieldsOf(old), ...fieldsOf(now)])]
+  return fields.filter(field => JSON.stringify(entryIn(old, field)) !== JSON.stringify(entryIn(now, field))).map(field => ({
+    what: `${title}, ${siteOf(run.technique, old.site)?.label ?? old.site}, ${labelOf(field)}`, before: entryWords(field, entryIn(old, field)), after: entryWords(field, entryIn(now, field)),
+  }))
+}
+
+const quantityIn = (field: string) => quantities[field as keyof typeof quantities] as { label: string, unit: string } | undefined
+const labelOf = (field: string) => quantityIn(field)?.label ?? field.replace('ordinal:', '')
+
+/** As typed: a correction shows what was changed, not how it is printed. */
+function entryWords(field: string, entry: unknown): string {
+  if (entry === null) return ''
+  if (Array.isArray(entry)) return entry.map(each => entryWords('', each)).join(', ')
+  if (typeof entry === 'number') return [String(entry), quantityIn(field)?.unit].filter(Boolean).join(' ')
+  return absenceLabels[entry as Absence] ?? String(entry)
 }

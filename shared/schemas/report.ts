@@ -1,5 +1,6 @@
 import * as z from 'zod'
 import { idSchema, sideSchema } from './common'
+import { correctionSchema } from '../report/corrections'
 import type { Assessment, Policy } from '../calculations/types'
 import type { Technique } from '../catalogue/types'
 import type { ReportStatus, StudyState } from '../states'
@@ -68,7 +69,7 @@ export const versionQuerySchema = z.object({ version: z.coerce.number().int().mi
 export type SignInput = z.infer<typeof signSchema>
 
 /** `replaces`: the version that the signer had before them; one that was signed meanwhile refuses. */
-export const newVersionSchema = z.object({ replaces: z.number().int().min(1).optional(), kind: z.enum(['appended', 'amended', 'corrected', 'entered-in-error']), reason: z.string().trim().min(3, 'Say what changed and why.').max(1000), draft: reportDraftSchema.optional(), password: z.string().min(1, 'Enter your password.').max(1024), meaning: z.enum(meanings) })
+export const newVersionSchema = z.object({ replaces: z.number().int().min(1).optional(), kind: z.enum(['appended', 'amended', 'corrected', 'entered-in-error']), reason: z.string().trim().min(3, 'Say what changed and why.').max(1000), draft: reportDraftSchema.optional(), /** of values, for a correction only */ corrections: z.array(correctionSchema).max(200).default([]), /** where an entry in error belongs: the values are put there, to be read and signed anew */ rightReferralId: idSchema.optional(), password: z.string().min(1, 'Enter your password.').max(1024), meaning: z.enum(meanings) })
 
 export interface ReadingRow {
   studyId: string
@@ -111,7 +112,7 @@ export interface ReadingView {
   namesakes: { recordNumber: string, name: string, birthDate: string }[]
   /** Who would receive a version signed now: the referring physician, the copies, or everyone who had an earlier version. */
   recipients?: { name: string, practiceName: string, town: string }[]
-  /** The study judged with the reader's own choices (cold runs interpreted); left out while there are none. */
+  /** The study judged with the reader's own choices (cold runs interpreted) and beside earlier studies; left out while there are neither. */
   assessment?: Assessment
 }
 

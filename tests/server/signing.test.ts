@@ -240,6 +240,70 @@ describe('later versions', () => {
     expect(text).not.toContain('5.2')
     await expect(next(reportId, { kind: 'corrected' })).rejects.toMatchObject({ code: 'wrong-state' })
   })
+  it('a correction changes a value: the new version is computed from it, the old one keeps its own, the study follows', async () => {
+    const { reportId, studyId } = await room.signed()
+    const before = await version(reportId)
+    const { study } = await room.study(studyId)
+    const run = study.runs.find(each => each.technique === 'median-motor-apb' && each.side === 'right')!
+    const [distal] = run.rows
+    const corrections = [{ kind: 'cell', runId: run.id, rowId: distal!.id, field: 'latencyMs', entry: 3.9 }]
+    await expect(next(reportId, { kind: 'amended', corrections })).rejects.toMatchObject({ code: 'not-valid' })
+    await expect(next(reportId, { corrections: [{ ...corrections[0], entry: 900 }] })).rejects.toMatchObject({ options: { fields: [{ path: 'corrections[0]' }] } })
+    await expect(next(reportId, { corrections: [{ kind: 'side', runId: 'of another study', side: 'left' }] })).rejects.toMatchObject({ options: { fields: [{ path: 'corrections[0]' }] } })
+    expect((await version(reportId)).version).toBe(1)
+
+    await next(reportId, { reason: 'The latency was read off the wrong trace', corrections })
+    const { snapshot } = await viewReport(room.reader, { reportId })
+    const latency = (view: typeof snapshot) => view.assessment.runs.find(each => each.runId === run.id)!.results.find(result => result.rowId === distal!.id && result.quantity === 'latencyMs')!
+    expect(latency(snapshot)).toMatchObject({ print: '3.9', flagged: false })
+    expect(snapshot.changes).toContainEqual({ what: expect.stringContaining('RIGHT median motor'), before: '5.2 ms', after: '3.9 ms' })
+    expect(snapshot.findings.find(finding => finding.runIds.includes(run.id))?.text).not.toContain('5.2')
+    const first = (await viewReport(room.reader, { reportId, version: 1 })).snapshot
+    expect(latency(first)).toMatchObject({ print: '5.2', flagged: true })
+    expect(await t.db.selectFrom('reportVersion').selectAll().where('reportId', '=', reportId).where('version', '=', 1).executeTakeFirstOrThrow()).toEqual(before)
+    expect((await room.study(studyId)).study.runs).toEqual(snapshot.study.runs)
+    const event = await t.db.selectFrom('auditEvent').selectAll().where('name', '=', 'study.values-corrected').where('subjectId', '=', studyId).executeTakeFirstOrThrow()
+    expect(JSON.parse(event.dataJson)).toMatchObject({ changes: [{ field: 'latencyMs', before: 5.2, after: 3.9 }] })
+    expect((await verifyReports(t.db)).altered).toEqual([])
+  })
+  it('a correction of a side is checked against the impression like any other', async () => {
+    const { reportId, studyId } = await room.signed()
+    const { study } = await room.study(studyId)
+    const corrections = study.runs.filter(run => run.technique.startsWith('median')).map(run => ({ kind: 'side', runId: run.id, side: run.side === 'right' ? 'left' : 'right' }))
+    await expect(next(reportId, { corrections })).rejects.toMatchObject({ code: 'not-ready' })
+    const draft = finishedDraft()
+    const [line, other] = draft.impression
+    const turned = { ...draft, impression: [{ ...line!, words: 'Left median neuropathy at the wrist.', side: 'left' as const }, { ...other!, words: 'No evidence of the same on the right.', side: 'right' as const }] }
+    await next(reportId, { reason: 'Right and left were exchanged at the bench', corrections, draft: turned })
+    const { snapshot } = await viewReport(room.reader, { reportId })
+    expect(snapshot.changes.filter(change => change.what === 'Side')).toHaveLength(corrections.length)
+    expect(snapshot.assessment.runs.filter(run => run.results.some(result => result.flagged)).map(run => run.side)).toContain('left')
+    expect((await room.study(studyId)).study.runs).toEqual(snapshot.study.runs)
+  })
+  it('a correction may take a run away that does not belong to the study', async () => {
+    const { reportId, studyId } = await room.signed()
+    const run = (await room.study(studyId)).study.runs.find(each => each.technique === 'ulnar-sensory-d5' && each.side === 'left')!
+    await next(reportId, { reason: 'A run of the patient before', corrections: [{ kind: 'remove-run', runId: run.id }] })
+    const { snapshot } = await viewReport(room.reader, { reportId })
+    expect(snapshot.study.runs.map(each => each.id)).not.toContain(run.id)
+    expect(snapshot.changes).toContainEqual({ what: 'Run', before: expect.stringContaining('LEFT ulnar sensory'), after: '' })
+  })
+  it('a report in the wrong record: entered in error there, its values wait for a signature in the right one, and both physicians are told', async () => {
+    const { reportId, studyId } = await room.signed()
+    const other = await room.handedOver()
+    const right = (await room.study(other)).record.referralId
+    await expect(next(reportId, { kind: 'entered-in-error', draft: undefined, rightReferralId: right })).rejects.toMatchObject({ options: { fields: [{ path: 'rightReferralId', message: 'This referral has a study already.' }] } })
+    await t.db.updateTable('study').set({ state: 'entered-in-error' }).where('id', '=', other).execute()
+    await next(reportId, { kind: 'entered-in-error', reason: 'Belongs to a namesake', draft: undefined, rightReferralId: right })
+    const moved = await t.db.selectFrom('study').selectAll().where('referralId', '=', right).where('state', '=', 'handed-over').executeTakeFirstOrThrow()
+    expect(moved).toMatchObject({ readerId: room.reader.actor.userId, confirmationJson: null })
+    const values = (runs: { technique: string, side: string, rows: { values: object }[] }[]) => runs.map(run => [run.technique, run.side, run.rows.map(row => row.values)])
+    expect(values((await room.study(moved.id)).study.runs)).toEqual(values((await room.study(studyId)).study.runs))
+    await saveDraft(room.reader, { studyId: moved.id, draft: finishedDraft(), revision: 0 })
+    const second = await signReport(room.reader, await room.lookedAt(moved.id))
+    expect((await deliveries(reportId)).map(delivery => delivery.state)).toEqual(['withdrawn', 'held'])
+    expect((await deliveries(second.reportId)).map(delivery => delivery.state)).toEqual(['held'])
+  })
   it('asks for the password too', async () => {
     const { reportId } = await room.signed()
     await expect(next(reportId, { password: 'wrong one' })).rejects.toMatchObject({ code: 'wrong-password' })
