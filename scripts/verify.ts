@@ -2,7 +2,7 @@
 // Reads only, so it may run beside the server and on a restored copy (DATA_DIR, KEY_FILE).
 import { openReadOnly } from '#server/database/connection'
 import { loadKeys } from '#server/services/keys'
-import { checkChains } from '#server/services/verify-audit'
+import { checkChains } from '#server/services/check-chains'
 import { verifyDatabase } from '#server/services/verify-database'
 import { verifyReports } from '#server/services/verify-reports'
 import { verifyUploads } from '#server/services/verify-uploads'

@@ -46,7 +46,7 @@ export const auditEvents = {
   'site.changed': event(fields, data => `changed a site: ${list(data.fields)}`),
   'organisation.set-up': event(nothing, () => 'set up the organisation'),
   'demonstration.filled': event(z.object({ studies: z.number().int() }), data => `filled the demonstration with ${data.studies} invented studies`),
-  'audit.verified': event(z.object({ events: z.number().int(), views: z.number().int(), intact: z.boolean() }), data => `verified the trail: ${data.events} events and ${data.views} views, ${data.intact ? 'intact' : 'NOT intact'}`),
+  'audit.verified': event(z.object({ events: z.number().int(), views: z.number().int(), versions: z.number().int().default(0), intact: z.boolean() }), data => `verified the trail: ${data.events} events, ${data.views} views and ${data.versions} signed versions, ${data.intact ? 'intact' : 'NOT intact'}`),
   'record.opened-with-reason': event(because.extend({ until: z.string().default('') }), data => `opened a record outside the own sites: ${data.because}`),
 
   // Patients, referrals, uploads, bookings, directory, studies, shelf

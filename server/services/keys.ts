@@ -17,10 +17,22 @@ export interface Keys {
   unseal(sealed: string): string
   sealBytes(bytes: Uint8Array): Buffer
   unsealBytes(sealed: Uint8Array): Buffer
+  /** The keys of both chains, to check them in a thread of this process; they go nowhere else. */
+  chainKeys: ChainKeys
   /** Encrypts the session cookie. */
   authSecret: string
   /** What is stored in place of a token, a session id or a recovery code. */
   tokenHash(token: string): string
+}
+
+/** Base64. */
+export interface ChainKeys { audit: string, view: string }
+
+const mac = (key: Buffer) => (text: string) => createHmac('sha256', key).update(text, 'utf8').digest('hex')
+
+/** What checks the links of both chains. */
+export function chainMacs({ audit, view }: ChainKeys): Pick<Keys, 'auditMac' | 'viewMac'> {
+  return { auditMac: mac(Buffer.from(audit, 'base64')), viewMac: mac(Buffer.from(view, 'base64')) }
 }
 
 const NONCE_BYTES = 12
@@ -45,13 +57,13 @@ export function loadKeys(keyFile: string, mayCreate = true): Keys {
 /** @param secret 32 bytes */
 export function keysFrom(secret: Uint8Array): Keys {
   const derive = (purpose: string) => Buffer.from(hkdfSync('sha256', secret, Buffer.alloc(0), `orthodrome/${purpose}/1`, 32))
-  const mac = (key: Buffer) => (text: string) => createHmac('sha256', key).update(text, 'utf8').digest('hex')
+  const chainKeys = { audit: derive('audit').toString('base64'), view: derive('view').toString('base64') }
   const sealKey = derive('seal')
   const sealBytes = (bytes: Uint8Array) => encrypt(sealKey, bytes)
   const unsealBytes = (sealed: Uint8Array) => decrypt(sealKey, sealed)
   return {
-    auditMac: mac(derive('audit')),
-    viewMac: mac(derive('view')),
+    ...chainMacs(chainKeys),
+    chainKeys,
     sealBytes,
     unsealBytes,
     seal: text => sealBytes(Buffer.from(text, 'utf8')).toString('base64'),

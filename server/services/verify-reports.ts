@@ -1,9 +1,7 @@
 import type { Database } from '#server/database/connection'
+import type { ReportsCheck } from '#shared/schemas/user'
 import { sha256Hex } from './canonical-json'
 import { faultsOf } from './verify-version'
-
-export interface AlteredVersion { reportId: string, number: string, version: number, because: string }
-export interface ReportsCheck { versions: number, pdfs: number, altered: AlteredVersion[] }
 
 /** What the audit trail holds about one signed version. */
 interface Written { reportId: string, number: string, version: number, sha256: string }
@@ -21,7 +19,7 @@ const keyOf = ({ reportId, version }: { reportId: string, version: number }) => 
 export async function verifyReports(db: Database): Promise<ReportsCheck> {
   const signed = await written(db, 'report.signed')
   const made = await written(db, 'report.pdf-made')
-  const altered: AlteredVersion[] = []
+  const altered: ReportsCheck['altered'] = []
   let [versions, pdfs] = [0, 0]
   for (let rows = await versionsAfter(db, ''); rows.length > 0; rows = await versionsAfter(db, rows.at(-1)!.id)) {
     for (const row of rows) {

@@ -61,7 +61,9 @@ export const ledgerQuerySchema = pageQuerySchema.extend({
 export interface LedgerRow { seq: number, at: string, actor: string, name: string, sentence: string, subject: string, subjectId: string, siteName: string | null }
 /** What a check of one chain found; `problems` say where and what, at most twenty. */
 export interface ChainCheck { links: number, intact: boolean, problems: string[] }
-export interface LedgerCheck { at: string, acts: ChainCheck, views: ChainCheck, head: string }
+/** Every signed version and stored PDF against its hash and the trail; `altered` names each that no longer fits. */
+export interface ReportsCheck { versions: number, pdfs: number, altered: { reportId: string, number: string, version: number, because: string }[] }
+export interface LedgerCheck { at: string, acts: ChainCheck, views: ChainCheck, head: string, reports: ReportsCheck }
 
 export const personSchema = z.object({
   email: z.email('Enter an e-mail address, for example name@clinic.example.').max(200),

@@ -11,6 +11,7 @@ import { sha256Hex } from '#server/services/canonical-json'
 import { makeNewVersion } from '#server/services/make-new-version'
 import { reportPdf } from '#server/services/make-report-pdf'
 import { storeUpload } from '#server/services/store-upload'
+import { verifyAudit } from '#server/services/verify-audit'
 import { testContext } from './helpers'
 import { finishedDraft, meaning, PASSWORD, readingRoom } from './reading-helpers'
 
@@ -120,5 +121,16 @@ describe('npm run verify', () => {
     expect(verify(join(folder, 'nowhere'))).toMatchObject({ exit: 1, said: expect.stringContaining('There is no database') })
     copyFileSync(resolve('package.json'), join(other, 'orthodrome.sqlite'))
     expect(verify(other)).toMatchObject({ exit: 1, said: expect.stringContaining('The check could not be finished.') })
+  })
+})
+
+describe('the check of the ledger', () => {
+  it('runs beside the server, names an altered version, and keeps that it was done', async () => {
+    const clean = await verifyAudit(t.context)
+    expect(clean).toMatchObject({ acts: { intact: true }, views: { intact: true }, reports: { versions: 2, pdfs: 1, altered: [] } })
+    for (const statement of behindTheTrigger('report_pdf_no_update', 'update report_pdf set bytes = x\'00\'')) await sql.raw(statement).execute(t.db)
+    expect((await verifyAudit(t.context)).reports.altered).toMatchObject([{ number, version: 1, because: 'the stored PDF does not fit its hash' }])
+    const events = await t.db.selectFrom('auditEvent').select('dataJson').where('name', '=', 'audit.verified').orderBy('seq').execute()
+    expect(events.map(event => JSON.parse(event.dataJson) as { versions: number, intact: boolean })).toMatchObject([{ versions: 2, intact: true }, { versions: 2, intact: false }])
   })
 })
