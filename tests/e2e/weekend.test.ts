@@ -1,0 +1,167 @@
+import { randomUUID } from 'node:crypto'
+import { join } from 'node:path'
+import Sqlite from 'better-sqlite3'
+import type { Page } from 'playwright-core'
+import { afterAll, afterEach, beforeAll, expect, it } from 'vitest'
+import { expectNoAxeFindings, signIn, startApp, visit, type App, type DemoPerson, type Window } from './app'
+import { expectFocus } from './keyboard'
+
+/**
+ * An urgent study over a weekend: handed over on Friday to a reader who is away, found by the clocks and by the reader who
+ * covers, opened in an emergency by a neurologist of another site, and signed. The server's clock is the real one; what
+ * lies in the past is aged in the data (the state of a study, the end of an emergency), never in the chains.
+ */
+let app: App
+let cover: Window
+let outsider: Window
+let director: Window
+let study: { id: string, number: string, familyName: string, siteId: string }
+let other: { id: string }
+const HOUR = 3_600_000
+const ago = (hours: number) => new Date(Date.now() - hours * HOUR).toISOString()
+const named = (name: string): DemoPerson => app.people.find(person => person.name.includes(name))!
+const button = (page: Page, name: string | RegExp) => page.getByRole('button', { name, exact: typeof name === 'string' })
+const reason = 'The patient is getting weaker and nobody of this site can be reached'
+
+/** A hand on the data beside the running server, as time would have left them. */
+function aged<T>(act: (database: Sqlite.Database) => T): T {
+  const database = new Sqlite(join(app.dataDir, 'orthodrome.sqlite'))
+  database.pragma('busy_timeout = 10000')
+  try {
+    return act(database)
+  }
+  finally {
+    database.close()
+  }
+}
+
+beforeAll(async () => {
+  app = await startApp()
+  study = aged((database) => {
+    // Of the first two sites, where the third neurologist holds no role.
+    const find = database.prepare(`SELECT study.id, study.number, family_name AS familyName, study.site_id AS siteId, study.referral_id AS referralId FROM study JOIN patient ON patient.id = study.patient_id JOIN site ON site.id = study.site_id
+      WHERE study.state = 'handed-over' AND site.name IN ('Harrowmere Clinic', 'Tarnfield Clinic') AND NOT EXISTS (SELECT 1 FROM report WHERE report.study_id = study.id) ORDER BY study.number`)
+    const [found, second] = find.all() as (typeof study & { referralId: string })[]
+    if (!found || !second) throw new Error('The demonstration has too few studies that wait for a reader.')
+    other = { id: second.id }
+    const reader = database.prepare(`SELECT id FROM user WHERE name = 'Dr Casimir Thorne'`).pluck().get() as string
+    const covering = database.prepare(`SELECT id FROM user WHERE name = 'Dr Eluned Varga'`).pluck().get() as string
+    database.prepare(`UPDATE study SET reader_id = ?, taken_at = ?, state_since = ?, handed_over_at = ? WHERE id = ?`).run(reader, ago(63), ago(63), ago(63), found.id)
+    database.prepare(`UPDATE referral SET urgency = 'urgent', urgency_reason = 'Weakness grows by the day' WHERE id = ?`).run(found.referralId)
+    database.prepare(`INSERT INTO absence (id, user_id, from_day, to_day, covered_by, created_at, created_by) VALUES (?, ?, ?, ?, ?, ?, ?)`).run(randomUUID(), reader, ago(72).slice(0, 10), ago(-72).slice(0, 10), covering, ago(96), reader)
+    return found
+  })
+  cover = await app.open({ width: 390, height: 844 })
+  outsider = await app.open()
+  director = await app.open()
+})
+afterAll(() => app.close())
+afterEach(context => app.onFailure(context))
+
+it('the queue says how long it waits, and shows it to the reader who covers', async () => {
+  const { page } = cover
+  await signIn(app, page, named('Varga'))
+  await visit(page, `${app.origin}/reading?assigned=mine`)
+  const row = page.getByRole('row').filter({ hasText: study.number })
+  const text = (await row.innerText()).replace(/\s+/g, ' ')
+  expect(text).toContain('waiting 2 days')
+  expect(text).toMatch(/away until .*, covered by you/)
+  expect(await page.locator('[data-test=late]').innerText()).toMatch(/for more than 48 h/)
+  await expectNoAxeFindings(page)
+})
+
+it('a neurologist of another site finds nothing in their queue, and the study is shut', async () => {
+  const { page } = outsider
+  await signIn(app, page, named('Albright'))
+  await visit(page, `${app.origin}/reading`)
+  expect(await page.getByRole('row').filter({ hasText: study.number }).count()).toBe(0)
+  await page.goto(`${app.origin}/reading/${study.id}`)
+  expect(await page.locator('body').innerText()).toContain('you hold no role at its site')
+})
+
+it('in an emergency it opens for a stated reason, and only it', async () => {
+  const { page } = outsider
+  await visit(page, `${app.origin}/reading`)
+  await page.getByRole('link', { name: 'A study of another site, in an emergency' }).click()
+  await page.getByLabel('Number of the study or referral').fill(study.familyName)
+  await button(page, 'Find').click()
+  await page.getByText(/found at other sites/).waitFor()
+  await expectNoAxeFindings(page)
+  await button(page, 'Open for four hours').click()
+  await page.getByText('Choose the study.').first().waitFor()
+  await page.getByText('Say in a sentence why you need this record now.').first().waitFor()
+  await page.getByRole('radio').and(page.getByLabel(new RegExp(study.number))).check()
+  await page.getByLabel('Why you need this record now').fill(reason)
+  await button(page, 'Open for four hours').click()
+  await page.waitForURL(`${app.origin}/reading/${study.id}`)
+  expect((await page.locator('[data-test=emergency]').innerText())).toContain(reason)
+  await page.getByRole('heading', { name: 'Findings' }).waitFor()
+  await expectNoAxeFindings(page)
+  const answer = await outsider.context.request.get(`${app.origin}/api/studies/${other.id}`)
+  expect(answer.status()).toBe(404)
+})
+
+it('after four hours it is shut again', async () => {
+  const { page } = outsider
+  aged(database => database.prepare('UPDATE emergency_access SET opened_at = ?, expires_at = ? WHERE study_id = ?').run(ago(4.1), ago(0.1), study.id))
+  await page.goto(`${app.origin}/reading/${study.id}`)
+  expect(await page.locator('body').innerText()).toContain('you hold no role at its site')
+})
+
+it('the medical director reviews the reason and each look', async () => {
+  const { page } = director
+  await signIn(app, page, named('Solano'))
+  await visit(page, `${app.origin}/dispatch`)
+  const task = page.locator('[data-test=task]').filter({ hasText: study.number })
+  expect(await task.innerText()).toContain('opened in an emergency by Dr Noor Albright')
+  await task.getByRole('link', { name: /^Open/ }).click()
+  await page.getByText(reason).first().waitFor()
+  await expectNoAxeFindings(page)
+  const views = aged(database => database.prepare('SELECT because FROM view_event WHERE subject_id = ? AND because <> \'\'').pluck().all(study.id)) as string[]
+  expect(views.length).toBeGreaterThan(1)
+  expect(new Set(views)).toEqual(new Set([reason]))
+})
+
+it('the covering reader takes it over, writes and signs on a narrow screen, and the next study has the focus', async () => {
+  const { page } = cover
+  await visit(page, `${app.origin}/reading?assigned=mine`)
+  await page.getByRole('row').filter({ hasText: study.number }).getByRole('button', { name: /^Take over/ }).click()
+  await page.waitForURL(`${app.origin}/reading/${study.id}`)
+  await page.getByLabel(/in your words/).first().fill('The findings do not explain the weakness. Clinical review today.')
+  await page.getByRole('textbox', { name: 'Clinical correlation' }).fill('Told apart from the question of the referral.')
+  await page.getByLabel('none identified').check()
+  await saved(page)
+  await answerChecks(page)
+  await expectNoAxeFindings(page)
+  expect(await page.evaluate(() => document.documentElement.scrollWidth <= innerWidth)).toBe(true)
+  await page.getByLabel(/I reviewed the data/).check()
+  await page.getByLabel('Your password, again').fill(named('Varga').password)
+  await button(page, 'Sign report').click()
+  await page.locator('[data-test=signed]').waitFor()
+  await expectFocus(page, /^Next study/)
+  await page.keyboard.press('Enter')
+  await page.waitForURL(url => url.pathname.startsWith('/reading/') && !url.pathname.endsWith(study.id))
+  await visit(page, `${app.origin}/reading`)
+  expect(await page.getByRole('row').filter({ hasText: study.number }).count()).toBe(0)
+})
+
+it('both chains and every signed version are as they were written', async () => {
+  const { page } = director
+  await visit(page, `${app.origin}/ledger`)
+  await button(page, 'Verify reports and chains').click()
+  await page.locator('[data-test=verdict]').getByText('Everything is as it was written').waitFor({ timeout: 60_000 })
+})
+
+async function saved(page: Page): Promise<void> {
+  await page.locator('[data-test=draft-saving]').getByText(/saved \d\d:\d\d:\d\d/).waitFor()
+}
+
+/** Answers every open question before signing with a reason. */
+async function answerChecks(page: Page): Promise<void> {
+  for (let open = page.locator('[data-test=check-check], [data-test=check-stop]').getByRole('button', { name: 'Answer with a reason' }); await open.count() > 0;) {
+    await open.first().click()
+    await page.getByLabel('Reason, printed in the report').fill('Seen; it does not change the reading.')
+    await button(page, 'Keep reason').click()
+    await page.waitForTimeout(900)
+  }
+}
