@@ -20,7 +20,7 @@ import { storeCorrections } from './correct-values'
 import { createTask } from './create-task'
 import { moveState } from './move-state'
 import { queueDeliveries, withdrawUnsent } from './queue-deliveries'
-import { moveToRightRecord } from './move-to-right-record'
+import { moveStudyIn } from './move-study'
 import { reassess } from './reassess-version'
 import { refuseOpenChecks } from './save-draft'
 import { checkMeaning, proveSigner, type SignedReport } from './sign-report'
@@ -113,7 +113,7 @@ async function checksOf(context: ServiceContext, trx: Trx, next: ReportSnapshot,
 /** Report and values are withdrawn together; where they belong the signer says, or people settle. */
 async function closeStudy(context: ServiceContext, trx: Trx, study: StudyRecord, report: Report, rightReferralId: string | undefined): Promise<void> {
   await moveState(context, trx, { subject: 'study', id: study.id, from: 'read', to: 'entered-in-error', reason: `${report.number} was entered in error` })
-  const moved = rightReferralId ? await moveToRightRecord(context, trx, study, rightReferralId) : undefined
-  const next = moved ? `Its values stand in the right record now as ${moved.number} and wait for a signature there.` : 'Enter the study in the right record, and see that its physician gets a report.'
+  if (rightReferralId) await moveStudyIn(context, trx, { id: study.id, toReferralId: rightReferralId, reason: `${report.number} was entered in error` })
+  const next = rightReferralId ? 'Its values were moved to the right record: the bench confirms the person and hands them over again, to be read and signed there.' : 'Enter the study in the right record, and see that its physician gets a report.'
   await createTask(context, trx, { kind: 'entered-in-error', subject: 'referral', subjectId: study.referralId, siteId: study.siteId, ownerRole: 'administrator', sentence: `${report.number} was entered in error and withdrawn. See that everyone who had it deletes it. ${next}` })
 }

@@ -129,27 +129,30 @@ async function dropBlankTwins(context: ServiceContext, trx: Trx, studyId: string
  * @returns the study in the right record
  * @throws DomainError 'not-valid' when the referral is not one of another patient here, 'wrong-state'
  */
-export async function moveStudy(context: ServiceContext, { id, toReferralId, reason }: { id: string, toReferralId: string, reason: string }): Promise<{ studyId: string }> {
+export async function moveStudy(context: ServiceContext, move: { id: string, toReferralId: string, reason: string }): Promise<{ studyId: string }> {
+  return context.db.transaction().execute(trx => moveStudyIn(context, trx, move))
+}
+
+/** `moveStudy` as a part of something larger: the withdrawal of its report. */
+export async function moveStudyIn(context: ServiceContext, trx: Trx, { id, toReferralId, reason }: { id: string, toReferralId: string, reason: string }): Promise<{ studyId: string }> {
   const byUserId = context.actor.userId
   if (!byUserId) throw new DomainError('not-signed-in')
-  return context.db.transaction().execute(async (trx) => {
-    const study = await studyIn(trx, id)
-    if (study.state === 'read') throw new DomainError('wrong-state', { message: 'This study is signed. Withdraw its report as entered in error first; then move the values.' })
-    if (await trx.selectFrom('studyMove').select('at').where('fromStudyId', '=', id).executeTakeFirst()) throw new DomainError('wrong-state', { message: 'The values were moved before.' })
-    const referral = await rightReferral(context, trx, study, toReferralId)
-    if (study.state !== 'entered-in-error') await moveState(context, trx, { subject: 'study', id, from: beforeReading, to: 'entered-in-error', reason })
-    await reopenReferral(context, trx, study, reason)
-    const target = await insertStudy(context, trx, referral, { studyDate: study.studyDate, startedAt: study.startedAt, technologistId: study.technologistId })
-    const runs = await copyRuns(context, trx, id, target.id)
-    await dropBlankTwins(context, trx, target.id)
-    await trx.updateTable('upload').set({ studyId: target.id }).where('studyId', '=', id).where('removedAt', 'is', null).execute()
-    const later = await trx.selectFrom('studyLaterEntry').selectAll().where('studyId', '=', id).executeTakeFirst()
-    if (later) await trx.insertInto('studyLaterEntry').values({ ...later, studyId: target.id }).execute()
-    await trx.insertInto('studyMove').values({ fromStudyId: id, toStudyId: target.id, reason, at: now(context), byUserId, checkedAt: null, checkedBy: null }).execute()
-    await recordAuditEvent(context, trx, { name: 'study.moved-away', ...aboutStudy(study), data: { toStudyId: target.id } })
-    await recordAuditEvent(context, trx, { name: 'study.moved-here', ...aboutStudy(target), data: { fromStudyId: id, runs } })
-    return { studyId: target.id }
-  })
+  const study = await studyIn(trx, id)
+  if (study.state === 'read') throw new DomainError('wrong-state', { message: 'This study is signed. Withdraw its report as entered in error first; then move the values.' })
+  if (await trx.selectFrom('studyMove').select('at').where('fromStudyId', '=', id).executeTakeFirst()) throw new DomainError('wrong-state', { message: 'The values were moved before.' })
+  const referral = await rightReferral(context, trx, study, toReferralId)
+  if (study.state !== 'entered-in-error') await moveState(context, trx, { subject: 'study', id, from: beforeReading, to: 'entered-in-error', reason })
+  await reopenReferral(context, trx, study, reason)
+  const target = await insertStudy(context, trx, referral, { studyDate: study.studyDate, startedAt: study.startedAt, technologistId: study.technologistId })
+  const runs = await copyRuns(context, trx, id, target.id)
+  await dropBlankTwins(context, trx, target.id)
+  await trx.updateTable('upload').set({ studyId: target.id }).where('studyId', '=', id).where('removedAt', 'is', null).execute()
+  const later = await trx.selectFrom('studyLaterEntry').selectAll().where('studyId', '=', id).executeTakeFirst()
+  if (later) await trx.insertInto('studyLaterEntry').values({ ...later, studyId: target.id }).execute()
+  await trx.insertInto('studyMove').values({ fromStudyId: id, toStudyId: target.id, reason, at: now(context), byUserId, checkedAt: null, checkedBy: null }).execute()
+  await recordAuditEvent(context, trx, { name: 'study.moved-away', ...aboutStudy(study), data: { toStudyId: target.id } })
+  await recordAuditEvent(context, trx, { name: 'study.moved-here', ...aboutStudy(target), data: { fromStudyId: id, runs } })
+  return { studyId: target.id }
 }
 
 /** The values that came from another record were looked at again, against the person who was really measured. */

@@ -12,7 +12,6 @@ export const reportEvents = {
   'study.returned': event(z.object({ runId: z.string().nullable() }), () => 'returned a study to the bench with a question'),
   'report.drafted': event(z.object({ number: z.string() }), data => `began the report ${data.number}`),
   'study.values-corrected': event(z.object({ changes: z.array(z.object({ runId: z.string(), rowId: z.string().optional(), field: z.string(), before: z.unknown(), after: z.unknown() })) }), data => `corrected ${data.changes.length === 1 ? 'a value' : `${data.changes.length} values`} of a read study with a new version of its report`),
-  'study.moved-to-right-record': event(z.object({ number: z.string(), from: z.string() }), data => `put the values of a study that was entered in error into the right record as ${data.number}`),
   'report.ready': event(z.object({ number: z.string(), fingerprint: z.string() }), data => `marked ${data.number} ready to sign`),
   'report.signed': event(version, data => `signed ${data.number}, version ${data.version} (${data.status})`),
   'report.not-signed': event(z.object({ because: z.string() }), data => `a signature was refused: ${data.because}`),

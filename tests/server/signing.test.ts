@@ -288,21 +288,21 @@ describe('later versions', () => {
     expect(snapshot.study.runs.map(each => each.id)).not.toContain(run.id)
     expect(snapshot.changes).toContainEqual({ what: 'Run', before: expect.stringContaining('LEFT ulnar sensory'), after: '' })
   })
-  it('a report in the wrong record: entered in error there, its values wait for a signature in the right one, and both physicians are told', async () => {
+  it('a report in the wrong record: entered in error there, its values moved to the right one, and everyone who had it is told', async () => {
     const { reportId, studyId } = await room.signed()
-    const other = await room.handedOver()
-    const right = (await room.study(other)).record.referralId
-    await expect(next(reportId, { kind: 'entered-in-error', draft: undefined, rightReferralId: right })).rejects.toMatchObject({ options: { fields: [{ path: 'rightReferralId', message: 'This referral has a study already.' }] } })
-    await t.db.updateTable('study').set({ state: 'entered-in-error' }).where('id', '=', other).execute()
+    const right = await room.booked()
+    const own = (await room.study(studyId)).record.referralId
+    await expect(next(reportId, { kind: 'entered-in-error', draft: undefined, rightReferralId: own })).rejects.toMatchObject({ code: 'not-valid' })
+    expect((await version(reportId)).version).toBe(1)
     await next(reportId, { kind: 'entered-in-error', reason: 'Belongs to a namesake', draft: undefined, rightReferralId: right })
-    const moved = await t.db.selectFrom('study').selectAll().where('referralId', '=', right).where('state', '=', 'handed-over').executeTakeFirstOrThrow()
-    expect(moved).toMatchObject({ readerId: room.reader.actor.userId, confirmationJson: null })
+    expect((await room.study(studyId)).record.state).toBe('entered-in-error')
+    const moved = await t.db.selectFrom('study').selectAll().where('referralId', '=', right).executeTakeFirstOrThrow()
     const values = (runs: { technique: string, side: string, rows: { values: object }[] }[]) => runs.map(run => [run.technique, run.side, run.rows.map(row => row.values)])
-    expect(values((await room.study(moved.id)).study.runs)).toEqual(values((await room.study(studyId)).study.runs))
-    await saveDraft(room.reader, { studyId: moved.id, draft: finishedDraft(), revision: 0 })
-    const second = await signReport(room.reader, await room.lookedAt(moved.id))
+    const copied = values((await room.study(moved.id)).study.runs)
+    for (const run of values((await room.study(studyId)).study.runs)) expect(copied).toContainEqual(run)
     expect((await deliveries(reportId)).map(delivery => delivery.state)).toEqual(['withdrawn', 'held'])
-    expect((await deliveries(second.reportId)).map(delivery => delivery.state)).toEqual(['held'])
+    const task = await t.db.selectFrom('task').selectAll().where('kind', '=', 'entered-in-error').where('subjectId', '=', own).executeTakeFirstOrThrow()
+    expect(task.sentence).toContain('moved to the right record')
   })
   it('asks for the password too', async () => {
     const { reportId } = await room.signed()
