@@ -1,5 +1,6 @@
 import type * as z from 'zod'
 import { awayOn, coveredOn } from '#server/database/queries/absences'
+import { policyInForce } from '#server/database/queries/policies'
 import { readingPage, waitingCounts } from '#server/database/queries/reading'
 import type { readingQuerySchema, ReadingPage } from '#shared/schemas/reading'
 import type { ServiceContext } from './context'
@@ -21,5 +22,6 @@ export async function viewReadingQueue(context: ServiceContext, sites: string[],
     ...(query.older ? { since: new Date(context.clock().getTime() - query.older * 3_600_000).toISOString() } : {}),
   }, query)
   const away = await awayOn(db, [...new Set(page.rows.flatMap(row => row.readerId ?? []))], today)
-  return { ...page, rows: page.rows.map(row => ({ ...row, away: (row.readerId && away.get(row.readerId)) || null })), waiting: await waitingCounts(db, siteIds, context.clock()) }
+  const { body: clocks } = await policyInForce(db, 'clocks', null, today)
+  return { ...page, signWithinHours: clocks.sign, rows: page.rows.map(row => ({ ...row, away: (row.readerId && away.get(row.readerId)) || null })), waiting: await waitingCounts(db, siteIds, context.clock()) }
 }

@@ -18,7 +18,7 @@ export const readingQuerySchema = pageQuerySchema.extend({
 })
 
 /** `waiting`: how many studies of these sites wait unsigned, and how many of them longer than each of `unsignedAges`. */
-export interface ReadingPage extends Page<ReadingRow> { waiting: { all: number, older: { hours: number, count: number }[] } }
+export interface ReadingPage extends Page<ReadingRow> { /** by the clocks of the organisation */ signWithinHours: Record<Urgency, number>, waiting: { all: number, older: { hours: number, count: number }[] } }
 
 export const assignSchema = z.object({ readerId: idSchema })
 /** Who may read at the site of a study, and who of them is away today. */

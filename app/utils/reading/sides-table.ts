@@ -1,4 +1,5 @@
 import type { Assessment, ComparisonAssessment, Result, RunAssessment } from '#shared/calculations/types'
+import { techniqueOf } from '#shared/catalogue/nerves'
 import type { Side } from '#shared/schemas/common'
 import type { Study } from '#shared/schemas/study'
 
@@ -37,7 +38,8 @@ const setAside = new Set(['distanceMm', 'stimulusMa'])
  */
 export function sidesTable(study: Study, assessment: Assessment): SidesGroup[] {
   const siteOf = siteByRow(study)
-  const techniques = [...new Set(assessment.runs.map(run => run.technique))]
+  // Needle findings are steps and not numbers: they have a table of their own.
+  const techniques = [...new Set(assessment.runs.map(run => run.technique))].filter(id => techniqueOf(id)?.kind !== 'needle')
   return [
     ...techniques.flatMap(technique => groupsOf(technique, assessment, siteOf)),
     ...comparisonGroups(assessment.comparisons),

@@ -45,11 +45,11 @@ function readPage(db: Database, { siteIds, states, readerIds }: ReadingQueue, pa
   return newestFirst(db, { table: 'study', siteIds, states, ...(also && { also }) }, page)
 }
 
-/** Urgent studies first, then those that have waited longest: a study must not be overtaken for ever. */
-const urgencyRank = sql<number>`case referral.urgency when 'urgent' then 0 when 'same-week' then 1 else 2 end`
+/** Same week (an acute palsy, a suspected acute neuropathy) before urgent before routine, then those that have waited longest. */
+const urgencyRank = sql<number>`case referral.urgency when 'same-week' then 0 when 'urgent' then 1 else 2 end`
 
 /** What waits to be read, or was read, at these sites. */
-export async function readingPage(db: Database, asked: ReadingQueue, { page, pageSize, search = '' }: Pick<PageQuery, 'page' | 'pageSize'> & { search?: string }): Promise<Omit<ReadingPage, 'waiting'>> {
+export async function readingPage(db: Database, asked: ReadingQueue, { page, pageSize, search = '' }: Pick<PageQuery, 'page' | 'pageSize'> & { search?: string }): Promise<Omit<ReadingPage, 'waiting' | 'signWithinHours'>> {
   const wanted = await narrowed(db, asked, search)
   const { total } = await queue(db, wanted).select(eb => eb.fn.countAll<number>().as('total')).executeTakeFirstOrThrow()
   const simple = wanted.urgency === undefined && wanted.since === undefined && wanted.patientIds === undefined && wanted.number === undefined
