@@ -30,9 +30,9 @@ const tokenOf = (link: string) => link.split('#')[1] ?? ''
 
 /** The actor of a person as a request would have it. */
 export async function actorFor(context: ServiceContext, id: string): Promise<Actor> {
-  const user = await context.db.selectFrom('user').select('name').where('id', '=', id).executeTakeFirstOrThrow()
+  const user = await context.db.selectFrom('user').select(['name', 'inTraining']).where('id', '=', id).executeTakeFirstOrThrow()
   const holdings = await currentHoldings(context.db, [id], context.clock())
-  return { userId: id, label: user.name, holdings: holdings.map(h => ({ siteId: h.siteId, role: h.role as Role })) }
+  return { userId: id, label: user.name, holdings: holdings.map(h => ({ siteId: h.siteId, role: h.role as Role })), inTraining: user.inTraining === 1 }
 }
 
 /** Organisation, sites and people, through the one-time links that anybody would use. */
@@ -63,11 +63,11 @@ async function makeSites(context: ServiceContext): Promise<DemoSite[]> {
   return made
 }
 
-async function makePerson(context: ServiceContext, clock: DemoClock, { key, name, credentials, roles, sites: where }: (typeof staff)[number], made: readonly DemoSite[]): Promise<DemoPerson> {
+async function makePerson(context: ServiceContext, clock: DemoClock, { key, name, credentials, roles, sites: where, ...rest }: (typeof staff)[number], made: readonly DemoSite[]): Promise<DemoPerson> {
   clock.forward(2)
   const email = addressOf(name)
   const siteIds = where.map(index => made[index]!.id)
-  const id = await addPerson(context, { email, name, printedName: name, credentials, holdings: siteIds.flatMap(siteId => roles.map(role => ({ siteId, role }))) })
+  const id = await addPerson(context, { email, name, printedName: name, credentials, inTraining: 'inTraining' in rest, holdings: siteIds.flatMap(siteId => roles.map(role => ({ siteId, role }))) })
   const password = randomPassword()
   const answer = await makeSetUpLink(context, id, false)
   if (answer.waiting) throw new Error('A first link needs no second person.')

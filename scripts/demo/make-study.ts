@@ -51,15 +51,20 @@ async function makePatient(maker: Maker, siteId: string): Promise<string> {
   return patient.id
 }
 
+/** Somebody with a signed study by the same protocol, so that two studies can be compared. */
+async function studiedBefore({ context }: Maker, protocol: string): Promise<string | undefined> {
+  return (await context.db.selectFrom('study').select('patientId').where('state', '=', 'read').where('protocol', '=', protocol).orderBy('number').executeTakeFirst())?.patientId
+}
+
 /** A new referral as a draft; `complete` false leaves out what cannot be left out for booking. */
-export async function makeReferral(maker: Maker, site: DemoSite, { complete = true, urgency, fromDesk = false }: { complete?: boolean, urgency?: Urgency, /** referred by the physician who has an account */ fromDesk?: boolean } = {}): Promise<MadeReferral> {
+export async function makeReferral(maker: Maker, site: DemoSite, { complete = true, urgency, fromDesk = false, again = false }: { complete?: boolean, urgency?: Urgency, /** referred by the physician who has an account */ fromDesk?: boolean, /** somebody who was studied for the same question before */ again?: boolean } = {}): Promise<MadeReferral> {
   const { random, organisation } = maker
   const picture = pickPicture(random)
   const side = picture.side(random)
   const physician = organisation.physicians.find(each => fromDesk && each.hasDesk) ?? random.pick(organisation.physicians)
   const level = urgency ?? (random.chance(0.12) ? 'urgent' : 'routine')
   const input: ReferralInput = {
-    patientId: await makePatient(maker, site.id), siteId: site.id, physicianId: physician.id, copyPhysicianIds: [],
+    patientId: (again ? await studiedBefore(maker, picture.protocol) : undefined) ?? await makePatient(maker, site.id), siteId: site.id, physicianId: physician.id, copyPhysicianIds: [],
     clinicalQuestion: complete || random.chance(0.5) ? random.pick(picture.question) : '', side: complete ? side : null, bodySite: picture.limb === 'foot' ? 'legs' : 'hands',
     symptoms: random.pick(picture.symptoms), onset: `${random.whole(2, 30)} months ago`, weakness: random.pick(['yes', 'no']), sensorySymptoms: 'yes', pain: random.pick(['yes', 'no']),
     examination: complete ? random.pick(picture.examination) : '', provisionalDiagnosis: picture.diagnosis, previousStudies: random.chance(0.1) ? 'One elsewhere some years ago, not at hand.' : 'None.',

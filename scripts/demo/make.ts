@@ -2,6 +2,7 @@ import type { ServiceContext } from '#server/services/context'
 import { DemoClock, plusDays, workingTime } from './clock'
 import { adoptSets, makeOrganisation, type Organisation } from './make-organisation'
 import type { Maker } from './make-study'
+import { agreeOnPhrases } from './phrases'
 import { makeFinished, makePresent, stages, type Stage } from './make-work'
 import { Random } from './random'
 
@@ -17,6 +18,7 @@ export async function makeDemonstration(services: Omit<ServiceContext, 'clock'>,
   const context: ServiceContext = { ...services, clock: clock.read }
   const organisation = await makeOrganisation(context, clock)
   await adoptSets(context, organisation)
+  await agreeOnPhrases(context, organisation)
   const maker: Maker = { context, clock, random: new Random(seed), organisation }
 
   const waiting = stages.flatMap(stage => Array.from({ length: Math.max(1, Math.round(present[stage] * studies / 100)) }, () => stage))

@@ -21,6 +21,7 @@ export const staff = [
   { key: 'neurologist-2', name: 'Dr Casimir Thorne', credentials: 'MD, neurologist', roles: ['neurologist'], sites: [0, 1] },
   { key: 'neurologist-3', name: 'Dr Noor Albright', credentials: 'MD, neurologist', roles: ['neurologist'], sites: [2, 3] },
   { key: 'medical-director', name: 'Dr Henrike Solano', credentials: 'MD, PhD, neurologist', roles: ['medical-director', 'neurologist'], sites: [0, 1, 2, 3] },
+  { key: 'neurologist-in-training', name: 'Dr Amadeus Pike', credentials: 'MD', roles: ['neurologist'], sites: [0], inTraining: true },
 ] as const
 
 /** Two practices hold a physician of the same name: they must be told apart by clinic and town. Who has a key opens the desk. */

@@ -15,7 +15,7 @@ let app: App
 let cover: Window
 let outsider: Window
 let director: Window
-let study: { id: string, number: string, familyName: string, siteId: string }
+let study: { id: string, number: string, familyName: string }
 let other: { id: string }
 const HOUR = 3_600_000
 const ago = (hours: number) => new Date(Date.now() - hours * HOUR).toISOString()
@@ -38,17 +38,19 @@ function aged<T>(act: (database: Sqlite.Database) => T): T {
 beforeAll(async () => {
   app = await startApp()
   study = aged((database) => {
-    // Of the first two sites, where the third neurologist holds no role.
-    const find = database.prepare(`SELECT study.id, study.number, family_name AS familyName, study.site_id AS siteId, study.referral_id AS referralId FROM study JOIN patient ON patient.id = study.patient_id JOIN site ON site.id = study.site_id
-      WHERE study.state = 'handed-over' AND site.name IN ('Harrowmere Clinic', 'Tarnfield Clinic') AND NOT EXISTS (SELECT 1 FROM report WHERE report.study_id = study.id) ORDER BY study.number`)
-    const [found, second] = find.all() as (typeof study & { referralId: string })[]
-    if (!found || !second) throw new Error('The demonstration has too few studies that wait for a reader.')
-    other = { id: second.id }
+    const site = database.prepare(`SELECT id FROM site WHERE name = 'Harrowmere Clinic'`).pluck().get() as string
+    const find = database.prepare(`SELECT study.id, study.number, family_name AS familyName, study.referral_id AS referralId FROM study JOIN patient ON patient.id = study.patient_id
+      WHERE study.state = 'handed-over' AND NOT EXISTS (SELECT 1 FROM report WHERE report.study_id = study.id) ORDER BY study.number`)
+    const found = find.get() as typeof study & { referralId: string }
+    // Of the first site, where the third neurologist holds no role.
+    database.prepare('UPDATE study SET site_id = ? WHERE id = ?').run(site, found.id)
+    database.prepare('UPDATE referral SET site_id = ? WHERE id = ?').run(site, found.referralId)
+    other = { id: database.prepare('SELECT id FROM study WHERE site_id = ? AND id <> ?').pluck().get(site, found.id) as string }
     const reader = database.prepare(`SELECT id FROM user WHERE name = 'Dr Casimir Thorne'`).pluck().get() as string
     const covering = database.prepare(`SELECT id FROM user WHERE name = 'Dr Eluned Varga'`).pluck().get() as string
-    database.prepare(`UPDATE study SET reader_id = ?, taken_at = ?, state_since = ?, handed_over_at = ? WHERE id = ?`).run(reader, ago(63), ago(63), ago(63), found.id)
+    database.prepare('UPDATE study SET reader_id = ?, taken_at = ?, state_since = ?, handed_over_at = ? WHERE id = ?').run(reader, ago(63), ago(63), ago(63), found.id)
     database.prepare(`UPDATE referral SET urgency = 'urgent', urgency_reason = 'Weakness grows by the day' WHERE id = ?`).run(found.referralId)
-    database.prepare(`INSERT INTO absence (id, user_id, from_day, to_day, covered_by, created_at, created_by) VALUES (?, ?, ?, ?, ?, ?, ?)`).run(randomUUID(), reader, ago(72).slice(0, 10), ago(-72).slice(0, 10), covering, ago(96), reader)
+    database.prepare('INSERT INTO absence (id, user_id, from_day, to_day, covered_by, created_at, created_by) VALUES (?, ?, ?, ?, ?, ?, ?)').run(randomUUID(), reader, ago(72).slice(0, 10), ago(-72).slice(0, 10), covering, ago(96), reader)
     return found
   })
   cover = await app.open({ width: 390, height: 844 })
