@@ -147,6 +147,37 @@ it('the covering reader takes it over, writes and signs on a narrow screen, and 
   expect(await page.getByRole('row').filter({ hasText: study.number }).count()).toBe(0)
 })
 
+it('a value that was read off wrongly is corrected: version 2 is computed from it, version 1 opens as superseded and unchanged', async () => {
+  const { page } = director
+  const answer = await director.context.request.get(`${app.origin}/api/studies/${study.id}/reading`)
+  const { reportId } = await answer.json() as { reportId: string }
+  const first = await (await director.context.request.get(`${app.origin}/api/reports/${reportId}?version=1`)).json() as { sha256: string }
+  await visit(page, `${app.origin}/reports/${reportId}`)
+  await button(page, 'Make a new version').click()
+  await page.getByLabel('Corrected: a wrong side or value is mended').check()
+  const run = page.locator('[data-test=correct-run]').filter({ hasText: 'motor' }).first()
+  await run.locator('summary').click()
+  const latency = run.getByLabel('latency, ms').first()
+  const before = Number(await latency.inputValue())
+  await latency.fill('0')
+  await latency.press('Tab')
+  await run.getByText(/0 is no reading/).waitFor()
+  await latency.fill((before + 0.1).toFixed(1))
+  await latency.press('Tab')
+  await run.getByText(`was ${before.toFixed(1)}`).waitFor()
+  await page.locator('[data-test=change]').filter({ hasText: 'latency' }).first().waitFor()
+  await expectNoAxeFindings(page)
+  await page.getByLabel('What changed and why').fill('The latency was read off the wrong trace.')
+  await signNewVersion(page)
+  await page.waitForURL(/version=2/)
+  await page.getByText(`${before} ms`).first().waitFor()
+  expect(await page.locator('[data-test=change]').first().innerText()).toContain((before + 0.1).toFixed(1))
+  await expectNoAxeFindings(page)
+  await visit(page, `${app.origin}/reports/${reportId}?version=1`)
+  await page.locator('[data-test=superseded]').waitFor()
+  expect((await (await director.context.request.get(`${app.origin}/api/reports/${reportId}?version=1`)).json() as { sha256: string }).sha256).toBe(first.sha256)
+})
+
 it('both chains and every signed version are as they were written', async () => {
   const { page } = director
   await visit(page, `${app.origin}/ledger`)
@@ -165,5 +196,17 @@ async function answerChecks(page: Page): Promise<void> {
     await page.getByLabel('Reason, printed in the report').fill('Seen; it does not change the reading.')
     await button(page, 'Keep reason').click()
     await page.waitForTimeout(900)
+  }
+}
+
+/** Signs; what the server asks first is answered with a reason. */
+async function signNewVersion(page: Page): Promise<void> {
+  await page.getByLabel(/I reviewed the data/).check()
+  for (let tries = 0; tries < 3; tries++) {
+    await page.getByLabel('Your password, again').fill(named('Solano').password)
+    await button(page, 'Sign new version').click()
+    await page.waitForTimeout(1500)
+    if (/version=2/.test(page.url())) return
+    await answerChecks(page)
   }
 }
