@@ -194,7 +194,7 @@ describe('a stopped study', () => {
     await askTechnicalReport(c.technologist, { id })
     const reading = await viewReading(c.neurologist, id)
     expect(reading.draft).toMatchObject({ technicalOnly: true, limitations: ['The study was stopped: The patient felt faint.'] })
-    const draft = { ...reading.draft, resolved: reading.checks.filter(check => check.answerable).map(check => ({ key: check.key, reason: 'The study was stopped.' })) }
+    const draft = { ...reading.draft, resolved: reading.checks.filter(check => check.answerable).map(check => ({ key: check.key, about: check.about, reason: 'The study was stopped.' })) }
     const { view } = await saveDraft(c.neurologist, { studyId: id, draft, revision: reading.draftRevision })
     expect(view.checks.filter(check => check.strength === 'stop' && !check.resolvedBecause)).toEqual([])
     await signProven(c.neurologist, { studyId: id, meaning: meanings[1], draftRevision: view.draftRevision, fingerprint: view.fingerprint })
