@@ -57,9 +57,9 @@ export function allConditions(conditions: readonly Condition[], assessment: Asse
   }
 }
 
-/** @example conditionWords({ kind: 'nerve-flagged', nerve: 'median' }, []) // => 'a median value is outside' */
+/** @example conditionWords({ kind: 'nerve-flagged', nerve: 'median' }, []) // => 'median: a value is outside' */
 export function conditionWords(condition: Condition, patterns: readonly { id: string, title: string }[]): string {
   if (condition.kind === 'none-outside') return 'no value is outside'
-  if (condition.kind === 'nerve-flagged') return `a ${nerveLabels[condition.nerve] ?? condition.nerve} value is outside`
+  if (condition.kind === 'nerve-flagged') return `${nerveLabels[condition.nerve] ?? condition.nerve}: a value is outside`
   return `met: ${patterns.find(pattern => pattern.id === condition.pattern)?.title ?? condition.pattern}`
 }

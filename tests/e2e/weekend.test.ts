@@ -1,4 +1,5 @@
 import { randomUUID } from 'node:crypto'
+import { readFileSync } from 'node:fs'
 import { join } from 'node:path'
 import Sqlite from 'better-sqlite3'
 import type { Page } from 'playwright-core'
@@ -19,7 +20,11 @@ let study: { id: string, number: string, familyName: string }
 let other: { id: string }
 const HOUR = 3_600_000
 const ago = (hours: number) => new Date(Date.now() - hours * HOUR).toISOString()
-const named = (name: string): DemoPerson => app.people.find(person => person.name.includes(name))!
+/** Everybody of the demonstration, not only the first of each role. */
+function named(name: string): DemoPerson {
+  const { people, others } = JSON.parse(readFileSync(join(app.dataDir, 'demo-sign-ins.json'), 'utf8')) as Record<'people' | 'others', DemoPerson[]>
+  return [...people, ...others].find(person => person.name.includes(name))!
+}
 const button = (page: Page, name: string | RegExp) => page.getByRole('button', { name, exact: typeof name === 'string' })
 const reason = 'The patient is getting weaker and nobody of this site can be reached'
 
