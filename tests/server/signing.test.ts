@@ -304,6 +304,22 @@ describe('later versions', () => {
     const task = await t.db.selectFrom('task').selectAll().where('kind', '=', 'entered-in-error').where('subjectId', '=', own).executeTakeFirstOrThrow()
     expect(task.sentence).toContain('moved to the right record')
   })
+  it('of two corrections at once one stands, and the other is told which version came between', async () => {
+    const { reportId, studyId } = await room.signed()
+    const run = (await room.study(studyId)).study.runs.find(each => each.technique === 'median-motor-apb' && each.side === 'right')!
+    const to = (entry: number) => ({ replaces: 1, corrections: [{ kind: 'cell', runId: run.id, rowId: run.rows[0]!.id, field: 'latencyMs', entry }] })
+    const results = await Promise.allSettled([next(reportId, to(5.3)), next(reportId, to(5.4))])
+    expect(results.map(result => result.status).sort()).toEqual(['fulfilled', 'rejected'])
+    expect(results.find(result => result.status === 'rejected')).toMatchObject({ reason: { code: 'changed-meanwhile' } })
+    expect((await version(reportId)).version).toBe(1)
+    expect((await viewReport(room.reader, { reportId })).version).toBe(2)
+    expect((await room.study(studyId)).study.runs).toEqual((await viewReport(room.reader, { reportId })).snapshot.study.runs)
+  })
+  it('whoever is in training makes no later version either', async () => {
+    const { reportId } = await room.signed()
+    const trainee = { ...room.reader, actor: { ...room.reader.actor, inTraining: true } }
+    await expect(makeNewVersion(trainee, { reportId, kind: 'appended', reason: 'More', password: PASSWORD, meaning, draft: finishedDraft({ recommendation: 'Splint.' }) })).rejects.toMatchObject({ code: 'not-allowed' })
+  })
   it('asks for the password too', async () => {
     const { reportId } = await room.signed()
     await expect(next(reportId, { password: 'wrong one' })).rejects.toMatchObject({ code: 'wrong-password' })
