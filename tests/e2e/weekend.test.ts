@@ -73,6 +73,7 @@ it('the queue says how long it waits, and shows it to the reader who covers', as
   const text = (await row.innerText()).replace(/\s+/g, ' ')
   expect(text).toContain('waiting 2 days')
   expect(text).toMatch(/away until .*, covered by you/)
+  expect(await row.getByRole('button', { name: /^Take over/ }).count()).toBe(1)
   expect(await page.locator('[data-test=late]').innerText()).toMatch(/for more than 48 h/)
   await expectNoAxeFindings(page)
 })
@@ -129,11 +130,23 @@ it('the medical director reviews the reason and each look', async () => {
   expect(new Set(views)).toEqual(new Set([reason]))
 })
 
+it('a colleague in training takes it over and drafts, and is not asked for a signature', async () => {
+  const { page } = await app.open()
+  await signIn(app, page, named('Pike'))
+  await visit(page, `${app.origin}/reading/${study.id}`)
+  await button(page, /^Take over from Dr Casimir Thorne/).click()
+  await page.locator('[data-test=in-training]').waitFor()
+  await page.getByRole('textbox', { name: 'Recommendation' }).fill('Clinical review today.')
+  await saved(page)
+  expect(await page.getByLabel('Your password, again').count()).toBe(0)
+  await expectNoAxeFindings(page)
+  await page.context().close()
+})
+
 it('the covering reader takes it over, writes and signs on a narrow screen, and the next study has the focus', async () => {
   const { page } = cover
-  await visit(page, `${app.origin}/reading?assigned=mine`)
-  await page.getByRole('row').filter({ hasText: study.number }).getByRole('button', { name: /^Take over/ }).click()
-  await page.waitForURL(`${app.origin}/reading/${study.id}`)
+  await visit(page, `${app.origin}/reading/${study.id}`)
+  await button(page, /^Take over from Dr Amadeus Pike/).click()
   await page.getByLabel(/in your words/).first().fill('The findings do not explain the weakness. Clinical review today.')
   await page.getByRole('textbox', { name: 'Clinical correlation' }).fill('Told apart from the question of the referral.')
   await page.getByLabel('none identified').check()
@@ -158,6 +171,7 @@ it('a value that was read off wrongly is corrected: version 2 is computed from i
   const { reportId } = await answer.json() as { reportId: string }
   const first = await (await director.context.request.get(`${app.origin}/api/reports/${reportId}?version=1`)).json() as { sha256: string }
   await visit(page, `${app.origin}/reports/${reportId}`)
+  await page.getByText('Drafted by Dr Amadeus Pike, MD, in training').waitFor()
   await button(page, 'Make a new version').click()
   await page.getByLabel('Corrected: a wrong side or value is mended').check()
   const run = page.locator('[data-test=correct-run]').filter({ hasText: 'motor' }).first()
