@@ -39,7 +39,7 @@ export default defineNuxtConfig({
     typescript: { tsConfig: { include: ['../migrations/**/*', '../tests/server/**/*'] } },
     serverAssets: [{ baseName: 'fonts', dir: './assets/fonts' }],
   },
-  vite: { server: { watch: { ignored: ['**/.data/**', '**/data/**'] } } },
+  vite: { server: { watch: { ignored: ['**/.data/**', '**/data/**'] } }, worker: { format: 'es' } },
   typescript: {
     strict: true,
     typeCheck: false,
@@ -62,6 +62,7 @@ export default defineNuxtConfig({
         'img-src': ['\'self\'', 'data:', 'blob:'],
         'font-src': ['\'self\''],
         'connect-src': ['\'self\''],
+        'worker-src': ['\'self\''],
         'frame-src': ['\'self\'', 'blob:'],
         'base-uri': ['\'none\''],
         'object-src': ['\'none\''],

@@ -11,6 +11,7 @@ import { libraryFigures } from './bench/library'
 import { printFigures } from './bench/measure'
 import { besidePdfsFigure, drawingFigure } from './bench/pdf'
 import { listFigures, requestFigures } from './bench/requests'
+import { typingFigures } from './bench/typing'
 
 const { values } = parseArgs({ options: { small: { type: 'boolean', default: false }, rounds: { type: 'string', default: '5' } } })
 const rounds = Math.min(25, Math.max(1, Math.round(Number(values.rounds)) || 5))
@@ -38,6 +39,7 @@ async function measureServer(folder: string): Promise<void> {
     const template = makeTemplate(folder, DEMO_STUDIES)
     const small = await start('small', template, counts.small)
     printFigures('Requests, ten connections', await requestFigures(small, rounds))
+    printFigures('Bench, in a browser', await typingFigures(small))
     printFigures('Reports', [await drawingFigure(small, rounds), await besidePdfsFigure(small, Math.min(rounds, 3))])
     const large = await start('large', template, counts.large)
     printFigures('Lists, ten connections', await listFigures(large, small, counts, rounds))

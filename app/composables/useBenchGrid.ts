@@ -1,9 +1,10 @@
+import { useMediaQuery } from '@vueuse/core'
 import type { InjectionKey } from 'vue'
 import type { Run } from '#shared/schemas/study'
 import { columnsOf } from '~/utils/grid-columns'
 import { moveInGrid, type CellAddress, type GridMove, type GridSheet } from '~/utils/grid-moves'
 import { blockText, parseBlock, planPaste, type PastePlan } from '~/utils/grid-paste'
-import { groupRuns, techniqueFor } from '~/utils/run-labels'
+import { groupRuns, techniqueFor, type RunGroup } from '~/utils/run-labels'
 import { cellContent } from '~/utils/study-edits'
 import type { Bench } from './useBenchStudy'
 
@@ -34,8 +35,10 @@ export function useBenchGrid(bench: Bench) {
   const pastePlan = shallowRef<(PastePlan & { runId: string }) | null>(null)
   const block = shallowRef<Block | null>(null)
   const root = shallowRef<HTMLElement | null>(null)
+  /** From this width on a sheet has no scroll bar of its own (see BenchRunSheet). */
+  const rowsFit = useMediaQuery('(min-width: 1181px)')
 
-  const groups = computed(() => groupRuns(bench.study.value.runs))
+  const groups = computed<RunGroup[]>(before => groupRuns(bench.study.value.runs, before))
   const explainable = computed(() => new Set(bench.assessment.value.runs.flatMap(run => run.results.map(result => result.rowId))))
   const sheets = computed<GridSheet[]>(() => groups.value.flatMap(group => group.runs).filter(({ run }) => !run.notDoneBecause).map(({ run, technique }) => {
     const fields = columnsOf(technique, run, bench.allColumns.value).map(column => column.field)
@@ -44,10 +47,11 @@ export function useBenchGrid(bench: Bench) {
 
   const element = (to: CellAddress) => root.value?.querySelector<HTMLElement>(`[data-cell="${CSS.escape(`${to.rowId}/${to.field}`)}"]`)
 
-  function focusCell(to: CellAddress | null) {
+  /** Looking whether it must scroll makes the browser lay the page out at once: within a row that is not needed. */
+  function focusCell(to: CellAddress | null, isInView = false) {
     const target = to && element(to)
-    target?.focus()
-    target?.scrollIntoView({ block: 'nearest' })
+    target?.focus({ preventScroll: true })
+    if (!isInView) target?.scrollIntoView({ block: 'nearest' })
   }
   /** The first cell of a run, for the list of runs and for remarks. */
   function focusRun(runId: string, rowId?: string, field?: string) {
@@ -73,7 +77,7 @@ export function useBenchGrid(bench: Bench) {
     if (!to) return
     event.preventDefault()
     block.value = null
-    focusCell(to)
+    focusCell(to, rowsFit.value && to.rowId === at.rowId)
   }
 
   /** Shift with an arrow marks a block inside the run. */
@@ -121,6 +125,10 @@ export function useBenchGrid(bench: Bench) {
     const command = event.ctrlKey || event.metaKey
     const key = event.key.toLowerCase()
     if (command && (key === 'z' || key === 'y')) return walkHistory(event, key === 'z' && !event.shiftKey)
+    if (event.key === '#' && bench.at.value) {
+      event.preventDefault()
+      return void (bench.notesOf.value = bench.at.value.runId)
+    }
     if (event.key === 'Tab') return go(event, event.shiftKey ? 'previous' : 'next')
     if (event.key === 'Enter' && !(event.target instanceof HTMLButtonElement)) return go(event, event.shiftKey ? 'up' : 'down')
     if ((event.key === 'Delete' || event.key === 'Backspace') && block.value) return clearBlock(event)

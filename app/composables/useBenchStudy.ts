@@ -1,9 +1,14 @@
 import type { InjectionKey } from 'vue'
+import type { Remark } from '#shared/calculations/types'
+import { withoutFallenAnswers } from '#shared/calculations/plausibility/kept-answer'
+import { quantityOf, type QuantityId } from '#shared/catalogue/quantities'
 import type { ApiErrorBody } from '#shared/errors'
 import type { StudyView } from '#shared/schemas/bench'
-import type { Study } from '#shared/schemas/study'
+import type { Run, RunRow, Study } from '#shared/schemas/study'
+import { entryText } from '~/utils/grid-entry'
 import { emptyHistory, redo as redoStep, remember, undo as undoStep, type CellEdit } from '~/utils/grid-history'
 import { cellKey, type CellAddress } from '~/utils/grid-moves'
+import { syncMap } from '~/utils/keep-same'
 import { unsavedCells, type SaveQueue } from '~/utils/save-queue'
 import { cellContent, findRow, sameContent, withCell, type CellContent } from '~/utils/study-edits'
 
@@ -19,6 +24,22 @@ function acknowledgedSince(fresh: StudyView, queue: SaveQueue, current: Study) {
 /** The server's study with everything on top that it has not acknowledged, or acknowledged meanwhile. */
 function withUnsaved(fresh: StudyView, queue: SaveQueue, current: Study) {
   return [...acknowledgedSince(fresh, queue, current), ...unsavedCells(queue)].reduce((study, cell) => withCell(study, cell.rowId, cell.field, cell.entry), fresh.study)
+}
+
+/** The cell a question stands at: a velocity is questioned at the distance, a series at its line; '' when it is about the run. */
+export function cellOfRemark({ rowId, quantity, code }: Pick<Remark, 'rowId' | 'quantity' | 'code'>): string {
+  if (!rowId) return ''
+  if (code.startsWith('series') || code.startsWith('train-keeps')) return cellKey({ rowId, field: 'series' })
+  return quantity ? cellKey({ rowId, field: quantity === 'velocityMps' ? 'distanceMm' : quantity }) : ''
+}
+
+function openByCell(remarks: readonly Remark[]): Map<string, 'stop' | 'check'> {
+  const found = new Map<string, 'stop' | 'check'>()
+  for (const remark of remarks) {
+    const key = cellOfRemark(remark)
+    if (key && !remark.kept && remark.strength !== 'note' && found.get(key) !== 'stop') found.set(key, remark.strength)
+  }
+  return found
 }
 
 /** What the explanation at the side is about: a row of a run, or one result. */
@@ -53,6 +74,8 @@ export function useBenchStudy(first: StudyView) {
   const editor = shallowRef<CellEditor | null>(null)
   const explained = shallowRef<Explained | null>(null)
   const allColumns = ref(false)
+  /** The run whose notes and steps are open. */
+  const notesOf = ref<string | null>(null)
   /** Cells whose text cannot be stored: it stands there with its sentence, and the study is not handed over with it. */
   const unaccepted = reactive(new Map<string, { runId: string, sentence: string }>())
 
@@ -62,7 +85,7 @@ export function useBenchStudy(first: StudyView) {
   }
 
   function apply(edits: CellEdit[]) {
-    study.value = edits.reduce((state, edit) => withCell(state, edit.rowId, edit.field, edit.after), study.value)
+    study.value = withoutFallenAnswers(edits.reduce((state, edit) => withCell(state, edit.rowId, edit.field, edit.after), study.value))
     saving.save(edits.map(edit => ({ rowId: edit.rowId, field: edit.field, entry: edit.after })))
   }
 
@@ -98,8 +121,8 @@ export function useBenchStudy(first: StudyView) {
   /** An act on the server, then a fresh copy. True when it was done; else `problem` says why. */
   /** One act after the other: an answer that overtakes a later one would show what is no longer true. */
   let turn: Promise<unknown> = Promise.resolve()
-  function act(rest: string, method: 'POST' | 'PUT' | 'PATCH' | 'DELETE', body: object = {}): Promise<boolean> {
-    const mine = turn.then(() => actNow(rest, method, body))
+  function act(rest: string, method: 'POST' | 'PUT' | 'PATCH' | 'DELETE', body: object | (() => object) = {}): Promise<boolean> {
+    const mine = turn.then(() => actNow(rest, method, typeof body === 'function' ? (body as () => object)() : body))
     turn = mine
     return mine
   }
@@ -123,14 +146,35 @@ export function useBenchStudy(first: StudyView) {
     }
   }
 
-  const changeRun = (runId: string, changes: object) => act(`runs/${runId}`, 'PATCH', { ...changes, revision: view.value.runRevisions[runId] ?? 0 })
+  /** Open questions by cell, the stronger one where there are two. Each cell listens to its own key alone. */
+  const askedAt = shallowReactive(new Map<string, 'stop' | 'check'>())
+  watch(() => live.assessment.value.remarks, remarks => syncMap(askedAt, openByCell(remarks)), { immediate: true })
+  /** Why the server refused a cell, by its key. */
+  const refusals = shallowReactive(new Map<string, string>())
+  watch(() => saving.queue.value.refusals, found => syncMap(refusals, new Map(Object.entries(found).map(([key, { message }]) => [key, message]))), { immediate: true })
+  /** From a cell to its question at the side, else to the first open one. */
+  function goToRemark(key: string) {
+    const list = [...document.querySelectorAll<HTMLElement>('[data-remark-for]')]
+    const found = list.find(item => item.dataset.remarkFor === key) ?? list[0]
+    found?.querySelector<HTMLElement>('button')?.focus()
+  }
+
+  /** What stood in this row in the latest earlier study of this patient that has it, by field, as it is printed. */
+  function earlierOf(run: Run, row: RunRow): Record<string, string> {
+    const values = view.value.earlier[`${run.technique}/${run.side}`]?.rows[row.site] ?? {}
+    return Object.fromEntries(Object.entries(values).map(([field, entry]) => [field, entryText(entry, quantityOf(field as QuantityId).printDecimals)]))
+  }
+  const earlierSource = (run: Run) => view.value.earlier[`${run.technique}/${run.side}`]
+
+  /** Against the revision that stands when its turn comes: two quick choices after each other do not contradict each other. */
+  const changeRun = (runId: string, changes: object) => act(`runs/${runId}`, 'PATCH', () => ({ ...changes, revision: view.value.runRevisions[runId] ?? 0 }))
 
   return {
-    view, study, policy, saving, assessment: live.assessment, isLive: live.live, liveProblem: live.problem, differences: live.differences, mayType, busy, problem, problemOf, at, editor, explained, allColumns, unaccepted,
-    preview, change, reload, act, changeRun,
+    view, study, policy, saving, assessment: live.assessment, isLive: live.live, liveProblem: live.problem, differences: live.differences, mayType, busy, problem, problemOf, at, editor, explained, allColumns, notesOf, unaccepted,
+    preview, change, reload, act, changeRun, askedAt, goToRemark, earlierOf, earlierSource,
     undo: () => walk(undoStep(history.value)),
     redo: () => walk(redoStep(history.value)),
-    refusal: (rowId: string, field: string) => saving.queue.value.refusals[cellKey({ rowId, field })]?.message ?? '',
+    refusal: (rowId: string, field: string) => refusals.get(cellKey({ rowId, field })) ?? '',
   }
 }
 

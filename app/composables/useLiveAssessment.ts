@@ -1,22 +1,13 @@
-import { assessStudy } from '#shared/calculations/assess-study'
-import type { Assessment, Policy, RunAssessment } from '#shared/calculations/types'
+import type { Assessment, Policy } from '#shared/calculations/types'
 import type { ReferenceTable } from '#shared/schemas/reference-table'
 import type { Study } from '#shared/schemas/study'
-import { assessmentDifferences } from '~/utils/assessment-differences'
-
-/** An unchanged part keeps its object, so that only what changed is drawn again. */
-function keepSame<T>(before: T | undefined, after: T): T {
-  return before !== undefined && JSON.stringify(before) === JSON.stringify(after) ? before : after
-}
-
-function keepRuns(before: RunAssessment[], after: RunAssessment[]): RunAssessment[] {
-  const known = new Map(before.map(run => [run.runId, run]))
-  return after.map(run => keepSame(known.get(run.runId), run))
-}
+import { withPatch } from '~/utils/assessment-patch'
+import type { FromAssessor, ToAssessor } from '~/workers/assess.worker'
 
 /**
- * The assessment of what stands on the page, computed here by the same library as on the server while one types. Until
- * the adopted sets have arrived, and wherever it cannot be computed, the server's last assessment stands.
+ * The assessment of what stands on the page, computed beside it by the same library as on the server while one types: in
+ * a worker, so that no key waits for it. Until the adopted sets have arrived, and wherever it cannot be computed, the
+ * server's last assessment stands.
  *
  * @returns `differences`: results that the server sees differently for the same values; its answer stands and they are said
  * @example
@@ -24,47 +15,63 @@ function keepRuns(before: RunAssessment[], after: RunAssessment[]): RunAssessmen
  */
 export function useLiveAssessment(study: Ref<Study>, policy: Ref<Policy>, fromServer: () => Assessment) {
   const tables = shallowRef<ReferenceTable[] | null>(null)
+  const computedHere = shallowRef<Assessment>()
   const problem = ref('')
   const differences = ref<string[]>([])
   const api = useApi()
-  let last: Assessment | undefined
+  let worker: Worker | undefined
+  /** One study under way at a time; of those typed meanwhile only the last is looked at. */
+  let isBusy = false
+  let isWaiting = false
+
+  const post = (message: ToAssessor) => worker?.postMessage(message)
 
   async function loadTables() {
     try {
       const sets = await Promise.all(policy.value.adopted.map(set => api<ReferenceTable>(`/api/shelf/sets/${set.setId}`, { query: { version: set.version } })))
       tables.value = sets
       problem.value = ''
+      post({ kind: 'tables', tables: sets })
+      ask()
     }
     catch {
       problem.value = 'The reference sets could not be loaded: results appear after saving, not while you type.'
     }
   }
-  onMounted(loadTables)
-  watch(() => policy.value.adopted.map(set => `${set.setId}/${set.version}`).join(' '), loadTables)
 
-  /** Null when it cannot be computed here: the library never throws, but an old page in an open tab may. */
-  function compute(stored: Study): Assessment | null {
-    try {
-      return tables.value && assessStudy(stored, tables.value, policy.value)
-    }
-    catch {
-      return null
-    }
+  function ask() {
+    isWaiting = isBusy
+    if (isBusy || !worker || !tables.value) return
+    isBusy = true
+    post({ kind: 'assess', study: toRaw(study.value), policy: toRaw(policy.value) })
   }
 
-  const assessment = computed<Assessment>(() => {
-    const fresh = compute(study.value)
-    if (!fresh) return fromServer()
-    last = { ...fresh, runs: keepRuns(last?.runs ?? [], fresh.runs), remarks: keepSame(last?.remarks, fresh.remarks), comparisons: keepSame(last?.comparisons, fresh.comparisons) }
-    return last
+  function onAnswer({ data }: MessageEvent<FromAssessor>) {
+    if (data.kind === 'compared') return void (differences.value = data.differences)
+    isBusy = false
+    if (data.kind === 'assessed') computedHere.value = withPatch(computedHere.value, data.patch)
+    else onFailure()
+    if (isWaiting) ask()
+  }
+  function onFailure() {
+    computedHere.value = undefined
+    problem.value = 'Results could not be computed on this page: they appear after saving. Reload the page.'
+  }
+
+  onMounted(() => {
+    worker = new Worker(new URL('../workers/assess.worker.ts', import.meta.url), { type: 'module' })
+    worker.onmessage = onAnswer
+    worker.onerror = onFailure
+    void loadTables()
   })
+  onBeforeUnmount(() => worker?.terminate())
+  watch(() => policy.value.adopted.map(set => `${set.setId}/${set.version}`).join(' '), loadTables)
+  watch([study, policy], ask)
 
   /** Compares with the server's assessment of the same stored study. */
   function compareWith(stored: Study, server: Assessment) {
-    const mine = compute(stored)
-    if (mine) differences.value = assessmentDifferences(mine, server)
-    else if (tables.value) problem.value = 'Results could not be computed on this page: they appear after saving. Reload the page.'
+    if (tables.value) post({ kind: 'compare', study: stored, policy: toRaw(policy.value), server })
   }
 
-  return { assessment, live: computed(() => tables.value !== null), problem, differences, compareWith }
+  return { assessment: computed(() => computedHere.value ?? fromServer()), live: computed(() => tables.value !== null), problem, differences, compareWith }
 }

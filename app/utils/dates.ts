@@ -15,11 +15,37 @@ export function formatShortDay(day: string): string {
   return formatDay(day).replace(/ ([A-Z][a-z]{2})[a-z]* /, ' $1 ')
 }
 
+/** Making a formatter costs a hundred times what using one does; they hold no more than a zone's name. */
+const formatters = new Map<string, Intl.DateTimeFormat>()
+function formatterFor(timeZone: string): Intl.DateTimeFormat {
+  const known = formatters.get(timeZone)
+  if (known) return known
+  const made = new Intl.DateTimeFormat('en-GB', { timeZone, year: 'numeric', month: '2-digit', day: '2-digit', hour: '2-digit', minute: '2-digit', hourCycle: 'h23' })
+  formatters.set(timeZone, made)
+  return made
+}
+
 /** Calendar day and clock of an instant in a zone: { day: '2026-03-09', time: '14:02' }. */
 export function zonedParts(instant: string | number | Date, timeZone: string): { day: string, time: string } {
-  const parts = new Intl.DateTimeFormat('en-GB', { timeZone, year: 'numeric', month: '2-digit', day: '2-digit', hour: '2-digit', minute: '2-digit', hourCycle: 'h23' }).formatToParts(new Date(instant))
+  const parts = formatterFor(timeZone).formatToParts(new Date(instant))
   const part = (type: string) => parts.find(p => p.type === type)?.value ?? ''
   return { day: `${part('year')}-${part('month')}-${part('day')}`, time: `${part('hour')}:${part('minute')}` }
+}
+
+/**
+ * The instant of a wall clock in a zone, ISO 8601; of an hour that comes twice the first.
+ * @example momentAt('2026-03-09', '14:02', 'Europe/Prague') // => '2026-03-09T13:02:00.000Z'
+ */
+export function momentAt(day: string, time: string, timeZone: string): string | null {
+  const wanted = Date.parse(`${day}T${time}:00Z`)
+  if (Number.isNaN(wanted)) return null
+  const shown = (instant: number) => {
+    const parts = zonedParts(instant, timeZone)
+    return Date.parse(`${parts.day}T${parts.time}:00Z`)
+  }
+  const guess = wanted - (shown(wanted) - wanted)
+  const found = guess - (shown(guess) - wanted)
+  return shown(found) === wanted ? new Date(found).toISOString() : null
 }
 
 /** @example formatMoment('2026-03-09T13:02:00Z', 'Europe/Prague') // => '9 Mar 2026, 14:02' */

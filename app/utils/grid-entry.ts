@@ -13,8 +13,23 @@ export interface EntryPlace {
   segmentLabel?: string
 }
 
+/** The place as it was where nothing of it changed. */
+export const samePlace = (before: EntryPlace | undefined, now: EntryPlace): EntryPlace =>
+  before && before.site === now.site && before.segmentLabel === now.segmentLabel ? before : now
+
 /** One letter each, at the start of a cell. */
 export const absenceKeys: Record<string, Absence> = { n: 'no-response', x: 'technical', d: 'not-done', s: 'stopped' }
+
+const letterOf = Object.fromEntries(Object.entries(absenceKeys).map(([letter, absence]) => [absence, letter])) as Record<Absence, string>
+
+/**
+ * How a stored series stands in its cell: single responses with a blank between them, an absence by its letter.
+ *
+ * @example seriesText([28.1, 'no-response'], 1) // => '28.1 n'
+ */
+export function seriesText(entries: readonly Entry[], decimals = 0): string {
+  return entries.map(entry => typeof entry === 'number' ? entryText(entry, decimals) : letterOf[entry]).join(' ')
+}
 
 /** Ways of writing each unit; small letters, no blanks. The Greek mu and the letter u stand for the micro sign. */
 const unitSpellings: Record<string, readonly string[]> = {
@@ -99,7 +114,9 @@ export function parseEntry(typed: string, quantity: Quantity, place: EntryPlace 
  */
 export function parseSeries(typed: string, quantity: Quantity): { kind: 'series', entries: Entry[] } | { kind: 'stop', sentence: string } {
   const entries: Entry[] = []
-  for (const [index, part] of typed.split(/[\s;]+/).filter(Boolean).entries()) {
+  // An absence may be two words; single responses are set apart by blanks.
+  const text = absences.reduce((words, absence) => words.replaceAll(new RegExp(absenceLabels[absence], 'gi'), letterOf[absence]), typed)
+  for (const [index, part] of text.split(/[\s;]+/).filter(Boolean).entries()) {
     const parsed = parseEntry(part, quantity)
     if (parsed.kind === 'stop') return { kind: 'stop', sentence: `Response ${index + 1}: ${parsed.sentence}` }
     if (parsed.kind === 'entry') entries.push(parsed.entry)

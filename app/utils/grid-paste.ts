@@ -2,7 +2,7 @@ import { quantityOf } from '#shared/catalogue/quantities'
 import type { Technique } from '#shared/catalogue/types'
 import type { Run } from '#shared/schemas/study'
 import type { GridColumn } from './grid-columns'
-import { entryText, parseEntry, parseSeries } from './grid-entry'
+import { entryText, parseEntry, parseSeries, seriesText } from './grid-entry'
 import { entryPlace, rowLabel } from './run-labels'
 import { cellContent, type CellContent } from './study-edits'
 
@@ -61,6 +61,6 @@ export function blockText(run: Run, columns: GridColumn[], from: { rowIndex: num
   const [left, right] = [from.columnIndex, to.columnIndex].sort((a, b) => a - b) as [number, number]
   return run.rows.slice(top, bottom + 1).map(row => columns.slice(left, right + 1).map((column) => {
     const content = cellContent(row, column.field)
-    return Array.isArray(content) ? content.map(entry => entryText(entry)).join(' ') : entryText(content as never)
+    return Array.isArray(content) ? seriesText(content) : entryText(content as never)
   }).join('\t')).join('\n')
 }

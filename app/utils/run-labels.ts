@@ -1,7 +1,7 @@
 import type { StimulationSite, Technique } from '#shared/catalogue/types'
 import { techniqueOf } from '#shared/catalogue/nerves'
 import type { Side } from '#shared/schemas/common'
-import type { Run, RunRow } from '#shared/schemas/study'
+import type { LimbTemperature, Run, RunRow, Study } from '#shared/schemas/study'
 import type { EntryPlace } from './grid-entry'
 
 export const sideWord: Record<Side, string> = { right: 'RIGHT', left: 'LEFT' }
@@ -13,6 +13,14 @@ export function techniqueFor(id: string): Technique {
 }
 
 export const siteIn = (technique: Technique, id: string): StimulationSite | undefined => technique.sites.find(site => site.id === id)
+
+/** The fixed distance of the method for a row, in mm: to the recording electrode, or over one step of a short-segment study. */
+export function standardDistance(technique: Technique, row: RunRow, rowIndex: number): number | undefined {
+  const site = siteIn(technique, row.site)
+  if (site?.aside) return undefined
+  if (technique.kind === 'motor' && rowIndex > 0) return technique.shortSegments ? site?.standardDistanceMm : undefined
+  return site?.standardDistanceMm ?? technique.standardDistanceMm
+}
 
 export const rowLabel = (technique: Technique, row: RunRow) => siteIn(technique, row.site)?.label ?? row.site
 
@@ -39,20 +47,44 @@ export function runDetails(technique: Technique, run: Run): string {
   return [recording, needle, run.direction ?? technique.direction, distance, run.shortSegments ? 'short segments' : ''].filter(Boolean).join(' · ')
 }
 
+/** Limb segments that are studied and have no temperature yet, RIGHT first: without one a limb counts as cold. */
+export function limbsWithoutTemperature(study: Pick<Study, 'runs' | 'temperatures'>): { segment: LimbTemperature['segment'], side: Side }[] {
+  const wanted = new Map<string, { segment: LimbTemperature['segment'], side: Side }>()
+  for (const run of study.runs) {
+    const segment = techniqueFor(run.technique).temperatureSegment
+    const has = study.temperatures.some(reading => reading.segment === segment && reading.side === run.side)
+    if (segment && !run.notDoneBecause && !has) wanted.set(`${run.side}-${segment}`, { segment, side: run.side })
+  }
+  return [...wanted.values()].sort((a, b) => b.side.localeCompare(a.side))
+}
+
 const limbWords = { arm: 'ARM', leg: 'LEG', face: 'FACE', trunk: 'TRUNK' } as const
 
-export interface RunGroup { id: string, title: string, runs: { run: Run, technique: Technique }[] }
+export interface GroupedRun { run: Run, technique: Technique }
+/** The runs of one limb and side: what was stimulated, then the needle examination, which is one sheet of its own. */
+export interface RunGroup { id: string, title: string, runs: GroupedRun[], stimulated: GroupedRun[], needled: GroupedRun[] }
 
-/** Runs by limb and side, in the order in which they were laid out; RIGHT stands before LEFT. */
-export function groupRuns(runs: Run[]): RunGroup[] {
-  const groups = new Map<string, RunGroup>()
-  for (const run of runs) {
-    const technique = techniqueFor(run.technique)
-    const id = `${run.side}-${technique.limb}`
-    const group = groups.get(id) ?? { id, title: `${sideWord[run.side]} ${limbWords[technique.limb]}`, runs: [] }
-    group.runs.push({ run, technique })
-    groups.set(id, group)
-  }
+function groupOf(id: string, all: GroupedRun[]): RunGroup {
+  const stimulated = all.filter(({ technique }) => technique.kind !== 'needle')
+  const needled = all.filter(({ technique }) => technique.kind === 'needle')
+  const [first] = all
+  return { id, title: first ? `${sideWord[first.run.side]} ${limbWords[first.technique.limb]}` : '', runs: [...stimulated, ...needled], stimulated, needled }
+}
+
+const isSameGroup = (a: RunGroup, b: RunGroup) => a.runs.length === b.runs.length && a.runs.every(({ run }, index) => run === b.runs[index]?.run)
+
+/**
+ * Runs by limb and side, in the order in which they were laid out; RIGHT stands before LEFT.
+ *
+ * @param before the groups as they were: a group in which nothing changed keeps its object, so that it is not drawn again
+ */
+export function groupRuns(runs: Run[], before: readonly RunGroup[] = []): RunGroup[] {
+  const all = runs.map(run => ({ run, technique: techniqueFor(run.technique) }))
+  const ids = [...new Set(all.map(({ run, technique }) => `${run.side}-${technique.limb}`))]
   const rank = (id: string) => ['arm', 'leg', 'face', 'trunk'].findIndex(limb => id.endsWith(limb)) * 2 + (id.startsWith('right') ? 0 : 1)
-  return [...groups.values()].sort((a, b) => rank(a.id) - rank(b.id))
+  return ids.sort((a, b) => rank(a) - rank(b)).map((id) => {
+    const group = groupOf(id, all.filter(({ run, technique }) => `${run.side}-${technique.limb}` === id))
+    const known = before.find(each => each.id === id)
+    return known && isSameGroup(known, group) ? known : group
+  })
 }

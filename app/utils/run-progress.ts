@@ -16,13 +16,14 @@ const needed: Partial<Record<RunKind, QuantityId[]>> = {
 }
 
 const isAbsence = (value: unknown) => typeof value === 'string'
-const hasAnything = (row: RunRow) => Object.keys(row.values).length > 0 || (row.series?.length ?? 0) > 0 || Object.keys(row.ordinals ?? {}).length > 0
+/** Was anything typed into this row? */
+export const hasEntries = (row: RunRow) => Object.keys(row.values).length > 0 || (row.series?.length ?? 0) > 0 || Object.keys(row.ordinals ?? {}).length > 0
 
 /** An absence in one cell (no response) answers for the whole row; so does a series. */
 function rowIsDone(row: RunRow, { id, kind }: Technique): boolean {
   // Beside the nerve's line the size alone is asked for.
   const ids = siteOf(id, row.site)?.aside ? (['amplitudeMv'] as const) : needed[kind]
-  if (!ids || (row.series?.length ?? 0) > 0) return hasAnything(row)
+  if (!ids || (row.series?.length ?? 0) > 0) return hasEntries(row)
   return ids.every(id => row.values[id] !== undefined) || Object.values(row.values).some(isAbsence)
 }
 
@@ -33,7 +34,7 @@ function rowIsDone(row: RunRow, { id, kind }: Technique): boolean {
  */
 export function runProgress(technique: Technique, run: Run): RunProgress {
   if (run.notDoneBecause) return 'not-done'
-  if (!run.rows.some(hasAnything)) return 'left'
+  if (!run.rows.some(hasEntries)) return 'left'
   return run.rows.every(row => rowIsDone(row, technique)) ? 'done' : 'begun'
 }
 

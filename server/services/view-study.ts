@@ -10,6 +10,7 @@ import type { StudyState } from '#shared/states'
 import { assessStoredStudy, type AssessedStudy } from './assess-stored-study'
 import { peopleWho } from './people-who'
 import { mayAt, type ServiceContext } from './context'
+import { earlierValues } from './earlier-values'
 import { recordView } from './record-view'
 
 const recordable: readonly StudyState[] = ['planned', 'recording', 'returned']
@@ -42,13 +43,13 @@ export async function viewStudy(context: ServiceContext, id: string): Promise<St
   const { db, actor } = context
   const { record, study, policy, assessment, cellRevisions, runRevisions, plannedRunIds } = await assessStoredStudy(context, id)
   const { number, state, stateSince, siteId, referralId, patientId, protocol, readerId, handOverNote, returnQuestion, returnRunId } = record
-  const [band, route, referral, uploads, names, around, choices] = await Promise.all([patientBand(db, referralId), routeOf(db, referralId), referralPart(db, referralId), uploadsOf(db, referralId), namesOf(db, record), studyAround(db, record), choicesAt(db, record)])
+  const [band, route, referral, uploads, names, around, choices, earlier] = await Promise.all([patientBand(db, referralId), routeOf(db, referralId), referralPart(db, referralId), uploadsOf(db, referralId), namesOf(db, record), studyAround(db, record), choicesAt(db, record), earlierValues(context, record)])
   if (!band) throw new DomainError('not-found')
   recordView(context, { subject: 'study', subjectId: id, siteId, patientId })
   return {
     id, number, state, stateSince, siteId, referralId, patientId, protocol, band, route, referral, ...names,
     confirmation: record.confirmationJson ? JSON.parse(record.confirmationJson) as Confirmation : null,
-    readerId, handOverNote, returnQuestion, returnRunId, study, cellRevisions, runRevisions, plannedRunIds, policy, adopted: policy.adopted, assessment, uploads, around, choices,
+    readerId, handOverNote, returnQuestion, returnRunId, study, cellRevisions, runRevisions, plannedRunIds, policy, adopted: policy.adopted, assessment, uploads, around, choices, earlier,
     mayRecord: recordable.includes(state) && mayAt(actor, 'study.record', siteId),
     mayRead: mayAt(actor, 'report.write', siteId),
     maySign: mayAt(actor, 'report.sign', siteId),

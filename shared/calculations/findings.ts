@@ -37,7 +37,7 @@ function sentence(key: string, runIds: string[], text: string): FindingSentence 
 
 function runText(known: KnownRun, run: RunAssessment): string {
   const title = titleOf(known, run)
-  if (run.notDone !== undefined) return `${title}: ${run.notDone}.`
+  if (run.notDone !== undefined) return `${title}: ${run.notDone.replace(/\.$/, '')}.`
   if (known.technique?.kind === 'needle') return needleText(title, known, known.technique)
   if (!known.measured) return `${title}: nothing recorded.`
   const beside = new Set(known.asides.map(({ row }) => row.id))

@@ -1,8 +1,8 @@
 import type { Result } from '../calculations/types'
 import { quantities } from '../catalogue/quantities'
 import type { RunKind } from '../catalogue/types'
-import type { RunRow } from '../schemas/study'
-import { plainCell, withSides, type Block, type Cell, type TableBlock, type TextCell } from './blocks'
+import { absenceLabels, type RunRow } from '../schemas/study'
+import { paragraph, plainCell, withSides, type Block, type Cell, type TableBlock, type TextCell } from './blocks'
 import { barCell, limitsCell, tableNotes, valueCell, type TableNotes } from './limits'
 import { runsOf, shortRunName, type FrozenRun, type ReportSource } from './source'
 import type { ReportWords } from './words'
@@ -97,5 +97,15 @@ export function runTable(source: ReportSource, kind: RunKind, caption: string, w
     ],
     rows: runs.flatMap(frozen => frozen.run.rows.map((row, index) => tableRow(frozen, row, index, columns, words, notes))),
   }
-  return [table, ...notes.blocks]
+  return [table, ...seriesBlocks(runs, words), ...notes.blocks]
+}
+
+/** The single responses that a row of late responses or a train was computed from, as they were typed. */
+function seriesBlocks(runs: readonly FrozenRun[], words: ReportWords): Block[] {
+  const said = runs.filter(({ assessment }) => !assessment.supersededBy).flatMap(frozen => frozen.run.rows.filter(row => row.series?.length).map((row) => {
+    const site = frozen.technique.sites.find(one => one.id === row.site)?.label ?? row.site
+    const unit = frozen.technique.kind === 'f-wave' ? 'ms' : 'mV'
+    return `${words.sides[frozen.run.side]} ${shortRunName(frozen)}, ${site}: ${row.series!.map(entry => typeof entry === 'number' ? String(entry) : absenceLabels[entry]).join(', ')} ${unit}`
+  }))
+  return said.length > 0 ? [paragraph([{ text: `${words.singleResponses}. `, strong: true }, ...withSides(`${said.join('; ')}.`)], 'faint')] : []
 }

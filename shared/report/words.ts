@@ -48,6 +48,8 @@ const en = {
   notJudged: 'not judged',
   cold: 'cold, not interpretable',
   superseded: 'cold, repeated warm',
+  singleResponses: 'Single responses',
+  notExamined: 'not examined',
   notComputable: 'not computable',
   technique: 'Technique',
   temperatures: 'Temperatures',

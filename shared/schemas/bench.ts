@@ -1,6 +1,6 @@
 import * as z from 'zod'
 import { idSchema, isoDateTimeSchema, sideSchema } from './common'
-import { entrySchema, runSchema, type Study } from './study'
+import { entrySchema, runSchema, type RunRow, type Study } from './study'
 import type { BenchChoices, StudyAround } from './bench-day'
 import type { PatientBand } from './patient'
 import type { RouteNode, UploadView, Urgency } from './referral'
@@ -102,6 +102,8 @@ export interface StudyView {
   uploads: UploadView[]
   around: StudyAround
   choices: BenchChoices
+  /** Typed values of earlier studies of this patient, by `technique/side`, then by site and field: from the latest study that has them. */
+  earlier: Record<string, { studyId: string, studyDate: string, siteName: string, rows: Record<string, RunRow['values']> }>
   mayRecord: boolean
   mayRead: boolean
   /** False for whoever is in training: they write, a supervisor signs. */

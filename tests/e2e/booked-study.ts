@@ -1,13 +1,13 @@
 import { expect } from 'vitest'
 import { signIn, type App } from './app'
 
-interface Wish { protocol: 'carpal-tunnel' | 'ulnar-elbow' | 'polyneuropathy' | 'foot-drop', side: 'right' | 'left' | 'both', familyName: string, question: string }
+export interface Wish { protocol: 'carpal-tunnel' | 'ulnar-elbow' | 'polyneuropathy' | 'foot-drop', side: 'right' | 'left' | 'both', familyName: string, question: string, /** an earlier patient of this name; else a new one is made */ patientId?: string }
 
 /**
  * A referral of an invented woman, accepted with the protocol and booked for today, late in the evening, where the
  * technologist works. It goes through the administrator's own routes; what the pages of intake do is tested elsewhere.
  */
-export async function bookStudy(app: App, { protocol, side, familyName, question }: Wish): Promise<{ referralId: string, patientName: string }> {
+export async function bookStudy(app: App, { protocol, side, familyName, question, patientId }: Wish): Promise<{ referralId: string, patientName: string }> {
   const { page, context } = await app.open()
   await signIn(app, page, app.person('administrator'))
   const call = async <T>(path: string, data?: object): Promise<T> => {
@@ -18,7 +18,7 @@ export async function bookStudy(app: App, { protocol, side, familyName, question
   const { sites } = await call<{ sites: { id: string, name: string, timeZone: string }[] }>('/api/me')
   const site = sites.find(each => each.name === 'Harrowmere Clinic')!
   const physicians = await call<{ rows: { id: string }[] }>('/api/directory/physicians?search=Whitcombe')
-  const patient = await call<{ id: string }>('/api/patients', { familyName, givenName: 'Tove', birthDate: '1971-05-20', sexForLimits: 'female' })
+  const patient = patientId ? { id: patientId } : await call<{ id: string }>('/api/patients', { familyName, givenName: 'Tove', birthDate: '1971-05-20', sexForLimits: 'female' })
   const { id } = await call<{ id: string }>('/api/referrals', {
     patientId: patient.id, siteId: site.id, physicianId: physicians.rows[0]!.id, clinicalQuestion: question, side, symptoms: 'Numbness for half a year.', examination: 'Reduced touch.',
     cautions: { 'cardiac-device': 'no', 'temporary-pacing-wire': 'no' }, consentElectronic: 'yes',
@@ -26,7 +26,7 @@ export async function bookStudy(app: App, { protocol, side, familyName, question
   await call(`/api/referrals/${id}/receive`, {})
   await call(`/api/referrals/${id}/accept`, { protocol })
   const date = new Intl.DateTimeFormat('en-CA', { timeZone: site.timeZone }).format(new Date())
-  await call(`/api/referrals/${id}/book`, { siteId: site.id, room: 'Room 2', date, time: '23:15', minutes: 30 })
+  await call(`/api/referrals/${id}/book`, { siteId: site.id, room: 'Room 2', date, time: patientId ? '22:30' : '23:15', minutes: 30 })
   await context.close()
   return { referralId: id, patientName: `${familyName}, Tove` }
 }

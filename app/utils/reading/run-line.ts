@@ -1,5 +1,6 @@
 import type { RunAssessment } from '#shared/calculations/types'
-import type { Run, Study } from '#shared/schemas/study'
+import { techniqueOf } from '#shared/catalogue/nerves'
+import { absenceLabels, type Run, type Study } from '#shared/schemas/study'
 
 /**
  * How a run was recorded, in one line: temperature, distances, direction, quality. What makes evidence weak stands
@@ -16,6 +17,7 @@ export function runLine(study: Study, assessment: RunAssessment): string {
     run.direction ?? '',
     run.elbowFlexionDegrees === undefined ? '' : `elbow at ${run.elbowFlexionDegrees}°`,
     run.shortSegments ? 'short segments' : '',
+    ...series(run),
     quality(run),
   ].filter(Boolean).join(' · ')
 }
@@ -23,6 +25,16 @@ export function runLine(study: Study, assessment: RunAssessment): string {
 function distances(run: Run): string {
   const typed = run.rows.map(row => row.values.distanceMm).filter(value => typeof value === 'number')
   return typed.length > 0 ? `${typed.join(', ')} mm` : ''
+}
+
+/** The single responses of a series as they were typed. */
+function series(run: Run): string[] {
+  const technique = techniqueOf(run.technique)
+  const unit = technique?.kind === 'f-wave' ? 'ms' : 'mV'
+  return run.rows.filter(row => row.series?.length).map((row) => {
+    const where = run.rows.length > 1 ? ` ${technique?.sites.find(site => site.id === row.site)?.label ?? row.site}` : ''
+    return `single responses${where}: ${row.series!.map(entry => typeof entry === 'number' ? String(entry) : absenceLabels[entry]).join(', ')} ${unit}`
+  })
 }
 
 /** Good recordings need no remark. */

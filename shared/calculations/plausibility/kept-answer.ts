@@ -52,6 +52,17 @@ export function holdsStill(bound: Cells, now: ReadonlyMap<string, Cells[string]>
   })
 }
 
+/**
+ * The study without the answers whose values were changed: they do not come back with the old value, the question is
+ * asked again.
+ */
+export function withoutFallenAnswers(study: Study): Study {
+  if (study.keptChecks.length === 0) return study
+  const now = cellsOf(study)
+  const standing = study.keptChecks.filter(({ cells }) => !cells || holdsStill(cells, now))
+  return standing.length === study.keptChecks.length ? study : { ...study, keptChecks: standing }
+}
+
 /** Every cell of the study by its key; built only where there are answers to compare with. */
 export function cellsOf(study: Study): ReadonlyMap<string, Cells[string]> {
   return new Map(study.runs.flatMap(run => run.rows).flatMap(cellsOfRow))

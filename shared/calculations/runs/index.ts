@@ -30,7 +30,7 @@ export function assessRun(context: StudyContext, known: KnownRun): RunAssessment
   const assessment: RunAssessment = { runId: run.id, technique: run.technique, side: run.side, title, cold: coldSaid(known), results: [] }
   if (supersededBy !== undefined) assessment.supersededBy = supersededBy
   const reason = run.notDoneBecause?.trim()
-  if (reason) assessment.notDone = `not done: ${reason}`
+  if (reason) assessment.notDone = `${technique?.kind === 'needle' ? 'not examined' : 'not done'}: ${reason}`
   if (!technique) return assessment
   const maker = runMaker(context, { ...known, cold }, technique)
   rules[technique.kind](maker)

@@ -36,7 +36,7 @@ function techniqueText(snapshot: ReportSnapshot): string {
     snapshot.technologist ? `Recorded by ${snapshot.technologist}.` : '',
     ...circumstanceSentences(snapshot),
     snapshot.needleExamination || 'Needle examination not done.',
-    ...snapshot.assessment.runs.flatMap(run => run.notDone ? [`${run.title}: not done, ${run.notDone}.`] : []),
+    ...snapshot.assessment.runs.flatMap(run => run.notDone ? [`${run.title}: ${run.notDone.replace(/\.$/, '')}.`] : []),
     ...qualityNotes(snapshot),
     snapshot.handOverNote ? `Note at the bench: ${snapshot.handOverNote}` : '',
   ].filter(Boolean).join(' ')

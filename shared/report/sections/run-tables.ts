@@ -1,7 +1,8 @@
 import type { RunKind } from '../../catalogue/types'
-import { emptyCell, heading, plainCell, withSides, type ReportSection, type TableBlock } from '../blocks'
+import type { ReportSnapshot } from '../../schemas/report'
+import { emptyCell, heading, plainCell, withSides, type ReportSection, type TableBlock, type TextCell } from '../blocks'
 import { runTable } from '../run-table'
-import { runsOf, shortRunName, type FrozenRun, type ReportSource } from '../source'
+import { shortRunName, type FrozenRun, type ReportSource } from '../source'
 import { reportWords, type ReportWords } from '../words'
 
 /** A section that is one table of all runs of a kind. */
@@ -26,8 +27,18 @@ export const blink = tableOf('blink', 'blink', words => words.blink)
 
 function needleRow(frozen: FrozenRun, ordinals: string[], words: ReportWords): TableBlock['rows'][number] {
   const typed = frozen.run.rows[0]?.ordinals ?? {}
-  const name = withSides(`${words.sides[frozen.run.side]} ${shortRunName(frozen)}`)
-  return { cells: [{ words: name }, ...ordinals.map(id => typed[id] ? plainCell(typed[id]) : emptyCell)], first: true, struck: false, runId: frozen.run.id }
+  const reason = frozen.run.notDoneBecause?.trim()
+  const name: TextCell = { words: withSides(`${words.sides[frozen.run.side]} ${shortRunName(frozen)}`), below: reason ? `${words.notExamined}: ${reason}` : frozen.technique.roots }
+  return { cells: [name, ...ordinals.map(id => typed[id] ? plainCell(typed[id]) : emptyCell)], first: true, struck: false, runId: frozen.run.id }
+}
+
+/** Every muscle, the ones that were left out with their reason. */
+function needleRuns(snapshot: ReportSnapshot): FrozenRun[] {
+  return snapshot.assessment.runs.flatMap((assessment) => {
+    const run = snapshot.study.runs.find(candidate => candidate.id === assessment.runId)
+    const technique = snapshot.techniques.find(candidate => candidate.id === assessment.technique)
+    return run && technique?.kind === 'needle' ? [{ run, technique, assessment }] : []
+  })
 }
 
 /** Needle findings as they were entered: scales in words, nothing computed. */
@@ -35,7 +46,7 @@ export const needle: ReportSection<ReportSource> = {
   id: 'needle',
   blocks: ({ snapshot }) => {
     const words = reportWords(snapshot.language)
-    const runs = runsOf(snapshot, ['needle'])
+    const runs = needleRuns(snapshot)
     const ordinals = runs[0]?.technique.ordinals ?? []
     if (runs.length === 0) return []
     return [heading(2, words.needle, 'needle'), {

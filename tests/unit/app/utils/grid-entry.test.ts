@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest'
 import { quantities } from '../../../../shared/catalogue/quantities'
 import { siteOf } from '../../../../shared/catalogue/nerves'
-import { entryText, parseEntry, parseSeries, type EntryPlace } from '../../../../app/utils/grid-entry'
+import { entryText, parseEntry, parseSeries, seriesText, type EntryPlace } from '../../../../app/utils/grid-entry'
 
 const leg: EntryPlace = { site: siteOf('fibular-motor-edb', 'below-fibular-head'), segmentLabel: 'ankle to below fibular head' }
 
@@ -77,6 +77,13 @@ describe('a distance is judged by its segment', () => {
   ])('$typed taken', ({ typed, place }) => {
     expect(parseEntry(typed, quantities.distanceMm, place)).toEqual({ kind: 'entry', entry: Number(typed) })
   })
+})
+
+it('a series stands in its cell as it can be typed again', () => {
+  const entries = [28.1, 'no-response', 28, 'technical', 'not-done', 'stopped'] as const
+  expect(seriesText(entries, 1)).toBe('28.1 n 28.0 x d s')
+  expect(parseSeries(seriesText(entries, 1), quantities.minimumLatencyMs)).toEqual({ kind: 'series', entries })
+  expect(parseSeries('28.1 no response 28 technical not done Stopped', quantities.minimumLatencyMs)).toEqual({ kind: 'series', entries })
 })
 
 it('a series keeps decimal commas and absences apart', () => {
