@@ -5,6 +5,9 @@ import * as arrival from './2026-12-11-arrival'
 import * as policies from './2026-12-12-a-policies'
 import * as benchday from './2026-12-12-benchday'
 import * as kinds from './2026-12-12-kinds'
+import * as people from './2026-12-12-people'
+import * as peopleDirectory from './2026-12-12-people-directory'
+import * as peopleRetention from './2026-12-12-people-retention'
 import * as reading from './2026-12-12-reading'
 
 /** Every migration, in order. Never edit one that has been released; add a new file and a line here. */
@@ -15,5 +18,8 @@ export const migrations: Record<string, Migration> = {
   '2026-12-12-a-policies': policies,
   '2026-12-12-benchday': benchday,
   '2026-12-12-kinds': kinds,
+  '2026-12-12-people': people,
+  '2026-12-12-people-directory': peopleDirectory,
+  '2026-12-12-people-retention': peopleRetention,
   '2026-12-12-reading': reading,
 }

@@ -56,6 +56,9 @@ export const permissions = {
   'site.write': [A],
   'audit.read': [A, D],
   'overview.read': [A, D],
+  'retention.manage': [A, D],
+  // Handing a report, or who saw the record, to the patient it is about.
+  'report.copy': [N, A, D],
   'task.read': [T, N, A, D],
 
   // The desk of a referring physician: own referrals and final reports of own patients only.
@@ -92,6 +95,9 @@ export const rooms = [
   { id: 'ledger', label: 'Ledger', path: '/ledger', action: 'audit.read' },
   { id: 'desk', label: 'Desk', path: '/desk', action: 'desk.read' },
 ] as const satisfies readonly { id: string, label: string, path: string, action: Action }[]
+
+/** Roles whose holders can be the second of two people: a new one needs the consent of somebody who holds one. */
+export const rolesThatApprove: readonly Role[] = [A, D]
 
 /** Roles whose holders sign or approve: they have the second factor from their first sign-in on. */
 export const rolesWithSecondFactor: readonly Role[] = [N, D]

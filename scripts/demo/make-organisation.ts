@@ -9,6 +9,8 @@ import { currentHoldings } from '#server/services/current-holdings'
 import { giveDeskAccess } from '#server/services/desk-access'
 import { makeFirstAdministrator, writeFirstRunLink } from '#server/services/first-run'
 import { confirmSecondFactor, startSecondFactor } from '#server/services/second-factor'
+import { addDelegate } from '#server/services/practice-delegates'
+import { decideRole, listRoleProposals } from '#server/services/role-proposals'
 import { makeSetUpLink, setPassword } from '#server/services/set-up-link'
 import { approveAdoption, proposeAdoption } from '#server/services/adopt-set'
 import { referenceTable } from '#reference-tables/index'
@@ -43,6 +45,7 @@ export async function makeOrganisation(context: ServiceContext, clock: DemoClock
   const link = await writeFirstRunLink({ ...context, settings: { ...context.settings, demonstration: false } })
   await makeFirstAdministrator(context, { token: tokenOf(link ?? ''), organisationName: organisation.name, siteName: sites[0]!.name, town: sites[0]!.town, timeZone: organisation.timeZone, name: first.name, email: administrator.email, password: administrator.password })
   await context.db.updateTable('organisation').set({ demonstration: 1, paperSize: organisation.paperSize }).execute()
+  await context.db.updateTable('user').set({ emailConfirmedAt: clock.read().toISOString() }).execute()
   administrator.id = (await context.db.selectFrom('user').select('id').executeTakeFirstOrThrow()).id
   people.push(administrator)
 
@@ -50,12 +53,19 @@ export async function makeOrganisation(context: ServiceContext, clock: DemoClock
   const made = await makeSites(await asAdministrator())
   administrator.siteIds = made.map(site => site.id)
   for (const person of staff.slice(1)) people.push(await makePerson(await asAdministrator(), clock, person, made))
+  const director = people.find(person => person.role === 'medical-director')!
+  await agreeToRoles(actingAs(context, await actorFor(context, director.id)))
   const { readers, ...directory } = await makeDirectory(await asAdministrator(), clock, made[0]!.id)
   return { sites: made, people: [...people, ...readers], ...directory }
 }
 
+/** The medical director agrees to the roles that one administrator alone cannot give. */
+async function agreeToRoles(context: ServiceContext): Promise<void> {
+  for (const { id } of await listRoleProposals(context)) await decideRole(context, { id, approve: true })
+}
+
 async function makeSites(context: ServiceContext): Promise<DemoSite[]> {
-  const rest = { timeZone: organisation.timeZone, handMinimumC: 32, footMinimumC: 30, distanceUncertaintyMm: 5, latencyUncertaintyMs: 0.1 }
+  const rest = { timeZone: organisation.timeZone }
   const existing = await context.db.selectFrom('site').select('id').executeTakeFirstOrThrow()
   await changeSite(context, existing.id, { ...sites[0]!, ...rest })
   const made: DemoSite[] = [{ id: existing.id, name: sites[0]!.name, rooms: sites[0]!.rooms, timeZone: organisation.timeZone }]
@@ -69,9 +79,11 @@ async function makePerson(context: ServiceContext, clock: DemoClock, { key, name
   const siteIds = where.map(index => made[index]!.id)
   const id = await addPerson(context, { email, name, printedName: name, credentials, inTraining: 'inTraining' in rest, holdings: siteIds.flatMap(siteId => roles.map(role => ({ siteId, role }))) })
   const password = randomPassword()
-  const answer = await makeSetUpLink(context, id, false)
-  if (answer.waiting) throw new Error('A first link needs no second person.')
+  const answer = await makeSetUpLink(context, id, { resetSecondFactor: false })
+  if (answer.waiting || answer.link === null) throw new Error('A first link needs no second person.')
   await setPassword(context, { token: tokenOf(answer.link), password })
+  // Its mail goes to the fake alone, so the answer to it is written down here.
+  await context.db.updateTable('user').set({ emailConfirmedAt: clock.read().toISOString() }).where('id', '=', id).execute()
   const person: DemoPerson = { key, id, role: roles[0], name, email, password, siteIds }
   if (!roles.some(role => rolesWithSecondFactor.includes(role))) return person
   const { secret } = await startSecondFactor(context, { id, email })
@@ -93,6 +105,7 @@ async function makeDirectory(context: ServiceContext, clock: DemoClock, siteId: 
     const { passphrase } = await renewPassphrase(context, id)
     await noteHandedOver(context, id, { by: 'telephone', on: localDate(context.clock(), organisation.timeZone) })
     made.push({ id, name, passphrase })
+    if (made.length === 1) await addDelegate(context, id, { name: 'Bettina Orr', duty: 'reception', phone: '+00 55 0997' })
     for (const person of people) {
       const email = `${addressOf(person.name).split('@')[0]}@${name.toLowerCase().replace(/[^a-z]+/g, '-')}.example`
       const physician = await addPhysician(context, { practiceId: id, name: person.name, title: 'MD', email, phone: '+00 55 0998' })
@@ -105,7 +118,7 @@ async function makeDirectory(context: ServiceContext, clock: DemoClock, siteId: 
 }
 
 async function openDesk(context: ServiceContext, { key, physicianId, name, email, siteId }: { key: string, physicianId: string, name: string, email: string, siteId: string }): Promise<DemoPerson> {
-  const { userId, link } = await giveDeskAccess(context, { physicianId, siteId })
+  const { userId, link } = await giveDeskAccess(context, { physicianId, siteId, byMail: false })
   const password = randomPassword()
   await setPassword(context, { token: tokenOf(link ?? ''), password })
   return { key, id: userId, role: 'referring-physician', name, email, password, siteIds: [siteId] }

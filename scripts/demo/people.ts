@@ -11,6 +11,8 @@ export const sites = [
 /** `sites` are indices of the list above. The first of each role is printed at the start. */
 export const staff = [
   { key: 'administrator', name: 'Ines Halloran', credentials: '', roles: ['administrator'], sites: [0, 1, 2, 3] },
+  // The second person from the start on: later administrators need somebody's consent.
+  { key: 'medical-director', name: 'Dr Henrike Solano', credentials: 'MD, PhD, neurologist', roles: ['medical-director', 'neurologist'], sites: [0, 1, 2, 3] },
   { key: 'administrator-2', name: 'Tobias Wenlock', credentials: '', roles: ['administrator'], sites: [1, 2] },
   { key: 'technologist', name: 'Mirela Oakes', credentials: 'Clinical physiologist', roles: ['technologist'], sites: [0, 1] },
   { key: 'technologist-2', name: 'Jonas Pell', credentials: 'Clinical physiologist', roles: ['technologist'], sites: [0] },
@@ -20,7 +22,6 @@ export const staff = [
   { key: 'neurologist', name: 'Dr Eluned Varga', credentials: 'MD, neurologist', roles: ['neurologist'], sites: [0, 1, 2, 3] },
   { key: 'neurologist-2', name: 'Dr Casimir Thorne', credentials: 'MD, neurologist', roles: ['neurologist'], sites: [0, 1] },
   { key: 'neurologist-3', name: 'Dr Noor Albright', credentials: 'MD, neurologist', roles: ['neurologist'], sites: [2, 3] },
-  { key: 'medical-director', name: 'Dr Henrike Solano', credentials: 'MD, PhD, neurologist', roles: ['medical-director', 'neurologist'], sites: [0, 1, 2, 3] },
   { key: 'neurologist-in-training', name: 'Dr Amadeus Pike', credentials: 'MD', roles: ['neurologist'], sites: [0], inTraining: true },
 ] as const
 

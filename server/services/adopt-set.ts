@@ -6,6 +6,7 @@ import { techniqueOf } from '#shared/catalogue/nerves'
 import { DomainError, type FieldError } from '#shared/errors'
 import { now, type ServiceContext } from './context'
 import { recordAuditEvent } from './record-audit-event'
+import { checkSecondPerson } from './second-person'
 import { localDate } from './site-time'
 
 export interface Proposal { siteId: string, setId: string, setVersion: number, techniques: string[] | null, effectiveOn: string }
@@ -54,6 +55,7 @@ export async function approveAdoption(context: ServiceContext, { id }: { id: str
     const adoption = await adoptionIn(trx, id)
     const { siteId, setId, setVersion } = adoption
     if (adoption.proposedBy === context.actor.userId) throw new DomainError('not-allowed', { message: 'A set is approved by another person than the one who proposed it.' })
+    await checkSecondPerson(context, trx, adoption.proposedBy)
     const today = await todayAt(context, trx, siteId)
     const effectiveOn = adoption.effectiveOn < today ? today : adoption.effectiveOn
     const approved = await trx.updateTable('referenceAdoption').set({ approvedBy: context.actor.userId, approvedAt: now(context), effectiveOn }).where('id', '=', id).where('approvedAt', 'is', null).where('endedOn', 'is', null).executeTakeFirst()

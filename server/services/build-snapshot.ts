@@ -1,5 +1,6 @@
 import type { Database } from '#server/database/connection'
 import { cautionAnswers } from '#server/database/queries/bands'
+import { policyInForce } from '#server/database/queries/policies'
 import { copiesOf } from '#server/database/queries/referrals'
 import { patientView } from '#server/database/queries/patients'
 import { studyAround } from '#server/database/queries/study-around'
@@ -10,6 +11,7 @@ import { isOpen } from '#shared/report/sign-checks'
 import type { ServiceContext } from './context'
 import { printedNameOf } from './printed-name'
 import type { ReadingFacts } from './reading-facts'
+import { localDate } from './site-time'
 
 type Signature = ReportSnapshot['signature']
 type Person = NonNullable<ReportSnapshot['referral']['physician']>
@@ -63,12 +65,13 @@ async function benchPart(db: Database, { assessed }: ReadingFacts): Promise<Repo
 export async function buildSnapshot(context: ServiceContext, db: Database, facts: ReadingFacts, { number, signature }: { number: string, signature: Signature }): Promise<ReportSnapshot> {
   const { site, study, policy, assessment, draft, referral, assessed, report } = facts
   const organisation = await db.selectFrom('organisation').selectAll().where('id', '=', site.organisationId).executeTakeFirstOrThrow()
+  const { body: form } = await policyInForce(db, 'report-form', null, localDate(new Date(signature.at), organisation.timeZone))
   const { id, recordNumber, familyName, givenName, birthDate, sexForLimits } = patientView(facts.patient)
   return {
     format: SNAPSHOT_FORMAT,
     demonstration: organisation.demonstration === 1 || context.settings.demonstration,
     number, version: 1, status: 'final', reason: '', supersedes: null,
-    organisation: { name: organisation.name, disclaimer: organisation.disclaimer, paperSize: organisation.paperSize, timeZone: organisation.timeZone },
+    organisation: { name: organisation.name, disclaimer: form.disclaimer, paperSize: form.paperSize, timeZone: organisation.timeZone },
     site: { name: site.name, town: site.town, address: site.address, phone: site.phone, timeZone: site.timeZone },
     language: referral.reportLanguage,
     patient: { id, recordNumber, familyName, givenName, birthDate, sexForLimits },

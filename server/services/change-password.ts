@@ -1,5 +1,6 @@
 import type { Trx } from '#server/database/connection'
 import { DomainError } from '#shared/errors'
+import { changedValues } from './changed-fields'
 import type { ServiceContext } from './context'
 import { ownWords } from './own-words'
 import { complaintAbout, hashPassword } from './passwords'
@@ -52,9 +53,9 @@ export async function signOutEverywhere(context: ServiceContext, userId: string)
 export async function changeProfile(context: ServiceContext, userId: string, changes: { printedName?: string, credentials?: string }): Promise<void> {
   await context.db.transaction().execute(async (trx) => {
     const old = await trx.selectFrom('user').select(['printedName', 'credentials']).where('id', '=', userId).executeTakeFirstOrThrow()
-    const fields = (['printedName', 'credentials'] as const).filter(field => changes[field] !== undefined && changes[field] !== old[field])
-    if (fields.length === 0) return
-    await trx.updateTable('user').set(Object.fromEntries(fields.map(field => [field, changes[field]]))).where('id', '=', userId).execute()
-    await recordAuditEvent(context, trx, { name: 'account.profile-changed', subject: 'user', subjectId: userId, data: { fields } })
+    const changed = changedValues(old, changes)
+    if (changed.length === 0) return
+    await trx.updateTable('user').set(Object.fromEntries(changed.map(change => [change.field, change.after]))).where('id', '=', userId).execute()
+    await recordAuditEvent(context, trx, { name: 'account.profile-changed', subject: 'user', subjectId: userId, data: { changes: changed } })
   })
 }

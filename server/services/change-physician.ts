@@ -2,9 +2,11 @@ import { randomUUID } from 'node:crypto'
 import type { Trx } from '#server/database/connection'
 import { DomainError } from '#shared/errors'
 import type { PhysicianChanges, PhysicianInput } from '#shared/schemas/directory'
-import { changedFields } from './changed-fields'
+import { changedValues } from './changed-fields'
 import { now, type ServiceContext } from './context'
+import { endDeskAccessIn } from './desk-access'
 import { recordAuditEvent } from './record-audit-event'
+import { changeShared, handOverUnderWay } from './shared-directory'
 import { endOpenCodes } from './verify-address'
 
 /**
@@ -26,7 +28,8 @@ export async function addPhysician(context: ServiceContext, { practiceId, email,
 
 /**
  * Changes an entry. A changed address loses its verification, and a code on its way to the earlier one is worth nothing
- * any more. `leftOn`: from that day on nothing is sent to them at this practice, what already waits included.
+ * any more; access to the desk ends with it. `leftOn`: from that day on nothing is sent to them at this practice, what
+ * already waits included, and what is under way becomes tasks.
  * @throws DomainError 'not-found' · 'not-valid' as `addPhysician`
  */
 export async function changePhysician(context: ServiceContext, id: string, wish: PhysicianChanges): Promise<void> {
@@ -34,13 +37,17 @@ export async function changePhysician(context: ServiceContext, id: string, wish:
   await context.db.transaction().execute(async (trx) => {
     const before = await trx.selectFrom('physician').selectAll().where('id', '=', id).executeTakeFirst()
     if (!before) throw new DomainError('not-found')
-    const changed = changedFields(before, changes)
+    const changed = changedValues(before, changes)
     if (changed.length === 0) return
     await checkNotTwice(trx, { practiceId: before.practiceId, email: changes.email ?? before.email, name: changes.name ?? before.name, exceptId: id })
+    await changeShared(context, trx, before.practiceId, 'The entry of a physician')
     const newAddress = changed.some(change => change.field === 'email')
     await trx.updateTable('physician').set(newAddress ? { ...changes, emailVerifiedAt: null, emailVerifiedBy: null, emailVerifiedNote: '' } : changes).where('id', '=', id).execute()
-    if (newAddress) await endOpenCodes(context, trx, id)
     await recordAuditEvent(context, trx, { name: 'physician.changed', subject: 'physician', subjectId: id, data: { changes: changed } })
+    if (newAddress) await endOpenCodes(context, trx, id)
+    // The account was made under the earlier address: who reads the new one may be somebody else.
+    if (newAddress && before.userId) await endDeskAccessIn(context, trx, id)
+    if (changes.leftOn) await handOverUnderWay(context, trx, before, 'that physician left the practice', `${changes.leftOn}T00:00:00.000Z`)
   })
 }
 

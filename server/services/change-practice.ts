@@ -2,11 +2,12 @@ import { randomUUID } from 'node:crypto'
 import type { Trx } from '#server/database/connection'
 import { DomainError } from '#shared/errors'
 import type { HandOverMeans, PassphraseAnswer, PracticeChanges, PracticeInput } from '#shared/schemas/directory'
-import { changedFields } from './changed-fields'
+import { changedValues } from './changed-fields'
 import { now, type ServiceContext } from './context'
 import { makePassphrase } from './make-passphrase'
 import { organisationDay } from './organisation-day'
 import { recordAuditEvent } from './record-audit-event'
+import { changeShared } from './shared-directory'
 
 /** @throws DomainError 'not-valid' when a practice of this name stands in the directory for this town */
 export async function addPractice(context: ServiceContext, input: PracticeInput): Promise<{ id: string }> {
@@ -19,13 +20,14 @@ export async function addPractice(context: ServiceContext, input: PracticeInput)
   })
 }
 
-/** @throws DomainError 'not-found' · 'not-valid' as `addPractice` */
+/** @throws DomainError 'not-found' · 'not-valid' as `addPractice` · 'not-allowed' as `changeShared` */
 export async function changePractice(context: ServiceContext, id: string, changes: PracticeChanges): Promise<void> {
   await context.db.transaction().execute(async (trx) => {
     const before = await openPractice(trx, id)
-    const changed = changedFields(before, changes)
+    const changed = changedValues(before, changes)
     if (changed.length === 0) return
     await checkFree(trx, { name: changes.name ?? before.name, town: changes.town ?? before.town }, id)
+    await changeShared(context, trx, id, 'The entry of a practice')
     await trx.updateTable('practice').set(changes).where('id', '=', id).execute()
     await recordAuditEvent(context, trx, { name: 'practice.changed', subject: 'practice', subjectId: id, data: { changes: changed } })
   })
@@ -54,22 +56,24 @@ export async function renewPassphrase(context: ServiceContext, practiceId: strin
   const madeAt = now(context)
   await context.db.transaction().execute(async (trx) => {
     const practice = await openPractice(trx, practiceId)
-    await trx.updateTable('practice').set({ passphraseSealed: context.keys.seal(passphrase), passphraseMadeAt: madeAt, passphraseHandedOverAt: null, passphraseHandedOverOn: null, passphraseHandedOverBy: null }).where('id', '=', practiceId).execute()
+    await changeShared(context, trx, practiceId, 'The passphrase of a practice')
+    await trx.updateTable('practice').set({ passphraseSealed: context.keys.seal(passphrase), passphraseMadeAt: madeAt, passphraseHandedOverAt: null, passphraseHandedOverOn: null, passphraseHandedOverBy: null, passphraseHandedOverTo: '' }).where('id', '=', practiceId).execute()
     await recordAuditEvent(context, trx, { name: 'practice.passphrase-made', subject: 'practice', subjectId: practiceId, data: { replaced: practice.passphraseSealed !== null } })
   })
   return { passphrase, madeAt }
 }
 
 /**
- * Notes that the practice has its passphrase: on which day and by which way. From now on its reports are mailed.
+ * Notes that the practice has its passphrase: on which day, by which way and who took it. From now on its reports are mailed.
  * @throws DomainError 'not-found' · 'not-valid' without a passphrase or for a day after today
  */
-export async function noteHandedOver(context: ServiceContext, practiceId: string, { by, on }: { by: HandOverMeans, on: string }): Promise<void> {
+export async function noteHandedOver(context: ServiceContext, practiceId: string, { by, on, to = '' }: { by: HandOverMeans, on: string, to?: string }): Promise<void> {
   if (on > await organisationDay(context)) throw new DomainError('not-valid', { fields: [{ path: 'on', message: 'The day of the hand-over must not be after today.' }] })
   await context.db.transaction().execute(async (trx) => {
     const practice = await openPractice(trx, practiceId)
+    await changeShared(context, trx, practiceId, 'The passphrase of a practice')
     if (practice.passphraseSealed === null || practice.passphraseMadeAt === null) throw new DomainError('not-valid', { message: 'The practice has no passphrase yet. Make one first.' })
-    await trx.updateTable('practice').set({ passphraseHandedOverAt: now(context), passphraseHandedOverOn: on, passphraseHandedOverBy: by }).where('id', '=', practiceId).execute()
+    await trx.updateTable('practice').set({ passphraseHandedOverAt: now(context), passphraseHandedOverOn: on, passphraseHandedOverBy: by, passphraseHandedOverTo: to }).where('id', '=', practiceId).execute()
     await recordAuditEvent(context, trx, { name: 'practice.passphrase-handed-over', subject: 'practice', subjectId: practiceId, data: { by, on } })
   })
 }

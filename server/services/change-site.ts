@@ -1,9 +1,10 @@
 import { randomUUID } from 'node:crypto'
 import type * as z from 'zod'
 import type { Trx } from '#server/database/connection'
-import { siteView } from '#server/database/queries/sites'
+import { siteBasics } from '#server/database/queries/sites'
 import { DomainError } from '#shared/errors'
-import type { siteSchema, SiteView } from '#shared/schemas/user'
+import type { siteSchema, SiteBasics } from '#shared/schemas/user'
+import { changedValues } from './changed-fields'
 import { now, type ServiceContext } from './context'
 import { recordAuditEvent } from './record-audit-event'
 import { isTimeZone, localDate } from './site-time'
@@ -14,29 +15,28 @@ export type SiteInput = z.output<typeof siteSchema>
  * Adds a site; whoever adds it is its first administrator.
  * @throws DomainError 'not-valid' when the name is in use or the time zone is unknown
  */
-export async function addSite(context: ServiceContext, input: SiteInput): Promise<SiteView> {
+export async function addSite(context: ServiceContext, input: SiteInput): Promise<SiteBasics> {
   return await context.db.transaction().execute(async (trx) => {
     const { id: organisationId } = await trx.selectFrom('organisation').select('id').executeTakeFirstOrThrow()
     await checkSite(trx, input, null)
     const site = await trx.insertInto('site').values({ ...columnsOf(input), id: randomUUID(), organisationId, closedAt: null, createdAt: now(context) }).returningAll().executeTakeFirstOrThrow()
     await recordAuditEvent(context, trx, { name: 'site.added', subject: 'site', subjectId: site.id, siteId: site.id, data: {} })
     if (context.actor.userId) await makeAdministrator(context, trx, context.actor.userId, site)
-    return siteView(site)
+    return siteBasics(site)
   })
 }
 
 /** @throws DomainError 'not-found' · 'not-valid' */
-export async function changeSite(context: ServiceContext, id: string, changes: Partial<SiteInput>): Promise<SiteView> {
+export async function changeSite(context: ServiceContext, id: string, changes: Partial<SiteInput>): Promise<SiteBasics> {
   return await context.db.transaction().execute(async (trx) => {
     const old = await trx.selectFrom('site').selectAll().where('id', '=', id).where('closedAt', 'is', null).executeTakeFirst()
     if (!old) throw new DomainError('not-found')
     await checkSite(trx, { name: changes.name ?? old.name, timeZone: changes.timeZone ?? old.timeZone }, id)
-    const columns = columnsOf(changes)
-    const fields = (Object.keys(columns) as (keyof typeof columns)[]).filter(field => columns[field] !== undefined && columns[field] !== old[field])
-    if (fields.length === 0) return siteView(old)
-    const site = await trx.updateTable('site').set(Object.fromEntries(fields.map(field => [field, columns[field]]))).where('id', '=', id).returningAll().executeTakeFirstOrThrow()
-    await recordAuditEvent(context, trx, { name: 'site.changed', subject: 'site', subjectId: id, siteId: id, data: { fields: fields.map(field => field === 'roomsJson' ? 'rooms' : field) } })
-    return siteView(site)
+    const changed = changedValues(siteBasics(old), changes)
+    if (changed.length === 0) return siteBasics(old)
+    const site = await trx.updateTable('site').set(columnsOf(changes)).where('id', '=', id).returningAll().executeTakeFirstOrThrow()
+    await recordAuditEvent(context, trx, { name: 'site.changed', subject: 'site', subjectId: id, siteId: id, data: { changes: changed } })
+    return siteBasics(site)
   })
 }
 

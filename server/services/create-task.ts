@@ -15,9 +15,9 @@ export interface NewTask {
   dueAt?: string
 }
 
-/** Something that a person has to do; one open task of a kind for a thing is enough. */
+/** Something that a person has to do; at a site one open task of a kind for a thing is enough. */
 export async function createTask(context: ServiceContext, trx: Trx, { kind, subject, subjectId, siteId, ownerRole, ownerId, sentence, dueAt }: NewTask): Promise<void> {
-  const open = await trx.selectFrom('task').select('id').where('kind', '=', kind).where('subjectId', '=', subjectId).where('doneAt', 'is', null).executeTakeFirst()
+  const open = await trx.selectFrom('task').select('id').where('kind', '=', kind).where('subjectId', '=', subjectId).where('siteId', 'is', siteId).where('doneAt', 'is', null).executeTakeFirst()
   if (open) return
   await trx.insertInto('task').values({ id: randomUUID(), kind, subject, subjectId, siteId, ownerId: ownerId ?? null, ownerRole: ownerRole ?? null, sentence, createdAt: now(context), dueAt: dueAt ?? null, doneAt: null, doneBy: null }).execute()
 }

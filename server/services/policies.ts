@@ -8,6 +8,7 @@ import { policies, type PolicyName } from '#shared/policies/index'
 import { mayAt, now, sitesWhere, type ServiceContext } from './context'
 import { organisationDay } from './organisation-day'
 import { recordAuditEvent } from './record-audit-event'
+import { checkSecondPerson } from './second-person'
 import { localDate } from './site-time'
 
 export interface PolicyProposal { name: PolicyName, siteId: string | null, body: unknown, note: string, effectiveOn: string }
@@ -59,6 +60,7 @@ export async function approvePolicy(context: ServiceContext, { id }: { id: strin
   await context.db.transaction().execute(async (trx) => {
     const { name, siteId, version, proposedBy, ...proposal } = await openProposal(trx, id)
     if (proposedBy === context.actor.userId) throw new DomainError('not-allowed', { message: 'A policy is approved by another person than the one who proposed it.' })
+    await checkSecondPerson(context, trx, proposedBy)
     const day = await today(context, trx, siteId)
     const effectiveOn = proposal.effectiveOn < day ? day : proposal.effectiveOn
     await trx.updateTable('policyVersion').set({ approvedBy: context.actor.userId, approvedAt: now(context), effectiveOn }).where('id', '=', id).execute()

@@ -42,7 +42,7 @@ function sessionUserOf(context: ServiceContext, rows: SessionRows): SessionUser 
   const sites = new Map(rows.filter(row => holdings.some(holding => holding.siteId === row.siteId)).map(row => [row.siteId!, { id: row.siteId!, name: row.siteName!, town: row.town!, timeZone: row.timeZone! }]))
   const secondFactor = first.totpEnabledAt !== null
   return {
-    id: first.id, email: first.email, name: first.name, printedName: first.printedName, credentials: first.credentials,
+    id: first.id, email: first.email, name: first.name, printedName: first.printedName, credentials: first.credentials, emailConfirmed: first.emailConfirmedAt !== null,
     holdings, sites: [...sites.values()], secondFactor, inTraining: first.inTraining === 1,
     mustEnrol: !secondFactor && holdings.some(holding => rolesWithSecondFactor.includes(holding.role)),
     demonstration: context.settings.demonstration, idleMinutes: context.settings.idleMinutes, openTasks: 0,

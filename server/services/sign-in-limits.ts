@@ -27,6 +27,8 @@ const limits = {
   ownCode: { points: 10, duration: QUARTER },
   /** Calls with a one-time token. The token itself has 256 bits; this keeps the hashing of passwords from being driven by strangers. */
   link: { points: 30, duration: QUARTER },
+  /** Mails with a link to set a new password, by account: nobody's mailbox is filled, and nobody learns that it was refused. */
+  reset: { points: 3, duration: 3600 },
 } as const
 type LimitName = keyof typeof limits
 type Limiters = Record<LimitName, RateLimiterMemory>
@@ -86,6 +88,18 @@ export async function forgiveOwnCodes(db: Database, userId: string): Promise<voi
 /** @throws DomainError 'too-many-requests' */
 export async function countLinkAttempt(db: Database, address: string): Promise<void> {
   await consume(db, 'link', address)
+}
+
+/** Counts a wish for a new password by mail; false when there were too many, which the caller keeps to itself. */
+export async function countReset(db: Database, account: string): Promise<boolean> {
+  try {
+    await limitersOf(db).reset.consume(account)
+    return true
+  }
+  catch (refused) {
+    if (refused instanceof RateLimiterRes) return false
+    throw refused
+  }
 }
 
 async function consume(db: Database, name: LimitName, key: string): Promise<void> {

@@ -7,6 +7,7 @@ import { now, sitesWhere, type ServiceContext } from './context'
 import { organisationDay } from './organisation-day'
 import { queueMail } from './queue-mail'
 import { recordAuditEvent } from './record-audit-event'
+import { changeShared } from './shared-directory'
 
 export const ADDRESS_CODE = 'verify-address'
 export const codeHours = 72
@@ -125,7 +126,8 @@ async function markVerified(context: ServiceContext, trx: Trx, physicianId: stri
 export async function verifyOtherwise(context: ServiceContext, physicianId: string, reason: string): Promise<void> {
   const today = await organisationDay(context)
   await context.db.transaction().execute(async (trx) => {
-    await presentPhysician(trx, physicianId, today)
+    const { practiceId } = await presentPhysician(trx, physicianId, today)
+    await changeShared(context, trx, practiceId, 'How the address of a physician was checked')
     await endOpenCodes(context, trx, physicianId)
     await markVerified(context, trx, physicianId, { by: 'other', reason })
   })

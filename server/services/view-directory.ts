@@ -1,11 +1,12 @@
 import { directoryNamesakes, physiciansAt, practiceById, practicePage, waitingDeliveries } from '#server/database/queries/directory'
+import { sitesUsing } from '#server/database/queries/practice-use'
 import { recipientById } from '#server/database/queries/recipients'
 import type { Practice } from '#server/database/tables/practice'
 import { DomainError } from '#shared/errors'
 import type { Page } from '#shared/schemas/common'
 import type { OpenCode, PassphraseState, PhysicianDetail, PracticeRow, PracticeView } from '#shared/schemas/directory'
 import { resolveDelivery } from './change-delivery'
-import { sitesWhere, type ServiceContext } from './context'
+import { mayAt, sitesWhere, type ServiceContext } from './context'
 import { organisationDay } from './organisation-day'
 import { mostTries, openCodes, type CodeData } from './verify-address'
 
@@ -13,7 +14,7 @@ type Entry = Awaited<ReturnType<typeof physiciansAt>>[number]
 
 const passphraseState = (practice: Practice): PassphraseState => practice.passphraseSealed === null ? 'none' : practice.passphraseHandedOverAt === null ? 'made' : 'handed-over'
 
-export async function listPractices(context: ServiceContext, query: { search: string, show: 'all' | 'to-do', page: number, pageSize: number }): Promise<Page<PracticeRow>> {
+export async function listPractices(context: ServiceContext, query: { search: string, show: 'all' | 'to-do' | 'same-name', page: number, pageSize: number }): Promise<Page<PracticeRow>> {
   const { rows, total, people } = await practicePage(context.db, { ...query, today: await organisationDay(context) })
   return {
     rows: rows.map(row => ({
@@ -29,13 +30,16 @@ export async function viewPractice(context: ServiceContext, id: string): Promise
   const practice = await practiceById(context.db, id)
   if (!practice) throw new DomainError('not-found')
   const today = await organisationDay(context)
+  const sites = await sitesUsing(context.db, id)
   const people = await physiciansAt(context.db, [id], today)
   const waiting = await waitingDeliveries(context.db, people.map(person => person.id), sitesWhere(context.actor, 'delivery.manage'))
   const physicians: PhysicianDetail[] = []
   for (const person of people) physicians.push({ ...await detailOf(context, person, today), waiting: waiting.filter(delivery => delivery.physicianId === person.id).length })
   return {
     id, name: practice.name, town: practice.town, address: practice.address, phone: practice.phone, deliveryMethod: practice.deliveryMethod, closed: practice.closedAt !== null,
-    passphrase: { state: passphraseState(practice), madeAt: practice.passphraseMadeAt, handedOverOn: practice.passphraseHandedOverOn, by: practice.passphraseHandedOverBy },
+    passphrase: { state: passphraseState(practice), madeAt: practice.passphraseMadeAt, handedOverOn: practice.passphraseHandedOverOn, by: practice.passphraseHandedOverBy, to: practice.passphraseHandedOverTo },
+    delegates: await context.db.selectFrom('practiceDelegate').select(['id', 'name', 'duty', 'phone']).where('practiceId', '=', id).where('endedAt', 'is', null).orderBy('name').execute(),
+    usedBy: sites.map(site => site.name), mayChange: sites.length === 0 || sites.some(site => mayAt(context.actor, 'directory.write', site.id)),
     physicians,
   }
 }

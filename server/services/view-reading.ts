@@ -1,7 +1,10 @@
 import type { Database } from '#server/database/connection'
+import { directoryNamesakes } from '#server/database/queries/directory'
+import type { Recipient } from '#server/database/queries/recipients'
 import { versionLines } from '#server/database/queries/reports'
 import type { ReadingView } from '#shared/schemas/report'
 import type { ServiceContext } from './context'
+import { organisationDay } from './organisation-day'
 import { readingFacts } from './reading-facts'
 import { recordView } from './record-view'
 
@@ -28,7 +31,13 @@ export async function viewReading(context: ServiceContext, studyId: string, db: 
     namesakes,
     phrases: facts.phrases,
     promptContact: facts.promptContact,
-    recipients: recipients.map(({ name, practiceName, town }) => ({ name, practiceName, town })),
+    recipients: await Promise.all(recipients.map(recipient => withNamesakes(context, db, recipient))),
     ...(draft.interpretCold.length > 0 || draft.leaveOutEntrapmentSites || facts.earlier.length > 0 ? { assessment: facts.assessment } : {}),
   }
+}
+
+/** A report to the wrong one of two physicians of a name cannot be called back: whoever signs sees where the others work. */
+async function withNamesakes(context: ServiceContext, db: Database, { physicianId, name, practiceName, town }: Recipient) {
+  const others = await directoryNamesakes(db, { name, exceptId: physicianId, today: await organisationDay({ db, clock: context.clock }) })
+  return { name, practiceName, town, namesakes: others.filter(other => !other.left).map(other => `${other.practiceName}, ${other.town}`) }
 }

@@ -36,8 +36,8 @@ export interface ApiDefinition<A extends Allow, P, Q, B, R> {
   }) => R
 }
 
-/** Marks the handlers made here; tests/server/every-route.test.ts looks for it. */
-export const apiHandlers = new WeakMap<EventHandler, { allow: Allow }>()
+/** What tests know of the handlers made here: every-route.test.ts and permission-grid.test.ts walk them all. */
+export const apiHandlers = new WeakMap<EventHandler, { allow: Allow, query?: z.ZodType, body?: z.ZodType }>()
 
 /**
  * Every route of the API: who, what, do, return. Checks the session, the second factor, the permission, the address,
@@ -63,7 +63,7 @@ export function defineApiHandler<A extends Allow, R, P extends z.ZodType | undef
       return answerError(event, error)
     }
   })
-  apiHandlers.set(handler, { allow: definition.allow })
+  apiHandlers.set(handler, { allow: definition.allow, query: definition.query as z.ZodType | undefined, body: definition.body as z.ZodType | undefined })
   return handler as EventHandler<object, Promise<Awaited<R> | ApiErrorBody>>
 }
 

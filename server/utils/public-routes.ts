@@ -8,6 +8,7 @@ const publicRoutes: readonly { methods: readonly string[], path: RegExp }[] = [
   { methods: ['GET'], path: /^\/api\/health$/ },
   { methods: ['GET', 'POST'], path: /^\/api\/first-run$/ },
   { methods: ['POST'], path: /^\/api\/set-password$/ },
+  { methods: ['POST'], path: /^\/api\/forgotten-password$/ },
   { methods: ['GET', 'POST'], path: /^\/api\/acknowledge\/[^/]+$/ },
   { methods: ['POST'], path: /^\/api\/acknowledge\/[^/]+\/collect$/ },
 ]

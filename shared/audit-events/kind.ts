@@ -8,6 +8,6 @@ export function event<S extends z.ZodType>(schema: S, sentence: (data: z.output<
 }
 
 export const nothing = z.object({})
-/** Changed fields with what stood there before: the new value stands in the record, the old one nowhere else. */
-export const changes = z.object({ changes: z.array(z.object({ field: z.string(), before: z.unknown() })) })
+/** Changed fields with what stood there before; for accounts, sites and the directory also what stands there now. */
+export const changes = z.object({ changes: z.array(z.object({ field: z.string(), before: z.unknown(), after: z.unknown().optional() })) })
 export const changedFields = (data: z.output<typeof changes>): string => data.changes.map(change => change.field).join(', ')

@@ -2,6 +2,11 @@ import type * as z from 'zod'
 import { clocks } from './clocks'
 import { phrases } from './phrases'
 import { promptContact } from './prompt-contact'
+import { patterns } from './patterns'
+import { reportForm } from './report-form'
+import { retention } from './retention'
+import { temperature } from './temperature'
+import { uncertainty } from './uncertainty'
 
 /**
  * Every policy, one entry each. To add one: a file here with its schema and initial body, a line here, and an editor
@@ -11,6 +16,11 @@ export const policies = {
   clocks,
   phrases,
   'prompt-contact': promptContact,
+  temperature,
+  uncertainty,
+  patterns,
+  'report-form': reportForm,
+  retention,
 } as const
 
 export type PolicyName = keyof typeof policies

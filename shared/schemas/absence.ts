@@ -10,3 +10,4 @@ export const absenceSchema = z.object({
 export type AbsenceInput = z.output<typeof absenceSchema>
 
 export interface AbsenceRow { id: string, userId: string, fromDay: string, toDay: string, coveredBy: string, coveredByName: string }
+export interface AbsencesView { rows: AbsenceRow[], /** who holds the same role at one of the same sites */ covers: { id: string, name: string }[] }

@@ -46,17 +46,27 @@ export const leavingSchema = z.object({ leftOn: isoDateSchema })
 export const handOverMeans = ['telephone', 'letter', 'in-person'] as const
 export type HandOverMeans = (typeof handOverMeans)[number]
 export const handOverWords: Record<HandOverMeans, string> = { 'telephone': 'by telephone', 'letter': 'by letter', 'in-person': 'in person' }
-export const passphraseHandOverSchema = z.object({ by: z.enum(handOverMeans, 'Choose how it was handed over.'), on: isoDateSchema })
+export const passphraseHandOverSchema = z.object({ by: z.enum(handOverMeans, 'Choose how it was handed over.'), on: isoDateSchema, to: z.string().trim().max(120).default('') })
+
+export const delegateSchema = z.object({
+  name: z.string().trim().min(2, 'Enter the name.').max(120),
+  duty: z.string().trim().max(120).default(''),
+  phone: z.string().trim().max(40).default(''),
+})
+export type DelegateInput = z.output<typeof delegateSchema>
+export interface DelegateView { id: string, name: string, duty: string, phone: string }
+export const closeSchema = z.object({ reason: z.string().trim().min(3, 'Give the reason.').max(300) })
+export const mergeSchema = z.object({ into: idSchema })
 
 /** The code may be typed with or without its dash, in either case. */
 export const addressCodeSchema = z.object({ code: z.string().trim().min(8, 'Enter the whole code.').max(40) })
 export const addressCheckSchema = z.object({ reason: z.string().trim().min(10, 'Say who checked the address, how and when.').max(500) })
 export const sendCodeSchema = z.object({ siteId: idSchema.optional() })
-export const deskAccessSchema = z.object({ siteId: idSchema })
+export const deskAccessSchema = z.object({ siteId: idSchema, byMail: z.boolean().default(true) })
 
 export const practiceQuerySchema = pageQuerySchema.extend({
-  /** 'to-do': a passphrase to hand over or an address to verify. */
-  show: z.enum(['all', 'to-do']).default('all'),
+  /** 'to-do': a passphrase to hand over or an address to verify; 'same-name': somebody whose name stands in the directory twice. */
+  show: z.enum(['all', 'to-do', 'same-name']).default('all'),
   pageSize: z.coerce.number().int().min(1).max(100).default(25),
 })
 export type PassphraseState = 'none' | 'made' | 'handed-over'
@@ -104,10 +114,16 @@ export interface PracticeView {
   phone: string
   deliveryMethod: (typeof deliveryMethods)[number]
   closed: boolean
-  passphrase: { state: PassphraseState, madeAt: string | null, handedOverOn: string | null, by: HandOverMeans | null }
+  passphrase: { state: PassphraseState, madeAt: string | null, handedOverOn: string | null, by: HandOverMeans | null, to: string }
+  /** Who of the practice may be told the passphrase and collect, besides its physicians. */
+  delegates: DelegateView[]
+  /** Names of the sites whose reports go there. */
+  usedBy: string[]
+  /** False when an administrator of another site has to change what decides where reports go. */
+  mayChange: boolean
   physicians: PhysicianDetail[]
 }
 /** Answered once, when it is made; afterwards it is sealed and nobody sees it again. */
 export interface PassphraseAnswer { passphrase: string, madeAt: string }
-/** The link is null when the account that has this address exists already and has a password. */
-export interface DeskAccessAnswer { userId: string, link: string | null, expiresAt: string | null }
+/** Neither link nor mail when the account that has this address exists already and has a password. */
+export interface DeskAccessAnswer { userId: string, link: string | null, mailedTo: string | null, expiresAt: string | null }

@@ -111,7 +111,8 @@ export interface ReadingView {
   versions: { id: string, version: number, status: ReportStatus, signedAt: string, signedName: string }[]
   namesakes: { recordNumber: string, name: string, birthDate: string }[]
   /** Who would receive a version signed now: the referring physician, the copies, or everyone who had an earlier version. */
-  recipients?: { name: string, practiceName: string, town: string }[]
+  /** `namesakes`: where in the directory others of that name are, "Chapel Row Medical Centre, Osterleigh". */
+  recipients?: { name: string, practiceName: string, town: string, namesakes: string[] }[]
   /** The study judged with the reader's own choices (cold runs interpreted) and beside earlier studies; left out while there are neither. */
   assessment?: Assessment
 }
@@ -175,3 +176,6 @@ export interface ReportView {
 }
 export const sideWords = { right: 'RIGHT', left: 'LEFT' } as const
 export { sideSchema }
+
+/** A copy of a signed version for the patient. */
+export const patientCopySchema = z.object({ version: z.number().int().min(1), handedTo: z.string().trim().min(3, 'Say how the identity was checked, for example by a passport.').max(200) })

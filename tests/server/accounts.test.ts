@@ -23,7 +23,7 @@ const southAdmin = await t.makeUser({ roles: [at(south.id, 'administrator')] })
 const bothAdmin = await t.makeUser({ roles: ['administrator'] })
 const director = await t.makeUser({ roles: ['medical-director'] })
 const newPerson = (changes: object = {}) => personSchema.parse({ email: `added${Math.random()}@clinic.example`, name: 'Added Person', ...changes })
-const tokenOf = (answer: { waiting: boolean, link?: string }) => answer.link!.split('#')[1]!
+const tokenOf = (answer: { waiting: boolean, link?: string | null }) => answer.link!.split('#')[1]!
 const GOOD = 'seven green lanterns'
 
 describe('the administrator of one site', () => {
@@ -35,7 +35,7 @@ describe('the administrator of one site', () => {
   })
   it('does not touch roles at another site, nor the account of someone who works there too', async () => {
     const user = await t.makeUser({ roles: [at(north.id, 'technologist'), at(south.id, 'technologist')] })
-    for (const act of [changePerson(t.as(northAdmin), user.id, { email: 'taken-over@clinic.example' }), deactivatePerson(t.as(northAdmin), user.id), makeSetUpLink(t.as(northAdmin), user.id, false)]) {
+    for (const act of [changePerson(t.as(northAdmin), user.id, { email: 'taken-over@clinic.example' }), deactivatePerson(t.as(northAdmin), user.id), makeSetUpLink(t.as(northAdmin), user.id, { resetSecondFactor: false })]) {
       await expect(act).rejects.toMatchObject({ code: 'not-allowed' })
     }
     await changePerson(t.as(northAdmin), user.id, { holdings: [] })
@@ -66,7 +66,7 @@ describe('one address', () => {
 describe('a link to set a password', () => {
   it('works once, for a day, and ends every session', async () => {
     const user = await t.makeUser({ roles: ['technologist'], totpEnabledAt: null })
-    const token = tokenOf(await makeSetUpLink(t.as(bothAdmin), user.id, false))
+    const token = tokenOf(await makeSetUpLink(t.as(bothAdmin), user.id, { resetSecondFactor: false }))
     await t.db.transaction().execute(trx => createSession(t.context, trx, { userId: user.id, secondFactor: false, agent: '' }))
     await expect(setPassword(t.context, { token, password: 'short' })).rejects.toMatchObject({ code: 'not-valid' })
     await setPassword(t.context, { token, password: GOOD })
@@ -76,8 +76,8 @@ describe('a link to set a password', () => {
   })
   it('is too old after a day, and a newer one ends an older one', async () => {
     const user = await t.makeUser({ roles: ['technologist'] })
-    const older = tokenOf(await makeSetUpLink(t.as(bothAdmin), user.id, false))
-    const newer = tokenOf(await makeSetUpLink(t.as(bothAdmin), user.id, false))
+    const older = tokenOf(await makeSetUpLink(t.as(bothAdmin), user.id, { resetSecondFactor: false }))
+    const newer = tokenOf(await makeSetUpLink(t.as(bothAdmin), user.id, { resetSecondFactor: false }))
     await expect(setPassword(t.context, { token: older, password: GOOD })).rejects.toMatchObject({ code: 'link-used' })
     t.clock.minutes(24 * 60)
     await expect(setPassword(t.context, { token: newer, password: GOOD })).rejects.toMatchObject({ code: 'link-used' })
@@ -85,26 +85,26 @@ describe('a link to set a password', () => {
   })
   it('for a signer with a password is made by two people together, never by one, and keeps the second factor', async () => {
     const signer = await t.makeUser({ roles: ['neurologist'], passwordHash: await hashPassword(GOOD), totpSecretSealed: 'sealed' })
-    expect(await makeSetUpLink(t.as(bothAdmin), signer.id, false)).toEqual({ waiting: true })
-    expect(await makeSetUpLink(t.as(bothAdmin), signer.id, false)).toEqual({ waiting: true })
-    expect(await makeSetUpLink(t.as(director), signer.id, true)).toEqual({ waiting: true })
-    const answer = await makeSetUpLink(t.as(director), signer.id, false)
+    expect(await makeSetUpLink(t.as(bothAdmin), signer.id, { resetSecondFactor: false })).toEqual({ waiting: true })
+    expect(await makeSetUpLink(t.as(bothAdmin), signer.id, { resetSecondFactor: false })).toEqual({ waiting: true })
+    expect(await makeSetUpLink(t.as(director), signer.id, { resetSecondFactor: true })).toEqual({ waiting: true })
+    const answer = await makeSetUpLink(t.as(director), signer.id, { resetSecondFactor: false })
     await setPassword(t.context, { token: tokenOf(answer), password: 'other green lanterns' })
     expect(await t.db.selectFrom('user').select(['totpEnabledAt', 'totpSecretSealed']).where('id', '=', signer.id).executeTakeFirst()).toEqual({ totpEnabledAt: TEST_NOW, totpSecretSealed: 'sealed' })
     const event = await t.db.selectFrom('auditEvent').selectAll().where('name', '=', 'account.link-made').where('subjectId', '=', signer.id).executeTakeFirstOrThrow()
-    expect(event).toMatchObject({ actorId: director.id, dataJson: JSON.stringify({ askedBy: bothAdmin.id }) })
+    expect(event).toMatchObject({ actorId: director.id, dataJson: JSON.stringify({ askedBy: bothAdmin.id, byMail: false }) })
   })
   it('resets the second factor of a signer only when two asked for that, and the long password is then needed', async () => {
     const signer = await t.makeUser({ roles: ['neurologist'], passwordHash: await hashPassword(GOOD), totpSecretSealed: 'sealed' })
-    await makeSetUpLink(t.as(bothAdmin), signer.id, true)
-    const token = tokenOf(await makeSetUpLink(t.as(director), signer.id, true))
+    await makeSetUpLink(t.as(bothAdmin), signer.id, { resetSecondFactor: true })
+    const token = tokenOf(await makeSetUpLink(t.as(director), signer.id, { resetSecondFactor: true }))
     await expect(setPassword(t.context, { token, password: 'nine chars' })).rejects.toMatchObject({ code: 'not-valid' })
     await setPassword(t.context, { token, password: 'other green lanterns' })
     expect(await t.db.selectFrom('user').select(['totpEnabledAt', 'totpSecretSealed']).where('id', '=', signer.id).executeTakeFirst()).toEqual({ totpEnabledAt: null, totpSecretSealed: null })
   })
   it('is not made by a medical director alone for anybody else', async () => {
     const user = await t.makeUser({ roles: ['technologist'] })
-    await expect(makeSetUpLink(t.as(director), user.id, false)).rejects.toMatchObject({ code: 'not-allowed' })
+    await expect(makeSetUpLink(t.as(director), user.id, { resetSecondFactor: false })).rejects.toMatchObject({ code: 'not-allowed' })
   })
 })
 
@@ -137,7 +137,7 @@ describe('sites', () => {
     expect(await changeSite(t.as(bothAdmin), site.id, { rooms: ['Room 1', 'Room 2'] })).toMatchObject({ rooms: ['Room 1', 'Room 2'], town: 'Town', timeZone: 'Europe/Lisbon' })
     expect((await viewPerson(t.as(bothAdmin), [site.id], bothAdmin.id)).holdings).toMatchObject([{ siteId: site.id, role: 'administrator' }])
     const event = await t.db.selectFrom('auditEvent').select('dataJson').where('name', '=', 'site.changed').where('subjectId', '=', site.id).executeTakeFirstOrThrow()
-    expect(JSON.parse(event.dataJson)).toEqual({ fields: ['rooms'] })
+    expect(JSON.parse(event.dataJson)).toEqual({ changes: [{ field: 'rooms', before: ['Room 1'], after: ['Room 1', 'Room 2'] }] })
   })
 })
 

@@ -17,29 +17,29 @@ const admin = await t.makeUser({ roles: ['administrator'] })
 const second = await t.makeUser({ roles: ['administrator'] })
 const signer = () => t.makeUser({ roles: ['neurologist'], passwordHash, totpSecretSealed: t.keys.seal(new Secret({ size: 20 }).base32) })
 const roleOf = { siteId: site.id, role: 'neurologist' } as const
-const tokenOf = (answer: { waiting: boolean, link?: string }) => answer.link!.split('#')[1]!
+const tokenOf = (answer: { waiting: boolean, link?: string | null }) => answer.link!.split('#')[1]!
 const account = (user: MadeUser) => t.db.selectFrom('user').select(['passwordHash', 'totpSecretSealed']).where('id', '=', user.id).executeTakeFirstOrThrow()
 
 describe('one administrator alone cannot take over a signer', () => {
   it('by ending the role, making the link, and giving the role back', async () => {
     const user = await signer()
     await changePerson(t.as(admin), user.id, { holdings: [] })
-    expect(await makeSetUpLink(t.as(admin), user.id, true)).toEqual({ waiting: true })
-    expect(await makeSetUpLink(t.as(admin), user.id, true)).toEqual({ waiting: true })
-    const answer = await makeSetUpLink(t.as(second), user.id, true)
+    expect(await makeSetUpLink(t.as(admin), user.id, { resetSecondFactor: true })).toEqual({ waiting: true })
+    expect(await makeSetUpLink(t.as(admin), user.id, { resetSecondFactor: true })).toEqual({ waiting: true })
+    const answer = await makeSetUpLink(t.as(second), user.id, { resetSecondFactor: true })
     await setPassword(t.context, { token: tokenOf(answer), password: 'other green lanterns' })
     expect((await account(user)).totpSecretSealed).toBeNull()
   })
   it('by making the link before the person becomes a signer and using it afterwards', async () => {
     const user = await t.makeUser({ roles: ['technologist'], passwordHash })
-    const token = tokenOf(await makeSetUpLink(t.as(admin), user.id, true))
+    const token = tokenOf(await makeSetUpLink(t.as(admin), user.id, { resetSecondFactor: true }))
     await changePerson(t.as(admin), user.id, { holdings: [{ siteId: site.id, role: 'technologist' }, roleOf] })
     await expect(setPassword(t.context, { token, password: 'other green lanterns' })).rejects.toMatchObject({ code: 'link-used' })
     expect((await account(user)).passwordHash).toBe(passwordHash)
   })
   it('while a new signer, who has no password yet, sets one through a link of one administrator', async () => {
     const user = await t.makeUser({ roles: ['neurologist'], totpEnabledAt: null })
-    const token = tokenOf(await makeSetUpLink(t.as(admin), user.id, false))
+    const token = tokenOf(await makeSetUpLink(t.as(admin), user.id, { resetSecondFactor: false }))
     await setPassword(t.context, { token, password: 'other green lanterns' })
     expect((await account(user)).passwordHash).not.toBeNull()
   })

@@ -3,7 +3,6 @@ import pdfRoute from '#server/api/reports/[id]/pdf.get'
 import { closePdfThread } from '#server/pdf/render-pdf'
 import { assessStoredStudy } from '#server/services/assess-stored-study'
 import { endAdoption } from '#server/services/adopt-set'
-import { changeSite } from '#server/services/change-site'
 import { makeNewVersion } from '#server/services/make-new-version'
 import { flushViews } from '#server/services/record-view'
 import { viewDeskReport } from '#server/services/view-desk'
@@ -39,7 +38,8 @@ describe('a signed study', () => {
   it('stays judged by what it was signed with, whatever the site does later', async () => {
     const { reportId, studyId } = await room.signed()
     const { policy, assessment } = await frozen(reportId)
-    await changeSite(room.admin, room.site.id, { handMinimumC: 36, distanceUncertaintyMm: 20 })
+    const other = async (handMinimumC: number, distanceUncertaintyMm: number) => await t.db.updateTable('site').set({ handMinimumC, distanceUncertaintyMm }).where('id', '=', room.site.id).execute()
+    await other(36, 20)
     const adoption = await t.db.selectFrom('referenceAdoption').select('id').where('endedOn', 'is', null).executeTakeFirstOrThrow()
     await t.db.updateTable('referenceAdoption').set({ endedOn: '2026-01-01' }).where('id', '=', adoption.id).execute()
     const now = await assessStoredStudy(t.context, studyId)
@@ -47,7 +47,7 @@ describe('a signed study', () => {
     expect(now.assessment.flagged).toEqual(assessment.flagged)
     expect(assessment.flagged.length).toBeGreaterThan(0)
     await t.db.updateTable('referenceAdoption').set({ endedOn: null }).where('id', '=', adoption.id).execute()
-    await changeSite(room.admin, room.site.id, { handMinimumC: 32, distanceUncertaintyMm: 5 })
+    await other(32, 5)
     await expect(endAdoption(room.director, { id: adoption.id })).resolves.toBeUndefined()
   })
 })

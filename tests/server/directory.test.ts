@@ -61,7 +61,7 @@ describe('practices', () => {
     const id = await newPractice()
     await changePractice(admin, id, { phone: '+00 55 0002' })
     await changePractice(admin, id, { phone: '+00 55 0002' })
-    expect((await events(id)).map(event => [event.name, event.data])).toEqual([['practice.added', {}], ['practice.changed', { changes: [{ field: 'phone', before: '+00 55 0001' }] }]])
+    expect((await events(id)).map(event => [event.name, event.data])).toEqual([['practice.added', {}], ['practice.changed', { changes: [{ field: 'phone', before: '+00 55 0001', after: '+00 55 0002' }] }]])
   })
 })
 
@@ -277,7 +277,7 @@ describe('access to the desk', () => {
     const made = await newPhysician()
     await expect(giveDeskAccess(admin, { physicianId: made.id, siteId: site.id })).rejects.toMatchObject({ code: 'not-valid' })
     await verifyOtherwise(admin, made.id, 'Telephoned the practice, A. Sample')
-    const { userId, link } = await giveDeskAccess(admin, { physicianId: made.id, siteId: site.id })
+    const { userId, link } = await giveDeskAccess(admin, { physicianId: made.id, siteId: site.id, byMail: false })
     expect(await holdings(userId)).toEqual([{ siteId: site.id, role: 'referring-physician', endsOn: null }])
     const token = link!.split('#')[1]!
     await setPassword(t.context, { token, password: 'lagoon-quartz-tulip-bridge' })
@@ -291,7 +291,7 @@ describe('access to the desk', () => {
     const known = await t.makeUser({ email: 'both@practice.example', passwordHash: 'set', roles: [{ siteId: site.id, role: 'technologist' }] })
     const made = await newPhysician({ email: 'both@practice.example' })
     await verifyOtherwise(admin, made.id, 'Telephoned the practice, A. Sample')
-    expect(await giveDeskAccess(admin, { physicianId: made.id, siteId: site.id })).toEqual({ userId: known.id, link: null, expiresAt: null })
+    expect(await giveDeskAccess(admin, { physicianId: made.id, siteId: site.id })).toEqual({ userId: known.id, link: null, mailedTo: null, expiresAt: null })
     expect((await holdings(known.id)).map(holding => holding.role)).toEqual(['technologist', 'referring-physician'])
   })
   it('is given only at a site that the actor administers', async () => {

@@ -84,7 +84,7 @@ function makers(context: ServiceContext) {
 
   async function makeUser({ roles = [], ...changes }: Partial<NewUser> & { roles?: RoleWish[] } = {}): Promise<MadeUser> {
     const n = next()
-    const values: NewUser = { id: randomUUID(), email: `person${n}@clinic.example`, name: `Person ${n}`, printedName: `Dr Person ${n}`, credentials: 'MD', passwordHash: null, totpSecretSealed: null, totpEnabledAt: createdAt, totpLastStep: null, lastSeenAt: null, deactivatedAt: null, createdAt, ...changes }
+    const values: NewUser = { id: randomUUID(), email: `person${n}@clinic.example`, name: `Person ${n}`, printedName: `Dr Person ${n}`, credentials: 'MD', passwordHash: null, totpSecretSealed: null, totpEnabledAt: createdAt, totpLastStep: null, lastSeenAt: null, deactivatedAt: null, createdAt, emailConfirmedAt: createdAt, ...changes }
     const user = await db.insertInto('user').values(values).returningAll().executeTakeFirstOrThrow()
     const sites = await db.selectFrom('site').select('id').execute()
     const holdings = roles.flatMap(wish => typeof wish === 'string' ? sites.map(site => ({ siteId: site.id, role: wish })) : [wish])

@@ -13,7 +13,7 @@ export const methodWords: Record<DeliveryRow['method'], string> = {
   'telephone': 'telephone, by hand',
 }
 
-export interface Recipient { name: string, practiceName: string, town: string }
+export interface Recipient { name: string, practiceName: string, town: string, /** where others of that name work */ namesakes?: readonly string[] }
 
 /**
  * One sentence: what signing does, and to whom the report goes.

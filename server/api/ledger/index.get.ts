@@ -1,9 +1,9 @@
-import { listLedger } from '#server/database/queries/ledger'
+import { viewLedger } from '#server/services/view-ledger'
 import { ledgerQuerySchema } from '#shared/schemas/user'
 import { defineApiHandler } from '#server/utils/api-handler'
 
 export default defineApiHandler({
   allow: 'audit.read',
   query: ledgerQuerySchema,
-  handle: ({ context, sites, query }) => listLedger(context.db, sites, query),
+  handle: ({ context, sites, query }) => viewLedger(context, sites, query),
 })

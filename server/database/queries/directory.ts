@@ -7,7 +7,7 @@ import type { Database } from '../connection'
 /** SQL for "no longer there": the practice closed, or the physician left it on or before that day. */
 export const isLeft = (today: string) => sql<number>`practice.closed_at IS NOT NULL OR coalesce(physician.left_on <= ${today}, 0)`
 
-const physicians = (db: Database, today: string) => db.selectFrom('physician').innerJoin('practice', 'practice.id', 'physician.practiceId')
+const physicians = (db: Database, today: string) => db.selectFrom('physician').innerJoin('practice', 'practice.id', 'physician.practiceId').where('physician.mergedInto', 'is', null)
   .select(['physician.id', 'physician.name', 'physician.title', 'physician.email', 'physician.practiceId', 'practice.name as practiceName', 'practice.town', 'practice.deliveryMethod'])
   .select([
     sql<number>`physician.email_verified_at IS NOT NULL`.as('emailVerified'),
@@ -20,7 +20,7 @@ type Row = Awaited<ReturnType<ReturnType<typeof physicians>['executeTakeFirstOrT
 /** How many entries have a name that could be taken for another, by `nameKey`. */
 async function entriesOfName(db: Database): Promise<Map<string, number>> {
   const counts = new Map<string, number>()
-  for (const { name } of await db.selectFrom('physician').select('name').execute()) counts.set(nameKey(name), (counts.get(nameKey(name)) ?? 0) + 1)
+  for (const { name } of await db.selectFrom('physician').select('name').where('mergedInto', 'is', null).execute()) counts.set(nameKey(name), (counts.get(nameKey(name)) ?? 0) + 1)
   return counts
 }
 
@@ -53,20 +53,28 @@ export async function directoryNamesakes(db: Database, { name, exceptId, today }
     .map(({ id, name: other, practiceId, practiceName, town, left }) => ({ id, name: other, practiceId, practiceName, town, left: left === 1 }))
 }
 
-export interface PracticeWish { search: string, show: 'all' | 'to-do', page: number, pageSize: number, today: string }
+export interface PracticeWish { search: string, show: 'all' | 'to-do' | 'same-name', page: number, pageSize: number, today: string }
 
 /** Every word must occur in the practice's name, its town or the name of one of its physicians. */
-function practices(db: Database, { search, show, today }: PracticeWish) {
+function practices(db: Database, { search, show, today }: PracticeWish, doubles: readonly string[]) {
   const words = sql`practice.name || ' ' || practice.town || ' ' || coalesce((SELECT group_concat(physician.name, ' ') FROM physician WHERE physician.practice_id = practice.id), '')`
   const fits = wordsOf(search).map(word => sql<boolean>`(${words}) LIKE ${word} ESCAPE '\\'`)
   const toDo = sql<boolean>`practice.closed_at IS NULL AND (practice.passphrase_handed_over_at IS NULL OR EXISTS (SELECT 1 FROM physician WHERE physician.practice_id = practice.id AND physician.email_verified_at IS NULL AND NOT (${isLeft(today)})))`
-  return fits.reduce((query, fit) => query.where(fit), db.selectFrom('practice')).$if(show === 'to-do', query => query.where(toDo))
+  return fits.reduce((query, fit) => query.where(fit), db.selectFrom('practice')).$if(show === 'to-do', query => query.where(toDo)).$if(show === 'same-name', query => query.where('practice.id', 'in', doubles))
+}
+
+/** Practices with a physician whose name stands in the directory once more: one person entered twice, or two to tell apart. */
+async function practicesWithDoubles(db: Database, today: string): Promise<string[]> {
+  const rows = await physicians(db, today).where('practice.closedAt', 'is', null).execute()
+  const entries = await entriesOfName(db)
+  return [...new Set(rows.filter(row => (entries.get(nameKey(row.name)) ?? 1) > 1).map(row => row.practiceId))]
 }
 
 /** Practices by name, with their physicians: those who left stand last. */
 export async function practicePage(db: Database, wish: PracticeWish) {
-  const { total } = await practices(db, wish).select(eb => eb.fn.countAll<number>().as('total')).executeTakeFirstOrThrow()
-  const rows = await practices(db, wish).selectAll('practice').orderBy('practice.name').orderBy('practice.town').orderBy('practice.id').limit(wish.pageSize).offset((wish.page - 1) * wish.pageSize).execute()
+  const doubles = wish.show === 'same-name' ? await practicesWithDoubles(db, wish.today) : []
+  const { total } = await practices(db, wish, doubles).select(eb => eb.fn.countAll<number>().as('total')).executeTakeFirstOrThrow()
+  const rows = await practices(db, wish, doubles).selectAll('practice').orderBy('practice.name').orderBy('practice.town').orderBy('practice.id').limit(wish.pageSize).offset((wish.page - 1) * wish.pageSize).execute()
   return { rows, total, people: await physiciansAt(db, rows.map(row => row.id), wish.today) }
 }
 
@@ -74,7 +82,7 @@ export async function practicePage(db: Database, wish: PracticeWish) {
 export async function physiciansAt(db: Database, practiceIds: readonly string[], today: string) {
   return await db.selectFrom('physician').innerJoin('practice', 'practice.id', 'physician.practiceId').leftJoin('user', 'user.id', 'physician.userId')
     .selectAll('physician').select([isLeft(today).as('left'), 'user.email as accountEmail', 'user.deactivatedAt', sql<number>`user.password_hash IS NOT NULL`.as('hasPassword')])
-    .where('physician.practiceId', 'in', practiceIds).orderBy('left').orderBy('physician.name').orderBy('physician.id').execute()
+    .where('physician.practiceId', 'in', practiceIds).where('physician.mergedInto', 'is', null).orderBy('left').orderBy('physician.name').orderBy('physician.id').execute()
 }
 
 export async function practiceById(db: Database, id: string) {

@@ -31,7 +31,7 @@ export async function listPeople(db: Database, sites: readonly string[], query: 
   const { total } = await peopleAt(db, sites, query.search).select(eb => eb.fn.countAll<number>().as('total')).executeTakeFirstOrThrow()
   const column = query.sort === 'lastSeenAt' ? 'lastSeenAt' : query.sort === 'email' ? 'email' : 'name'
   const rows = await peopleAt(db, sites, query.search)
-    .select(['user.id', 'email', 'name', 'printedName', 'credentials', 'inTraining', 'totpEnabledAt', 'lastSeenAt', 'deactivatedAt', sql<number>`password_hash is not null`.as('hasPassword')])
+    .select(['user.id', 'email', 'name', 'printedName', 'credentials', 'inTraining', 'totpEnabledAt', 'emailConfirmedAt', 'lastSeenAt', 'deactivatedAt', sql<number>`password_hash is not null`.as('hasPassword')])
     .orderBy(column, query.direction).orderBy('user.id').limit(query.pageSize).offset((query.page - 1) * query.pageSize).execute()
   return { total, rows }
 }
@@ -39,5 +39,5 @@ export async function listPeople(db: Database, sites: readonly string[], query: 
 /** One person, if the asker's sites let them be seen. */
 export async function findPerson(db: Database, sites: readonly string[], id: string) {
   return await peopleAt(db, sites, '').where('user.id', '=', id)
-    .select(['user.id', 'email', 'name', 'printedName', 'credentials', 'inTraining', 'totpEnabledAt', 'lastSeenAt', 'deactivatedAt', sql<number>`password_hash is not null`.as('hasPassword')]).executeTakeFirst()
+    .select(['user.id', 'email', 'name', 'printedName', 'credentials', 'inTraining', 'totpEnabledAt', 'emailConfirmedAt', 'lastSeenAt', 'deactivatedAt', sql<number>`password_hash is not null`.as('hasPassword')]).executeTakeFirst()
 }

@@ -12,8 +12,20 @@ export async function policyInForce<N extends PolicyName>(db: Database | Trx, na
   const row = await db.selectFrom('policyVersion').select(['version', 'bodyJson', 'effectiveOn'])
     .where('name', '=', name).where('siteId', 'is', scopeSite(name, siteId)).where('approvedAt', 'is not', null).where('effectiveOn', '<=', day)
     .orderBy('effectiveOn', 'desc').orderBy('version', 'desc').limit(1).executeTakeFirst()
-  if (!row) return { version: 0, body: policies[name].initial as PolicyBody<N>, effectiveOn: null }
+  if (!row) return { version: 0, body: await initialBody(db, name, siteId), effectiveOn: null }
   return { version: row.version, body: policies[name].schema.parse(JSON.parse(row.bodyJson)) as PolicyBody<N>, effectiveOn: row.effectiveOn }
+}
+
+/** What holds before anything was approved: what was entered with the site or the organisation, else what the program comes with. */
+async function initialBody<N extends PolicyName>(db: Database | Trx, name: N, siteId: string | null): Promise<PolicyBody<N>> {
+  return { ...policies[name].initial, ...await enteredBefore(db, name, siteId) } as PolicyBody<N>
+}
+
+async function enteredBefore(db: Database | Trx, name: PolicyName, siteId: string | null): Promise<object | undefined> {
+  if (name === 'report-form') return await db.selectFrom('organisation').select(['paperSize', 'disclaimer']).executeTakeFirst()
+  if (name === 'temperature') return await db.selectFrom('site').select(['handMinimumC', 'footMinimumC']).where('id', '=', siteId).executeTakeFirst()
+  if (name === 'uncertainty') return await db.selectFrom('site').select(['distanceUncertaintyMm as distanceMm', 'latencyUncertaintyMs as latencyMs']).where('id', '=', siteId).executeTakeFirst()
+  return undefined
 }
 
 /** null for a policy of the organisation, whatever site was asked for. */

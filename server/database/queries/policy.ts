@@ -2,12 +2,31 @@ import type { AdoptedSet, Policy } from '#shared/calculations/types'
 import { defaultPolicy } from '#shared/calculations/types'
 import type { Database } from '../connection'
 import type { Study } from '../tables/study'
+import { policyInForce } from './policies'
 
-/** What a study is judged by: its site's temperatures and uncertainties, and the sets in use there on its day; once it is signed, what it was signed with. */
+/**
+ * What a study is judged by: the temperatures, uncertainties, patterns and sets in use at its site on its day; once it is
+ * signed, what it was signed with. So a policy that is approved today leaves what was recorded before as it was.
+ */
 export async function policyOf(db: Database, study: Pick<Study, 'siteId' | 'studyDate' | 'excludedEntrapment'> & Partial<Pick<Study, 'policyJson'>>): Promise<Policy> {
   if (study.policyJson) return JSON.parse(study.policyJson) as Policy
-  const site = await db.selectFrom('site').select(['handMinimumC', 'footMinimumC', 'distanceUncertaintyMm', 'latencyUncertaintyMs']).where('id', '=', study.siteId).executeTakeFirstOrThrow()
-  return { ...defaultPolicy, ...site, leaveOutEntrapmentSites: study.excludedEntrapment === 1, adopted: await adoptedSets(db, study.siteId, study.studyDate) }
+  const patterns = await policyInForce(db, 'patterns', study.siteId, study.studyDate)
+  return {
+    ...defaultPolicy, ...await measuresOf(db, study.siteId, study.studyDate), patternsOn: patterns.body.on, patternsOff: patterns.body.off,
+    leaveOutEntrapmentSites: study.excludedEntrapment === 1, adopted: await adoptedSets(db, study.siteId, study.studyDate),
+  }
+}
+
+export type Measures = Pick<Policy, 'handMinimumC' | 'footMinimumC' | 'distanceUncertaintyMm' | 'latencyUncertaintyMs' | 'temperatureCorrection'>
+
+/** Temperatures and uncertainties of a site on a day. */
+export async function measuresOf(db: Database, siteId: string, day: string): Promise<Measures> {
+  const { body: warmth } = await policyInForce(db, 'temperature', siteId, day)
+  const { body: doubt } = await policyInForce(db, 'uncertainty', siteId, day)
+  return {
+    handMinimumC: warmth.handMinimumC, footMinimumC: warmth.footMinimumC, temperatureCorrection: warmth.correctionShown,
+    distanceUncertaintyMm: doubt.distanceMm, latencyUncertaintyMs: doubt.latencyMs,
+  }
 }
 
 /** Approved by a second person, in force on the day and not yet ended; in the order in which the site asks them. */

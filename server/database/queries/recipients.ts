@@ -29,20 +29,23 @@ async function recipientsById(db: Database, ids: string[], today: string): Promi
 
 /** Those the referral names: the referring physician and the copies. */
 export async function recipientsOfReferral(db: Database, referralId: string, today: string): Promise<Recipient[]> {
-  const referral = await db.selectFrom('referral').select('physicianId').where('id', '=', referralId).executeTakeFirst()
-  const copies = await db.selectFrom('referralCopy').select('physicianId').where('referralId', '=', referralId).execute()
-  return await recipientsById(db, [referral?.physicianId ?? '', ...copies.map(copy => copy.physicianId)], today)
+  const named = await db.selectFrom('physician').select(eb => eb.fn.coalesce('mergedInto', 'id').as('id')).where(eb => eb.or([
+    eb('id', 'in', eb.selectFrom('referral').select('physicianId').where('referral.id', '=', referralId).$castTo<{ physicianId: string }>()),
+    eb('id', 'in', eb.selectFrom('referralCopy').select('referralCopy.physicianId').where('referralId', '=', referralId)),
+  ])).execute()
+  return await recipientsById(db, [...new Set(named.map(physician => physician.id))], today)
 }
 
 /**
  * Those a later version goes to: everyone the referral names now and everyone who had an earlier version. A delivery
- * that was withdrawn does not count: a report sent to the wrong practice is not corrected there.
+ * that was withdrawn does not count: a report sent to the wrong practice is not corrected there. Whoever's entry was
+ * merged with another gets it under the one that stays.
  */
 export async function recipientsOfVersion(db: Database, { referralId, reportId }: { referralId: string, reportId: string }, today: string): Promise<Recipient[]> {
   const named = await recipientsOfReferral(db, referralId, today)
   const had = await db.selectFrom('delivery').innerJoin('reportVersion', 'reportVersion.id', 'delivery.reportVersionId')
-    .select('physicianId').distinct().where('reportVersion.reportId', '=', reportId).where('delivery.state', '<>', 'withdrawn').execute()
-  const others = had.map(row => row.physicianId).filter(id => !named.some(person => person.physicianId === id))
+    .innerJoin('physician', 'physician.id', 'delivery.physicianId').select(eb => eb.fn.coalesce('physician.mergedInto', 'physician.id').as('physicianId')).distinct().where('reportVersion.reportId', '=', reportId).where('delivery.state', '<>', 'withdrawn').execute()
+  const others = [...new Set(had.map(row => row.physicianId))].filter(id => !named.some(person => person.physicianId === id))
   return [...named, ...await recipientsById(db, others, today)]
 }
 

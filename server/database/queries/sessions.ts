@@ -17,7 +17,7 @@ const byHash = compiled(db => db.selectFrom('session')
   .where('session.endedAt', 'is', null)
   .where('user.deactivatedAt', 'is', null)
   .orderBy('site.name')
-  .select(['session.lastUsedAt', 'session.expiresAt', 'session.createdAt', 'user.id', 'user.email', 'user.name', 'user.printedName', 'user.credentials', 'user.totpEnabledAt', 'user.inTraining',
+  .select(['session.lastUsedAt', 'session.expiresAt', 'session.createdAt', 'user.id', 'user.email', 'user.name', 'user.printedName', 'user.credentials', 'user.totpEnabledAt', 'user.emailConfirmedAt', 'user.inTraining',
     'roleHolding.role', 'roleHolding.startsOn', 'roleHolding.endsOn', 'site.id as siteId', 'site.name as siteName', 'site.town', 'site.timeZone'])
   .compile())
 export type SessionRows = Awaited<ReturnType<typeof sessionWithHoldings>>

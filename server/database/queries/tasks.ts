@@ -10,6 +10,9 @@ const pathOf: Record<string, (id: string) => string> = {
   'referral': id => `/intake/${id}`,
   'study': id => `/reading/${id}`,
   'emergency-access': id => `/ledger?subjectId=${id}`,
+  'person': id => `/people/${id}`,
+  'practice': id => `/directory/${id}`,
+  'role-proposal': () => '/people',
 }
 
 /** Open tasks for this person: own ones, and those of a role held at the task's site; what is due first comes first. */

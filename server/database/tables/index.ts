@@ -5,6 +5,7 @@ import type { CounterTable } from './counter'
 import type { DeliveryTable } from './delivery'
 import type { EmergencyAccessTable } from './emergency-access'
 import type { EquipmentTable } from './equipment'
+import type { LegalHoldTable } from './legal-hold'
 import type { MetaTable } from './meta'
 import type { OneTimeLinkTable } from './one-time-link'
 import type { OrganisationTable } from './organisation'
@@ -12,6 +13,7 @@ import type { OutboxMailTable } from './outbox-mail'
 import type { PatientTable } from './patient'
 import type { PhysicianTable } from './physician'
 import type { PolicyVersionTable } from './policy-version'
+import type { PracticeDelegateTable } from './practice-delegate'
 import type { PracticeTable } from './practice'
 import type { RecoveryCodeTable } from './recovery-code'
 import type { ReferenceAdoptionTable } from './reference-adoption'
@@ -23,6 +25,7 @@ import type { ReportTable } from './report'
 import type { ReportVersionTable } from './report-version'
 import type { ReportWriterTable } from './report-writer'
 import type { RoleHoldingTable } from './role-holding'
+import type { RoleProposalTable } from './role-proposal'
 import type { RowCheckTable } from './row-check'
 import type { SessionTable } from './session'
 import type { SiteTable } from './site'
@@ -56,9 +59,12 @@ export interface Tables {
   roleHolding: RoleHoldingTable
   absence: AbsenceTable
   emergencyAccess: EmergencyAccessTable
+  roleProposal: RoleProposalTable
+  legalHold: LegalHoldTable
   session: SessionTable
   oneTimeLink: OneTimeLinkTable
   practice: PracticeTable
+  practiceDelegate: PracticeDelegateTable
   physician: PhysicianTable
   patient: PatientTable
   referral: ReferralTable

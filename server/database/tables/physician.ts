@@ -13,6 +13,8 @@ export interface PhysicianTable {
   phone: Generated<string>
   leftOn: string | null
   userId: string | null
+  /** The entry that stands for this one: two were one person. */
+  mergedInto: Generated<string | null>
   createdAt: string
 }
 export type Physician = Selectable<PhysicianTable>

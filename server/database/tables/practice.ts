@@ -13,6 +13,8 @@ export interface PracticeTable {
   passphraseHandedOverAt: string | null
   passphraseHandedOverOn: string | null
   passphraseHandedOverBy: 'telephone' | 'letter' | 'in-person' | null
+  /** To whom: a physician or a delegate of the practice. */
+  passphraseHandedOverTo: Generated<string>
   closedAt: string | null
   createdAt: string
 }

@@ -3,6 +3,8 @@ import type { Generated, Insertable, Selectable } from 'kysely'
 export interface UserTable {
   id: string
   email: string
+  /** When a mail to this very address was answered; null again as soon as the address changes. */
+  emailConfirmedAt: Generated<string | null>
   name: string
   printedName: Generated<string>
   credentials: Generated<string>
@@ -15,6 +17,7 @@ export interface UserTable {
   inTraining: Generated<number>
   deactivatedAt: string | null
   createdAt: string
+  createdBy: Generated<string | null>
 }
 export type User = Selectable<UserTable>
 export type NewUser = Insertable<UserTable>

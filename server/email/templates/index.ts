@@ -1,4 +1,7 @@
 import type * as z from 'zod'
+import { accountLink, accountLinkSchema } from './account-link'
+import { accountNotice, accountNoticeSchema } from './account-notice'
+import { confirmAddress, confirmAddressSchema } from './confirm-address'
 import type { MailText } from './mail-text'
 import { reportReady, reportReadySchema } from './report-ready'
 import { verifyAddress, verifyAddressSchema } from './verify-address'
@@ -10,6 +13,9 @@ const template = <S extends z.ZodType>(schema: S, render: Template<S>['render'])
 export const mailTemplates = {
   'report-ready': template(reportReadySchema, reportReady),
   'verify-address': template(verifyAddressSchema, verifyAddress),
+  'account-link': template(accountLinkSchema, accountLink),
+  'account-notice': template(accountNoticeSchema, accountNotice),
+  'confirm-address': template(confirmAddressSchema, confirmAddress),
 } as const
 
 export type MailTemplate = keyof typeof mailTemplates

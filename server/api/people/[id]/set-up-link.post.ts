@@ -12,6 +12,6 @@ export default defineApiHandler({
   body: setUpLinkSchema,
   handle: async ({ context, sites, params, body }) => {
     await viewPerson(context, sites, params.id)
-    return await makeSetUpLink(context, params.id, body.resetSecondFactor)
+    return await makeSetUpLink(context, params.id, body)
   },
 })

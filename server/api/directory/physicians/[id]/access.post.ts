@@ -8,5 +8,5 @@ export default defineApiHandler({
   allow: 'directory.write',
   params: z.object({ id: idSchema }),
   body: deskAccessSchema,
-  handle: ({ context, params, body }) => giveDeskAccess(context, { physicianId: params.id, siteId: body.siteId }),
+  handle: ({ context, params, body }) => giveDeskAccess(context, { physicianId: params.id, ...body }),
 })
