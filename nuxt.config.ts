@@ -20,6 +20,12 @@ export default defineNuxtConfig({
     appOrigin: 'http://127.0.0.1:3000', // NUXT_APP_ORIGIN
     smtpUrl: 'smtp://127.0.0.1:2525', // NUXT_SMTP_URL
     mailFrom: 'Orthodrome <reports@orthodrome.example>', // NUXT_MAIL_FROM
+    bounceImapUrl: '', // NUXT_BOUNCE_IMAP_URL
+    bounceAddress: '', // NUXT_BOUNCE_ADDRESS
+    bounceSeconds: 60, // NUXT_BOUNCE_SECONDS
+    dkimKeyFile: '', // NUXT_DKIM_KEY_FILE
+    dkimSelector: '', // NUXT_DKIM_SELECTOR
+    dkimDomain: '', // NUXT_DKIM_DOMAIN
     demo: '', // NUXT_DEMO: '1' for the demonstration
     idleMinutes: 20, // NUXT_IDLE_MINUTES
     trustProxy: '', // NUXT_TRUST_PROXY: '1' behind one reverse proxy of yours, which then says who calls

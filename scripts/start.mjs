@@ -1,5 +1,6 @@
 // npm start: installs, builds, migrates, makes the demonstration when the database is empty, starts the application and
-// the local mail server, prints address and sign-ins. PORT, MAIL_PORT, DATA_DIR, DEMO=0, SMTP_URL and APP_ORIGIN are honoured.
+// the local mail server, prints address and sign-ins. PORT, MAIL_PORT, DATA_DIR, DEMO=0, SMTP_URL, APP_ORIGIN and the settings
+// of README are honoured.
 import { spawn, spawnSync } from 'node:child_process'
 import { existsSync, mkdirSync, readFileSync } from 'node:fs'
 import { join, resolve } from 'node:path'
@@ -36,6 +37,13 @@ const env = {
   NUXT_KEY_FILE: process.env.KEY_FILE ?? '',
   NUXT_APP_ORIGIN: process.env.APP_ORIGIN ?? `http://127.0.0.1:${port}`,
   NUXT_SMTP_URL: fake ? `smtp://127.0.0.1:${fake.port}` : process.env.SMTP_URL,
+  ...process.env.MAIL_FROM ? { NUXT_MAIL_FROM: process.env.MAIL_FROM } : {},
+  NUXT_BOUNCE_IMAP_URL: fake ? fake.imapUrl : process.env.BOUNCE_IMAP_URL ?? '',
+  NUXT_BOUNCE_ADDRESS: process.env.BOUNCE_ADDRESS ?? '',
+  NUXT_BOUNCE_SECONDS: process.env.BOUNCE_SECONDS ?? (fake ? '5' : '60'),
+  NUXT_DKIM_KEY_FILE: process.env.DKIM_KEY_FILE ?? '',
+  NUXT_DKIM_SELECTOR: process.env.DKIM_SELECTOR ?? '',
+  NUXT_DKIM_DOMAIN: process.env.DKIM_DOMAIN ?? '',
   NUXT_DEMO: demo ? '1' : '',
 }
 

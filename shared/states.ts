@@ -55,14 +55,14 @@ export const deliveryMoves: Record<DeliveryState, readonly DeliveryState[]> = {
   'held': ['queued', 'withdrawn'],
   'queued': ['sending', 'withdrawn', 'failed'],
   'sending': ['sent', 'failed', 'uncertain', 'given-up'],
-  'sent': ['acknowledged', 'bounced', 'withdrawn'],
+  'sent': ['acknowledged', 'bounced', 'queued', 'by-hand', 'withdrawn'],
   'acknowledged': ['withdrawn'],
   'failed': ['queued', 'sending', 'given-up', 'withdrawn', 'by-hand'],
   'given-up': ['queued', 'by-hand', 'withdrawn'],
   'bounced': ['queued', 'by-hand', 'withdrawn'],
-  'uncertain': ['sent', 'queued', 'by-hand', 'acknowledged', 'withdrawn'],
+  'uncertain': ['sent', 'queued', 'by-hand', 'acknowledged', 'bounced', 'withdrawn'],
   'withdrawn': [],
-  'by-hand': ['acknowledged'],
+  'by-hand': ['acknowledged', 'withdrawn'],
 }
 
 export const stateLabels: Record<ReferralState | StudyState | ReportStatus | DeliveryState, string> = {

@@ -3,7 +3,8 @@ import type SMTPConnection from 'nodemailer/lib/smtp-connection'
 
 export type SmtpSettings = SMTPConnection.Options & { credentials?: { user: string, pass: string } }
 
-const isLoopback = (host: string) => /^(?:localhost|127(?:\.\d{1,3}){3}|\[?::1\]?)$/.test(host)
+/** @example isLoopback('127.0.0.1') // => true */
+export const isLoopback = (host: string): boolean => /^(?:localhost|127(?:\.\d{1,3}){3}|\[?::1\]?)$/.test(host)
 
 /**
  * What the address of the mail server says: `smtps://` is TLS from the first byte, `smtp+starttls://` refuses to go on

@@ -12,7 +12,8 @@ export type SendOutcome
     /** The last byte went out and no answer came back: it may have been accepted. */
     | { kind: 'uncertain', because: string }
 
-export interface Envelope { from: string, to: string }
+/** `id` comes back in a delivery status report where the server knows the extension (RFC 3461); it asks for the headers only. */
+export interface Envelope { from: string, to: string, id?: string }
 
 export interface MailTransport {
   /** @param beforeLastByte runs after the server opened the message and before its last byte goes out; a failure there ends the attempt */
@@ -137,7 +138,8 @@ async function within<T>(ms: number, work: Promise<T>): Promise<T> {
 }
 
 function sendOver(connection: SMTPConnection, envelope: Envelope, stream: Readable, size: number): Promise<unknown> {
-  return settle(connection, done => connection.send({ from: envelope.from, to: envelope.to, size }, stream, error => done(error ?? null)))
+  const dsn = envelope.id ? { id: envelope.id, return: 'HDRS', notify: ['FAILURE', 'DELAY'] } : undefined
+  return settle(connection, done => connection.send({ from: envelope.from, to: envelope.to, size, ...dsn ? { dsn } : {} } as SMTPConnection.Envelope, stream, error => done(error ?? null)))
 }
 
 /** A callback as a promise that also ends when the connection reports an error on its own. */

@@ -1,4 +1,5 @@
 import { writeFirstRunLink } from '#server/services/first-run'
+import { mailSettings } from '#server/services/mail-settings'
 import { flushViews } from '#server/services/record-view'
 import { makeLogger } from '#server/utils/logger'
 import { openServices } from '#server/utils/open-services'
@@ -12,7 +13,11 @@ export default defineNitroPlugin((nitro) => {
     dataDir: config.dataDir, appOrigin: config.appOrigin, smtpUrl: config.smtpUrl, mailFrom: config.mailFrom,
     demonstration: String(config.demo) === '1' || String(config.demo) === 'true', idleMinutes: Number(config.idleMinutes), trustProxy: ['1', 'true'].includes(String(config.trustProxy)),
   }
-  const opening = openServices(settings, config.keyFile, log)
+  const opening = openChecked()
+  // A setting that cannot be right is told like a database that cannot be opened.
+  async function openChecked() {
+    return await openServices({ ...settings, ...mailSettings(config) }, config.keyFile, log)
+  }
   provideServices(opening)
   opening.then(async (services) => {
     const link = await writeFirstRunLink(systemContext(services))

@@ -10,7 +10,7 @@ export async function finishTask(context: ServiceContext, { id, resolution }: { 
   await context.db.transaction().execute(async (trx) => {
     const task = await trx.selectFrom('task').selectAll().where('id', '=', id).executeTakeFirst()
     const { userId, holdings } = context.actor
-    const mine = task && (task.ownerId ? task.ownerId === userId : holdings.some(holding => holding.siteId === task.siteId && (!task.ownerRole || holding.role === task.ownerRole)))
+    const mine = task && (task.ownerId ? task.ownerId === userId : holdings.some(holding => (task.siteId === null || holding.siteId === task.siteId) && (!task.ownerRole || holding.role === task.ownerRole)))
     if (!task || !mine) throw new DomainError('not-found')
     if (task.doneAt) throw new DomainError('wrong-state')
     await trx.updateTable('task').set({ doneAt: now(context), doneBy: userId, resolution }).where('id', '=', id).execute()

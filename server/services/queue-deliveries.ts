@@ -32,7 +32,7 @@ async function insertDelivery(context: ServiceContext, trx: Trx, { version, snap
   const at = now(context)
   await trx.insertInto('delivery').values({
     id, reportVersionId: version.id, physicianId: recipient.physicianId, practiceId: recipient.practiceId, siteId, address: recipient.email, method: how.method,
-    state: how.state, stateSince: at, stateReason: how.reason, holdUntil: how.holdUntil, acknowledgeTokenHash: how.tokenHash, acknowledgedAt: null, sentAt: null, createdAt: at,
+    state: how.state, stateSince: at, stateReason: how.reason, holdUntil: how.holdUntil, acknowledgeTokenHash: how.tokenHash, acknowledgedAt: null, sentAt: null, createdAt: at, linkRenewedAt: null,
   }).execute()
   await writeStateChange(context, trx, { subject: 'delivery', id, from: null, to: how.state, reason: how.reason })
   await recordAuditEvent(context, trx, { name: 'delivery.queued', subject: 'delivery', subjectId: id, siteId, patientId, data: { number: snapshot.number, version: snapshot.version, physicianId: recipient.physicianId, method: how.method } })

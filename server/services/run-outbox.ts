@@ -2,6 +2,7 @@ import { deliveryFacts } from '#server/database/queries/deliveries'
 import { recipientById } from '#server/database/queries/recipients'
 import { composeMail } from '#server/email/compose-mail'
 import { renderMail } from '#server/email/templates/index'
+import { signDkim } from '#server/email/sign-dkim'
 import type { MailTransport, SendOutcome } from '#server/email/transport'
 import { encryptPdf } from '#server/pdf/encrypt-pdf'
 import { now, type ServiceContext } from './context'
@@ -73,7 +74,7 @@ async function attempt(context: ServiceContext, transport: MailTransport, mail: 
     await taskForRendering(context, mail)
     return { kind: 'temporary', because: 'the message or its PDF could not be made' }
   }
-  return await transport.send({ from: senderOf(context), to: mail.toAddress }, message, () => markLastByte(context, mail))
+  return await transport.send({ from: senderOf(context, mail.id), to: mail.toAddress, id: mail.id }, message, () => markLastByte(context, mail))
 }
 
 /**
@@ -91,8 +92,12 @@ async function hindranceOf(context: ServiceContext, mail: Claimed): Promise<stri
   return recipient.email.toLowerCase() === mail.toAddress.toLowerCase() ? '' : 'the address in the directory changed'
 }
 
-/** @example senderOf({ settings: { mailFrom: 'Clinic <reports@clinic.example>' } }) // => 'reports@clinic.example' */
-export function senderOf({ settings }: Pick<ServiceContext, 'settings'>): string {
+/**
+ * Who stands in the envelope: reports of undeliverable mail go there.
+ * @example senderOf({ settings: { mailFrom: 'Clinic <reports@clinic.example>', bounceAddress: 'back+*@clinic.example' } }, 'id') // => 'back+id@clinic.example'
+ */
+export function senderOf({ settings }: { settings: Pick<ServiceContext['settings'], 'mailFrom' | 'bounceAddress'> }, mailId = ''): string {
+  if (settings.bounceAddress) return settings.bounceAddress.replace('*', mailId)
   return /<([^<>]+)>/.exec(settings.mailFrom)?.[1] ?? settings.mailFrom
 }
 
@@ -107,7 +112,8 @@ async function messageOf(context: ServiceContext, mail: Claimed): Promise<Buffer
   const data: unknown = JSON.parse(context.keys.unseal(mail.dataSealed))
   const content = renderMail(mail.template, data, context.settings.appOrigin)
   const attachment = mail.deliveryId ? await attachmentOf(context, mail.deliveryId) : undefined
-  return await composeMail({ from: context.settings.mailFrom, to: mail.toAddress, messageId: mail.messageId, date: context.clock(), content, ...(attachment ? { attachment } : {}) })
+  const message = await composeMail({ from: context.settings.mailFrom, to: mail.toAddress, messageId: mail.messageId, date: context.clock(), content, ...(attachment ? { attachment } : {}) })
+  return context.settings.dkim ? await signDkim(message, context.settings.dkim) : message
 }
 
 /** The stored PDF, encrypted anew with the practice's passphrase. Its name is the report's number and nothing else. */

@@ -20,6 +20,7 @@ export const reportEvents = {
   'delivery.sent': event(delivery.extend({ physicianId: z.string(), attempt: z.number().int() }), data => `sent ${data.number}, version ${data.version}`),
   'delivery.failed': event(delivery.extend({ attempt: z.number().int(), final: z.boolean() }), data => `${data.final ? 'gave up sending' : 'could not send'} ${data.number}, version ${data.version}`),
   'delivery.uncertain': event(delivery.extend({ messageId: z.string() }), data => `cannot tell whether ${data.number}, version ${data.version}, was sent`),
+  'delivery.bounced': event(delivery.extend({ status: z.string() }), data => `learned that the mail with ${data.number}, version ${data.version}, came back`),
   'delivery.acknowledged': event(delivery, data => `the recipient acknowledged ${data.number}, version ${data.version}`),
   'delivery.collected': event(delivery, data => `the recipient collected ${data.number}, version ${data.version}, by the link of the mail`),
   'delivery.collect-refused': event(delivery.extend({ because: z.string() }), data => `collecting ${data.number}, version ${data.version}, was refused: ${data.because}`),

@@ -15,12 +15,12 @@ const pathOf: Record<string, (id: string) => string> = {
   'role-proposal': () => '/people',
 }
 
-/** Open tasks for this person: own ones, and those of a role held at the task's site; what is due first comes first. */
+/** Open tasks for this person: own ones, and those of a role held at the task's site, or anywhere where the task has none; what is due first comes first. */
 export async function openTasks(db: Database, { userId, holdings }: TaskReader): Promise<TaskRow[]> {
   const rows = await db.selectFrom('task').leftJoin('site', 'site.id', 'task.siteId').leftJoin('user', 'user.id', 'task.ownerId')
     .select(['task.id', 'kind', 'subject', 'subjectId', 'sentence', 'task.createdAt', 'dueAt', 'site.name as siteName', 'user.name as ownerName'])
     .where('doneAt', 'is', null)
-    .where(eb => eb.or([eb('ownerId', '=', userId), ...holdings.map(({ siteId, role }) => eb.and([eb('ownerId', 'is', null), eb('task.siteId', '=', siteId), eb.or([eb('ownerRole', 'is', null), eb('ownerRole', '=', role)])]))]))
+    .where(eb => eb.or([eb('ownerId', '=', userId), ...holdings.map(({ siteId, role }) => eb.and([eb('ownerId', 'is', null), eb.or([eb('task.siteId', 'is', null), eb('task.siteId', '=', siteId)]), eb.or([eb('ownerRole', 'is', null), eb('ownerRole', '=', role)])]))]))
     .orderBy(eb => eb.fn.coalesce('dueAt', 'task.createdAt')).orderBy('task.id').limit(500).execute()
   return rows.map(({ subject, subjectId, ...row }) => ({ ...row, link: pathOf[subject]?.(subjectId) ?? null }))
 }

@@ -17,6 +17,8 @@ export interface DeliveryTable {
   acknowledgedAt: string | null
   sentAt: string | null
   createdAt: string
+  /** The collection link works again from here on. */
+  linkRenewedAt: string | null
 }
 export type Delivery = Selectable<DeliveryTable>
 export type NewDelivery = Insertable<DeliveryTable>

@@ -1,11 +1,15 @@
 import type { AbsenceTable } from './absence'
 import type { AuditEventTable } from './audit-event'
 import type { BookingTable } from './booking'
+import type { BounceReportTable } from './bounce-report'
 import type { CounterTable } from './counter'
 import type { DeliveryTable } from './delivery'
 import type { EmergencyAccessTable } from './emergency-access'
 import type { EquipmentTable } from './equipment'
 import type { LegalHoldTable } from './legal-hold'
+import type { DeliveryByHandTable } from './delivery-by-hand'
+import type { DeliveryReplyTable } from './delivery-reply'
+import type { IncidentTable } from './incident'
 import type { MetaTable } from './meta'
 import type { OneTimeLinkTable } from './one-time-link'
 import type { OrganisationTable } from './organisation'
@@ -94,6 +98,10 @@ export interface Tables {
   reportPdf: ReportPdfTable
   delivery: DeliveryTable
   outboxMail: OutboxMailTable
+  bounceReport: BounceReportTable
+  incident: IncidentTable
+  deliveryByHand: DeliveryByHandTable
+  deliveryReply: DeliveryReplyTable
   task: TaskTable
   policyVersion: PolicyVersionTable
   referenceAdoption: ReferenceAdoptionTable
