@@ -90,3 +90,21 @@ export function ageOn(birthDate: string, day: string): number {
   const years = Number(day.slice(0, 4)) - Number(birthDate.slice(0, 4))
   return day.slice(5, 10) < birthDate.slice(5, 10) ? years - 1 : years
 }
+
+/**
+ * Day and time as people type them ("2026-03-09 14:05", "9 March 2026, 14:05") on the wall clock of a zone, as an instant.
+ * Null when it is none of these. An hour that occurs twice gives the first of the two.
+ * @example parseMoment('9 Mar 2026, 14:02', 'Europe/Prague') // => '2026-03-09T13:02:00.000Z'
+ */
+export function parseMoment(text: string, timeZone: string): string | null {
+  const [, dayText = '', hour = '', minute = ''] = /^(.+?),?\s+(\d{1,2}):(\d{2})$/.exec(text.trim()) ?? []
+  const day = parseDay(dayText)
+  if (!day || Number(hour) > 23 || Number(minute) > 59) return null
+  const wanted = Date.parse(`${day}T${hour.padStart(2, '0')}:${minute}:00Z`)
+  const ahead = (at: number) => {
+    const wall = zonedParts(at, timeZone)
+    return Date.parse(`${wall.day}T${wall.time}:00Z`) - at
+  }
+  const fitting = [wanted - 86_400_000, wanted + 86_400_000].map(at => wanted - ahead(at)).filter(at => at + ahead(at) === wanted)
+  return new Date(fitting.length > 0 ? Math.min(...fitting) : wanted - ahead(wanted - 86_400_000)).toISOString()
+}

@@ -1,6 +1,7 @@
 import type { ServiceContext } from '#server/services/context'
 import { DemoClock, plusDays, workingTime } from './clock'
 import { adoptSets, makeOrganisation, type Organisation } from './make-organisation'
+import { makeDispatchWork } from './make-dispatch'
 import type { Maker } from './make-study'
 import { agreeOnPhrases } from './phrases'
 import { makeFinished, makePresent, stages, type Stage } from './make-work'
@@ -26,5 +27,6 @@ export async function makeDemonstration(services: Omit<ServiceContext, 'clock'>,
   // Every seventh is of the physician whose account is printed at the start: the desk has something to show.
   for (let index = 0; index < finished; index++) await makeFinished(maker, workingTime(plusDays(today, -360 + Math.floor(index * 354 / finished)), 8), { fromDesk: index % 7 === 3 })
   for (const stage of waiting) await makePresent(maker, stage, today)
+  await makeDispatchWork(maker, today)
   return organisation
 }

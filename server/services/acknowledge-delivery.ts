@@ -3,6 +3,7 @@ import type { Database, Trx } from '#server/database/connection'
 import { DomainError } from '#shared/errors'
 import type { AcknowledgeView } from '#shared/schemas/delivery'
 import { actingAs, now, type ServiceContext } from './context'
+import { linkExpired } from './link-age'
 import { moveState } from './move-state'
 import { recordAuditEvent } from './record-audit-event'
 
@@ -25,7 +26,7 @@ export async function deliveryOfToken(context: ServiceContext, { token, address 
   if (used && used.consumedPoints >= wrongLinks.points) throw new DomainError('too-many-requests')
   const delivery = await context.db.selectFrom('delivery').innerJoin('reportVersion', 'reportVersion.id', 'delivery.reportVersionId').innerJoin('report', 'report.id', 'reportVersion.reportId')
     .innerJoin('study', 'study.id', 'report.studyId').innerJoin('site', 'site.id', 'delivery.siteId').innerJoin('organisation', 'organisation.id', 'site.organisationId').innerJoin('practice', 'practice.id', 'delivery.practiceId')
-    .select(['delivery.id', 'delivery.state', 'delivery.siteId', 'delivery.method', 'delivery.createdAt', 'delivery.sentAt', 'delivery.reportVersionId', 'practice.passphraseSealed', 'acknowledgedAt', 'report.id as reportId', 'report.number', 'reportVersion.version', 'organisation.name as organisation', 'study.patientId'])
+    .select(['delivery.id', 'delivery.state', 'delivery.siteId', 'delivery.method', 'delivery.createdAt', 'delivery.sentAt', 'delivery.linkRenewedAt', 'delivery.reportVersionId', 'practice.passphraseSealed', 'acknowledgedAt', 'report.id as reportId', 'report.number', 'reportVersion.version', 'organisation.name as organisation', 'study.patientId'])
     .where('acknowledgeTokenHash', '=', context.keys.tokenHash(token)).executeTakeFirst()
   if (delivery) return delivery
   await limiter.consume(address).catch(() => undefined)
@@ -40,7 +41,10 @@ export async function viewAcknowledge(context: ServiceContext, input: Acknowledg
   const delivery = await deliveryOfToken(context, input)
   const newer = await context.db.selectFrom('reportVersion').select('id').where('reportId', '=', delivery.reportId).where('version', '>', delivery.version).executeTakeFirst()
   const { number, version, organisation, state, acknowledgedAt } = delivery
-  return { reportNumber: number, version, organisation, superseded: newer !== undefined, withdrawn: state === 'withdrawn', acknowledgedAt, collect: delivery.method === 'collection-link' && state !== 'withdrawn' && !newer }
+  const open = delivery.method === 'collection-link' && state !== 'withdrawn' && !newer
+  const expired = open && linkExpired(context, delivery)
+  const replies = await context.db.selectFrom('deliveryReply').select(['at', 'answeredAt']).where('deliveryId', '=', delivery.id).orderBy('at').execute()
+  return { reportNumber: number, version, organisation, superseded: newer !== undefined, withdrawn: state === 'withdrawn', acknowledgedAt, expired, replies, collect: open && !expired }
 }
 
 /**
@@ -61,6 +65,6 @@ export async function acknowledgeIn(context: ServiceContext, trx: Trx, delivery:
   await trx.updateTable('delivery').set({ acknowledgedAt: now(context) }).where('id', '=', delivery.id).execute()
   // While it is being sent or sent again the outbox moves it on; in the other states it stands as it is for people.
   if (current.state === 'sent' || current.state === 'uncertain' || current.state === 'by-hand') await moveState(context, trx, { subject: 'delivery', id: delivery.id, from: ['sent', 'uncertain', 'by-hand'], to: 'acknowledged' })
-  await trx.updateTable('task').set({ doneAt: now(context), resolution: 'acknowledged by the recipient' }).where('subjectId', '=', delivery.id).where('kind', 'in', ['delivery-uncertain', 'delivery-given-up']).where('doneAt', 'is', null).execute()
+  await trx.updateTable('task').set({ doneAt: now(context), resolution: 'acknowledged by the recipient' }).where('subjectId', '=', delivery.id).where('kind', 'in', ['delivery-uncertain', 'delivery-given-up', 'delivery-unacknowledged', 'delivery-bounced', 'deliver-by-hand']).where('doneAt', 'is', null).execute()
   await recordAuditEvent(context, trx, { name: 'delivery.acknowledged', subject: 'delivery', subjectId: delivery.id, siteId: delivery.siteId, patientId: delivery.patientId, data: { number: delivery.number, version: delivery.version } })
 }

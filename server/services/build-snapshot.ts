@@ -22,17 +22,21 @@ async function personsOf(db: Database, ids: (string | null)[]): Promise<(Person 
     .where('physician.id', 'in', ids.filter(id => id !== null)).orderBy('physician.name').execute()
 }
 
+/** Whom a referral names now: the referring physician and the copies. */
+export async function addresseesOf(db: Database, { id, physicianId }: { id: string, physicianId: string | null }): Promise<Pick<ReportSnapshot['referral'], 'physician' | 'copies'>> {
+  const copies = await copiesOf(db, id)
+  const people = await personsOf(db, [physicianId, ...copies])
+  const plain = ({ name, practiceName, town }: Person): Person => ({ name, practiceName, town })
+  const physician = people.find(person => person.id === physicianId)
+  return { physician: physician ? plain(physician) : null, copies: people.filter(person => person.id !== physicianId && copies.includes(person.id)).map(plain) }
+}
+
 async function referralPart(db: Database, { referral }: ReadingFacts): Promise<ReportSnapshot['referral']> {
   const { number, receivedAt, clinicalQuestion, side, symptoms, onset, examination, provisionalDiagnosis, urgency } = referral
-  const copies = await copiesOf(db, referral.id)
-  const people = await personsOf(db, [referral.physicianId, ...copies])
-  const plain = ({ name, practiceName, town }: Person): Person => ({ name, practiceName, town })
-  const physician = people.find(person => person.id === referral.physicianId)
   return {
     number, receivedAt, clinicalQuestion, side, symptoms, onset, examination, provisionalDiagnosis, urgency,
     cautions: cautionAnswers(referral.cautionsJson).filter(caution => caution.answer === 'yes').map(caution => caution.chip),
-    physician: physician ? plain(physician) : null,
-    copies: people.filter(person => person.id !== referral.physicianId && copies.includes(person.id)).map(plain),
+    ...await addresseesOf(db, referral),
   }
 }
 

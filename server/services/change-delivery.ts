@@ -1,10 +1,12 @@
+import { randomUUID } from 'node:crypto'
 import type { Trx } from '#server/database/connection'
 import { deliveryFacts, type DeliveryFacts } from '#server/database/queries/deliveries'
 import { DomainError } from '#shared/errors'
+import type { ByHandInput } from '#shared/schemas/delivery'
 import type { DeliveryState } from '#shared/states'
 import { now, type ServiceContext } from './context'
-import { createTask } from './create-task'
 import { moveState } from './move-state'
+import { openIncident } from './open-incident'
 import { recordAuditEvent } from './record-audit-event'
 import { queueAgain } from './send-again'
 
@@ -33,49 +35,43 @@ export async function sendDeliveryNow(context: ServiceContext, id: string): Prom
   })
 }
 
-const withdrawable: readonly DeliveryState[] = ['held', 'queued', 'failed', 'given-up', 'sent', 'acknowledged', 'bounced', 'uncertain']
-const mayHaveArrived: readonly DeliveryState[] = ['sent', 'acknowledged', 'uncertain', 'bounced']
-const incidentHours = 72
+const withdrawable: readonly DeliveryState[] = ['held', 'queued', 'failed', 'given-up', 'sent', 'acknowledged', 'bounced', 'uncertain', 'by-hand']
+const mayHaveArrived: readonly DeliveryState[] = ['sent', 'acknowledged', 'uncertain', 'bounced', 'by-hand']
 
 /**
- * Takes a delivery back. Before it left nothing is sent; afterwards its page says that it is withdrawn, and the incident
- * becomes a task with a clock (72 hours is the shorter of the two legal ones; European rule, read).
+ * Takes a delivery back. Before it left nothing is sent; afterwards its page says that it is withdrawn, and an incident
+ * is opened with its clocks.
+ * @returns the id of the incident, null when nothing had left
  * @throws DomainError 'wrong-state' while it is on the wire
  */
-export async function withdrawDelivery(context: ServiceContext, { id, reason }: { id: string, reason: string }): Promise<void> {
-  await context.db.transaction().execute(async (trx) => {
+export async function withdrawDelivery(context: ServiceContext, { id, reason }: { id: string, reason: string }): Promise<{ incidentId: string | null }> {
+  return await context.db.transaction().execute(async (trx) => {
     const delivery = await factsIn(trx, id)
     if (delivery.state === 'sending') throw new DomainError('wrong-state', { message: 'It is being sent at this moment. Try again in a few seconds.', details: { state: delivery.state } })
     await moveState(context, trx, { subject: 'delivery', id, from: withdrawable, to: 'withdrawn', reason })
     await trx.updateTable('outboxMail').set({ state: 'withdrawn' }).where('deliveryId', '=', id).where('state', 'in', ['held', 'queued', 'failed', 'given-up', 'uncertain', 'bounced']).execute()
     await closeTasks(context, trx, id, `withdrawn: ${reason}`)
     const wasSent = mayHaveArrived.includes(delivery.state)
-    if (wasSent) await openIncident(context, trx, delivery)
     await recordAuditEvent(context, trx, { name: 'delivery.withdrawn', ...about(delivery), data: { ...named(delivery), wasSent } })
-  })
-}
-
-async function openIncident(context: ServiceContext, trx: Trx, delivery: DeliveryFacts): Promise<void> {
-  await createTask(context, trx, {
-    kind: 'incident', subject: 'delivery', subjectId: delivery.id, siteId: delivery.siteId, ownerRole: 'administrator',
-    dueAt: new Date(context.clock().getTime() + incidentHours * 3_600_000).toISOString(),
-    sentence: `${delivery.number}, version ${delivery.version}, was withdrawn after it went to ${delivery.recipient}, ${delivery.practiceName}. Telephone, ask for deletion in writing, note what the report held, who got it, whether it was seen and what was done, and decide who has to be told.`,
+    return { incidentId: wasSent ? await openIncident(context, trx, delivery, { before: delivery.state, reason }) : null }
   })
 }
 
 export type Settlement = 'arrived' | 'send-again' | 'by-hand'
-const unsettled: readonly DeliveryState[] = ['uncertain', 'failed', 'given-up', 'bounced']
+/** "sent" is there too: nobody acknowledged it, and somebody followed it up. */
+const unsettled: readonly DeliveryState[] = ['sent', 'uncertain', 'failed', 'given-up', 'bounced']
+export interface Settling { id: string, outcome: Settlement, note: string, hand?: ByHandInput }
 
 /**
  * A person settles what the program cannot: it arrived after all, it goes again, or it was delivered another way.
- * @throws DomainError 'wrong-state', 'not-valid' when it cannot be mailed
+ * @throws DomainError 'wrong-state', 'not-valid' when it cannot be mailed or it is not said how it was delivered by hand
  */
-export async function resolveDelivery(context: ServiceContext, { id, outcome, note }: { id: string, outcome: Settlement, note: string }): Promise<void> {
+export async function resolveDelivery(context: ServiceContext, { id, outcome, note, hand }: Settling): Promise<void> {
   await context.db.transaction().execute(async (trx) => {
     const delivery = await factsIn(trx, id)
     if (!unsettled.includes(delivery.state)) throw new DomainError('wrong-state', { details: { state: delivery.state } })
     if (outcome === 'send-again') await queueAgain(context, trx, delivery, note)
-    else if (outcome === 'by-hand') await byHand(context, trx, delivery, note)
+    else if (outcome === 'by-hand') await deliveredByHand(context, trx, delivery, { note, hand })
     else await arrived(context, trx, delivery, note)
     await closeTasks(context, trx, id, `${outcome}: ${note}`)
     await recordAuditEvent(context, trx, { name: 'delivery.resolved', ...about(delivery), data: { ...named(delivery), outcome } })
@@ -87,9 +83,19 @@ async function byHand(context: ServiceContext, trx: Trx, delivery: DeliveryFacts
   await trx.updateTable('outboxMail').set({ state: 'withdrawn' }).where('deliveryId', '=', delivery.id).where('state', 'in', ['failed', 'given-up', 'bounced', 'uncertain']).execute()
 }
 
+/** Who, when, how, and whether a result told by telephone was read back: kept for each time. */
+async function deliveredByHand(context: ServiceContext, trx: Trx, delivery: DeliveryFacts, { note, hand }: { note: string, hand?: ByHandInput }): Promise<void> {
+  const recordedBy = context.actor.userId
+  if (!hand || !recordedBy) throw new DomainError('not-valid', { fields: [{ path: 'hand.told', message: 'Say how, to whom and when it was delivered.' }] })
+  if (Date.parse(hand.at) > context.clock().getTime()) throw new DomainError('not-valid', { fields: [{ path: 'hand.at', message: 'This moment lies in the future.' }] })
+  await trx.insertInto('deliveryByHand').values({ id: randomUUID(), deliveryId: delivery.id, means: hand.means, told: hand.told, at: new Date(hand.at).toISOString(), readBack: hand.readBack ? 1 : 0, note, recordedAt: now(context), recordedBy }).execute()
+  await byHand(context, trx, delivery, note)
+}
+
 async function arrived(context: ServiceContext, trx: Trx, delivery: DeliveryFacts, reason: string): Promise<void> {
-  if (delivery.state !== 'uncertain') await byHand(context, trx, delivery, reason)
+  const direct = delivery.state === 'uncertain' || delivery.state === 'sent'
+  if (!direct) await byHand(context, trx, delivery, reason)
   else await trx.updateTable('outboxMail').set({ state: 'sent' }).where('deliveryId', '=', delivery.id).execute()
-  await moveState(context, trx, { subject: 'delivery', id: delivery.id, from: ['uncertain', 'by-hand'], to: 'acknowledged', reason })
+  await moveState(context, trx, { subject: 'delivery', id: delivery.id, from: ['sent', 'uncertain', 'by-hand'], to: 'acknowledged', reason })
   await trx.updateTable('delivery').set({ acknowledgedAt: now(context) }).where('id', '=', delivery.id).execute()
 }

@@ -5,10 +5,10 @@ import { collectionDays } from '#server/email/templates/report-ready'
 import { DomainError } from '#shared/errors'
 import { deliveryOfToken, type AcknowledgeInput } from './acknowledge-delivery'
 import { actingAs, type ServiceContext } from './context'
+import { linkExpired } from './link-age'
 import { reportPdf } from './make-report-pdf'
 import { recordAuditEvent } from './record-audit-event'
 
-const DAY_MS = 86_400_000
 /** Wrong passphrases for one delivery. */
 const wrongOnes = { points: 10, duration: 15 * 60 }
 const limiters = new WeakMap<Database, RateLimiterMemory>()
@@ -48,7 +48,7 @@ type Delivery = Awaited<ReturnType<typeof deliveryOfToken>>
 
 async function checkOpen(context: ServiceContext, delivery: Delivery): Promise<void> {
   if (delivery.state === 'withdrawn') throw new DomainError('link-used', { message: 'This report was withdrawn. Do not act on it; telephone the laboratory if you have questions.' })
-  if (context.clock().getTime() - Date.parse(delivery.sentAt ?? delivery.createdAt) > collectionDays * DAY_MS) throw new DomainError('link-used', { message: `The link worked for ${collectionDays} days. Telephone the laboratory named in the mail for a copy.` })
+  if (linkExpired(context, delivery)) throw new DomainError('link-used', { message: `The link worked for ${collectionDays} days. Ask for it to be renewed on this page, or telephone the laboratory named in the mail.` })
   const newer = await context.db.selectFrom('reportVersion').select('id').where('reportId', '=', delivery.reportId).where('version', '>', delivery.version).executeTakeFirst()
   if (newer) throw new DomainError('link-used', { message: 'A newer version stands instead of this one. Collect it by the link of its own mail.' })
 }

@@ -14,7 +14,7 @@ import { signChecks } from '#shared/report/sign-checks'
 import type { newVersionSchema, ReportDraft, ReportSnapshot } from '#shared/schemas/report'
 import { mayMove, reportMoves } from '#shared/states'
 import type * as z from 'zod'
-import { resolvedChecks, signatureOf } from './build-snapshot'
+import { addresseesOf, resolvedChecks, signatureOf } from './build-snapshot'
 import { now, type ServiceContext } from './context'
 import { storeCorrections } from './correct-values'
 import { createTask } from './create-task'
@@ -68,8 +68,11 @@ interface Next { before: ReportSnapshot, sha256: string, report: Report, study: 
 async function nextSnapshot(context: ServiceContext, trx: Trx, { before, sha256, input, study }: Next): Promise<ReportSnapshot> {
   const draft = draftFor(input, before)
   const reassessed = reassess(before, draft, input.corrections ?? [])
+  const referral = await trx.selectFrom('referral').select(['id', 'physicianId']).where('id', '=', study.referralId).executeTakeFirstOrThrow()
   const next: ReportSnapshot = {
     ...before, ...reassessed, draft, draftedBy: '',
+    // A report that went to the wrong one of two namesakes names the right one from now on.
+    referral: { ...before.referral, ...await addresseesOf(trx, referral) },
     version: before.version + 1, status: input.kind, reason: input.reason, supersedes: { version: before.version, sha256 },
     signature: await signatureOf(context, trx, input.meaning, now(context), before.site.timeZone),
     changes: [],

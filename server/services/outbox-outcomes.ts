@@ -50,7 +50,10 @@ async function markFailed(context: ServiceContext, trx: Trx, mail: Claimed, beca
   const dueAt = final ? mail.dueAt : new Date(context.clock().getTime() + wait * 60_000).toISOString()
   await trx.updateTable('outboxMail').set({ state: final ? 'given-up' : 'failed', dueAt, leaseOwner: null, leaseUntil: null, lastError: because }).where('id', '=', mail.id).execute()
   const delivery = mail.deliveryId ? await deliveryFacts(trx, mail.deliveryId) : undefined
-  if (!delivery) return
+  if (!delivery) {
+    if (final) await createTask(context, trx, { kind: 'mail-given-up', subject: 'outbox-mail', subjectId: mail.id, siteId: null, ownerRole: 'administrator', sentence: `The mail ${mail.messageId} could not be sent. Check the address in the directory.` })
+    return
+  }
   await moveState(context, trx, { subject: 'delivery', id: delivery.id, from: 'sending', to: final && later === undefined ? 'given-up' : 'failed', reason: because })
   await recordAuditEvent(context, trx, { name: 'delivery.failed', ...about(delivery), data: { ...named(delivery), attempt: mail.attempts, final } })
   if (later !== undefined) await withdrawSuperseded(context, trx, mail, later)

@@ -20,10 +20,10 @@ export async function queueAgain(context: ServiceContext, trx: Trx, delivery: De
   const site = await trx.selectFrom('site').select('timeZone').where('id', '=', delivery.siteId).executeTakeFirstOrThrow()
   const recipient = await recipientById(trx, delivery.physicianId, localDate(context.clock(), site.timeZone))
   if (!recipient?.reachable) throw new DomainError('not-valid', { fields: [{ path: 'outcome', message: `It cannot be mailed: ${recipient?.because ?? 'the recipient is not in the directory'}.` }] })
-  await moveState(context, trx, { subject: 'delivery', id: delivery.id, from: ['failed', 'given-up', 'bounced', 'uncertain'], to: 'queued', reason })
+  await moveState(context, trx, { subject: 'delivery', id: delivery.id, from: ['sent', 'failed', 'given-up', 'bounced', 'uncertain'], to: 'queued', reason })
   // The words of a mail that exists say how the report comes: it stays so. A letter becomes what the practice chose.
   const method = delivery.method === 'collection-link' || delivery.method === 'encrypted-pdf' ? delivery.method : recipient.deliveryMethod
-  await trx.updateTable('delivery').set({ address: recipient.email, practiceId: recipient.practiceId, method }).where('id', '=', delivery.id).execute()
+  await trx.updateTable('delivery').set({ address: recipient.email, practiceId: recipient.practiceId, method, attempts: 0 }).where('id', '=', delivery.id).execute()
   const again = await trx.updateTable('outboxMail').set({ state: 'queued', dueAt: now(context), attempts: 0, lastByteAt: null, toAddress: recipient.email }).where('deliveryId', '=', delivery.id).executeTakeFirst()
   if (again.numUpdatedRows === 0n) await firstMail(context, trx, delivery, { toAddress: recipient.email, method })
 }

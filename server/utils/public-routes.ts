@@ -10,7 +10,7 @@ const publicRoutes: readonly { methods: readonly string[], path: RegExp }[] = [
   { methods: ['POST'], path: /^\/api\/set-password$/ },
   { methods: ['POST'], path: /^\/api\/forgotten-password$/ },
   { methods: ['GET', 'POST'], path: /^\/api\/acknowledge\/[^/]+$/ },
-  { methods: ['POST'], path: /^\/api\/acknowledge\/[^/]+\/collect$/ },
+  { methods: ['POST'], path: /^\/api\/acknowledge\/[^/]+\/(?:collect|reply|ask-link)$/ },
 ]
 
 /** @param path without the query */

@@ -1,5 +1,5 @@
 import * as z from 'zod'
-import { event } from './kind'
+import { changedFields, changes, event } from './kind'
 
 const version = z.object({ number: z.string(), version: z.number().int(), status: z.string(), sha256: z.string() })
 const delivery = z.object({ number: z.string(), version: z.number().int() })
@@ -22,10 +22,20 @@ export const reportEvents = {
   'delivery.uncertain': event(delivery.extend({ messageId: z.string() }), data => `cannot tell whether ${data.number}, version ${data.version}, was sent`),
   'delivery.bounced': event(delivery.extend({ status: z.string() }), data => `learned that the mail with ${data.number}, version ${data.version}, came back`),
   'delivery.acknowledged': event(delivery, data => `the recipient acknowledged ${data.number}, version ${data.version}`),
+  'delivery.page-opened': event(delivery, data => `somebody opened the page of ${data.number}, version ${data.version}, by the link of the mail`),
+  'delivery.link-asked': event(delivery, data => `the recipient asked for the link of ${data.number}, version ${data.version}, to be renewed`),
+  'delivery.link-renewed': event(delivery, data => `renewed the link of ${data.number}, version ${data.version}`),
+  'delivery.replied': event(delivery, data => `the recipient thinks that something in ${data.number}, version ${data.version}, is wrong`),
+  'delivery.reply-answered': event(delivery, data => `answered the recipient of ${data.number}, version ${data.version}`),
+  'delivery.redirected': event(delivery.extend({ physicianId: z.string(), insteadOf: z.string().nullable(), reason: z.string() }), data => `sent ${data.number}, version ${data.version}, to ${data.insteadOf ? 'the right recipient instead of the wrong one' : 'another recipient'}`),
+  'incident.opened': event(delivery.extend({ incidentId: z.string() }), data => `opened the incident of ${data.number}, version ${data.version}`),
+  'incident.changed': event(delivery.extend({ incidentId: z.string() }).extend(changes.shape), data => `changed the incident of ${data.number}, version ${data.version}: ${changedFields(data)}`),
+  'incident.closed': event(delivery.extend({ incidentId: z.string(), decision: z.string() }), data => `closed the incident of ${data.number}, version ${data.version}`),
   'delivery.collected': event(delivery, data => `the recipient collected ${data.number}, version ${data.version}, by the link of the mail`),
   'delivery.collect-refused': event(delivery.extend({ because: z.string() }), data => `collecting ${data.number}, version ${data.version}, was refused: ${data.because}`),
   'delivery.withdrawn': event(delivery.extend({ wasSent: z.boolean() }), data => `withdrew the delivery of ${data.number}, version ${data.version}${data.wasSent ? ', after it was sent' : ''}`),
   'delivery.sent-now': event(delivery, data => `released ${data.number}, version ${data.version}, for sending`),
   'delivery.resolved': event(delivery.extend({ outcome: z.string() }), data => `settled the delivery of ${data.number}, version ${data.version}: ${data.outcome}`),
+  'task.taken': event(z.object({ kind: z.string(), from: z.string().nullable() }), data => `${data.from ? 'took over' : 'took'} a task (${data.kind})`),
   'task.done': event(z.object({ kind: z.string() }), data => `finished a task (${data.kind})`),
 } as const

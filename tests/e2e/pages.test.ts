@@ -43,6 +43,9 @@ const addresses: Record<string, (ask: Ask) => Promise<string[]>> = {
     const { sites } = await ask<{ sites: { name: string }[] }>('/api/me')
     return one(reports.filter(report => sites.some(site => site.name === report.siteName))).map(report => `/reports/${report.reportId}`)
   },
+  'dispatch/chase.vue': async () => ['/dispatch/chase'],
+  'dispatch/incidents/index.vue': async () => ['/dispatch/incidents'],
+  'dispatch/incidents/[id].vue': async ask => one(await ask<{ id: string }[]>('/api/incidents')).map(row => `/dispatch/incidents/${row.id}`),
   'dispatch/index.vue': async () => ['/dispatch', '/dispatch?state=acknowledged'],
   'shelf/index.vue': async () => ['/shelf'],
   'shelf/[setId].vue': async ask => one(await ask<{ id: string }[]>('/api/shelf/sets')).map(set => `/shelf/${set.id}`),

@@ -266,8 +266,8 @@ describe('what people do about it', () => {
   })
   it('withdrawn after it left: its page says so, and the incident is a task with a clock', async () => {
     const { deliveryId } = await sentOnce()
-    await withdrawDelivery(room.admin, { id: deliveryId, reason: 'Wrong practice' })
-    const [task] = await tasks(deliveryId)
+    const { incidentId } = await withdrawDelivery(room.admin, { id: deliveryId, reason: 'Wrong practice' })
+    const [task] = await tasks(incidentId!)
     expect(task).toMatchObject({ kind: 'incident', ownerRole: 'administrator' })
     expect(Date.parse(task!.dueAt!) - t.context.clock().getTime()).toBe(72 * 3_600_000)
     const token = /acknowledge\/([\w-]+)/.exec((await simpleParser(sink.state.taken[0]!)).text!)![1]!
@@ -287,7 +287,7 @@ describe('what people do about it', () => {
       behave('ok')
       const { physicianId } = await delivery(deliveryId)
       await t.db.updateTable('physician').set({ email: `new-${outcome}@practice.example` }).where('id', '=', physicianId).execute()
-      await resolveDelivery(room.admin, { id: deliveryId, outcome, note: 'Telephoned the practice' })
+      await resolveDelivery(room.admin, { id: deliveryId, outcome, note: 'Telephoned the practice', hand: { means: 'telephone', told: 'The practice', at: TEST_NOW, readBack: true } })
       await round()
       expect((await delivery(deliveryId)).state).toBe(state)
       expect(await tasks(deliveryId)).toEqual([])
@@ -302,7 +302,7 @@ describe('what people do about it', () => {
     const from = { token, address: '192.0.2.3' }
     const view = await viewAcknowledge(t.context, from)
     expect(view).toMatchObject({ version: 1, superseded: false, withdrawn: false, acknowledgedAt: null })
-    expect(Object.keys(view).sort()).toEqual(['acknowledgedAt', 'collect', 'organisation', 'reportNumber', 'superseded', 'version', 'withdrawn'])
+    expect(Object.keys(view).sort()).toEqual(['acknowledgedAt', 'collect', 'expired', 'organisation', 'replies', 'reportNumber', 'superseded', 'version', 'withdrawn'])
     expect((await delivery(deliveryId)).state).toBe('sent')
     const first = await acknowledgeDelivery(t.context, from)
     t.clock.minutes(1)

@@ -1,10 +1,10 @@
 import * as z from 'zod'
-import { viewAcknowledge } from '#server/services/acknowledge-delivery'
+import { openLink } from '#server/services/answer-link'
 import { defineApiHandler } from '#server/utils/api-handler'
 import { clientAddress } from '#server/utils/auth'
 
 export default defineApiHandler({
   allow: 'public',
   params: z.object({ token: z.string().min(20).max(100) }),
-  handle: ({ event, context, params }) => viewAcknowledge(context, { token: params.token, address: clientAddress(event) }),
+  handle: ({ event, context, params }) => openLink(context, { token: params.token, address: clientAddress(event) }),
 })

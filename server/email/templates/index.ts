@@ -2,6 +2,7 @@ import type * as z from 'zod'
 import { accountLink, accountLinkSchema } from './account-link'
 import { accountNotice, accountNoticeSchema } from './account-notice'
 import { confirmAddress, confirmAddressSchema } from './confirm-address'
+import { linkRenewed, linkRenewedSchema } from './link-renewed'
 import type { MailText } from './mail-text'
 import { reportReady, reportReadySchema } from './report-ready'
 import { verifyAddress, verifyAddressSchema } from './verify-address'
@@ -12,6 +13,7 @@ const template = <S extends z.ZodType>(schema: S, render: Template<S>['render'])
 /** Every mail of the program: its data and its words. A new mail is a file here and a line in this list. */
 export const mailTemplates = {
   'report-ready': template(reportReadySchema, reportReady),
+  'link-renewed': template(linkRenewedSchema, linkRenewed),
   'verify-address': template(verifyAddressSchema, verifyAddress),
   'account-link': template(accountLinkSchema, accountLink),
   'account-notice': template(accountNoticeSchema, accountNotice),

@@ -1,0 +1,14 @@
+import { collectionDays } from '#server/email/templates/report-ready'
+import type { ServiceContext } from './context'
+
+const DAY_MS = 86_400_000
+export interface LinkDates { sentAt: string | null, createdAt: string, linkRenewedAt: string | null }
+
+/** A collection link works for 30 days from the sending, or from its last renewal. */
+export function linkUntil({ sentAt, createdAt, linkRenewedAt }: LinkDates): string {
+  return new Date(Date.parse(linkRenewedAt ?? sentAt ?? createdAt) + collectionDays * DAY_MS).toISOString()
+}
+
+export function linkExpired(context: Pick<ServiceContext, 'clock'>, dates: LinkDates): boolean {
+  return context.clock().getTime() > Date.parse(linkUntil(dates))
+}
