@@ -8,8 +8,8 @@ import { deliverAsInThePast } from './deliver'
 import { as, book, keepQuestions, makeReferral, receiveAndAccept, record, type MadeReferral, type Maker } from './make-study'
 import { draft, sign } from './read-study'
 
-/** One finished study: from the referral two weeks before to the acknowledged report. */
-export async function makeFinished(maker: Maker, day: Date, { fromDesk = false } = {}): Promise<void> {
+/** One finished study: from the referral two weeks before to the acknowledged report, or to the draft that waits for its signature. */
+export async function makeFinished(maker: Maker, day: Date, { fromDesk = false, signed = true } = {}): Promise<void> {
   const { clock, random, organisation } = maker
   const site = random.pick(organisation.sites)
   clock.set(plusDays(day, -random.whole(6, 20)))
@@ -23,6 +23,7 @@ export async function makeFinished(maker: Maker, day: Date, { fromDesk = false }
   await handOverStudy(await as(maker, 'technologist', site.id), { id: studyId, note: '' })
   clock.forward(random.whole(20, 1800))
   await draft(maker, referral, studyId)
+  if (!signed) return
   await sign(maker, referral, studyId)
   await deliverAsInThePast(maker)
 }

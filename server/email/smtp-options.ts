@@ -29,7 +29,6 @@ export function smtpSettings(address: string): SmtpSettings {
     tls: { minVersion: 'TLSv1.2', ...(isIP(host) ? {} : { servername: host }) },
     connectionTimeout: 15_000,
     greetingTimeout: 15_000,
-    socketTimeout: 60_000,
     ...(url.username ? { credentials: { user: decodeURIComponent(url.username), pass: decodeURIComponent(url.password) } } : {}),
   }
 }

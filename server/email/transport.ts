@@ -56,8 +56,9 @@ function outcomeOf(failure: SmtpFailure, message: WatchedMessage): SendOutcome {
 }
 
 const mailsPerConnection = 100
-/** Well below a lease: a server that answers drop by drop must not hold a mail for ever. */
-const longestAttemptMs = 120_000
+/** Well below a lease: a server that answers drop by drop must not hold a mail for ever. Tests are less patient. */
+export interface Patience { longestAttemptMs: number, socketTimeoutMs: number }
+const usualPatience: Patience = { longestAttemptMs: 120_000, socketTimeoutMs: 60_000 }
 const idleMs = 20_000
 
 /** Connections are kept and used again: most of a small mail's time is the greeting. */
@@ -65,8 +66,8 @@ export class SmtpTransport implements MailTransport {
   private readonly settings: SmtpSettings
   private idle: { connection: SMTPConnection, sent: number, timer: NodeJS.Timeout }[] = []
 
-  constructor(address: string) {
-    this.settings = smtpSettings(address)
+  constructor(address: string, private readonly patience: Patience = usualPatience) {
+    this.settings = { ...smtpSettings(address), socketTimeout: patience.socketTimeoutMs }
   }
 
   async send(envelope: Envelope, message: Buffer, beforeLastByte: () => Promise<void>): Promise<SendOutcome> {
@@ -79,7 +80,7 @@ export class SmtpTransport implements MailTransport {
       return connection
     }
     try {
-      connection = await within(longestAttemptMs, work())
+      connection = await within(this.patience.longestAttemptMs, work())
       this.keep(connection, (kept?.sent ?? 0) + 1)
       return { kind: 'accepted' }
     }
