@@ -8,6 +8,7 @@ import { pathToFileURL } from 'node:url'
 import { parseArgs } from 'node:util'
 import { makeTemplate, startClinic, type Clinic } from './bench/clinic'
 import { libraryFigures } from './bench/library'
+import { mailFigure } from './bench/mail'
 import { printFigures } from './bench/measure'
 import { besidePdfsFigure, drawingFigure } from './bench/pdf'
 import { listFigures, requestFigures } from './bench/requests'
@@ -50,14 +51,13 @@ async function measureServer(folder: string): Promise<void> {
 }
 
 console.log(`Node ${process.versions.node}, ${cpus().length} processors (${cpus()[0]?.model.trim() ?? 'unknown'}), median of ${rounds} rounds. Server and asker share the machine.`)
+const folder = mkdtempSync(join(tmpdir(), 'orthodrome-bench-'))
+process.on('exit', () => rmSync(folder, { recursive: true, force: true }))
+for (const signal of ['SIGINT', 'SIGTERM'] as const) process.on(signal, () => process.exit(1))
 printFigures('Calculation library, processor time', await libraryFigures(rounds))
+printFigures('Mail', [await mailFigure(folder, rounds)])
 if (!await buildIsFresh()) {
   console.error('\nThe rest needs a build of these sources. Run npm run build, then npm run bench again.')
   process.exitCode = 1
 }
-else {
-  const folder = mkdtempSync(join(tmpdir(), 'orthodrome-bench-'))
-  process.on('exit', () => rmSync(folder, { recursive: true, force: true }))
-  for (const signal of ['SIGINT', 'SIGTERM'] as const) process.on(signal, () => process.exit(1))
-  await measureServer(folder)
-}
+else await measureServer(folder)

@@ -6,6 +6,7 @@ import { now, type ServiceContext } from './context'
 import { createTask } from './create-task'
 import { moveState } from './move-state'
 import { recordAuditEvent } from './record-audit-event'
+import { writeTogether } from './write-together'
 
 export type Claimed = OutboxMail
 
@@ -21,7 +22,7 @@ const taskSite = (delivery: DeliveryFacts) => ({ subject: 'delivery', subjectId:
  * @returns false when it is not: someone else decided meanwhile, and nothing is changed
  */
 export async function settleAttempt(context: ServiceContext, mail: Claimed, outcome: SendOutcome): Promise<boolean> {
-  return await context.db.transaction().execute(async (trx) => {
+  return await writeTogether(context.db, async (trx) => {
     const mine = await trx.selectFrom('outboxMail').select('id').where('id', '=', mail.id).where('state', '=', 'sending').where('leaseOwner', '=', mail.leaseOwner).executeTakeFirst()
     if (!mine) return false
     if (outcome.kind === 'accepted') await markSent(context, trx, mail)

@@ -10,6 +10,7 @@ import { reportPdf } from './make-report-pdf'
 import { claimDue, recoverInterrupted, releaseHeld } from './outbox-claims'
 import { settleAttempt, taskForRendering, type Claimed } from './outbox-outcomes'
 import { localDate } from './site-time'
+import { writeTogether } from './write-together'
 
 export interface OutboxDeps {
   transport: MailTransport
@@ -103,8 +104,8 @@ export function senderOf({ settings }: { settings: Pick<ServiceContext['settings
 
 /** @throws Error when the lease was lost: the attempt ends before anything can be accepted */
 async function markLastByte(context: ServiceContext, mail: Claimed): Promise<void> {
-  const marked = await context.db.updateTable('outboxMail').set({ lastByteAt: now(context) })
-    .where('id', '=', mail.id).where('state', '=', 'sending').where('leaseOwner', '=', mail.leaseOwner).executeTakeFirst()
+  const marked = await writeTogether(context.db, trx => trx.updateTable('outboxMail').set({ lastByteAt: now(context) })
+    .where('id', '=', mail.id).where('state', '=', 'sending').where('leaseOwner', '=', mail.leaseOwner).executeTakeFirst())
   if (marked.numUpdatedRows !== 1n) throw new Error('The lease of this mail was lost.')
 }
 
