@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest'
-import { formatMoment, parseMoment } from '~~/app/utils/dates'
+import { formatMoment, parseMoment } from '../../../../app/utils/dates'
 
 describe('a moment as people type it', () => {
   it.each([
