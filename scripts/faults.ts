@@ -9,6 +9,7 @@ import { parseArgs } from 'node:util'
 import { build } from 'esbuild'
 import { openReadOnly } from '#server/database/connection'
 import { systemActor } from '#server/services/context'
+import { flushViews } from '#server/services/record-view'
 import { openServices } from '#server/utils/open-services'
 import { DemoClock, plusDays, workingTime } from './demo/clock'
 import { adoptSets, makeOrganisation } from './demo/make-organisation'
@@ -39,6 +40,7 @@ async function makeReady(name: string, studies: number): Promise<string> {
   const organisation = await makeOrganisation(context, clock)
   await adoptSets(context, organisation)
   for (let index = 0; index < studies; index++) await makeFinished({ context, clock, random, organisation }, workingTime(plusDays(begin, -360 + Math.floor(index * 340 / studies)), 8), { signed: false })
+  await flushViews(context)
   await services.db.destroy()
   return dataDir
 }

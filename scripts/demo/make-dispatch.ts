@@ -47,7 +47,7 @@ async function closedIncident(maker: Maker, sent: Sent): Promise<void> {
   if (!id) return
   maker.clock.forward(90)
   const view = await viewIncident(context, id)
-  const { revision } = await changeIncident(context, { id, revision: view.revision, ...incidentSchema.parse(view), contactName: 'The practice manager', contactAt: maker.clock.read().toISOString(), contactMeans: 'telephone', contactWords: 'The mail was deleted unopened; they confirm it by letter.', deletionConfirmed: true, decision: 'nobody', decisionReason: 'Deleted unopened, confirmed in writing; decided with the privacy officer.' })
+  const { revision } = await changeIncident(context, { id, revision: view.revision, ...incidentSchema.parse(view), contactName: 'The practice manager', contactAt: maker.clock.read().toISOString(), contactMeans: 'telephone', contactWords: 'They saw that it was not their patient, deleted mail and PDF, and confirm it by letter.', deletionConfirmed: true, decision: 'nobody', decisionReason: 'Seen by one physician who is bound to secrecy, deleted, confirmed in writing; decided with the privacy officer.' })
   maker.clock.forward(60)
   await closeIncident(context, { id, revision })
 }

@@ -41,7 +41,7 @@ export async function startApp(environment: Record<string, string> = {}, { empty
   const mail = await startMailFake()
   const port = await freePort()
   const origin = `http://127.0.0.1:${port}`
-  const env = { ...process.env, NODE_ENV: 'production', HOST: '127.0.0.1', PORT: String(port), NUXT_DATA_DIR: dataDir, NUXT_APP_ORIGIN: origin, NUXT_SMTP_URL: `smtp://127.0.0.1:${mail.port}`, NUXT_DEMO: empty ? '' : '1', ...environment }
+  const env = { ...process.env, NODE_ENV: 'production', HOST: '127.0.0.1', PORT: String(port), NUXT_DATA_DIR: dataDir, NUXT_APP_ORIGIN: origin, NUXT_SMTP_URL: `smtp://127.0.0.1:${mail.port}`, NUXT_BOUNCE_IMAP_URL: mail.imapUrl, NUXT_BOUNCE_SECONDS: '1', NUXT_DEMO: empty ? '' : '1', ...environment }
   let server: ChildProcess
   const start = async () => {
     server = spawn(process.execPath, [resolve('.output/server/index.mjs')], { env, stdio: ['ignore', process.env.SHOW_SERVER ? 'inherit' : 'ignore', 'inherit'] })

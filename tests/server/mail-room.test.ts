@@ -27,6 +27,12 @@ describe('the mail that brings a report', () => {
     for (const sentence of text.split('\n\n').filter(part => !part.includes('http'))) expect(html).toContain(sentence.trim().replace(/'/g, '\''))
     expect(html).not.toMatch(/<img|<script|<link|url\(/)
   })
+  it('the link that works again: its last day, the same link, no attachment spoken of, nothing about the patient', () => {
+    const { subject, text, html } = renderMail('link-renewed', { reportNumber: 'REP-2026-000012', version: 2, until: '2027-01-04', organisation: 'Invented Clinics', siteName: 'North', sitePhone: '', acknowledgeToken: 'abc_-123' }, 'https://lab.example/')
+    expect(subject).toBe('The link of a nerve conduction report works again (REP-2026-000012, version 2)')
+    for (const words of [text, html]) expect(words).toMatch(/until 2027-01-04[^]*https:\/\/lab\.example\/acknowledge\/abc_-123/)
+    expect(text).toContain('nothing is attached')
+  })
   it('marks of HTML in a name stay marks', () => {
     const { html } = renderMail('report-ready', { ...data, organisation: '<b>A & B</b>' }, 'https://lab.example')
     expect(html).toContain('&lt;b&gt;A &amp; B&lt;/b&gt;')

@@ -53,7 +53,7 @@ describe('"I think this is wrong"', () => {
   const words = 'The side in the impression does not fit what the patient says.'
   it('is promised by the mail, needs no account, and reaches the signer as a task about that version', async () => {
     const made = await mailed(false)
-    expect(made.mail.text).toContain('I think this is wrong')
+    expect(made.mail.text).toContain('it reaches the neurologist who signed')
     const answer = await post(made.token, 'reply', { words, fromName: 'Dr A. Reader' })
     expect([answer.status, answer.body.replies]).toEqual([200, [{ at: expect.any(String), answeredAt: null }]])
     expect(JSON.stringify(answer.body)).not.toContain('impression')

@@ -36,12 +36,12 @@ const subjects: Record<ReportReady['status'], string> = {
 const attached = (link: string): MailPart[] => [
   'It is attached as a PDF that opens with your practice\'s passphrase.',
   { link, label: 'Say that it arrived, or that something looks wrong' },
-  'The link opens a page with a button; no sign-in is needed. The button, not the opening, says that it arrived. What you write there under "I think this is wrong" reaches the neurologist who signed.',
+  'The link opens a page with a button; no sign-in is needed. The button, not the opening, says that it arrived. If you think that something in the report is wrong, say so there: it reaches the neurologist who signed.',
 ]
 const collected = (link: string): MailPart[] => [
   'Collect it under this link with your practice\'s passphrase; nothing is attached.',
   { link, label: 'Collect the report' },
-  `The link works for ${collectionDays} days; no sign-in is needed. A button on that page says that the report arrived; something that looks wrong can be written there, too.`,
+  `The link works for ${collectionDays} days; no sign-in is needed. A button on that page says that the report arrived; if you think that something in it is wrong, say so there: it reaches the neurologist who signed.`,
 ]
 
 /**
