@@ -151,7 +151,7 @@ it('the side is corrected as version 2, which reaches all who had version 1 and 
   await line.getByLabel(side.toUpperCase(), { exact: true }).check()
   await page.getByLabel(/I reviewed the data/).check()
   await page.getByLabel('Your password, again').fill(app.person('neurologist').password)
-  await button(page, /^Sign/).click()
+  await button(page, /^Sign (?!out)/).click()
   await page.waitForURL(/version=2/)
   await sendHeld(administrator.page)
   for (const box of [rightBox, copyBox]) expect((await mailsTo(box, 2)).at(-1)!.mail.subject).toMatch(/was corrected.*version 2/)
