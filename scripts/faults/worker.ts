@@ -39,14 +39,20 @@ async function signOne(skipped: Set<string>): Promise<boolean> {
 const waiting = async () => (await context.db.selectFrom('outboxMail').select(eb => eb.fn.countAll<number>().as('count')).where('state', 'in', ['held', 'queued', 'failed', 'sending']).executeTakeFirstOrThrow()).count
 const round = () => runOutboxOnce(context, { transport, owner })
 
+/** Lives until it is killed: sends what the life before left, signs a few, and goes on sending. */
 async function work(): Promise<void> {
   const skipped = new Set<string>()
+  await round()
   for (let signed = 0; signed < most && await signOne(skipped); signed++) {
     // What was signed before leaves while the next is signed; its own hold is over two minutes later.
     await Promise.all([round(), signed + 1 < most ? signOne(skipped) : undefined])
     forward(2)
   }
-  await round()
+  for (;;) {
+    await round()
+    forward(2)
+    await new Promise(done => setTimeout(done, 50))
+  }
 }
 
 /** Until nothing waits any more: a day and an hour at a time, which is longer than the longest pause between two attempts. */
