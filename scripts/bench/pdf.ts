@@ -2,8 +2,7 @@ import { resolve } from 'node:path'
 import pdfmake from 'pdfmake'
 import type { TDocumentDefinitions } from 'pdfmake/interfaces'
 import { openReadOnly } from '#server/database/connection'
-import { makePdf } from '#server/pdf/make-pdf'
-import { reportDocument } from '#server/pdf/report-document'
+import { makeReportPdf } from '#server/pdf/make-pdf'
 import { fontFamily, size } from '#server/pdf/style'
 import { reportSource } from '#server/services/make-report-pdf'
 import { reportBlocks, type ReportSource } from '#shared/report/index'
@@ -55,7 +54,7 @@ export async function drawingFigure(clinic: Clinic, rounds: number): Promise<Fig
   pdfmake.setUrlAccessPolicy(() => false)
   pdfmake.setLocalAccessPolicy((path: string) => path.startsWith(fontsDir))
   const cells = tablesOf(longest).reduce((sum, { columns, rows }) => sum + columns.length * (rows.length + 1), 0)
-  const { one, other, ratio } = await against(rounds, await drawing(() => makePdf(reportDocument(longest), fontsDir)), await drawing(() => pdfmake.createPdf(bareDocument(longest)).getBuffer()))
+  const { one, other, ratio } = await against(rounds, await drawing(() => makeReportPdf(longest, fontsDir)), await drawing(() => pdfmake.createPdf(bareDocument(longest)).getBuffer()))
   return { what: `PDF of a report of ${longest.snapshot.study.runs.length} runs, against bare pdfmake with as many cells (${cells})`, value: ms(one), partner: ms(other), ratio }
 }
 

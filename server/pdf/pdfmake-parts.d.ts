@@ -41,7 +41,7 @@ declare module 'pdfmake/js/LayoutBuilder.js' {
   import type PDFDocument from 'pdfmake/js/PDFDocument.js'
   import type { Content, TDocumentDefinitions } from 'pdfmake/interfaces'
 
-  export interface Page { items: unknown[] }
+  export interface Page { pageSize: { width: number, height: number }, items: { type: string, item: { y: number } }[] }
   export default class LayoutBuilder {
     constructor(page: { width: number, height: number, orientation: 'portrait' }, margins: { left: number, right: number, top: number, bottom: number }, svg: object)
     registerTableLayouts(layouts: object): void

@@ -7,7 +7,7 @@ import { headlineLevels, renderBlocks } from './render-blocks'
 import { tagged } from './render-table'
 import { stampSvg } from './stamp'
 import { addTag, newTag, type Tag } from './structure'
-import { fontFamily, ink, lineWidth, margins, size } from './style'
+import { fontFamily, ink, lineWidth, margins, size, usual, type Spacing } from './style'
 
 /** The product's mark: a line with one gap and a node in it. */
 const mark = `<svg xmlns="http://www.w3.org/2000/svg" width="34" height="14" viewBox="0 0 34 14"><path d="M4 7h6M24 7h6" stroke="${ink.ink}" stroke-width="7" stroke-linecap="round"/><circle cx="17" cy="7" r="2.4" fill="${ink.ink}"/></svg>`
@@ -75,24 +75,24 @@ export interface ReportPdf { definition: TDocumentDefinitions, structure: Tag }
  * The definition of a report's PDF. pdfmake changes what it is given, so every rendering needs a new one.
  * The date is that of the signature and the rest comes from the frozen copy: the same version gives the same bytes.
  */
-export function reportDocument(source: ReportSource): ReportPdf {
-  const { snapshot } = source
+export function reportDocument(source: ReportSource, spacing: Spacing = usual): ReportPdf {
+  const { snapshot, preliminary } = source
   const words = reportWords(snapshot.language)
   const made = new Date(snapshot.signature.at)
   const structure = newTag('Document')
   const title = addTag(structure, 'H1', { once: true })
   const definition: TDocumentDefinitions = {
-    info: { title: printable(`${words.title} ${snapshot.number}, ${words.version(snapshot.version, words.status[snapshot.status])}`), author: printable(snapshot.organisation.name), creator: 'Orthodrome', producer: 'Orthodrome', creationDate: made, modDate: made },
+    info: { title: printable(`${words.title} ${snapshot.number}, ${preliminary ? words.preliminary.toLowerCase() : words.version(snapshot.version, words.status[snapshot.status])}`), author: printable(snapshot.organisation.name), creator: 'Orthodrome', producer: 'Orthodrome', creationDate: made, modDate: made },
     version: '1.7',
     language: snapshot.language,
     compress: true,
     pageSize: snapshot.organisation.paperSize,
     pageMargins: [margins.left, margins.top, margins.right, margins.bottom],
-    defaultStyle: { font: fontFamily, fontSize: size.body, color: ink.ink, lineHeight: 1.12 },
+    defaultStyle: { font: fontFamily, fontSize: size.body, color: ink.ink, lineHeight: spacing.lineHeight },
     header: () => header(source, title),
     footer: footer(source),
     ...(stamp(source) ? { background: (_page: number, paper: { width: number, height: number }) => ({ svg: stampSvg(stamp(source), paper), width: paper.width, height: paper.height }) } : {}),
-    content: reportBlocks(source).flatMap(part => renderBlocks(part.blocks, snapshot, structure)),
+    content: reportBlocks(source).flatMap(part => renderBlocks(part.blocks, { snapshot, words, spacing }, structure)),
     pageBreakBefore: keepHeadings,
   }
   return { definition, structure }

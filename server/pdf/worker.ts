@@ -1,7 +1,6 @@
 import { parentPort, workerData } from 'node:worker_threads'
 import type { ReportSource } from '#shared/report/index'
-import { makePdf } from './make-pdf'
-import { reportDocument } from './report-document'
+import { makeReportPdf } from './make-pdf'
 
 /**
  * Entry of the PDF thread. Making a PDF is a third of a second of pure computing; here it blocks nobody.
@@ -14,7 +13,7 @@ const { fontsDir } = workerData as { fontsDir: string }
 
 async function answer({ id, source }: PdfJob): Promise<PdfAnswer> {
   try {
-    return { id, bytes: await makePdf(reportDocument(source), fontsDir) }
+    return { id, bytes: await makeReportPdf(source, fontsDir) }
   }
   catch (error) {
     return { id, error: error instanceof Error ? error.name : 'unknown' }

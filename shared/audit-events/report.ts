@@ -16,6 +16,7 @@ export const reportEvents = {
   'report.signed': event(version, data => `signed ${data.number}, version ${data.version} (${data.status})`),
   'report.not-signed': event(z.object({ because: z.string() }), data => `a signature was refused: ${data.because}`),
   'report.pdf-made': event(z.object({ number: z.string(), version: z.number().int(), sha256: z.string() }), data => `made the PDF of ${data.number}, version ${data.version}`),
+  'report.preliminary-printed': event(z.object({ number: z.string() }), data => `printed ${data.number} as preliminary`),
   'delivery.queued': event(delivery.extend({ physicianId: z.string(), method: z.string() }), data => `queued ${data.number}, version ${data.version}, for a recipient`),
   'delivery.sent': event(delivery.extend({ physicianId: z.string(), attempt: z.number().int() }), data => `sent ${data.number}, version ${data.version}`),
   'delivery.failed': event(delivery.extend({ attempt: z.number().int(), final: z.boolean() }), data => `${data.final ? 'gave up sending' : 'could not send'} ${data.number}, version ${data.version}`),

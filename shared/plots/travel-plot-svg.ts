@@ -31,7 +31,7 @@ export function travelPlotSvg(plot: TravelPlotGeometry, colours: PlotColours): s
     ...plot.segments.map(({ from, to, tone }) => line(from.x, from.y, to.x, to.y, colours[tone], 2)),
     ...plot.points.flatMap(point => [
       `<circle cx="${px(point.x)}" cy="${px(point.y)}" r="3.6" fill="${colours.sheet}" stroke="${colours.ink}" stroke-width="2"/>`,
-      text(point.x + (point.anchor === 'end' ? -9 : 9), point.y + (point.mm === 0 ? -5 : 4), point.label, colours.ink, { size: 12, anchor: point.anchor }),
+      text(point.x + (point.anchor === 'end' ? -9 : 9), point.labelY, point.label, colours.ink, { size: 12, anchor: point.anchor }),
     ]),
     ...plot.segments.filter(segment => segment.words).map(({ label, words, tone }) => text(label.x, label.y, words, tone === 'ink' ? colours.fibre : colours[tone], { size: 12, anchor: label.anchor, bold: true })),
     '</svg>',

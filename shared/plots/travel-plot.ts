@@ -5,7 +5,7 @@ import { axisTicks, type Tick } from './axis-ticks'
 import type { Tone } from './tokens'
 import { limitsOf, toneOf } from './verdict-words'
 
-export interface TravelPoint { rowId: string, site: string, label: string, /** its label starts or ends beside it */ anchor: 'start' | 'end', x: number, y: number, ms: number, mm: number }
+export interface TravelPoint { rowId: string, site: string, label: string, /** its label starts or ends beside it */ anchor: 'start' | 'end', /** where the foot of its label stands */ labelY: number, x: number, y: number, ms: number, mm: number }
 export interface TravelSegment {
   rowId: string
   from: { x: number, y: number }
@@ -62,6 +62,8 @@ function placeRows(run: Run): Placed[] {
 }
 
 const labelOf = (technique: Technique, siteId: string) => technique.sites.find(site => site.id === siteId)?.label ?? siteId
+/** Beside a point there is room for the site alone: what stands in brackets is left to the table. */
+const shortLabel = (technique: Technique, siteId: string) => labelOf(technique, siteId).replace(/ \(.*\)$/, '')
 
 function unplacedRows(run: Run, technique: Technique, placed: Placed[]): string[] {
   return run.rows.filter(row => !placed.some(point => point.row.id === row.id)).map((row) => {
@@ -90,12 +92,33 @@ function wedgeOf(from: Placed, to: Placed, velocity: Result, { x, y, maxMs }: Fr
   return { rowId: to.row.id, path: `M${[...points, ...clipped].map(([ms, mm]) => `${x(ms)} ${y(mm)}`).join('L')}Z` }
 }
 
-/** About 6.6 pixels a letter at size 12: enough to know whether a label still fits to the right. */
-const anchorOf = ({ ms }: Placed, label: string, { x }: Frame, width: number) => x(ms) + 9 + label.length * 6.6 > width ? 'end' as const : 'start' as const
+/** About 6.6 pixels a letter at size 12: enough to know whether a label still fits. */
+const letterWidth = 6.6
+/**
+ * Sites are named left of their point, above the line, and velocities right of it, below: neither stands in the other's
+ * way. A name that does not fit there stands right.
+ */
+function anchorOf({ ms }: Placed, label: string, { x }: Frame, width: number): 'start' | 'end' {
+  const needs = 9 + label.length * letterWidth
+  return x(ms) - needs >= 0 || x(ms) + needs > width ? 'end' : 'start'
+}
 
 function pointOf(point: Placed, label: string, frame: Frame, width: number): TravelPoint {
   const { row, ms, mm } = point
-  return { rowId: row.id, site: row.site, label, anchor: anchorOf(point, label, frame, width), x: frame.x(ms), y: frame.y(mm), ms, mm }
+  const [at, y] = [frame.x(ms), frame.y(mm)]
+  return { rowId: row.id, site: row.site, label, anchor: anchorOf(point, label, frame, width), labelY: mm === 0 ? y - 5 : y - 2, x: at, y, ms, mm }
+}
+
+/** Letters of size 12 need this from foot to foot. */
+const lineStep = 12
+/** Labels on the same side that would touch move upward, from the lowest on. */
+function apart<Label>(labels: readonly Label[], sideOf: (label: Label) => string, footOf: (label: Label) => number, moved: (label: Label, foot: number) => Label): Label[] {
+  const lowest: Record<string, number> = {}
+  return labels.map((label) => {
+    const foot = Math.min(footOf(label), (lowest[sideOf(label)] ?? Number.POSITIVE_INFINITY) - lineStep)
+    lowest[sideOf(label)] = foot
+    return moved(label, foot)
+  })
 }
 
 function segmentOf(from: Placed, to: Placed, velocity: Result | undefined, { x, y }: Frame, siteAnchor: 'start' | 'end'): TravelSegment {
@@ -149,8 +172,8 @@ export function travelPlotGeometry(recorded: Run, assessment: RunAssessment | un
   const pairs = neighbours(run, placed)
   return {
     width, height, area, timeTicks, distanceTicks,
-    points: placed.map(point => pointOf(point, labelOf(technique, point.row.site), frame, width)),
-    segments: pairs.map(([from, to]) => segmentOf(from, to, velocityOf(assessment, to.row.id), frame, anchorOf(to, labelOf(technique, to.row.site), frame, width))),
+    points: apart(placed.map(point => pointOf(point, shortLabel(technique, point.row.site), frame, width)), point => point.anchor, point => point.labelY, (point, labelY) => ({ ...point, labelY })),
+    segments: apart(pairs.map(([from, to]) => segmentOf(from, to, velocityOf(assessment, to.row.id), frame, anchorOf(to, shortLabel(technique, to.row.site), frame, width))), segment => segment.label.anchor, segment => segment.label.y, (segment, y) => ({ ...segment, label: { ...segment.label, y } })),
     wedges: pairs.flatMap(([from, to]) => {
       const velocity = velocityOf(assessment, to.row.id)
       return velocity ? wedgeOf(from, to, velocity, frame) ?? [] : []
