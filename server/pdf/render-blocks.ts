@@ -2,6 +2,7 @@ import type { Content } from 'pdfmake/interfaces'
 import { travelPlotGeometry } from '#shared/plots/travel-plot'
 import { travelPlotSvg } from '#shared/plots/travel-plot-svg'
 import { withSides, type Block, type FigureBlock, type HeadingBlock, type KeyValueBlock, type NoteBlock, type ParagraphBlock } from '#shared/report/blocks'
+import { techniqueIn } from '#shared/report/source'
 import type { Drawing } from './drawing'
 import { printable } from './glyphs'
 import { renderTable, runs, tagged } from './render-table'
@@ -46,7 +47,7 @@ function renderKeyValue({ items }: KeyValueBlock, parent: Tag): Content {
   const cells = items.map(item => renderItem(item, list))
   const rows = Array.from({ length: Math.ceil(cells.length / 2) }, (_, row) => [...cells[2 * row]!, ...(cells[2 * row + 1] ?? ['', ''])])
   return {
-    table: { widths: [46, '*', 56, '*'], body: rows },
+    table: { widths: ['auto', '*', 'auto', '*'], body: rows },
     layout: { hLineWidth: () => 0, vLineWidth: () => 0, paddingLeft: () => 0, paddingRight: () => 8, paddingTop: () => 1, paddingBottom: () => 1 },
     fontSize: size.body,
     margin: [0, 0, 0, 6],
@@ -62,16 +63,16 @@ const inRow = 3
 /** Units of a plot for each point on paper: its text is then as small as a footnote. */
 const plotScale = 1.42
 
-function drawFigure(figure: FigureBlock, { snapshot, spacing }: Drawing, width: number, parent: Tag): Content {
+function drawFigure(figure: FigureBlock, { snapshot, spacing, words }: Drawing, width: number, parent: Tag): Content {
   const run = snapshot.study.runs.find(candidate => candidate.id === figure.runId)
   const assessment = snapshot.assessment.runs.find(candidate => candidate.runId === figure.runId)
   const technique = snapshot.techniques.find(candidate => candidate.id === run?.technique)
   const superseded = new Set(snapshot.assessment.runs.filter(candidate => candidate.supersededBy).map(candidate => candidate.runId))
   const other = snapshot.study.runs.find(candidate => candidate.technique === run?.technique && candidate.side !== run?.side && candidate.rows.length > 1 && !superseded.has(candidate.id))
-  const plot = run && technique ? travelPlotGeometry(run, assessment, technique, other ? { run: other } : undefined, { width: width * plotScale, height: spacing.plotHeight }) : null
+  const plot = run && technique ? travelPlotGeometry(run, assessment, techniqueIn(words, technique), other ? { run: other } : undefined, { width: width * plotScale, height: spacing.plotHeight }) : null
   if (!plot) return { text: tagged(figure.text, addTag(parent, 'P')), fontSize: size.small }
   const title: Content = { text: runs(withSides(shortTitle(figure.title)), addTag(parent, 'P')), fontSize: size.small, margin: [0, 0, 0, 2] }
-  return { stack: [title, { svg: printable(travelPlotSvg(plot, ink)), width, tag: addTag(parent, 'Figure', { alt: printable(figure.text) }) }] }
+  return { stack: [title, { svg: printable(travelPlotSvg(plot, ink, words.plot.from)), width, tag: addTag(parent, 'Figure', { alt: printable(figure.text) }) }] }
 }
 
 /** Plots in rows; a row is never cut. */

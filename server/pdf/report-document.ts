@@ -1,7 +1,7 @@
 import type { Content, DynamicContent, TDocumentDefinitions } from 'pdfmake/interfaces'
 import { formatDay } from '#shared/report/dates'
 import { reportBlocks, type ReportSource } from '#shared/report/index'
-import { reportWords } from '#shared/report/words'
+import { reportWords, type ReportWords } from '#shared/report/words'
 import { printable } from './glyphs'
 import { headlineLevels, renderBlocks } from './render-blocks'
 import { tagged } from './render-table'
@@ -16,6 +16,9 @@ function rule(width: number, thickness: number, colour: string): Content {
   return { canvas: [{ type: 'line', x1: 0, y1: 0, x2: width, y2: 0, lineWidth: thickness, lineColor: colour }] }
 }
 
+/** A technical report is headed as such. */
+const titleOf = ({ draft }: ReportSource['snapshot'], words: ReportWords) => draft.technicalOnly ? words.technicalTitle : words.title
+
 /** Who made it, which version it is: on every page. On the first one the title of the report is its heading. */
 function header({ snapshot, preliminary }: ReportSource, title: Tag): Content {
   const words = reportWords(snapshot.language)
@@ -27,7 +30,7 @@ function header({ snapshot, preliminary }: ReportSource, title: Tag): Content {
       { columns: [
         { svg: mark, width: 26, margin: [0, 1, 0, 0] },
         { text: printable(place), bold: true, width: '*', fontSize: size.body },
-        { text: tagged(`${words.title} · ${words.version(snapshot.version, status)}`, title), alignment: 'right', width: 'auto', color: ink.faint, fontSize: size.body },
+        { text: tagged(`${titleOf(snapshot, words)} · ${words.version(snapshot.version, status)}`, title), alignment: 'right', width: 'auto', color: ink.faint, fontSize: size.body },
       ], columnGap: 7, margin: [0, 0, 0, 4] },
       rule(lineWidth(snapshot.organisation.paperSize), 1.4, ink.ink),
     ],
@@ -39,7 +42,7 @@ function footer(source: ReportSource): DynamicContent {
   const { snapshot } = source
   const words = reportWords(snapshot.language)
   const { patient } = snapshot
-  const who = `${patient.familyName.toLocaleUpperCase('en')}, ${patient.givenName} · ${formatDay(patient.birthDate)} · ${patient.recordNumber}`
+  const who = `${patient.familyName.toLocaleUpperCase('en')}, ${patient.givenName} · ${formatDay(patient.birthDate, words.days)} · ${patient.recordNumber}`
   return (page, pages) => ({
     margin: [margins.left, 14, margins.right, 0],
     fontSize: size.footer,
@@ -82,7 +85,7 @@ export function reportDocument(source: ReportSource, spacing: Spacing = usual): 
   const structure = newTag('Document')
   const title = addTag(structure, 'H1', { once: true })
   const definition: TDocumentDefinitions = {
-    info: { title: printable(`${words.title} ${snapshot.number}, ${preliminary ? words.preliminary.toLowerCase() : words.version(snapshot.version, words.status[snapshot.status])}`), author: printable(snapshot.organisation.name), creator: 'Orthodrome', producer: 'Orthodrome', creationDate: made, modDate: made },
+    info: { title: printable(`${titleOf(snapshot, words)} ${snapshot.number}, ${preliminary ? words.preliminary.toLowerCase() : words.version(snapshot.version, words.status[snapshot.status])}`), author: printable(snapshot.organisation.name), creator: 'Orthodrome', producer: 'Orthodrome', creationDate: made, modDate: made },
     version: '1.7',
     language: snapshot.language,
     compress: true,

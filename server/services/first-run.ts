@@ -3,6 +3,7 @@ import { sql } from 'kysely'
 import type * as z from 'zod'
 import type { Trx } from '#server/database/connection'
 import { DomainError } from '#shared/errors'
+import { reportWords } from '#shared/report/words'
 import type { firstAdministratorSchema } from '#shared/schemas/user'
 import { makeAdministrator } from './change-site'
 import { actingAs, now, type ServiceContext } from './context'
@@ -14,7 +15,6 @@ import { isTimeZone } from './site-time'
 export const FIRST_RUN = 'first-run'
 const DAY_MS = 86_400_000
 /** Stands on every report until the organisation words its own. */
-const DISCLAIMER = 'The results in this report support and do not replace clinical judgement. Limits depend on technique, temperature and population. Follow local regulations and licensed practice.'
 type FirstAdministrator = z.output<typeof firstAdministratorSchema>
 
 /**
@@ -64,7 +64,7 @@ async function writeFirst(context: ServiceContext, trx: Trx, input: FirstAdminis
   const [organisationId, userId] = [randomUUID(), randomUUID()]
   const site = { id: randomUUID(), timeZone: input.timeZone }
   const acting = actingAs(context, { userId, label: input.name, holdings: [] })
-  await trx.insertInto('organisation').values({ id: organisationId, name: input.organisationName, timeZone: input.timeZone, disclaimer: DISCLAIMER, createdAt }).execute()
+  await trx.insertInto('organisation').values({ id: organisationId, name: input.organisationName, timeZone: input.timeZone, disclaimer: reportWords('en').disclaimerText, createdAt }).execute()
   await trx.insertInto('site').values({ ...site, organisationId, name: input.siteName, town: input.town, roomsJson: JSON.stringify(['Room 1']), closedAt: null, createdAt }).execute()
   await trx.insertInto('user').values({ id: userId, email: input.email.toLowerCase(), name: input.name, printedName: input.name, passwordHash, totpSecretSealed: null, totpEnabledAt: null, totpLastStep: null, lastSeenAt: null, deactivatedAt: null, createdAt }).execute()
   await recordAuditEvent(acting, trx, { name: 'organisation.set-up', subject: 'organisation', subjectId: organisationId, data: {} })

@@ -13,6 +13,7 @@ import { assessStudy } from '#shared/calculations/assess-study'
 import { compareWithEarlier } from '#shared/calculations/compare-with-earlier'
 import type { Assessment, Policy } from '#shared/calculations/types'
 import { DomainError } from '#shared/errors'
+import { inLanguage } from '#shared/report/findings-in'
 import { suggestPhrases } from '#shared/policies/phrases'
 import { promptFindings } from '#shared/policies/prompt-contact'
 import { mergeFindings, withReaderChoices } from '#shared/report/reader-choices'
@@ -84,7 +85,7 @@ export async function readingFacts(context: ServiceContext, db: Database, studyI
   const judged = draft.interpretCold.length > 0 || draft.leaveOutEntrapmentSites ? assessStudy(chosen.study, assessed.tables, chosen.policy) : assessed.assessment
   const earlier = await earlierStudies(db, { studyId, patientId: record.patientId, studyDate: record.studyDate })
   const technologist = await printedNameOf(db, record.technologistId)
-  const assessment = { ...judged, changes: compareWithEarlier(judged, earlier, { siteName: site.name, technologist }) }
+  const assessment = { ...inLanguage(referral.reportLanguage, chosen.study, judged), changes: compareWithEarlier(judged, earlier, { siteName: site.name, technologist }) }
   const findings = mergeFindings(assessment, draft)
   const today = localDate(new Date(now(context)), site.timeZone)
   const recipients = await recipientsOf(db, record.referralId, report, today)

@@ -1,6 +1,7 @@
 import { referenceTable } from '#reference-tables/index'
 import { assessStudy } from '#shared/calculations/assess-study'
 import type { Correction } from '#shared/report/corrections'
+import { inLanguage } from '#shared/report/findings-in'
 import { mergeFindings, withReaderChoices } from '#shared/report/reader-choices'
 import type { ReportDraft, ReportSnapshot } from '#shared/schemas/report'
 import { correctedStudy } from './correct-values'
@@ -17,7 +18,7 @@ export function reassess(before: ReportSnapshot, draft: ReportDraft, corrections
   const runs = before.study.runs.map(({ interpretColdBecause: _, ...run }) => run)
   const chosen = same ? before : withReaderChoices({ study: correctedStudy({ ...before.study, runs }, corrections), policy: before.policy }, draft)
   const tables = before.policy.adopted.flatMap(set => referenceTable(set.setId, set.version) ?? [])
-  const assessment = same ? before.assessment : assessStudy(chosen.study, tables, chosen.policy)
+  const assessment = same ? before.assessment : inLanguage(before.language, chosen.study, assessStudy(chosen.study, tables, chosen.policy))
   const findings = mergeFindings(assessment, draft).filter(finding => !finding.left).map(({ key, runIds, text, edited }) => ({ key, runIds, text, edited }))
   return { study: chosen.study, policy: chosen.policy, assessment, findings }
 }

@@ -32,7 +32,7 @@ export async function viewReading(context: ServiceContext, studyId: string, db: 
     phrases: facts.phrases,
     promptContact: facts.promptContact,
     recipients: await Promise.all(recipients.map(recipient => withNamesakes(context, db, recipient))),
-    ...(draft.interpretCold.length > 0 || draft.leaveOutEntrapmentSites || facts.earlier.length > 0 ? { assessment: facts.assessment } : {}),
+    ...(draft.interpretCold.length > 0 || draft.leaveOutEntrapmentSites || facts.earlier.length > 0 || facts.referral.reportLanguage !== 'en' ? { assessment: facts.assessment } : {}),
   }
 }
 

@@ -4,9 +4,10 @@ import { fingerprint } from './fingerprint'
 import { STANDS_FOR } from './make-result'
 import { decimalsFor, quantityInfo } from './quantity-info'
 import { printLimit } from './round-for-print'
-import type { KnownRun, StudyContext } from './study-context'
+import type { recordedRun } from './study-context'
 import type { AppliedLimit, ComparisonAssessment, FindingSentence, Result, RunAssessment } from './types'
-import { capital, listed, sideWords } from './words'
+import { englishFindings, type FindingWords } from './finding-words'
+import { capital } from './words'
 
 /**
  * Draft findings: one plain sentence per run and per comparison, made from the numbers and tied to their runs.
@@ -17,43 +18,46 @@ import { capital, listed, sideWords } from './words'
  * @example
  * // RIGHT median sensory, digit 2 (140 mm): onset latency 3.8 ms (above the limit, ≤ 3.3), …
  */
-export function draftFindings(context: StudyContext, runs: readonly RunAssessment[], comparisons: readonly ComparisonAssessment[]): FindingSentence[] {
+export function draftFindings({ known }: { known: ReadonlyMap<string, Told> }, runs: readonly RunAssessment[], comparisons: readonly ComparisonAssessment[], words: FindingWords = englishFindings): FindingSentence[] {
   const sentences: FindingSentence[] = []
   for (const run of runs) {
-    const known = context.known.get(run.runId)
-    if (!known || run.supersededBy !== undefined) continue
-    sentences.push(sentence(`run/${run.runId}`, [run.runId], runText(known, run)))
+    const told = known.get(run.runId)
+    if (!told || run.supersededBy !== undefined) continue
+    sentences.push(sentence(`run/${run.runId}`, [run.runId], runText(told, run, words)))
   }
   for (const comparison of comparisons) {
-    const said = comparisonText(comparison)
+    const said = comparisonText(comparison, words)
     if (said) sentences.push(sentence(`compare/${comparison.side ?? 'both'}/${comparison.id}`, comparison.runIds, said))
   }
   return sentences
 }
 
+/** What a sentence needs to know of its run beside the assessment. */
+export type Told = ReturnType<typeof recordedRun>
+
 function sentence(key: string, runIds: string[], text: string): FindingSentence {
   return { key, runIds, text, fingerprint: fingerprint(text) }
 }
 
-function runText(known: KnownRun, run: RunAssessment): string {
-  const title = titleOf(known, run)
-  if (run.notDone !== undefined) return `${title}: ${run.notDone.replace(/\.$/, '')}.`
-  if (known.technique?.kind === 'needle') return needleText(title, known, known.technique)
-  if (!known.measured) return `${title}: nothing recorded.`
+function runText(known: Told, run: RunAssessment, words: FindingWords): string {
+  const title = titleOf(known, run, words)
+  if (run.notDone !== undefined) return `${title}: ${words.say(run.notDone.replace(/\.$/, ''))}.`
+  if (known.technique?.kind === 'needle') return needleText(title, known, known.technique, words)
+  if (!known.measured) return `${title}: ${words.nothingRecorded}.`
   const beside = new Set(known.asides.map(({ row }) => row.id))
   const told = run.results.filter(result => isTold(result) || (beside.has(result.rowId ?? '') && result.quantity === 'amplitudeMv'))
-  const cold = coldWords(run)
-  if (told.length === 0) return `${title}: ${run.results.length > 0 ? 'recorded, nothing to judge' : 'nothing recorded'}${cold}.`
+  const cold = coldWords(run, words)
+  if (told.length === 0) return `${title}: ${run.results.length > 0 ? words.nothingToJudge : words.nothingRecorded}${cold}.`
   const judged = told.filter(result => result.verdict.kind === 'within')
-  if (judged.length === told.length && cold === '' && !told.some(isNear)) return `${title}: ${listed(within(told))} within limits.`
-  return `${title}: ${told.map(value => valueText(value)).join(', ')}${cold}.`
+  if (judged.length === told.length && cold === '' && !told.some(isNear)) return `${title}: ${words.listed(within(told, words))} ${words.withinLimits}.`
+  return `${title}: ${told.map(value => valueText(value, words)).join(', ')}${cold}.`
 }
 
 /** "RIGHT median sensory, digit 2 (140 mm)". */
-function titleOf(known: KnownRun, run: RunAssessment): string {
+function titleOf(known: Told, run: RunAssessment, words: FindingWords): string {
   const { technique } = known
-  if (!technique) return run.title
-  const title = `${sideWords[run.side]} ${techniqueTitle(technique)}`
+  if (!technique) return words.say(run.title)
+  const title = `${words.sides[run.side]} ${words.say(techniqueTitle(technique))}`
   const distance = technique.kind === 'sensory' || technique.kind === 'mixed' ? known.rows[0]?.row.values.distanceMm : undefined
   return typeof distance === 'number' ? `${title} (${distance} mm)` : title
 }
@@ -70,61 +74,68 @@ function isTold(result: Result): boolean {
 const isNear = (result: Result) => result.verdict.kind === 'within' && result.verdict.nearLimit
 
 /** Each kind of number once: "latency, amplitude and velocity". */
-function within(results: readonly Result[]): string[] {
-  return [...new Set(results.map(result => quantityInfo(result.quantity).label))]
+function within(results: readonly Result[], words: FindingWords): string[] {
+  return [...new Set(results.map(result => words.say(quantityInfo(result.quantity).label)))]
 }
 
-function withUnit(result: Result): string {
-  return result.value.kind === 'value' && result.unit ? `${result.print} ${result.unit}` : result.print
+function withUnit(result: Result, words: FindingWords): string {
+  return result.value.kind === 'value' ? [result.print, result.unit].filter(Boolean).join(' ') : words.say(result.print)
 }
 
-/** "velocity across the elbow 38 m/s (below the limit, ≥ 43)". */
-function valueText(result: Result): string {
-  const remark = verdictText(result)
-  return `${result.label.replaceAll(',', '')} ${withUnit(result)}${remark ? ` (${remark})` : ''}`
+/**
+ * A value with what its limit says.
+ *
+ * @example valueText(result, englishFindings) // => 'velocity across the elbow 38 m/s (below the limit, ≥ 43)'
+ */
+export function valueText(result: Result, words: FindingWords): string {
+  const remark = verdictText(result, words)
+  return `${words.say(result.label).replaceAll(',', '')} ${withUnit(result, words)}${remark ? ` (${remark})` : ''}`
 }
 
-function verdictText({ verdict, quantity, value }: Result): string {
+function verdictText({ verdict, quantity, value }: Result, words: FindingWords): string {
+  const near = (isNearLimit: boolean) => isNearLimit ? `, ${words.nearer}` : ''
   switch (verdict.kind) {
-    case 'within': return `within the limit, ${limitsText(verdict.limits, quantity)}${verdict.nearLimit ? ', nearer to it than its measurement uncertainty' : ''}`
-    case 'outside': return `${verdict.direction} the limit, ${limitsText([verdict.limit], quantity)}${verdict.nearLimit ? ', nearer to it than its measurement uncertainty' : ''}`
-    case 'absent': return `limit ${limitsText(verdict.limits, quantity)}`
-    case 'cold': return verdict.because.split(':')[0] as string
-    case 'no-limit': return value.kind === 'value' ? `no limit: ${verdict.because}` : ''
-    case 'not-judged': return value.kind === 'value' ? `not judged: ${verdict.because}` : ''
+    case 'within': return `${words.withinTheLimit}, ${limitsText(verdict.limits, quantity, words)}${near(verdict.nearLimit)}`
+    case 'outside': return `${words[verdict.direction]}, ${limitsText([verdict.limit], quantity, words)}${near(verdict.nearLimit)}`
+    case 'absent': return `${words.limit} ${limitsText(verdict.limits, quantity, words)}`
+    case 'cold': return words.say(verdict.because.split(':')[0] as string)
+    case 'no-limit': return value.kind === 'value' ? `${words.noLimit}: ${words.say(verdict.because)}` : ''
+    case 'not-judged': return value.kind === 'value' ? `${words.notJudged}: ${words.say(verdict.because)}` : ''
     default: return ''
   }
 }
 
-function limitsText(limits: readonly AppliedLimit[], quantity: string): string {
+function limitsText(limits: readonly AppliedLimit[], quantity: string, words: FindingWords): string {
   const info = quantityInfo(quantity)
-  return limits.map(limit => `${limit.bound === 'upper' ? '≤' : '≥'} ${printLimit(limit.value, info.unit === 'µV' ? info.printDecimals : decimalsFor(info, limit.value))}`).join(' and ')
+  return limits.map(limit => `${limit.bound === 'upper' ? '≤' : '≥'} ${printLimit(limit.value, info.unit === 'µV' ? info.printDecimals : decimalsFor(info, limit.value))}`).join(` ${words.and} `)
 }
 
-function coldWords({ cold, results }: RunAssessment): string {
+function coldWords({ cold, results }: RunAssessment, words: FindingWords): string {
   if (cold.state !== 'cold' && cold.state !== 'unknown') return ''
-  if (cold.because.includes('interpreted all the same')) return `; ${cold.because}`
-  return results.some(result => result.verdict.kind === 'cold') ? `; ${cold.because}` : ''
+  if (cold.because.includes(INTERPRETED_ALL_THE_SAME)) return `; ${words.say(cold.because)}`
+  return results.some(result => result.verdict.kind === 'cold') ? `; ${words.say(cold.because)}` : ''
 }
+const INTERPRETED_ALL_THE_SAME = 'interpreted all the same'
 
-function needleText(title: string, known: KnownRun, technique: Technique): string {
+function needleText(title: string, known: Told, technique: Technique, words: FindingWords): string {
   const labels = new Map((technique.ordinals ?? []).map(ordinal => [ordinal.id, ordinal.label]))
-  const said = known.run.rows.flatMap(row => Object.entries(row.ordinals ?? {}).map(([id, choice]) => `${labels.get(id) ?? id} ${choice}`))
-  return said.length > 0 ? `${title}: ${said.join(', ')}.` : `${title}: nothing recorded.`
+  const said = known.run.rows.flatMap(row => Object.entries(row.ordinals ?? {}).map(([id, choice]) => `${words.say(labels.get(id) ?? id)} ${words.say(choice)}`))
+  return said.length > 0 ? `${title}: ${said.join(', ')}.` : `${title}: ${words.nothingRecorded}.`
 }
 
 /** Side differences are told only where a set has a limit; the others also where there is no number, with the reason. */
-function comparisonText(comparison: ComparisonAssessment): string | null {
+function comparisonText(comparison: ComparisonAssessment, words: FindingWords): string | null {
   const isSides = comparison.side === undefined
   const told = comparison.results.filter(result => isSides ? ['within', 'outside', 'absent', 'cold'].includes(result.verdict.kind) : true)
   if (told.length === 0) return null
+  const title = capital(words.say(comparison.title))
   const missing = told.filter(result => result.value.kind === 'not-computable')
   const [first] = missing
-  if (missing.length === told.length && first?.value.kind === 'not-computable') return `${capital(comparison.title)}: not computable: ${first.value.because.replace(/\b(right|left)\b/, side => side.toUpperCase())}.`
-  if (told.every(result => result.verdict.kind === 'within' && !isNear(result))) return `${capital(comparison.title)}: ${told.map(result => `${result.label} ${withUnit(result)}`).join(', ')}, within limits.`
-  return `${capital(comparison.title)}: ${told.map(comparedText).join(', ')}.`
+  if (missing.length === told.length && first?.value.kind === 'not-computable') return `${title}: ${words.notComputable}: ${words.say(first.value.because.replace(/\b(right|left)\b/, side => side.toUpperCase()))}.`
+  if (told.every(result => result.verdict.kind === 'within' && !isNear(result))) return `${title}: ${told.map(result => `${words.say(result.label)} ${withUnit(result, words)}`).join(', ')}, ${words.withinLimits}.`
+  return `${title}: ${told.map(result => comparedText(result, words)).join(', ')}.`
 }
 
-function comparedText(result: Result): string {
-  return result.value.kind === 'not-computable' ? `${result.label} not computable: ${result.value.because}` : valueText(result)
+function comparedText(result: Result, words: FindingWords): string {
+  return result.value.kind === 'not-computable' ? `${words.say(result.label)} ${words.notComputable}: ${words.say(result.value.because)}` : valueText(result, words)
 }

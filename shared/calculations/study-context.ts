@@ -92,13 +92,19 @@ function sexWord(sex: Assessment['person']['sexForLimits'], ageYears: number | n
 function knownRuns(study: Study, tables: readonly ReferenceTable[], policy: Policy): KnownRun[] {
   const temperatures = temperatureContext(study, tables, policy)
   return study.runs.map((run) => {
-    const technique = techniqueOf(run.technique)
+    const recorded = recordedRun(run)
+    const { technique, rows } = recorded
     const cold = coldOfRun(temperatures, run, technique)
     const bearing: ColdBearing = countsAsCold(cold, run) ? { state: 'all', words: cold.because } : notCold
-    const placed = technique ? placedRows(run, technique) : []
-    const rows = placed.filter(one => !one.site?.aside)
-    return { run, technique, cold, bearing, measured: isMeasured(run), rows, asides: placed.filter(one => one.site?.aside), usual: technique && rows[usualIndex(rows, technique)] }
+    return { ...recorded, cold, bearing, usual: technique && rows[usualIndex(rows, technique)] }
   })
+}
+
+/** A run with its technique and its rows in the order of the catalogue; stimulation beside the nerve's line apart. */
+export function recordedRun(run: Run): Pick<KnownRun, 'run' | 'technique' | 'measured' | 'rows' | 'asides'> {
+  const technique = techniqueOf(run.technique)
+  const placed = technique ? placedRows(run, technique) : []
+  return { run, technique, measured: isMeasured(run), rows: placed.filter(one => !one.site?.aside), asides: placed.filter(one => one.site?.aside) }
 }
 
 /** Was anything recorded, an absent response included? A run marked as not done was not. */

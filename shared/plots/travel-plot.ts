@@ -5,7 +5,7 @@ import { axisTicks, type Tick } from './axis-ticks'
 import type { Tone } from './tokens'
 import { limitsOf, toneOf } from './verdict-words'
 
-export interface TravelPoint { rowId: string, site: string, label: string, /** its label starts or ends beside it */ anchor: 'start' | 'end', /** where the foot of its label stands */ labelY: number, x: number, y: number, ms: number, mm: number }
+export interface TravelPoint { rowId: string, site: string, label: string, /** the site in full */ name: string, /** its label starts or ends beside it */ anchor: 'start' | 'end', /** where its label starts or ends, and its foot stands */ labelX: number, labelY: number, /** the axis names the first site already: it is left out where it has no room */ isNamed: boolean, x: number, y: number, ms: number, mm: number }
 export interface TravelSegment {
   rowId: string
   from: { x: number, y: number }
@@ -30,7 +30,7 @@ export interface TravelPlotGeometry {
   otherPath: string
   otherSide: string
   timeTicks: Tick[]
-  distanceTicks: Tick[]
+  distanceTicks: (Tick & { /** a long name of a site stands where its number would */ isCovered: boolean })[]
   origin: string
   /** What could not be placed: "elbow: no response". */
   unplaced: string[]
@@ -62,8 +62,9 @@ function placeRows(run: Run): Placed[] {
 }
 
 const labelOf = (technique: Technique, siteId: string) => technique.sites.find(site => site.id === siteId)?.label ?? siteId
-/** Beside a point there is room for the site alone: what stands in brackets is left to the table. */
-const shortLabel = (technique: Technique, siteId: string) => labelOf(technique, siteId).replace(/ \(.*\)$/, '')
+/** Beside a point there is little room: what stands in brackets is left to the table, long first words are cut short. */
+const cutShort: readonly (readonly [RegExp, string])[] = [[/ \(.*\)$/, ''], [/^unterhalb /, 'unt. '], [/^oberhalb /, 'ob. ']]
+const shortLabel = (technique: Technique, siteId: string) => cutShort.reduce((label, [long, short]) => label.replace(long, short), labelOf(technique, siteId))
 
 function unplacedRows(run: Run, technique: Technique, placed: Placed[]): string[] {
   return run.rows.filter(row => !placed.some(point => point.row.id === row.id)).map((row) => {
@@ -98,19 +99,26 @@ const letterWidth = 6.6
  * Sites are named left of their point, above the line, and velocities right of it, below: neither stands in the other's
  * way. A name that does not fit there stands right.
  */
-function anchorOf({ ms }: Placed, label: string, { x }: Frame, width: number): 'start' | 'end' {
+function anchorOf({ ms, mm }: Placed, label: string, { x }: Frame, width: number): 'start' | 'end' {
   const needs = 9 + label.length * letterWidth
-  return x(ms) - needs >= 0 || x(ms) + needs > width ? 'end' : 'start'
+  return x(ms) - needs >= (mm === 0 ? x(0) : 0) || x(ms) + needs > width ? 'end' : 'start'
 }
 
-function pointOf(point: Placed, label: string, frame: Frame, width: number): TravelPoint {
+function pointOf(point: Placed, technique: Technique, frame: Frame, width: number): TravelPoint {
   const { row, ms, mm } = point
   const [at, y] = [frame.x(ms), frame.y(mm)]
-  return { rowId: row.id, site: row.site, label, anchor: anchorOf(point, label, frame, width), labelY: mm === 0 ? y - 5 : y - 2, x: at, y, ms, mm }
+  const label = shortLabel(technique, row.site)
+  const anchor = anchorOf(point, label, frame, width)
+  // Inside the drawing in any case: a name across the line can be read, one cut off cannot.
+  const labelX = anchor === 'end' ? Math.max(at - 9, label.length * letterWidth + 2) : at + 9
+  return { rowId: row.id, site: row.site, label, name: labelOf(technique, row.site), anchor, labelX, isNamed: mm > 0 || anchor === 'end', labelY: mm === 0 ? y - 5 : y - 2, x: at, y, ms, mm }
 }
 
 /** Letters of size 12 need this from foot to foot. */
 const lineStep = 12
+/** Does the name of a site reach into the numbers of the axis at this height? */
+const covers = ({ anchor, labelX, labelY, label }: TravelPoint, at: number, left: number) => anchor === 'end' && labelX - label.length * letterWidth < left && Math.abs(labelY - at) < lineStep
+
 /** Labels on the same side that would touch move upward, from the lowest on. */
 function apart<Label>(labels: readonly Label[], sideOf: (label: Label) => string, footOf: (label: Label) => number, moved: (label: Label, foot: number) => Label): Label[] {
   const lowest: Record<string, number> = {}
@@ -170,9 +178,10 @@ export function travelPlotGeometry(recorded: Run, assessment: RunAssessment | un
   if (placed.length === 0) return null
   const { area, timeTicks, distanceTicks, ...frame } = frameOf(placed, others, width, height)
   const pairs = neighbours(run, placed)
+  const points = apart(placed.map(point => pointOf(point, technique, frame, width)), point => point.anchor, point => point.labelY, (point, labelY) => ({ ...point, labelY }))
   return {
-    width, height, area, timeTicks, distanceTicks,
-    points: apart(placed.map(point => pointOf(point, shortLabel(technique, point.row.site), frame, width)), point => point.anchor, point => point.labelY, (point, labelY) => ({ ...point, labelY })),
+    width, height, area, timeTicks, points,
+    distanceTicks: distanceTicks.map(tick => ({ ...tick, isCovered: points.some(point => covers(point, tick.at, area.left)) })),
     segments: apart(pairs.map(([from, to]) => segmentOf(from, to, velocityOf(assessment, to.row.id), frame, anchorOf(to, shortLabel(technique, to.row.site), frame, width))), segment => segment.label.anchor, segment => segment.label.y, (segment, y) => ({ ...segment, label: { ...segment.label, y } })),
     wedges: pairs.flatMap(([from, to]) => {
       const velocity = velocityOf(assessment, to.row.id)

@@ -57,7 +57,8 @@ export interface NoteBlock { kind: 'note', tone: 'warning' | 'plain', words: Wor
 /** A part of the report with a name of its own, in the order of `index.ts`. */
 export interface ReportSection<Source> { id: string, blocks: (source: Source) => Block[] }
 
-const sideWord = /\b(RIGHT|LEFT)\b/
+/** In every language of the report; a side is never written in capitals for another reason. */
+const sideWord = /\b(RIGHT|LEFT|RECHTS|LINKS)\b/
 
 /**
  * Text with the side words strong, wherever they stand: capitals and weight together cut mistakes of side.

@@ -1,13 +1,17 @@
 const months = ['January', 'February', 'March', 'April', 'May', 'June', 'July', 'August', 'September', 'October', 'November', 'December'] as const
 
+/** How a language writes a day: names of the months, and what stands after the number of the day. */
+export interface DayWords { months: readonly string[], afterDay: string }
+export const englishDays: DayWords = { months, afterDay: '' }
+
 /**
  * A calendar day for people. It is never shifted by a time zone.
  *
  * @example formatDay('2026-03-09') // => '9 March 2026'
  */
-export function formatDay(isoDate: string): string {
+export function formatDay(isoDate: string, words: DayWords = englishDays): string {
   const [year, month, day] = isoDate.slice(0, 10).split('-').map(Number)
-  return `${day} ${months[(month ?? 1) - 1]} ${year}`
+  return `${day}${words.afterDay} ${words.months[(month ?? 1) - 1]} ${year}`
 }
 
 /** Year, month, day, hour, minute and offset of a moment in a zone. */
@@ -21,10 +25,10 @@ function partsIn(iso: string, timeZone: string): Record<string, string> {
  *
  * @example formatMoment('2026-12-02T15:40:00Z', 'Europe/Vienna') // => '2 December 2026, 16:40 (+01:00)'
  */
-export function formatMoment(iso: string, timeZone: string): string {
+export function formatMoment(iso: string, timeZone: string, words: DayWords = englishDays): string {
   const parts = partsIn(iso, timeZone)
   const offset = (parts.timeZoneName ?? '').replace('GMT', '') || '+00:00'
-  return `${formatDay(`${parts.year}-${parts.month}-${parts.day}`)}, ${parts.hour}:${parts.minute} (${offset})`
+  return `${formatDay(`${parts.year}-${parts.month}-${parts.day}`, words)}, ${parts.hour}:${parts.minute} (${offset})`
 }
 
 /** @example formatClock('2026-12-02T15:40:00Z', 'Europe/Vienna') // => '16:40' */

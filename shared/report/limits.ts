@@ -1,4 +1,5 @@
 import type { AppliedLimit, Result } from '../calculations/types'
+import { valueText } from '../calculations/findings'
 import { limitsOf, limitText as limitNumber, verdictWords } from '../plots/verdict-words'
 import { emptyCell, note, plainCell, type Cell, type Mark, type NoteBlock, type TextCell } from './blocks'
 import type { ReportWords } from './words'
@@ -15,24 +16,27 @@ export function markOf({ verdict, flagged }: Result): Mark | undefined {
 }
 
 /** A number with its mark and uncertainty, as printed; an empty cell where nothing was typed or computed. */
-export function valueCell(result: Result | undefined): TextCell {
+export function valueCell(result: Result | undefined, words: ReportWords): TextCell {
   if (!result || result.value.kind === 'not-computable') return emptyCell
   const mark = markOf(result)
-  const text = [result.print, result.printUncertainty].filter(Boolean).join(' ')
+  const text = result.value.kind === 'value' ? [result.print, result.printUncertainty].filter(Boolean).join(' ') : words.say(result.print)
   const doubtful = result.verdict.kind === 'outside' && result.verdict.nearLimit
   return { words: [{ text, strong: result.flagged }], ...(mark ? { mark } : {}), ...(doubtful ? { doubtful } : {}) }
 }
 
+/** A result with what its limit says, for whoever does not see the drawing. */
+export const resultWords = (result: Result, words: ReportWords): string => words.language === 'en' ? verdictWords(result) : valueText(result, words.drafted)
+
 /** The bar of the first judged result, with the same in words. */
-export function barCell(judged: readonly Result[]): Cell {
+export function barCell(judged: readonly Result[], words: ReportWords): Cell {
   const first = judged.find(result => limitsOf(result.verdict).length > 0)
-  return first ? { bar: first, text: verdictWords(first) } : emptyCell
+  return first ? { bar: first, text: resultWords(first, words) } : emptyCell
 }
 
 /** Why a result has no limit: "no limit: age 5 is outside 19 to 79", "not judged: height missing"; '' where it has one or needs none. */
 function reasonOf({ verdict }: Result, words: ReportWords): string {
-  if (verdict.kind === 'not-judged') return `${words.notJudged}: ${verdict.because}`
-  return verdict.kind === 'no-limit' ? `${words.noLimits}: ${verdict.because}` : ''
+  if (verdict.kind === 'not-judged') return `${words.notJudged}: ${words.say(verdict.because)}`
+  return verdict.kind === 'no-limit' ? `${words.noLimits}: ${words.say(verdict.because)}` : ''
 }
 
 /** The reasons in a table, each once, in order; rows name them by letter where there are several. */

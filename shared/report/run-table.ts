@@ -30,10 +30,10 @@ export function columnsOf(kind: RunKind, runs: readonly FrozenRun[]): string[] {
 }
 
 /** "latency, ms"; the name of a computed quantity comes from its first result. */
-function columnLabel(quantity: string, runs: readonly FrozenRun[]): string {
+function columnLabel(quantity: string, runs: readonly FrozenRun[], words: ReportWords): string {
   const known = quantity in quantities ? quantities[quantity as keyof typeof quantities] : undefined
   const example = runs.flatMap(({ assessment }) => assessment.results).find(result => result.quantity === quantity)
-  const label = known?.label ?? example?.label.split(/,| at /)[0] ?? quantity
+  const label = words.columnHead(known?.label ?? example?.label.split(/,| at /)[0] ?? quantity)
   const unit = known?.unit ?? example?.unit ?? ''
   return unit ? `${label}, ${unit}` : label
 }
@@ -45,7 +45,7 @@ function resultsOfRow({ assessment }: FrozenRun, row: RunRow, first: boolean): R
 
 /** The side stands in every row: a row at the head of a page must not depend on the page before. */
 function nameCell(frozen: FrozenRun, first: boolean, words: ReportWords): TextCell {
-  const name = `${words.sides[frozen.run.side]} ${shortRunName(frozen)}`
+  const name = `${words.sides[frozen.run.side]} ${shortRunName(frozen, words)}`
   if (!first) return { words: [{ text: name, faint: true }] }
   return { words: withSides(name), ...(frozen.assessment.supersededBy ? { below: words.superseded } : {}) }
 }
@@ -61,9 +61,9 @@ function tableRow(frozen: FrozenRun, row: RunRow, index: number, columns: string
   const shown = shownIn(frozen, row, index, columns)
   const cells: Cell[] = [
     nameCell(frozen, index === 0, words),
-    ...siteCell(frozen, row),
-    ...shown.map(valueCell),
-    barCell(present(shown)),
+    ...siteCell(frozen, row, words),
+    ...shown.map(result => valueCell(result, words)),
+    barCell(present(shown), words),
     limitsCell(present(shown), words, notes),
   ]
   return { cells, first: index === 0, struck: Boolean(frozen.assessment.supersededBy), runId: frozen.run.id }
@@ -71,8 +71,8 @@ function tableRow(frozen: FrozenRun, row: RunRow, index: number, columns: string
 
 /** Kinds stimulated at one site say it in the nerve's name; the others have a column for it. */
 const hasSiteColumn = (kind: RunKind) => kind !== 'sensory' && kind !== 'mixed'
-function siteCell({ technique }: FrozenRun, row: RunRow): Cell[] {
-  return hasSiteColumn(technique.kind) ? [plainCell(technique.sites.find(site => site.id === row.site)?.label ?? row.site)] : []
+function siteCell({ technique }: FrozenRun, row: RunRow, words: ReportWords): Cell[] {
+  return hasSiteColumn(technique.kind) ? [plainCell(words.say(technique.sites.find(site => site.id === row.site)?.label ?? row.site))] : []
 }
 
 /**
@@ -91,7 +91,7 @@ export function runTable(source: ReportSource, kind: RunKind, caption: string, w
     columns: [
       { label: words.columns.nerve, align: 'left', wide: true },
       ...(hasSiteColumn(kind) ? [{ label: words.columns.site, align: 'left' as const }] : []),
-      ...columns.map(quantity => ({ label: columnLabel(quantity, runs), align: 'right' as const })),
+      ...columns.map(quantity => ({ label: columnLabel(quantity, runs, words), align: 'right' as const })),
       { label: '', align: 'bar' },
       { label: words.columns.limits, align: 'right' },
     ],
@@ -105,7 +105,7 @@ function seriesBlocks(runs: readonly FrozenRun[], words: ReportWords): Block[] {
   const said = runs.filter(({ assessment }) => !assessment.supersededBy).flatMap(frozen => frozen.run.rows.filter(row => row.series?.length).map((row) => {
     const site = frozen.technique.sites.find(one => one.id === row.site)?.label ?? row.site
     const unit = frozen.technique.kind === 'f-wave' ? 'ms' : 'mV'
-    return `${words.sides[frozen.run.side]} ${shortRunName(frozen)}, ${site}: ${row.series!.map(entry => typeof entry === 'number' ? String(entry) : absenceLabels[entry]).join(', ')} ${unit}`
+    return `${words.sides[frozen.run.side]} ${shortRunName(frozen, words)}, ${words.say(site)}: ${row.series!.map(entry => typeof entry === 'number' ? String(entry) : words.say(absenceLabels[entry])).join(', ')} ${unit}`
   }))
   return said.length > 0 ? [paragraph([{ text: `${words.singleResponses}. `, strong: true }, ...withSides(`${said.join('; ')}.`)], 'faint')] : []
 }

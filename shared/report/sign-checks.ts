@@ -13,7 +13,7 @@ export interface SignCheckInput {
   draft: ReportDraft
   findings: ReadingView['findings']
   clinicalQuestion: string
-  /** Only English words are read for sides; in other languages the fields alone. */
+  /** The report's: its words are read for sides. */
   language: string
   recipients: { name: string, reachable: boolean, because: string }[]
   namesakes: ReadingView['namesakes']
@@ -77,27 +77,25 @@ function complaint(claim: SideClaim, flags: Flag[]): string {
  */
 function wrongSides(input: SignCheckInput): Found[] {
   const flags = flagsOf(input)
-  const readsWords = input.language.startsWith('en')
-  return input.draft.technicalOnly ? [] : input.draft.impression.flatMap(line => lineSides(line, flags, readsWords))
+  return input.draft.technicalOnly ? [] : input.draft.impression.flatMap(line => lineSides(line, flags, input.language))
 }
 
-function lineSides(line: ImpressionLine, flags: Flag[], readsWords: boolean): Found[] {
-  const claims = sideClaims(line, readsWords)
+function lineSides(line: ImpressionLine, flags: Flag[], language: string): Found[] {
+  const claims = sideClaims(line, language)
   const found = claims.flatMap((claim) => {
     const sentence = complaint(claim, flags)
     return sentence ? [stop(`side/${line.id}/${claim.side}/${claim.abnormal ? 'abnormal' : 'normal'}/${claim.words.slice(0, 80)}`, sentence, { answerable: true })] : []
   })
-  const contradicts = readsWords && wordsContradictField(line)
+  const contradicts = wordsContradictField(line, language)
   return contradicts ? [...found, stop(`side-field/${line.id}/${line.side}/${line.words.slice(0, 80)}`, `The field beside "${line.words}" says ${line.side}; the words say another side.`)] : found
 }
 
 /** A recommendation or correlation that names the side without any flag while the other side has some. */
 function sidesElsewhere(input: SignCheckInput): Found[] {
-  if (!input.language.startsWith('en')) return []
   const flags = flagsOf(input)
   const texts = [['recommendation', input.draft.recommendation], ['correlation', input.draft.correlation]] as const
   return texts.flatMap(([name, text]) => {
-    const sides = sidesInWords(text)
+    const sides = sidesInWords(text, input.language)
     const [side] = sides
     const wrong = sides.length === 1 && side && !flags.some(flag => flag.side === side) && flags.length > 0
     return wrong ? [check(`side-text/${name}/${text.slice(0, 80)}`, `The ${name} speaks of the ${sideName(side)}, where nothing is flagged; the ${sideName(otherSide(side))} has flags.`)] : []

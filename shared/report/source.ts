@@ -3,6 +3,7 @@ import type { RunKind, Technique } from '../catalogue/types'
 import type { ReportSnapshot } from '../schemas/report'
 import type { Run } from '../schemas/study'
 import type { ReportStatus } from '../states'
+import type { ReportWords } from './words'
 
 export interface VersionLine { version: number, status: ReportStatus, signedAt: string, signedName: string, reason: string }
 
@@ -32,8 +33,13 @@ export function runsOf(snapshot: ReportSnapshot, kinds: readonly RunKind[]): Fro
 }
 
 /** "median, APB": the nerve and where it was recorded, as short as a table allows; a nerve that had another name carries it once. */
-export function shortRunName({ technique }: FrozenRun): string {
+export function shortRunName({ technique }: FrozenRun, words: ReportWords): string {
   const [before] = technique.label.split(', ')
   const nerve = technique.kind === 'motor' || technique.kind === 'sensory' ? technique.nerve.replaceAll('-', ' ') : before ?? technique.label
-  return `${nerve}, ${technique.recording.short}`
+  return `${words.tableNerve(nerve)}, ${words.say(technique.recording.short)}`
+}
+
+/** A technique with its sites named in the language of the report. */
+export function techniqueIn(words: ReportWords, technique: Technique): Technique {
+  return { ...technique, sites: technique.sites.map(site => ({ ...site, label: words.say(site.label) })) }
 }

@@ -1,4 +1,5 @@
 import * as z from 'zod'
+import { reportLanguages } from '../report/languages'
 import { referralSides } from './common'
 import type { PatientBand, PatientView } from './patient'
 import type { ReferralState, StudyState, ReportStatus, DeliveryState } from '../states'
@@ -49,7 +50,8 @@ export const referralSchema = z.object({
   urgencyReason: z.string().trim().max(300).default(''),
   needs: z.string().trim().max(300).default(''),
   consentElectronic: z.enum(threeAnswers).default('not-asked'),
-  reportLanguage: z.string().max(5).default('en'),
+  /** Words of the report and its disclaimer; what people type stays as they typed it. */
+  reportLanguage: z.enum(reportLanguages, 'Choose a language of the report.').default('en'),
 })
 export type ReferralInput = z.infer<typeof referralSchema>
 

@@ -113,7 +113,7 @@ export interface ReadingView {
   /** Who would receive a version signed now: the referring physician, the copies, or everyone who had an earlier version. */
   /** `namesakes`: where in the directory others of that name are, "Chapel Row Medical Centre, Osterleigh". */
   recipients?: { name: string, practiceName: string, town: string, namesakes: string[] }[]
-  /** The study judged with the reader's own choices (cold runs interpreted) and beside earlier studies; left out while there are neither. */
+  /** The study judged with the reader's own choices (cold runs interpreted), beside earlier studies, its sentences in the report's language; left out where that changes nothing. */
   assessment?: Assessment
 }
 

@@ -1,3 +1,4 @@
+import type { ReportLanguage } from '#shared/report/languages'
 import type { Generated, Insertable, Selectable } from 'kysely'
 
 export interface ReferralTable {
@@ -25,7 +26,7 @@ export interface ReferralTable {
   cautionsJson: Generated<string>
   needs: Generated<string>
   consentElectronic: Generated<string>
-  reportLanguage: Generated<string>
+  reportLanguage: Generated<ReportLanguage>
   protocol: string | null
   receivedAt: string | null
   /** Kept by triggers of the booking table. */

@@ -9,8 +9,8 @@ import { reportWords, type ReportWords } from '../words'
 
 /** A number with its unit, or the reason why there is none. */
 function valueOrReason(result: Result, words: ReportWords): TextCell {
-  if (result.value.kind === 'not-computable') return plainCell(`${words.notComputable}: ${result.value.because}`)
-  const cell = valueCell(result)
+  if (result.value.kind === 'not-computable') return plainCell(`${words.notComputable}: ${words.say(result.value.because)}`)
+  const cell = valueCell(result, words)
   return result.value.kind === 'value' && result.unit && result.unit !== '1' ? { ...cell, words: [...cell.words, { text: ` ${result.unit}` }] } : cell
 }
 
@@ -20,7 +20,7 @@ interface Line { name: string, result: Result, first: boolean }
 function resultTable(caption: string, first: string, lines: Line[], words: ReportWords): Block[] {
   const notes = tableNotes(lines.map(line => [line.result]), words)
   const row = ({ name, result, first: isFirst }: Line): TableBlock['rows'][number] =>
-    ({ cells: [{ words: withSides(name) }, valueOrReason(result, words), barCell([result]), limitsCell([result], words, notes)], first: isFirst, struck: result.verdict.kind === 'superseded' })
+    ({ cells: [{ words: withSides(name) }, valueOrReason(result, words), barCell([result], words), limitsCell([result], words, notes)], first: isFirst, struck: result.verdict.kind === 'superseded' })
   const table: TableBlock = {
     kind: 'table',
     caption,
@@ -35,7 +35,7 @@ const isJudged = (result: Result) => result.flagged || limitsOf(result.verdict).
 /** "RIGHT sensory onset difference"; a comparison of the two sides has no side of its own and is named by its title. */
 function nameOf({ title, side }: ComparisonAssessment, result: Result, words: ReportWords): string {
   const own = side ?? result.side
-  return own ? `${words.sides[own]} ${result.label}` : `${title}: ${result.label}`
+  return own ? `${words.sides[own]} ${words.say(result.label)}` : `${words.say(title)}: ${words.say(result.label)}`
 }
 
 function comparisonLines(comparison: ComparisonAssessment, words: ReportWords): Line[] {
@@ -62,11 +62,11 @@ const tabled: RunKind[] = ['motor', 'sensory', 'mixed', 'f-wave', 'h-reflex', 'r
 /** What is within its limit stands in the findings; a line of its own is for what a reader must see. */
 const stands = ({ flagged, verdict }: Result) => flagged || verdict.kind === 'cold' || ((verdict.kind === 'within' || verdict.kind === 'outside') && verdict.nearLimit)
 
-function linesOfKind(kind: RunKind, runs: FrozenRun[]): Line[] {
+function linesOfKind(kind: RunKind, runs: FrozenRun[], words: ReportWords): Line[] {
   const shown = columnsOf(kind, runs)
   return runs.flatMap(({ assessment }) => assessment.results
     .filter(result => stands(result) && !shown.includes(result.quantity))
-    .map((result, index) => ({ name: `${assessment.title}: ${result.label}`, result, first: index === 0 })))
+    .map((result, index) => ({ name: `${words.say(assessment.title)}: ${words.say(result.label)}`, result, first: index === 0 })))
 }
 
 /** Computed values outside or near a limit that have no column of their own: falls between sites, drops of velocity. */
@@ -74,7 +74,7 @@ export const derived: ReportSection<ReportSource> = {
   id: 'derived',
   blocks: ({ snapshot }) => {
     const words = reportWords(snapshot.language)
-    const lines = tabled.flatMap(kind => linesOfKind(kind, runsOf(snapshot, [kind])))
+    const lines = tabled.flatMap(kind => linesOfKind(kind, runsOf(snapshot, [kind]), words))
     return lines.length > 0 ? [heading(2, words.derived, 'derived'), ...resultTable(words.derived, words.columns.computed, lines, words)] : []
   },
 }

@@ -11,11 +11,11 @@ function born({ snapshot }: ReportSource, words: ReportWords): string {
   const sex = snapshot.patient.sexForLimits
   const age = ageYears === null ? '' : ` (${Math.floor(ageYears)})`
   const size = [sex && words.sex[sex], heightCm !== null && `${heightCm} cm`, weightKg !== null && `${weightKg} kg`]
-  return [formatDay(snapshot.patient.birthDate) + age, ...size].filter(Boolean).join(', ')
+  return [formatDay(snapshot.patient.birthDate, words.days) + age, ...size].filter(Boolean).join(', ')
 }
 
-function studied({ snapshot }: ReportSource): string {
-  const day = formatDay(snapshot.study.studyDate)
+function studied({ snapshot }: ReportSource, words: ReportWords): string {
+  const day = formatDay(snapshot.study.studyDate, words.days)
   const further = (snapshot.bench?.visits ?? []).map(visit => formatDay(visit.day))
   if (further.length) return [day, ...further].join(' and ')
   return snapshot.startedAt ? `${day}, ${formatClock(snapshot.startedAt, snapshot.site.timeZone)}` : day
@@ -30,7 +30,7 @@ function items(source: ReportSource, words: ReportWords): Item[] {
   const name: Words[] = [{ text: `${patient.familyName.toLocaleUpperCase('en')}, ${patient.givenName}`, strong: true }]
   return [
     item(names.patient, name),
-    item(names.studied, studied(source)),
+    item(names.studied, studied(source, words)),
     item(names.born, born(source, words)),
     item(names.site, [snapshot.site.name, snapshot.site.town].filter(Boolean).join(', ')),
     item(names.record, patient.recordNumber),
@@ -39,7 +39,7 @@ function items(source: ReportSource, words: ReportWords): Item[] {
     item(names.side, referral.side ? words.sides[referral.side] : words.notRecorded),
     item(names.study, `${snapshot.studyNumber} · ${referral.number}`),
     ...(referral.copies.length > 0 ? [item(names.copies, referral.copies.map(person).join('; '))] : []),
-    ...(referral.cautions.length > 0 ? [item(names.cautions, referral.cautions.join(', '))] : []),
+    ...(referral.cautions.length > 0 ? [item(names.cautions, referral.cautions.map(words.say).join(', '))] : []),
   ]
 }
 

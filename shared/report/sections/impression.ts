@@ -1,4 +1,5 @@
 import { heading, note, paragraph, withSides, type Block, type ReportSection, type Words } from '../blocks'
+import { sidesInWords } from '../side-claims'
 import type { ReportSource } from '../source'
 import { reportWords, type ReportWords } from '../words'
 import type { ImpressionLine } from '../../schemas/report'
@@ -6,13 +7,15 @@ import type { ImpressionLine } from '../../schemas/report'
 /** Side and degree beside the words only where the words do not say them: a side never appears twice or differently. */
 function lineWords(line: ImpressionLine, words: ReportWords): Words[] {
   const said = line.words.toLowerCase()
-  const side = line.side && !(line.side === 'both' ? /bilateral|both|\bright\b.*\bleft\b|\bleft\b.*\bright\b/ : new RegExp(`\\b${line.side}\\b`)).test(said) ? `${words.sides[line.side]}: ` : ''
+  const named = sidesInWords(line.words, words.language)
+  const isSaid = line.side === 'both' ? named.length === 2 : line.side !== null && named.includes(line.side)
+  const side = line.side && !isSaid ? `${words.sides[line.side]}: ` : ''
   const degree = line.degree && !said.includes(line.degree.toLowerCase()) ? ` (${line.degree})` : ''
   return withSides(`${side}${capitalSides(line.words)}${degree}`)
 }
 
-/** "right" and "left" of the reader's words in capitals, as everywhere else in the report. */
-const capitalSides = (text: string) => text.replace(/\b(right|left)\b/gi, side => side.toUpperCase())
+/** "right" and "left", "rechts" and "links" of the reader's words in capitals, as everywhere else in the report. */
+const capitalSides = (text: string) => text.replace(/\b(right|left|rechts|links)\b/gi, side => side.toUpperCase())
 
 /** The reader's conclusion, two to five lines, before any number. A technical report says that it has none. */
 export const impression: ReportSection<ReportSource> = {

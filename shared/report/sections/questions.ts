@@ -1,22 +1,22 @@
 import type { ReportSnapshot } from '../../schemas/report'
 import { heading, paragraph, withSides, type Block, type ReportSection } from '../blocks'
 import type { ReportSource } from '../source'
-import { reportWords } from '../words'
+import { reportWords, type ReportWords } from '../words'
 
-const line = (label: string, question: string, reason: string): Block =>
-  paragraph([{ text: `${label}. `, strong: true }, ...withSides(question ? `${question} ` : ''), { text: `Reason: ${reason}` }], 'faint')
+const line = (label: string, question: string, reason: string, words: ReportWords): Block =>
+  paragraph([{ text: `${label}. `, strong: true }, ...withSides(question ? `${question} ` : ''), { text: `${words.changeReason}: ${reason}` }], 'faint')
 
-function keptLines({ assessment, study }: ReportSnapshot, label: string): Block[] {
+function keptLines({ assessment, study }: ReportSnapshot, words: ReportWords): Block[] {
   return study.keptChecks.flatMap((kept) => {
     const remark = assessment.remarks.find(candidate => candidate.key === kept.key)
-    return remark ? [line(label, remark.sentence, kept.reason)] : []
+    return remark ? [line(words.keptAtBench, remark.sentence, kept.reason, words)] : []
   })
 }
 
-function coldLines({ draft, assessment }: ReportSnapshot, label: string): Block[] {
+function coldLines({ draft, assessment }: ReportSnapshot, words: ReportWords): Block[] {
   return draft.interpretCold.flatMap((item) => {
     const run = assessment.runs.find(candidate => candidate.runId === item.runId)
-    return run ? [line(label, `${run.title}.`, item.reason)] : []
+    return run ? [line(words.interpretedCold, `${words.say(run.title)}.`, item.reason, words)] : []
   })
 }
 
@@ -25,8 +25,8 @@ export const questions: ReportSection<ReportSource> = {
   id: 'questions',
   blocks: ({ snapshot }) => {
     const words = reportWords(snapshot.language)
-    const resolved = snapshot.resolvedChecks.map(check => line(words.resolvedByReader, check.sentence, check.reason))
-    const lines = [...coldLines(snapshot, words.interpretedCold), ...keptLines(snapshot, words.keptAtBench), ...resolved]
+    const resolved = snapshot.resolvedChecks.map(check => line(words.resolvedByReader, check.sentence, check.reason, words))
+    const lines = [...coldLines(snapshot, words), ...keptLines(snapshot, words), ...resolved]
     return lines.length > 0 ? [heading(2, words.questionsKept, 'questions'), ...lines] : []
   },
 }

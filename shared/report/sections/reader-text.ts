@@ -1,6 +1,6 @@
 import { heading, paragraph, type Block, type ReportSection } from '../blocks'
 import type { ReportSource } from '../source'
-import { reportWords } from '../words'
+import { reportWords, type ReportWords } from '../words'
 import { formatMoment } from '../dates'
 import type { ReportSnapshot } from '../../schemas/report'
 
@@ -33,14 +33,15 @@ export const promptContact: ReportSection<ReportSource> = {
   blocks: ({ snapshot }) => {
     const contact = snapshot.draft.promptContact
     if (!contact) return []
-    const at = Number.isNaN(Date.parse(contact.at)) ? contact.at : formatMoment(contact.at, snapshot.site.timeZone)
-    const text = [`${contact.who}, ${at}, ${contact.means}, ${contact.readBack ? 'read back' : 'not read back'}.`, contact.note].filter(Boolean).join(' ')
-    return part(reportWords(snapshot.language).promptContact, 'prompt-contact', text)
+    const words = reportWords(snapshot.language)
+    const at = Number.isNaN(Date.parse(contact.at)) ? contact.at : formatMoment(contact.at, snapshot.site.timeZone, words.days)
+    const text = [`${contact.who}, ${at}, ${contact.means}, ${contact.readBack ? words.reading.readBack : words.reading.notReadBack}.`, contact.note].filter(Boolean).join(' ')
+    return part(words.promptContact, 'prompt-contact', text)
   },
 }
 
-function referredHistory({ referral }: ReportSnapshot): string {
-  const onset = referral.onset ? `onset ${referral.onset}` : ''
+function referredHistory({ referral }: ReportSnapshot, words: ReportWords): string {
+  const onset = referral.onset ? words.reading.onset(referral.onset) : ''
   return [referral.symptoms.replace(/\.$/, ''), onset].filter(Boolean).join('; ')
 }
 
@@ -48,10 +49,10 @@ function historyParagraphs(snapshot: ReportSnapshot): Block[] {
   const words = reportWords(snapshot.language)
   const line = (who: string, text: string) => text.trim() ? [paragraph([{ text: `${who}: `, faint: true }, { text: text.trim() }])] : []
   return [
-    ...line(`${words.history}, ${words.historyAsReferred.toLowerCase()}`, referredHistory(snapshot)),
-    ...line(`${words.history}, ${words.byReader.toLowerCase()}`, snapshot.draft.history),
-    ...line(`${words.examination}, ${words.historyAsReferred.toLowerCase()}`, snapshot.referral.examination),
-    ...line(`${words.examination}, ${words.byReader.toLowerCase()}`, snapshot.draft.examination),
+    ...line(`${words.history}, ${words.inSentence(words.historyAsReferred)}`, referredHistory(snapshot, words)),
+    ...line(`${words.history}, ${words.inSentence(words.byReader)}`, snapshot.draft.history),
+    ...line(`${words.examination}, ${words.inSentence(words.historyAsReferred)}`, snapshot.referral.examination),
+    ...line(`${words.examination}, ${words.inSentence(words.byReader)}`, snapshot.draft.examination),
   ]
 }
 
@@ -61,7 +62,7 @@ export const history: ReportSection<ReportSource> = {
   blocks: ({ snapshot }) => {
     const words = reportWords(snapshot.language)
     const lines = historyParagraphs(snapshot)
-    return lines.length > 0 ? [heading(2, `${words.history}, ${words.examination.toLowerCase()}`, 'history'), ...lines] : []
+    return lines.length > 0 ? [heading(2, `${words.history}, ${words.inSentence(words.examination)}`, 'history'), ...lines] : []
   },
 }
 

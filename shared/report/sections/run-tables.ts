@@ -28,8 +28,8 @@ export const blink = tableOf('blink', 'blink', words => words.blink)
 function needleRow(frozen: FrozenRun, ordinals: string[], words: ReportWords): TableBlock['rows'][number] {
   const typed = frozen.run.rows[0]?.ordinals ?? {}
   const reason = frozen.run.notDoneBecause?.trim()
-  const name: TextCell = { words: withSides(`${words.sides[frozen.run.side]} ${shortRunName(frozen)}`), below: reason ? `${words.notExamined}: ${reason}` : frozen.technique.roots }
-  return { cells: [name, ...ordinals.map(id => typed[id] ? plainCell(typed[id]) : emptyCell)], first: true, struck: false, runId: frozen.run.id }
+  const name: TextCell = { words: withSides(`${words.sides[frozen.run.side]} ${shortRunName(frozen, words)}`), below: reason ? `${words.notExamined}: ${reason}` : frozen.technique.roots }
+  return { cells: [name, ...ordinals.map(id => typed[id] ? plainCell(words.say(typed[id])) : emptyCell)], first: true, struck: false, runId: frozen.run.id }
 }
 
 /** Every muscle, the ones that were left out with their reason. */
@@ -52,7 +52,7 @@ export const needle: ReportSection<ReportSource> = {
     return [heading(2, words.needle, 'needle'), {
       kind: 'table',
       caption: words.needle,
-      columns: [{ label: words.columns.nerve, align: 'left', wide: true }, ...ordinals.map(({ label }) => ({ label, align: 'left' as const }))],
+      columns: [{ label: words.columns.nerve, align: 'left', wide: true }, ...ordinals.map(({ label }) => ({ label: words.say(label), align: 'left' as const }))],
       rows: runs.map(run => needleRow(run, ordinals.map(({ id }) => id), words)),
     }]
   },

@@ -12,7 +12,7 @@ function signedBlock({ snapshot, sha256, auditHead }: ReportSource, words: Repor
   const who = [name, credentials].filter(Boolean).join(', ')
   const prints = [sha256 && `${words.fingerprint} ${shortFingerprint(sha256)}`, auditHead && `${words.auditHead} ${shortFingerprint(auditHead)}`]
   return [
-    paragraph([{ text: `${words.signedBy} `, strong: true }, { text: `by ${who}, ${formatMoment(at, timeZone)}: "${meaning}"` }]),
+    paragraph([{ text: `${words.signedBy} `, strong: true }, { text: words.signedLine(who, formatMoment(at, timeZone, words.days), words.say(meaning)) }]),
     ...snapshot.draftedBy ? [paragraph(`${words.draftedBy} ${snapshot.draftedBy}.`, 'faint')] : [],
     paragraph([`${snapshot.number}, ${words.version(snapshot.version, words.status[snapshot.status])}`, ...prints].filter(Boolean).join(' · '), 'faint'),
   ]
@@ -35,13 +35,21 @@ export const versions: ReportSection<ReportSource> = {
     return [heading(2, words.versions, 'versions'), ...lines.map((line) => {
       const status = words.status[line.status as keyof typeof words.status] ?? line.status
       const reason = line.reason ? `. ${words.changeReason}: ${line.reason}` : ''
-      return paragraph(`${words.version(line.version, status)} · ${line.signedName}, ${formatMoment(line.signedAt, snapshot.site.timeZone)}${reason}`, 'faint')
+      return paragraph(`${words.version(line.version, status)} · ${line.signedName}, ${formatMoment(line.signedAt, snapshot.site.timeZone, words.days)}${reason}`, 'faint')
     })]
   },
 }
 
-/** The organisation's own wording; it can be changed and not removed. */
+/**
+ * The organisation's own wording; it can be changed and not removed. In another language the default stands in that
+ * language, and wording of the organisation's own after it, as it was written.
+ */
+export function disclaimerIn(words: ReportWords, own: string): string {
+  if (words.language === 'en') return own
+  return own === reportWords('en').disclaimerText ? words.disclaimerText : `${words.disclaimerText} ${own}`
+}
+
 export const disclaimer: ReportSection<ReportSource> = {
   id: 'disclaimer',
-  blocks: ({ snapshot }) => [paragraph(snapshot.organisation.disclaimer, 'faint')],
+  blocks: ({ snapshot }) => [paragraph(disclaimerIn(reportWords(snapshot.language), snapshot.organisation.disclaimer), 'faint')],
 }

@@ -26,7 +26,42 @@ describe('sides in English words', () => {
     ['RIGHT median neuropathy', ['right']], ['Left-sided', ['left']], ['left-handed', ['left']], ['bilateral', ['right', 'left']], ['both hands', ['right', 'left']], ['on either side', ['right', 'left']],
     ['both the median and ulnar nerve on the right', ['right']], ['right and left', ['right', 'left']], ['median neuropathy', []], ['one site was left out', []], ['nothing is left to do', []], ['brightness, cleft', []],
   ])('%s', (words, sides) => {
-    expect(sidesInWords(words)).toEqual(sides)
+    expect(sidesInWords(words, 'en')).toEqual(sides)
+  })
+})
+
+describe('sides in German words', () => {
+  it.each([
+    ['Läsion des N. medianus RECHTS', ['right']], ['linksseitig', ['left']], ['der linke N. ulnaris', ['left']], ['re. betont', ['right']], ['li. mehr als re.', ['right', 'left']], ['beidseits', ['right', 'left']], ['bds. Karpaltunnelsyndrom', ['right', 'left']],
+    ['an beiden Händen', ['right', 'left']], ['bilaterale Läsion', ['right', 'left']], ['beide Nerven RECHTS', ['right']], ['Rechtshänderin', []], ['rechtzeitig, Linkage, Recht', []], ['Polyneuropathie', []], ['RIGHT median neuropathy', ['right']],
+  ])('%s', (words, sides) => {
+    expect(sidesInWords(words, 'de')).toEqual(sides)
+  })
+  it('a language without a list of words: the fields alone speak', () => {
+    expect(sidesInWords('à droite, right', 'fr')).toEqual([])
+    expect(sideClaims(line('à droite', { side: 'left', abnormal: true }), 'fr').map(claim => [claim.side, claim.words])).toEqual([['left', 'à droite']])
+  })
+})
+
+describe('the wrong-side rule in German', () => {
+  const stops = (...lines: ImpressionLine[]) => signChecks(input({ language: 'de' }, ...lines)).filter(check => isOpen(check) && check.key.startsWith('side'))
+  it.each<[string, Partial<ImpressionLine>]>([
+    ['Läsion des N. medianus RECHTS am Handgelenk.', {}],
+    ['Läsion des N. medianus rechts. Links kein Hinweis darauf.', {}],
+    ['Karpaltunnelsyndrom rechts, aber links unauffällig.', {}],
+    ['Läsion des N. medianus.', { side: 'right', nerve: 'median', abnormal: true }],
+  ])('nothing to ask: %s', (words, fields) => {
+    expect(stops(line(words, fields))).toEqual([])
+  })
+  it.each<[string, Partial<ImpressionLine>]>([
+    ['Läsion des N. medianus LINKS am Handgelenk.', {}],
+    ['Karpaltunnelsyndrom beidseits.', {}],
+    ['Karpaltunnelsyndrom li.', {}],
+    ['Läsion des N. tibialis rechts.', {}],
+    ['N. medianus rechts unauffällig.', {}],
+    ['Läsion des N. medianus rechts.', { side: 'left' }],
+  ])('stops: %s', (words, fields) => {
+    expect(stops(line(words, fields)).length).toBeGreaterThan(0)
   })
 })
 
@@ -67,10 +102,10 @@ describe('the wrong-side rule', () => {
   it('says which side has the flags', () => {
     expect(sideStops(line('LEFT median neuropathy.'))[0]?.sentence).toBe('"LEFT median neuropathy" speaks of the LEFT: no median row is flagged on the LEFT, but on the RIGHT there is.')
   })
-  it('in another language reads the fields alone', () => {
-    const german = line('Neuropathie des Nervus medianus links.', { side: 'left', nerve: 'median', abnormal: true })
-    expect(open(input({ language: 'de' }, german)).some(key => key.startsWith('side/'))).toBe(true)
-    expect(open(input({ language: 'de' }, line('left', {}))).filter(key => key.startsWith('side'))).toEqual([])
+  it('in a language without words reads the fields alone', () => {
+    const french = line('Neuropathie du nerf médian à gauche.', { side: 'left', nerve: 'median', abnormal: true })
+    expect(open(input({ language: 'fr' }, french)).some(key => key.startsWith('side/'))).toBe(true)
+    expect(open(input({ language: 'fr' }, line('left', {}))).filter(key => key.startsWith('side'))).toEqual([])
   })
   it('exempts limitations and what was not done', () => {
     expect(open(input({ draft: { ...draftOf(), limitations: ['LEFT ulnar motor was not done'] } })).filter(key => key.startsWith('side'))).toEqual([])
@@ -86,7 +121,7 @@ describe('the wrong-side rule', () => {
     expect(open(input({ draft: { ...draftOf(), impression: [line('LEFT median neuropathy, severe.')], resolved } })).length).toBe(1)
   })
   it('a claim splits at the turn of the sense', () => {
-    expect(sideClaims(line('RIGHT median neuropathy but none on the LEFT'), true).map(claim => [claim.side, claim.abnormal])).toEqual([['right', true], ['left', false]])
+    expect(sideClaims(line('RIGHT median neuropathy but none on the LEFT'), 'en').map(claim => [claim.side, claim.abnormal])).toEqual([['right', true], ['left', false]])
   })
 })
 
