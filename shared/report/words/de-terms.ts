@@ -28,12 +28,14 @@ export const germanTerms: Readonly<Record<string, string>> = {
   'below fibular head': 'unterhalb Fibulakopf', 'above fibular head': 'oberhalb Fibulakopf', 'above fibular head (popliteal)': 'oberhalb Fibulakopf (Kniekehle)', 'popliteal fossa': 'Kniekehle', 'below inguinal ligament': 'unterhalb Leistenband',
   'above inguinal ligament': 'oberhalb Leistenband', 'calf': 'Wade', 'lateral lower leg': 'lateraler Unterschenkel', 'medial lower leg': 'medialer Unterschenkel', 'medial sole': 'mediale Fußsohle', 'lateral sole': 'laterale Fußsohle',
   'at rest': 'in Ruhe', 'after exercise': 'nach Belastung', 'high rate': 'hohe Rate', 'supraorbital nerve': 'N. supraorbitalis', 'muscle': 'Muskel',
+  'ulnar nerve at the wrist': 'N. ulnaris am Handgelenk', 'median nerve at the wrist': 'N. medianus am Handgelenk', 'median nerve at the elbow': 'N. medianus am Ellenbogen', 'short segments across the elbow': 'kurze Segmente über den Ellenbogen', 'short segments across the fibular head': 'kurze Segmente über den Fibulakopf',
+  'ulnar nerve below the elbow': 'N. ulnaris unterhalb Ellenbogen', 'medial epicondyle': 'Epicondylus medialis', 'the epicondyle': 'Epicondylus', 'the fibular head': 'Fibulakopf', 'fibular head': 'Fibulakopf',
   // segments
   'wrist to palm': 'Handgelenk bis Hohlhand', 'palm to wrist': 'Hohlhand bis Handgelenk', 'upper arm': 'Oberarm', 'axilla to Erb\'s point': 'Axilla bis Erb-Punkt', 'across the elbow': 'über den Ellenbogen',
   'elbow to below the spiral groove': 'Ellenbogen bis unterhalb Sulcus n. radialis', 'across the spiral groove': 'über den Sulcus n. radialis', 'ankle to below the fibular head': 'Sprunggelenk bis unterhalb Fibulakopf',
   'across the fibular head': 'über den Fibulakopf', 'ankle to popliteal fossa': 'Sprunggelenk bis Kniekehle', 'across the inguinal ligament': 'über das Leistenband', 'the most distal site': 'distalster Ort',
   // quantities
-  'latency': 'Latenz', 'onset latency': 'Onset-Latenz', 'peak latency': 'Peak-Latenz', 'onset': 'Onset', 'peak': 'Peak', 'amplitude': 'Amplitude', 'duration': 'Dauer', 'area': 'Fläche', 'distance': 'Distanz', 'stimulus': 'Reiz', 'velocity': 'Geschwindigkeit',
+  'latency': 'Latenz', 'latency step': 'Latenzschritt', 'onset latency': 'Onset-Latenz', 'peak latency': 'Peak-Latenz', 'onset': 'Onset', 'peak': 'Peak', 'amplitude': 'Amplitude', 'duration': 'Dauer', 'area': 'Fläche', 'distance': 'Distanz', 'stimulus': 'Reiz', 'velocity': 'Geschwindigkeit',
   'stimuli': 'Reize', 'responses': 'Antworten', 'minimum': 'Minimum', 'mean': 'Mittel', 'maximum': 'Maximum', 'shortest F latency': 'kürzeste F-Latenz', 'mean F latency': 'mittlere F-Latenz', 'longest F latency': 'längste F-Latenz',
   'stimulus to spine': 'Reizort bis Wirbelsäule', 'knee crease to inner ankle': 'Kniefalte bis Innenknöchel', 'M latency': 'M-Latenz', 'H latency': 'H-Latenz', 'M amplitude': 'M-Amplitude', 'H amplitude': 'H-Amplitude', 'rate': 'Rate',
   'R1': 'R1', 'R2': 'R2', 'R1, same side': 'R1, gleiche Seite', 'R2, same side': 'R2, gleiche Seite', 'R2, other side': 'R2, Gegenseite', 'velocity drop': 'Geschwindigkeitsabfall', 'relative velocity drop': 'relativer Geschwindigkeitsabfall',
@@ -67,6 +69,7 @@ export const germanTerms: Readonly<Record<string, string>> = {
   'No limit was applied.': 'Kein Grenzwert wurde angewendet.', 'No limit with a stated percentile was applied.': 'Kein Grenzwert mit angegebener Perzentile wurde angewendet.',
   // meanings of the signature
   'I reviewed the data and interpret them as above.': 'Ich habe die Daten geprüft und beurteile sie wie oben.', 'I reviewed the technical data; this report holds no clinical interpretation.': 'Ich habe die technischen Daten geprüft; dieser Befund enthält keine klinische Beurteilung.',
+  'above': 'oberhalb', 'below': 'unterhalb',
   'women': 'Frauen', 'men': 'Männer', 'ring finger': 'Ringfinger', 'thumb': 'Daumen', 'palm difference': 'Differenz Hohlhand', 'ring finger difference': 'Differenz Ringfinger', 'thumb difference': 'Differenz Daumen',
   'in the room': 'im Raum', 'in the suite': 'in der Abteilung', 'live video': 'Videoübertragung', 'general': 'allgemein', 'well': 'gut', 'with discomfort': 'mit Beschwerden', 'poorly': 'schlecht', 'ended early at the patient\'s wish': 'auf Wunsch vorzeitig beendet',
   // cautions
@@ -124,6 +127,7 @@ export const germanPhrases: readonly Phrase[] = [
   [/^under (\d+)$/, age => `unter ${age}`],
   [/^(\d+) months?$/, months => `${months} Monate`],
   [/^(\d+) days$/, days => `${days} Tage`],
+  [/^(\d) cm (above|below) (the epicondyle|the fibular head)$/, (cm, way, what) => `${cm} cm ${way} ${what}`],
   // titles: "median motor, abductor pollicis brevis", "needle, deltoid", "repetitive stimulation, ulnar"
   [/^digit (\d)$/, digit => `Digitus ${digit}`],
   [/^needle, (.+)$/, what => `Nadel, ${what}`],
@@ -136,6 +140,9 @@ export const germanPhrases: readonly Phrase[] = [
   [/^([a-z ]+?) (motor|sensory|mixed|F-wave)$/, (nerve, kind) => `${nerve} ${kind}`],
   // labels of numbers
   [/^(.+), corrected from ([\d.]+) to ([\d.]+) °C$/, (what, from, to) => `${what}, korrigiert von ${from} auf ${to} °C`],
+  [/^(latency step),? (.+) to (.+)$/, (what, from, to) => `${what} ${from} bis ${to}`],
+  [/^(latency step),? (.+)$/, (what, where) => `${what} ${where}`],
+  [/^(latency|amplitude|duration|area|stimulus), (.+)$/, (what, where) => `${what}, ${where}`],
   [/^(.+), side difference$/, what => `${what}, Seitendifferenz`],
   [/^(velocity drop|relative velocity drop) (.+)$/, (what, where) => `${what} ${where}`],
   [/^velocity,? (.+) to (.+)$/, (from, to) => `Geschwindigkeit ${from} bis ${to}`],

@@ -27,7 +27,7 @@ const english = /\b(?:the|of|and|with|limits?|latency|velocity|amplitude|within|
 describe('German', () => {
   it('has a word for every label of the catalogue', () => {
     expect(labels.length).toBeGreaterThan(120)
-    expect(labels.filter(label => de.say(label) === label)).toEqual([])
+    expect(labels.filter(label => de.say(label) === label), 'Add the German word to shared/report/words/de-terms.ts').toEqual([])
     expect(labels.filter(label => english.test(de.say(label).replace(/\bAmplitude\b/g, ''))).map(label => `${label} → ${de.say(label)}`)).toEqual([])
   })
   it.each([
