@@ -23,10 +23,13 @@ export interface ClinicalPicture {
   limb: 'hand' | 'foot' | 'both'
   /** How ill the nerve is, 0 to 1, for one run. */
   severity: (technique: string, random: Random) => number
+  /** The same in German, for a physician who gets the reports in that language. */
+  german: (side: 'right' | 'left' | 'both') => string
   impression: (side: 'right' | 'left' | 'both') => { words: string, nerve: string | null, side: 'right' | 'left' | 'both' | null, abnormal: boolean }[]
 }
 
 const RIGHT_LEFT = { right: 'RIGHT', left: 'LEFT', both: 'RIGHT and LEFT' }
+const RECHTS_LINKS = { right: 'RECHTS', left: 'LINKS', both: 'beidseits' }
 const anySide = (random: Random) => random.pick(['right', 'left', 'both'] as const)
 
 export const pictures: ClinicalPicture[] = [
@@ -37,6 +40,7 @@ export const pictures: ClinicalPicture[] = [
     examination: ['Reduced touch on digits 1 to 3, no wasting.', 'Thenar strength slightly reduced.', 'Sensation and power normal.'],
     diagnosis: 'Carpal tunnel syndrome',
     severity: (technique, random) => technique.startsWith('median') ? random.between(0.15, 0.9) : 0,
+    german: side => `Läsion des N. medianus am Handgelenk ${RECHTS_LINKS[side]}.`,
     impression: side => [{ words: `${RIGHT_LEFT[side]} median neuropathy at the wrist.`, nerve: 'median', side, abnormal: true }],
   },
   {
@@ -46,6 +50,7 @@ export const pictures: ClinicalPicture[] = [
     examination: ['Normal power, reflexes and sensation.'],
     diagnosis: 'Carpal tunnel syndrome',
     severity: () => 0,
+    german: () => 'Neurographie der untersuchten Nerven innerhalb der Grenzwerte.',
     impression: () => [{ words: 'Nerve conduction of the nerves studied is within limits.', nerve: null, side: null, abnormal: false }],
   },
   {
@@ -55,6 +60,7 @@ export const pictures: ClinicalPicture[] = [
     examination: ['Reduced touch on digit 5, first dorsal interosseous slightly weak.'],
     diagnosis: 'Ulnar neuropathy at the elbow',
     severity: (technique, random) => technique.startsWith('ulnar') ? random.between(0.4, 0.9) : 0,
+    german: side => `Läsion des N. ulnaris am Ellenbogen ${RECHTS_LINKS[side]}.`,
     impression: side => [{ words: `${RIGHT_LEFT[side]} ulnar neuropathy at the elbow.`, nerve: 'ulnar', side, abnormal: true }],
   },
   {
@@ -64,6 +70,7 @@ export const pictures: ClinicalPicture[] = [
     examination: ['Ankle reflexes absent, vibration reduced at the toes.'],
     diagnosis: 'Length-dependent polyneuropathy',
     severity: (technique, random) => /sural|fibular|tibial/.test(technique) ? random.between(0.35, 1) : random.between(0, 0.35),
+    german: () => 'Längenabhängige sensomotorische Polyneuropathie der Beine.',
     impression: () => [{ words: 'Length-dependent sensorimotor polyneuropathy of the legs.', nerve: 'sural', side: 'both', abnormal: true }],
   },
   {
@@ -73,6 +80,7 @@ export const pictures: ClinicalPicture[] = [
     examination: ['Ankle dorsiflexion 3 of 5, inversion normal.'],
     diagnosis: 'Fibular (peroneal) neuropathy at the knee',
     severity: (technique, random) => technique.includes('fibular') ? random.between(0.5, 0.95) : 0,
+    german: side => `Läsion des N. fibularis am Fibulakopf ${RECHTS_LINKS[side]}.`,
     impression: side => [{ words: `${RIGHT_LEFT[side]} fibular neuropathy at the fibular head.`, nerve: 'fibular', side, abnormal: true }],
   },
 ]

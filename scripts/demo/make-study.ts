@@ -51,6 +51,9 @@ async function makePatient(maker: Maker, siteId: string): Promise<string> {
   return patient.id
 }
 
+/** One physician of the demonstration gets the reports in German. */
+const germanReader = 'Dr Annika Brodeur'
+
 /** Somebody with a signed study by the same protocol, so that two studies can be compared. */
 async function studiedBefore({ context }: Maker, protocol: string): Promise<string | undefined> {
   return (await context.db.selectFrom('study').select('patientId').where('state', '=', 'read').where('protocol', '=', protocol).orderBy('number').executeTakeFirst())?.patientId
@@ -69,7 +72,7 @@ export async function makeReferral(maker: Maker, site: DemoSite, { complete = tr
     symptoms: random.pick(picture.symptoms), onset: `${random.whole(2, 30)} months ago`, weakness: random.pick(['yes', 'no']), sensorySymptoms: 'yes', pain: random.pick(['yes', 'no']),
     examination: complete ? random.pick(picture.examination) : '', provisionalDiagnosis: picture.diagnosis, previousStudies: random.chance(0.1) ? 'One elsewhere some years ago, not at hand.' : 'None.',
     cautions: Object.fromEntries(cautions.map(c => [c.id, !complete && random.chance(0.4) ? 'not-asked' : c.id === 'anticoagulant' && random.chance(0.15) ? 'yes' : c.id === 'cardiac-device' && random.chance(0.04) ? 'yes' : 'no'])),
-    urgency: level, urgencyReason: level === 'routine' ? '' : 'Weakness is getting worse from week to week.', needs: '', consentElectronic: 'yes', reportLanguage: 'en',
+    urgency: level, urgencyReason: level === 'routine' ? '' : 'Weakness is getting worse from week to week.', needs: '', consentElectronic: 'yes', reportLanguage: physician.name === germanReader ? 'de' : 'en',
   }
   const { id } = await addReferral(await as(maker, 'administrator', site.id), input)
   return { id, picture, side, site, urgency: level }

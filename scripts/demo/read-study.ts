@@ -8,12 +8,15 @@ import { meanings, reportDraftSchema, type ImpressionLine, type ReportDraft } fr
 import { as, type MadeReferral, type Maker } from './make-study'
 
 /** The impression that an invented reader would write: what the picture says, on the sides that have flags. */
-function impressionFor({ picture }: MadeReferral, flags: ReturnType<typeof flagsOf>): ImpressionLine[] {
+function impressionFor({ picture }: MadeReferral, flags: ReturnType<typeof flagsOf>, isGerman: boolean): ImpressionLine[] {
   const sides = (['right', 'left'] as const).filter(side => flags.some(flag => flag.side === side && (flag.nerve === picture.nerve || picture.nerve === 'sural')))
   const side = sides.length === 2 ? 'both' : sides[0]
-  const lines = side ? picture.impression(side) : [{ words: 'No abnormality of the nerves studied that answers the question.', nerve: null, side: null, abnormal: false }]
+  const lines = side ? picture.impression(side).map(line => isGerman ? { ...line, words: picture.german(side) } : line) : [{ words: isGerman ? 'Kein krankhafter Befund der untersuchten Nerven, der die Frage beantwortet.' : 'No abnormality of the nerves studied that answers the question.', nerve: null, side: null, abnormal: false }]
   return lines.map((line, index) => ({ id: `line-${index + 1}`, words: line.words, nerve: line.nerve, pattern: null, side: line.side, degree: null, abnormal: line.abnormal }))
 }
+
+const english = { correlation: ['Fits the history.', 'Explains the symptoms in part.', 'To be read with the clinical examination.'], limitations: ['Small fibres are not assessed by this method.', 'None identified.', 'Needle examination was not done.'], recommendation: 'Clinical review in three months.' }
+const german = { correlation: ['Passt zur Anamnese.', 'Erklärt die Beschwerden teilweise.', 'Zusammen mit der klinischen Untersuchung zu lesen.'], limitations: ['Dünne Fasern werden mit dieser Methode nicht erfasst.', 'Keine erkannt.', 'Eine Nadeluntersuchung wurde nicht durchgeführt.'], recommendation: 'Klinische Kontrolle in drei Monaten.' }
 
 /** Takes the study and writes the draft; answers what the program asks before signing. */
 export async function draft(maker: Maker, referral: MadeReferral, studyId: string): Promise<void> {
@@ -22,11 +25,13 @@ export async function draft(maker: Maker, referral: MadeReferral, studyId: strin
   maker.clock.forward(maker.random.whole(2, 8))
   const facts = await readingFacts(context, context.db, studyId)
   const assessment = facts.assessed.assessment
+  const isGerman = facts.referral.reportLanguage === 'de'
+  const texts = isGerman ? german : english
   const written: ReportDraft = reportDraftSchema.parse({
-    impression: impressionFor(referral, flagsOf({ assessment })),
-    correlation: maker.random.pick(['Fits the history.', 'Explains the symptoms in part.', 'To be read with the clinical examination.']),
-    limitations: [maker.random.pick(['Small fibres are not assessed by this method.', 'None identified.', 'Needle examination was not done.'])],
-    recommendation: maker.random.chance(0.3) ? 'Clinical review in three months.' : '',
+    impression: impressionFor(referral, flagsOf({ assessment }), isGerman),
+    correlation: maker.random.pick(texts.correlation),
+    limitations: [maker.random.pick(texts.limitations)],
+    recommendation: maker.random.chance(0.3) ? texts.recommendation : '',
   })
   const first = await saveDraft(context, { studyId, draft: written, revision: 0 })
   const open = first.view.checks.filter(check => isOpen(check))

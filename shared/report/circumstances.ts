@@ -25,7 +25,7 @@ function tolerance({ circumstances }: ReportBench): string {
 /** Which runs are of which visit: the day stands at each run where there is more than one. */
 function visits({ study, assessment, site }: ReportSnapshot, bench: ReportBench): string[] {
   if (bench.visits.length === 0) return []
-  const days = [study.studyDate, ...bench.visits.map(visit => visit.day)].map(formatDay)
+  const days = [study.studyDate, ...bench.visits.map(visit => visit.day)].map(day => formatDay(day))
   const later = bench.visits.flatMap((visit, index) => {
     const until = bench.visits[index + 1]?.startedAt
     const titles = study.runs.filter(run => run.recordedAt && run.recordedAt >= visit.startedAt && (!until || run.recordedAt < until)).flatMap(run => assessment.runs.find(each => each.runId === run.id)?.title ?? [])

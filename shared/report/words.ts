@@ -4,9 +4,6 @@ import { en, type ReportWords } from './words/en'
 
 const languages: Record<ReportLanguage, ReportWords> = { en, de }
 
-/** Languages that a report can be written in, English first. */
-export const reportLanguages: readonly string[] = Object.keys(languages)
-
 /** The words of a language; English where there are none. */
 export const reportWords = (language: string): ReportWords => isReportLanguage(language) ? languages[language] : en
 export type { ReportWords } from './words/en'
