@@ -7,8 +7,11 @@ import { afterAll, describe, expect, it } from 'vitest'
 import { encryptPdf } from '#server/pdf/encrypt-pdf'
 import { drawnRanges, printable } from '#server/pdf/glyphs'
 import { closePdfThread, PdfError, renderPdf } from '#server/pdf/render-pdf'
+import { stampSvg } from '#server/pdf/stamp'
 import { readPlainPdf, stringBytes, tokens } from '#server/pdf/pdf-syntax'
 import type { ReportSource } from '#shared/report/index'
+import { reportLanguages } from '#shared/report/languages'
+import { reportWords } from '#shared/report/words'
 import { disclaimer, smallSource } from '../fixtures/report-source'
 import { reportStudies } from '../fixtures/report-studies'
 import { pagesOf, run, textOf } from './pdf-reading'
@@ -129,6 +132,17 @@ describe('paper, watermark, signs', () => {
       expect(ink(path)).toBeGreaterThan(ink(plain) * 1.04)
     }
     expect(textOf(await pathOf('carpal tunnel'))).not.toMatch(/PRELIMINARY|DEMONSTRATION/)
+  })
+  it.each(reportLanguages)('the watermark has every letter of its words: %s', (language) => {
+    const words = reportWords(language)
+    for (const letter of `${words.preliminary}${words.demonstration}`) expect(stampSvg(letter, { width: 100, height: 100 }), letter).toMatch(/ d="M[^"]+L/)
+  })
+  it('a technical report is headed as such, on paper and in its title', async () => {
+    const source = smallSource()
+    const path = file('technical', await renderPdf({ ...source, snapshot: { ...source.snapshot, draft: { ...source.snapshot.draft, technicalOnly: true, impression: [] } } }))
+    expect(run('pdfinfo', path)).toContain('Title:           Technical report of nerve conduction studies')
+    for (const page of run('pdftotext', '-layout', path, '-').split('\f').filter(one => one.trim())) expect(page).toContain('Technical report of nerve conduction studies')
+    expect(textOf(path)).toContain('it holds no clinical interpretation')
   })
   it('a name in another script is written as code points, not as boxes', async () => {
     const source = smallSource({ patient: { ...smallSource().snapshot.patient, familyName: 'Żółć', givenName: '你' } })

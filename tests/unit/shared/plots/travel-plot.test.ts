@@ -76,6 +76,21 @@ it('a label that would not fit stands left of its point', () => {
   }
 })
 
+it('names that would touch stand apart, and none leaves the drawing', () => {
+  const close = makeRun([[10, 80], [13.4, 20], [14, 20]])
+  const long = { ...technique, sites: technique.sites.map(site => ({ ...site, label: `${site.label} of the arm (once more)` })) }
+  for (const width of [160, 230, 296]) {
+    const { points } = travelPlotGeometry(close, undefined, long, undefined, { width, height: 164 })!
+    expect(points.every(point => !point.label.includes('('))).toBe(true)
+    expect(points.map(point => point.name)).toEqual(long.sites.map(site => site.label))
+    for (const side of ['start', 'end']) {
+      const feet = points.filter(point => point.anchor === side).map(point => point.labelY).sort((a, b) => a - b)
+      for (const [index, foot] of feet.entries()) if (index > 0) expect(foot - feet[index - 1]!).toBeGreaterThanOrEqual(12)
+    }
+    for (const point of points.filter(each => each.isNamed && each.anchor === 'end')) expect(point.labelX - point.label.length * 6.6).toBeGreaterThanOrEqual(0)
+  }
+})
+
 it('in words: every site, every velocity with its limit, what is missing, the other side', () => {
   const plot = travelPlotGeometry(healthy, healthyJudged, technique, { run: makeRun([[3.2, 80], [6.6, 210], [8, 100]], 'left') })!
   expect(travelPlotText('RIGHT ulnar motor', plot, healthyJudged)).toBe('RIGHT ulnar motor: wrist at 0 mm, 2.9 ms; below elbow at 205 mm, 6.4 ms: 59 ± 3 m/s, within the lower limit 52 m/s; above elbow at 305 mm, 8.1 ms: 59 ± 3 m/s, within the lower limit 43 m/s. The LEFT side is drawn dashed.')
