@@ -1,5 +1,7 @@
+import type { ReferralSide, Side } from './schemas/common'
+
 /**
- * Protocols by clinical question: which runs to lay out. `side` 'asked' means each side the referral asks for,
+ * Protocols by clinical question as the program ships them; what holds is the policy `protocols`: which runs to lay out. `side` 'asked' means each side the referral asks for,
  * 'both' both sides. Minimum sets that the medical director approves; rows marked "memory" are common practice.
  */
 export interface Protocol {
@@ -43,3 +45,13 @@ export const protocols: Protocol[] = [
     ],
   },
 ]
+
+export interface PlannedRun { technique: string, side: Side }
+
+/** "Both", "midline" and a side that was not given ask for both sides. */
+export const sidesAsked = (side: ReferralSide | null): Side[] => side === 'right' || side === 'left' ? [side] : ['right', 'left']
+
+/** The runs that a protocol plans, in its order, RIGHT before LEFT. */
+export function plannedRuns(protocol: Protocol | null, side: ReferralSide | null): PlannedRun[] {
+  return (protocol?.runs ?? []).flatMap(run => (run.side === 'both' ? ['right', 'left'] as const : sidesAsked(side)).map(where => ({ technique: run.technique, side: where })))
+}

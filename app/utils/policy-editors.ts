@@ -8,6 +8,7 @@ import ReportFormEditor from '~/components/policy/ReportFormEditor.vue'
 import RetentionEditor from '~/components/policy/RetentionEditor.vue'
 import TemperatureEditor from '~/components/policy/TemperatureEditor.vue'
 import UncertaintyEditor from '~/components/policy/UncertaintyEditor.vue'
+import ProtocolsEditor from '~/components/policy/ProtocolsEditor.vue'
 
 /**
  * The form of each policy's body. An editor takes the body as v-model (it may change it in place), `errorOf(path)` with
@@ -22,4 +23,5 @@ export const policyEditors: Record<PolicyName, Component> = {
   'patterns': PatternsEditor,
   'report-form': ReportFormEditor,
   'retention': RetentionEditor,
+  'protocols': ProtocolsEditor,
 }

@@ -3,6 +3,7 @@ import { TOTP } from 'otpauth'
 import { addPerson } from '#server/services/change-person'
 import { addPhysician } from '#server/services/change-physician'
 import { addPractice, noteHandedOver, renewPassphrase } from '#server/services/change-practice'
+import { addEquipment } from '#server/services/equipment'
 import { addSite, changeSite } from '#server/services/change-site'
 import { actingAs, type Actor, type ServiceContext } from '#server/services/context'
 import { currentHoldings } from '#server/services/current-holdings'
@@ -70,7 +71,15 @@ async function makeSites(context: ServiceContext): Promise<DemoSite[]> {
   await changeSite(context, existing.id, { ...sites[0]!, ...rest })
   const made: DemoSite[] = [{ id: existing.id, name: sites[0]!.name, rooms: sites[0]!.rooms, timeZone: organisation.timeZone }]
   for (const site of sites.slice(1)) made.push({ id: (await addSite(context, { ...site, ...rest })).id, name: site.name, rooms: site.rooms, timeZone: organisation.timeZone })
+  for (const [index, site] of made.entries()) await makeEquipment(context, site.id, index)
   return made
+}
+
+/** Two devices at each site; one of the first site's is overdue, so that the banner is seen. */
+async function makeEquipment(context: ServiceContext, siteId: string, index: number): Promise<void> {
+  const year = context.clock().getUTCFullYear()
+  await addEquipment(context, { siteId, name: `Recording machine ${index + 1}`, serial: `RM-${4100 + index}`, kind: 'amplifier', calibrationDue: index === 0 ? `${year}-06-30` : `${year + 3}-06-30`, safetyDue: `${year + 3}-03-31` })
+  await addEquipment(context, { siteId, name: `Skin thermometer ${index + 1}`, serial: `ST-${70 + index}`, kind: 'thermometer', calibrationDue: `${year + 3}-09-30`, safetyDue: null })
 }
 
 async function makePerson(context: ServiceContext, clock: DemoClock, { key, name, credentials, roles, sites: where, ...rest }: (typeof staff)[number], made: readonly DemoSite[]): Promise<DemoPerson> {

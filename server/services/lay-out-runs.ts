@@ -3,20 +3,10 @@ import type { Trx } from '#server/database/connection'
 import type { RunSettings } from '#server/database/queries/studies'
 import { techniqueOf } from '#shared/catalogue/nerves'
 import type { Technique } from '#shared/catalogue/types'
-import type { Protocol } from '#shared/protocols'
+import { plannedRuns, type PlannedRun } from '#shared/protocols'
 import type { ReferralSide, Side } from '#shared/schemas/common'
 import { keptProtocol } from './protocols'
 import { now, type ServiceContext } from './context'
-
-export interface PlannedRun { technique: string, side: Side }
-
-/** "Both", "midline" and a side that was not given ask for both sides. */
-export const sidesAsked = (side: ReferralSide | null): Side[] => side === 'right' || side === 'left' ? [side] : ['right', 'left']
-
-/** The runs that a protocol plans, in its order, RIGHT before LEFT. */
-export function plannedRuns(protocol: Protocol | null, side: ReferralSide | null): PlannedRun[] {
-  return (protocol?.runs ?? []).flatMap(run => (run.side === 'both' ? ['right', 'left'] as const : sidesAsked(side)).map(where => ({ technique: run.technique, side: where })))
-}
 
 /** The technique's own habits; the technologist says where it was done otherwise. */
 export function usualSettings({ direction, amplitudeDefinition, shortSegments }: Technique): RunSettings {

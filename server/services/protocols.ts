@@ -1,10 +1,16 @@
 import type { Database, Trx } from '#server/database/connection'
+import { policyInForce } from '#server/database/queries/policies'
 import { protocols, type Protocol } from '#shared/protocols'
+import { DomainError } from '#shared/errors'
 import type { ServiceContext } from './context'
+import { localDate } from './site-time'
 
-/** The protocols in force at a site, with the version of their list. */
-export async function protocolsAt(_context: ServiceContext, _db: Database, _at: { siteId: string }): Promise<{ version: number, protocols: Protocol[] }> {
-  return { version: 0, protocols }
+/** The protocols in force at a site today, with the version of their list; version 0 is the list that the program ships. */
+export async function protocolsAt(context: ServiceContext, db: Database, { siteId }: { siteId: string }): Promise<{ version: number, protocols: Protocol[] }> {
+  const site = await db.selectFrom('site').select('timeZone').where('id', '=', siteId).executeTakeFirst()
+  if (!site) throw new DomainError('not-found')
+  const { version, body } = await policyInForce(db, 'protocols', siteId, localDate(context.clock(), site.timeZone))
+  return { version, protocols: body.protocols }
 }
 
 /** One protocol in force at a site; undefined when there is none of this name. */

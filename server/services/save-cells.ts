@@ -63,9 +63,10 @@ async function compareAndSet(context: ServiceContext, trx: Trx, study: Study, ce
   return { answer: { saveId, rowId, field, saved: true, revision, savedAt }, change: { runId, rowId, field, before, after: entry } }
 }
 
-/** When a run was recorded: at its first value, or when the paper says that it is entered from. */
+/** When a run was recorded: at its first value, or when the paper says that it is entered from; at a later visit it is measured, not copied. */
 async function noteFirstValue(context: ServiceContext, trx: Trx, runIds: string[]): Promise<void> {
-  const later = await trx.selectFrom('studyLaterEntry').innerJoin('studyRun', 'studyRun.studyId', 'studyLaterEntry.studyId').select('measuredAt').where('studyRun.id', 'in', runIds).executeTakeFirst()
+  const later = await trx.selectFrom('studyLaterEntry').innerJoin('studyRun', 'studyRun.studyId', 'studyLaterEntry.studyId').select('measuredAt').where('studyRun.id', 'in', runIds)
+    .where(eb => eb.not(eb.exists(eb.selectFrom('studyVisit').select('studyVisit.id').whereRef('studyVisit.studyId', '=', 'studyRun.studyId')))).executeTakeFirst()
   const runs = await trx.selectFrom('studyRun').select(['id', 'settingsJson']).where('id', 'in', runIds).execute()
   for (const run of runs) {
     const settings = JSON.parse(run.settingsJson) as RunSettings

@@ -7,6 +7,7 @@ import { reportForm } from './report-form'
 import { retention } from './retention'
 import { temperature } from './temperature'
 import { uncertainty } from './uncertainty'
+import { protocols } from './protocols'
 
 /**
  * Every policy, one entry each. To add one: a file here with its schema and initial body, a line here, and an editor
@@ -21,6 +22,7 @@ export const policies = {
   patterns,
   'report-form': reportForm,
   retention,
+  protocols,
 } as const
 
 export type PolicyName = keyof typeof policies

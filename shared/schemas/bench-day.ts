@@ -112,3 +112,6 @@ export interface BenchChoices { rooms: string[], supervisors: { id: string, name
 
 /** What a report says of the circumstances; frozen with it. */
 export type ReportBench = Pick<StudyAround, 'circumstances' | 'overdue' | 'visits' | 'laterEntry' | 'move' | 'stopped'> & { protocol: { label: string, version: number } | null }
+
+/** Why a planned run was left out, in the words that most often fit; the technologist adds their own. */
+export const notDoneReasons = ['not needed for the question', 'patient declined', 'could not be tolerated', 'wound or dressing', 'swelling', 'plaster or splint', 'amputated', 'no time left', 'equipment failed'] as const

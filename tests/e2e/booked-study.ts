@@ -1,13 +1,13 @@
 import { expect } from 'vitest'
 import { signIn, type App } from './app'
 
-export interface Wish { protocol: 'carpal-tunnel' | 'ulnar-elbow' | 'polyneuropathy' | 'foot-drop', side: 'right' | 'left' | 'both', familyName: string, question: string, /** an earlier patient of this name; else a new one is made */ patientId?: string }
+export interface Wish { protocol: 'carpal-tunnel' | 'ulnar-elbow' | 'polyneuropathy' | 'foot-drop', side: 'right' | 'left' | 'both', familyName: string, question: string, /** an earlier patient of this name; else a new one is made */ patientId?: string, /** where several are booked */ time?: string }
 
 /**
  * A referral of an invented woman, accepted with the protocol and booked for today, late in the evening, where the
  * technologist works. It goes through the administrator's own routes; what the pages of intake do is tested elsewhere.
  */
-export async function bookStudy(app: App, { protocol, side, familyName, question, patientId }: Wish): Promise<{ referralId: string, patientName: string }> {
+export async function bookStudy(app: App, { protocol, side, familyName, question, patientId, time = patientId ? '22:30' : '23:15' }: Wish): Promise<{ referralId: string, patientName: string }> {
   const { page, context } = await app.open()
   await signIn(app, page, app.person('administrator'))
   const call = async <T>(path: string, data?: object): Promise<T> => {
@@ -26,7 +26,7 @@ export async function bookStudy(app: App, { protocol, side, familyName, question
   await call(`/api/referrals/${id}/receive`, {})
   await call(`/api/referrals/${id}/accept`, { protocol })
   const date = new Intl.DateTimeFormat('en-CA', { timeZone: site.timeZone }).format(new Date())
-  await call(`/api/referrals/${id}/book`, { siteId: site.id, room: 'Room 2', date, time: patientId ? '22:30' : '23:15', minutes: 30 })
+  await call(`/api/referrals/${id}/book`, { siteId: site.id, room: 'Room 2', date, time, minutes: 30 })
   await context.close()
   return { referralId: id, patientName: `${familyName}, Tove` }
 }

@@ -27,6 +27,9 @@ const addresses: Record<string, (ask: Ask) => Promise<string[]>> = {
   'intake/new.vue': async () => ['/intake/new'],
   'intake/[id].vue': async ask => one((await ask<Rows<{ id: string, state: string }>>('/api/referrals?pageSize=100')).rows, row => row.state).filter(row => ['draft', 'received', 'accepted', 'answered'].includes(row.state)).map(row => `/intake/${row.id}`),
   'bench/index.vue': async () => ['/bench'],
+  'bench/walk-in.vue': async () => ['/bench/walk-in'],
+  'bench/sheets/index.vue': async () => ['/bench/sheets'],
+  'bench/sheets/[protocol].vue': async () => ['/bench/sheets/carpal-tunnel?side=right'],
   'bench/[studyId].vue': async (ask) => {
     const { sites } = await ask<{ sites: { id: string }[] }>('/api/me')
     const days = await Promise.all(sites.map(site => ask<{ studyId: string | null, state: string }[]>(`/api/bench?siteId=${site.id}`)))

@@ -24,6 +24,8 @@ import { changeRun } from '#server/services/save-run'
 import { signProven } from '#server/services/sign-report'
 import { viewBenchDay } from '#server/services/view-bench-day'
 import { viewStudy } from '#server/services/view-study'
+import { approvePolicy, proposePolicy } from '#server/services/policies'
+import { protocols } from '#shared/protocols'
 import { walkIn } from '#server/services/walk-in'
 import { meanings } from '#shared/schemas/report'
 import { walkInSchema } from '#shared/schemas/bench-day'
@@ -219,6 +221,37 @@ describe('a stopped study', () => {
   })
 })
 
+describe('protocols of the organisation', async () => {
+  const [first, ...rest] = protocols
+  const propose = (body: unknown) => proposePolicy(c.neurologist, { name: 'protocols', siteId: null, body, note: 'radial side added', effectiveOn: '2026-12-02' })
+
+  it('change by two people, and a study keeps the version that laid it out', async () => {
+    t.clock.set('2026-12-02T09:00:00.000Z')
+    const before = await c.started()
+    const { id, version } = await propose({ protocols: [{ ...first!, runs: [{ technique: 'median-motor-apb', side: 'both' }] }, ...rest] })
+    expect(await refusal(approvePolicy(c.neurologist, { id }))).toBe('not-allowed')
+    await approvePolicy(c.director, { id })
+    const after = await c.started()
+    const laid = async (studyId: string) => (await c.study(studyId)).study.runs.map(run => `${run.side} ${run.technique}`)
+    expect(await laid(after)).toEqual(['right median-motor-apb', 'left median-motor-apb'])
+    await confirmStudy(c.technologist, { id: before, ...confirmed })
+    expect(await laid(before)).toHaveLength(4)
+    expect([(await viewStudy(c.technologist, before)).around.protocol?.version, (await viewStudy(c.technologist, after)).around.protocol?.version]).toEqual([0, version])
+    await approvePolicy(c.director, await propose({ protocols }))
+  })
+
+  it.each([
+    ['a technique that is not in the catalogue', [{ ...first!, runs: [{ technique: 'none', side: 'both' }] }], 'body.protocols.0.runs.0.technique'],
+    ['the same run twice', [{ ...first!, runs: [first!.runs[0], first!.runs[0]] }], 'body.protocols.0.runs.1.technique'],
+    ['the same question twice', [first, { ...first!, id: 'other' }], 'body.protocols.1.label'],
+    ['a protocol without runs', [{ ...first!, runs: [] }], 'body.protocols.0.runs'],
+    ['a protocol that rests on nothing', [{ ...first!, basis: '' }], 'body.protocols.0.basis'],
+  ])('%s is refused at its place', async (_what, list, path) => {
+    const error = await propose({ protocols: list }).catch((thrown: { options: { fields: { path: string }[] } }) => thrown)
+    expect('options' in error ? error.options.fields.map(field => field.path) : []).toContain(path)
+  })
+})
+
 describe('a second visit', () => {
   it('is confirmed anew, keeps the day of each run, and takes no temperature from last week', async () => {
     t.clock.set('2026-12-02T09:00:00.000Z')
@@ -255,6 +288,17 @@ describe('entered later from paper', () => {
     expect((await viewStudy(c.neurologist, id)).around.laterEntry).toMatchObject({ measuredBy: 'Ida Brandt', reason: 'power cut', enteredByName: expect.any(String) })
     expect(await reportText(id)).toContain('by Ida Brandt, written on paper and entered later by')
   })
+})
+
+it('what is measured at a visit after a later entry is of that visit, not of the paper', async () => {
+  t.clock.set('2026-12-02T09:00:00.000Z')
+  const id = await c.recording()
+  await noteLaterEntry(c.technologist, { id, date: '2026-11-30', time: '14:10', measuredBy: 'Ida Brandt', reason: 'power cut' })
+  await c.type(id, 'median-motor-apb', 'right', [values])
+  await startVisit(c.technologist, { id, reason: 'too tired', identifiers: ['name', 'birth-date'], cautionsRead: true })
+  await c.type(id, 'ulnar-motor-adm', 'right', [values])
+  const at = Object.fromEntries((await c.study(id)).study.runs.map(run => [run.technique, run.recordedAt?.slice(0, 10)]))
+  expect(at).toMatchObject({ 'median-motor-apb': '2026-11-30', 'ulnar-motor-adm': '2026-12-02' })
 })
 
 describe('without a booking', async () => {
