@@ -4,6 +4,7 @@ import { accountNotice, accountNoticeSchema } from './account-notice'
 import { confirmAddress, confirmAddressSchema } from './confirm-address'
 import { linkRenewed, linkRenewedSchema } from './link-renewed'
 import type { MailText } from './mail-text'
+import { overdue, overdueSchema } from './overdue'
 import { reportReady, reportReadySchema } from './report-ready'
 import { verifyAddress, verifyAddressSchema } from './verify-address'
 
@@ -12,6 +13,7 @@ const template = <S extends z.ZodType>(schema: S, render: Template<S>['render'])
 
 /** Every mail of the program: its data and its words. A new mail is a file here and a line in this list. */
 export const mailTemplates = {
+  'overdue': template(overdueSchema, overdue),
   'report-ready': template(reportReadySchema, reportReady),
   'link-renewed': template(linkRenewedSchema, linkRenewed),
   'verify-address': template(verifyAddressSchema, verifyAddress),
