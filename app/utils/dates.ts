@@ -10,6 +10,11 @@ export function formatDay(day: string): string {
   return year && month && date ? `${date} ${MONTHS[month - 1]} ${year}` : day
 }
 
+/** @example formatMonth('2026-03') // => 'March 2026' */
+export function formatMonth(month: string): string {
+  return formatDay(`${month}-01`).replace(/^1 /, '')
+}
+
 /** @example formatShortDay('2026-03-09') // => '9 Mar 2026' */
 export function formatShortDay(day: string): string {
   return formatDay(day).replace(/ ([A-Z][a-z]{2})[a-z]* /, ' $1 ')

@@ -16,4 +16,4 @@ export interface OverviewView {
   figures: Record<IndicatorId, Record<string, Figure[]>>
 }
 /** GET /api/overview/:indicator: the cases that make one figure, newest first. */
-export interface OverviewCases { siteName: string, figure: Figure, cases: (IndicatorCase & { link: string })[] }
+export interface OverviewCases { siteName: string, figure: Figure, /** the twelve months up to this one */ months: { month: string, figure: Figure }[], cases: (IndicatorCase & { link: string })[] }

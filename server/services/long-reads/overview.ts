@@ -50,11 +50,16 @@ export async function overview(db: Database, { siteIds, now, until }: Asked & { 
 
 const linkOf: Record<IndicatorCase['subject'], (id: string) => string> = { referral: id => `/intake/${id}`, study: id => `/reading/${id}`, report: id => `/reports/${id}` }
 
-/** The cases behind one figure. */
+/** The cases behind one figure, and the same figure of the months before it. */
 export async function overviewCases(db: Database, { indicator, month, siteId, now }: { indicator: IndicatorId, month: string, siteId: string, now: string }): Promise<OverviewCases> {
-  const [site] = await sitesOf(db, [siteId])
-  const zone = site?.timeZone ?? 'UTC'
-  const found = await indicatorCases[indicator](db, spanOf([month], [siteId]), now)
+  const sites = await sitesOf(db, [siteId])
+  const zone = sites[0]?.timeZone ?? 'UTC'
+  const months = monthsUntil(month, monthsShown)
+  const found = await indicatorCases[indicator](db, spanOf(months, [siteId]), now)
+  const figures = figuresBySite(indicators[indicator].kind, found, sites, months)[siteId] ?? []
   const cases = found.filter(one => monthAt(zone)(one.at) === month).sort((a, b) => b.at.localeCompare(a.at))
-  return { siteName: site?.name ?? '', figure: figureOf(indicators[indicator].kind, cases, at => localDate(new Date(at), zone)), cases: cases.map(one => ({ ...one, link: linkOf[one.subject](one.subjectId) })) }
+  return {
+    siteName: sites[0]?.name ?? '', figure: figures.at(-1) ?? figureOf(indicators[indicator].kind, []),
+    months: months.map((each, index) => ({ month: each, figure: figures[index]! })), cases: cases.map(one => ({ ...one, link: linkOf[one.subject](one.subjectId) })),
+  }
 }
