@@ -1,11 +1,11 @@
 import { randomUUID } from 'node:crypto'
-import { referenceTable } from '#reference-tables/index'
 import type { Trx } from '#server/database/connection'
 import type { ReferenceAdoption } from '#server/database/tables/reference-adoption'
 import { techniqueOf } from '#shared/catalogue/nerves'
 import { DomainError, type FieldError } from '#shared/errors'
 import { now, type ServiceContext } from './context'
 import { recordAuditEvent } from './record-audit-event'
+import { referenceSet } from './reference-sets'
 import { checkSecondPerson } from './second-person'
 import { localDate } from './site-time'
 
@@ -17,9 +17,9 @@ async function todayAt(context: ServiceContext, trx: Trx, siteId: string): Promi
   return localDate(context.clock(), site.timeZone)
 }
 
-function checkProposal({ setId, setVersion, techniques, effectiveOn }: Proposal, today: string): void {
+async function checkProposal(trx: Trx, { setId, setVersion, techniques, effectiveOn }: Proposal, today: string): Promise<void> {
   const fields: FieldError[] = []
-  if (!referenceTable(setId, setVersion)) fields.push({ path: 'setId', message: 'Choose a set of the shelf.' })
+  if (!await referenceSet(trx, setId, setVersion)) fields.push({ path: 'setId', message: 'Choose a set of the shelf.' })
   if (techniques?.some(id => !techniqueOf(id)) || techniques?.length === 0) fields.push({ path: 'techniques', message: 'Choose techniques of the catalogue, or none for all.' })
   if (effectiveOn < today) fields.push({ path: 'effectiveOn', message: 'The first day must not lie in the past: studies that were made are judged by what was in use then.' })
   if (fields.length) throw new DomainError('not-valid', { fields })
@@ -31,7 +31,7 @@ export async function proposeAdoption(context: ServiceContext, proposal: Proposa
   if (!proposedBy) throw new DomainError('not-signed-in')
   return context.db.transaction().execute(async (trx) => {
     const { siteId, setId, setVersion, techniques, effectiveOn } = proposal
-    checkProposal(proposal, await todayAt(context, trx, siteId))
+    await checkProposal(trx, proposal, await todayAt(context, trx, siteId))
     const last = await trx.selectFrom('referenceAdoption').select(eb => eb.fn.max('position').as('position')).where('siteId', '=', siteId).executeTakeFirst()
     const id = randomUUID()
     await trx.insertInto('referenceAdoption').values({ id, siteId, setId, setVersion, techniquesJson: techniques ? JSON.stringify(techniques) : null, position: (last?.position ?? 0) + 1, proposedBy, proposedAt: now(context), approvedBy: null, approvedAt: null, effectiveOn, endedOn: null, endedBy: null }).execute()
@@ -80,7 +80,7 @@ export async function endAdoption(context: ServiceContext, { id }: { id: string 
 export async function checkRows(context: ServiceContext, { setId, setVersion, rowIds }: { setId: string, setVersion: number, rowIds: string[] }): Promise<void> {
   const checkedBy = context.actor.userId
   if (!checkedBy) throw new DomainError('not-signed-in')
-  const known = new Set(referenceTable(setId, setVersion)?.rows.filter(row => row.basis === 'from memory').map(row => row.id))
+  const known = new Set((await referenceSet(context.db, setId, setVersion))?.rows.filter(row => row.basis === 'from memory').map(row => row.id))
   if (rowIds.some(rowId => !known.has(rowId))) throw new DomainError('not-valid', { fields: [{ path: 'rowIds', message: 'Choose rows of this set that come from memory.' }] })
   await context.db.transaction().execute(async (trx) => {
     for (const rowId of new Set(rowIds)) await trx.insertInto('rowCheck').values({ setId, setVersion, rowId, checkedBy, checkedAt: now(context) }).onConflict(conflict => conflict.doNothing()).execute()

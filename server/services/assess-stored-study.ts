@@ -1,11 +1,11 @@
-import { referenceTable } from '#reference-tables/index'
 import type { Database } from '#server/database/connection'
 import { loadStudy, type StoredStudy } from '#server/database/queries/studies'
 import { assessStudy, CALCULATION_VERSION } from '#shared/calculations/assess-study'
-import type { Assessment, Policy } from '#shared/calculations/types'
+import type { Assessment } from '#shared/calculations/types'
 import { DomainError } from '#shared/errors'
 import type { ReferenceTable } from '#shared/schemas/reference-table'
 import { canonicalJson, sha256Hex } from './canonical-json'
+import { tablesOf } from './reference-sets'
 
 export interface AssessedStudy extends StoredStudy {
   /** The adopted sets, in their order. */
@@ -13,11 +13,6 @@ export interface AssessedStudy extends StoredStudy {
   assessment: Assessment
   /** SHA-256 over all that the assessment came from: changes when, and only when, one of its inputs does. */
   fingerprint: string
-}
-
-/** The adopted sets themselves; a set that this program no longer ships is left out and so gives no limit. */
-export function tablesOf(policy: Policy): ReferenceTable[] {
-  return policy.adopted.flatMap(({ setId, version }) => referenceTable(setId, version) ?? [])
 }
 
 /**
@@ -28,7 +23,7 @@ export async function assessStoredStudy(context: { db: Database }, studyId: stri
   const stored = await loadStudy(context.db, studyId)
   if (!stored) throw new DomainError('not-found')
   const { study, policy } = stored
-  const tables = tablesOf(policy)
+  const tables = await tablesOf(context.db, policy)
   return { ...stored, tables, assessment: assessStudy(study, tables, policy), fingerprint: fingerprintOf(stored, tables) }
 }
 

@@ -11,6 +11,7 @@ export const shelfEvents = {
   'shelf.adoption-proposed': event(adoption.extend({ techniques: z.array(z.string()).nullable(), effectiveOn: z.string() }), data => `proposed the reference set ${words(data)}, from ${data.effectiveOn} on`),
   'shelf.adoption-approved': event(adoption.extend({ effectiveOn: z.string() }), data => `approved the reference set ${words(data)}, from ${data.effectiveOn} on`),
   'shelf.adoption-ended': event(adoption.extend({ endedOn: z.string() }), data => `ended the use of the reference set ${words(data)} on ${data.endedOn}`),
+  'shelf.set-imported': event(adoption.extend({ rows: z.number().int(), sha256: z.string() }), data => `imported the reference set ${words(data)}, with ${data.rows} rows`),
   'shelf.rows-checked': event(adoption.extend({ rowIds: z.array(z.string()) }), data => `compared ${data.rowIds.length} rows of the reference set ${words(data)} with the paper`),
 
   // Policies: rules of the organisation that two persons put in force

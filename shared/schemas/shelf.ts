@@ -23,6 +23,9 @@ export interface ShelfSet {
   limitRows: number
   recalledRows: number
   checkedRows: number
+  /** null for a set that comes with the program */
+  importedBy: string | null
+  importedAt: string | null
   adoptedAt: { id: string, siteId: string, siteName: string, techniques: string[] | null, effectiveOn: string, approvedBy: string | null, proposedBy: string, proposedById: string, endedOn: string | null, state: 'proposed' | 'approved' | 'in-use' | 'ended' }[]
 }
 /** GET /api/shelf/sets/:id, beside the fields of the set itself. */
@@ -31,3 +34,13 @@ export type ShelfSetView = ReferenceTable & { rowChecks: RowCheckView[] }
 
 /** Where a set is in use, was, or is proposed to be. */
 export type AdoptionView = ShelfSet['adoptedAt'][number]
+
+export const whatIfSchema = z.object({
+  siteId: z.string().min(1, 'Choose the site.'), setId: idSchema, setVersion: z.coerce.number().int().min(1),
+  /** The set in use that it would take the place of; left out: beside all others. */
+  insteadOf: idSchema.optional(),
+  count: z.coerce.number().int().min(1, 'Enter 1 to 300 studies.').max(300, 'Enter 1 to 300 studies.').default(50),
+})
+export interface WhatIfChange { studyId: string, number: string, key: string, label: string, print: string, before: string, after: string, flagChanges: boolean }
+/** GET /api/shelf/what-if */
+export interface WhatIfAnswer { studies: number, changes: WhatIfChange[] }

@@ -51,6 +51,7 @@ const addresses: Record<string, (ask: Ask) => Promise<string[]>> = {
   'dispatch/incidents/[id].vue': async ask => one(await ask<{ id: string }[]>('/api/incidents')).map(row => `/dispatch/incidents/${row.id}`),
   'dispatch/index.vue': async () => ['/dispatch', '/dispatch?state=acknowledged'],
   'shelf/index.vue': async () => ['/shelf'],
+  'shelf/import.vue': async () => ['/shelf/import'],
   'shelf/[setId].vue': async ask => one(await ask<{ id: string }[]>('/api/shelf/sets')).map(set => `/shelf/${set.id}`),
   'shelf/policies/index.vue': async () => ['/shelf/policies'],
   'shelf/policies/[name].vue': async () => policyNames.map(name => `/shelf/policies/${name}`),

@@ -16,6 +16,7 @@ import type { OrganisationTable } from './organisation'
 import type { OutboxMailTable } from './outbox-mail'
 import type { PatientTable } from './patient'
 import type { PhysicianTable } from './physician'
+import type { OwnSetTable } from './own-set'
 import type { PolicyVersionTable } from './policy-version'
 import type { PracticeDelegateTable } from './practice-delegate'
 import type { PracticeTable } from './practice'
@@ -103,6 +104,7 @@ export interface Tables {
   deliveryByHand: DeliveryByHandTable
   deliveryReply: DeliveryReplyTable
   task: TaskTable
+  ownSet: OwnSetTable
   policyVersion: PolicyVersionTable
   referenceAdoption: ReferenceAdoptionTable
   rowCheck: RowCheckTable

@@ -3,7 +3,7 @@ import { viewSet } from '#server/services/view-shelf'
 import { idSchema } from '#shared/schemas/common'
 import { defineApiHandler } from '#server/utils/api-handler'
 
-/** One set as it is shipped, with the rows that were compared with the paper; `?version=` for an older one. */
+/** One set, shipped or imported, with the rows that were compared with the paper; `?version=` for an older one. */
 export default defineApiHandler({
   allow: 'shelf.read',
   params: z.object({ id: idSchema }),
