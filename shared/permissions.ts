@@ -19,6 +19,7 @@ export const permissions = {
   'patient.search': [T, N, A, D],
   'patient.read': [T, N, A, D],
   'patient.write': [T, A],
+  'patient.merge': [A],
 
   'referral.read': [T, N, A, D],
   'referral.write': [T, A],

@@ -14,8 +14,10 @@ import type { MetaTable } from './meta'
 import type { OneTimeLinkTable } from './one-time-link'
 import type { OrganisationTable } from './organisation'
 import type { OutboxMailTable } from './outbox-mail'
+import type { PatientMergeTable } from './patient-merge'
 import type { PatientTable } from './patient'
 import type { PhysicianTable } from './physician'
+import type { OutsideStudyTable } from './outside-study'
 import type { OwnSetTable } from './own-set'
 import type { PolicyVersionTable } from './policy-version'
 import type { PracticeDelegateTable } from './practice-delegate'
@@ -104,6 +106,8 @@ export interface Tables {
   deliveryByHand: DeliveryByHandTable
   deliveryReply: DeliveryReplyTable
   task: TaskTable
+  patientMerge: PatientMergeTable
+  outsideStudy: OutsideStudyTable
   ownSet: OwnSetTable
   policyVersion: PolicyVersionTable
   referenceAdoption: ReferenceAdoptionTable
