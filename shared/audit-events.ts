@@ -61,7 +61,6 @@ export const auditEvents = {
   'report.copy-for-patient': event(z.object({ number: z.string(), version: z.number().int(), handedTo: z.string() }), data => `gave a copy of ${data.number}, version ${data.version}, to the patient: ${data.handedTo}`),
   'retention.hold-set': event(z.object({ holdId: z.string() }), () => 'put a record on legal hold'),
   'retention.hold-lifted': event(z.object({ holdId: z.string() }), () => 'lifted the legal hold of a record'),
-  'audit.verified': event(z.object({ events: z.number().int(), views: z.number().int(), intact: z.boolean() }), data => `verified the trail: ${data.events} events and ${data.views} views, ${data.intact ? 'intact' : 'NOT intact'}`),
   'clock.passed': event(z.object({ kind: z.string(), dueAt: z.string() }), data => `a clock ran out (${data.kind}), due ${data.dueAt.slice(0, 16).replace('T', ' ')} UTC`),
   'record.opened-with-reason': event(because.extend({ until: z.string().default('') }), data => `opened a record outside the own sites: ${data.because}`),
 

@@ -67,7 +67,7 @@ interface Next { before: ReportSnapshot, sha256: string, report: Report, study: 
 
 async function nextSnapshot(context: ServiceContext, trx: Trx, { before, sha256, input, study }: Next): Promise<ReportSnapshot> {
   const draft = draftFor(input, before)
-  const reassessed = reassess(before, draft, input.corrections ?? [])
+  const reassessed = await reassess(trx, before, draft, input.corrections ?? [])
   const referral = await trx.selectFrom('referral').select(['id', 'physicianId']).where('id', '=', study.referralId).executeTakeFirstOrThrow()
   const next: ReportSnapshot = {
     ...before, ...reassessed, draft, draftedBy: '',
