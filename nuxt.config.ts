@@ -1,4 +1,5 @@
 import { fileURLToPath } from 'node:url'
+import { writeServiceWorker } from './scripts/service-worker.mjs'
 
 const root = (path: string) => fileURLToPath(new URL(path, import.meta.url))
 
@@ -52,6 +53,10 @@ export default defineNuxtConfig({
     sharedTsConfig: { include: ['../reference-tables/**/*', '../tests/unit/**/*'] },
   },
   telemetry: false,
+  hooks: {
+    // After the client is built and before the server lists its files.
+    'nitro:build:public-assets': nitro => writeServiceWorker({ publicDir: nitro.options.output.publicDir, buildId: String(nitro.options.runtimeConfig.app.buildId) }),
+  },
   eslint: { config: { stylistic: { semi: false, quotes: 'single', indent: 2 } } },
   security: {
     // The routes that need a limit have their own (server/services/sign-in-limits.ts): this one counts pages too.
@@ -68,6 +73,7 @@ export default defineNuxtConfig({
         'img-src': ['\'self\'', 'data:', 'blob:'],
         'font-src': ['\'self\''],
         'connect-src': ['\'self\''],
+        // The service worker of the bench and the worker that holds the event stream.
         'worker-src': ['\'self\''],
         'frame-src': ['\'self\'', 'blob:'],
         'base-uri': ['\'none\''],

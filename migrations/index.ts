@@ -11,6 +11,7 @@ import * as patients from './2026-12-12-patients'
 import * as people from './2026-12-12-people'
 import * as peopleDirectory from './2026-12-12-people-directory'
 import * as peopleRetention from './2026-12-12-people-retention'
+import * as offline from './2026-12-12-offline'
 import * as reading from './2026-12-12-reading'
 
 /** Every migration, in order. Never edit one that has been released; add a new file and a line here. */
@@ -27,5 +28,6 @@ export const migrations: Record<string, Migration> = {
   '2026-12-12-people': people,
   '2026-12-12-people-directory': peopleDirectory,
   '2026-12-12-people-retention': peopleRetention,
+  '2026-12-12-offline': offline,
   '2026-12-12-reading': reading,
 }

@@ -36,6 +36,9 @@ export const permissions = {
   'study.return': [N],
   // Who reads what: readers and the director share out what waits.
   'study.assign': [N, D],
+  // While the patient is on the couch: the bench asks, a reader answers.
+  'question.ask': [T, N],
+  'question.answer': [N],
 
   'report.read': [T, N, A, D],
   'report.write': [N],
@@ -61,6 +64,8 @@ export const permissions = {
   // Handing a report, or who saw the record, to the patient it is about.
   'report.copy': [N, A, D],
   'task.read': [T, N, A, D],
+  // "Something changed", in ids and kinds; each kind asks for an action of its own besides.
+  'changes.hear': [T, N, A, D],
 
   // The desk of a referring physician: own referrals and final reports of own patients only.
   'desk.read': [R],

@@ -31,7 +31,8 @@ export function toApiError(error: unknown): ApiError {
   throw error
 }
 
-interface ApiOptions { method?: 'GET' | 'POST' | 'PUT' | 'PATCH' | 'DELETE', body?: object | FormData, query?: Record<string, unknown>, signal?: AbortSignal }
+/** `background`: asked by the program itself, so that it does not count as use of the workstation. */
+interface ApiOptions { background?: boolean, method?: 'GET' | 'POST' | 'PUT' | 'PATCH' | 'DELETE', body?: object | FormData, query?: Record<string, unknown>, signal?: AbortSignal }
 
 /**
  * A request with typed errors; for reads use `useFetch`. Nothing is retried: a repeated POST could act twice.
@@ -43,9 +44,11 @@ interface ApiOptions { method?: 'GET' | 'POST' | 'PUT' | 'PATCH' | 'DELETE', bod
 export function useApi() {
   const requestFetch = useRequestFetch()
   const signedOut = useSignedOut()
-  return async function api<T>(path: string, options: ApiOptions = {}): Promise<T> {
+  const person = usePersonMark()
+  return async function api<T>(path: string, { background, ...options }: ApiOptions = {}): Promise<T> {
     try {
-      return await requestFetch<T>(path, { retry: 0, ...options } as Parameters<typeof requestFetch>[1]) as T
+      const headers = { ...background ? { 'x-background': '1' } : {}, ...options.method && options.method !== 'GET' ? person() : {} }
+      return await requestFetch<T>(path, { retry: 0, ...options, headers } as Parameters<typeof requestFetch>[1]) as T
     }
     catch (error) {
       const known = toApiError(error)
@@ -53,6 +56,15 @@ export function useApi() {
       throw known
     }
   }
+}
+
+/**
+ * Whose page this is, sent with every change: when somebody else has signed in in another tab meanwhile, the server
+ * refuses, and nothing typed by one person is stored in another's name.
+ */
+export function usePersonMark() {
+  const { user } = useSession()
+  return (): Record<string, string> => user.value ? { 'x-person': user.value.id } : {}
 }
 
 /** True once a request was refused because the session ended; the frame then offers to sign in again in a new tab. */

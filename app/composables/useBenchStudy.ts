@@ -2,6 +2,7 @@ import type { InjectionKey } from 'vue'
 import type { Remark } from '#shared/calculations/types'
 import { withoutFallenAnswers } from '#shared/calculations/plausibility/kept-answer'
 import { quantityOf, type QuantityId } from '#shared/catalogue/quantities'
+import type { ChangeNotice } from '#shared/change-notice'
 import type { ApiErrorBody } from '#shared/errors'
 import type { StudyView } from '#shared/schemas/bench'
 import type { Run, RunRow, Study } from '#shared/schemas/study'
@@ -64,7 +65,10 @@ export function useBenchStudy(first: StudyView) {
   /** Which act the problem belongs to, so that it is said once, where the act was. */
   const problemOf = ref('')
   const busy = ref(false)
-  const saving = useCellSaving(first.id, first.cellRevisions, (rowId, field, entry) => study.value = withCell(study.value, rowId, field, entry))
+  const saving = useCellSaving(first, {
+    onTheirs: (rowId, field, entry) => study.value = withCell(study.value, rowId, field, entry),
+    onRestored: cells => study.value = cells.reduce((state, cell) => withCell(state, cell.rowId, cell.field, cell.entry), study.value),
+  })
   const policy = computed(() => view.value.policy)
   const live = useLiveAssessment(study, policy, () => view.value.assessment)
   const path = (rest: string) => `/api/studies/${first.id}/${rest}`
@@ -110,13 +114,20 @@ export function useBenchStudy(first: StudyView) {
   function take(fresh: StudyView) {
     view.value = fresh
     study.value = withUnsaved(fresh, saving.queue.value, study.value)
-    saving.takeRevisions(fresh.cellRevisions)
+    const typing = editor.value?.isDirty() ? cellKey(editor.value.address) : undefined
+    saving.takeRevisions(fresh.cellRevisions, typing)
     if (saving.outstanding.value === 0) live.compareWith(fresh.study, fresh.assessment)
   }
 
-  async function reload() {
-    take(await api<StudyView>(`/api/studies/${first.id}`))
+  useKeptStudy(() => [view.value, saving.savedAt.value], () => editor.value?.isDirty() ? null : { ...view.value, study: withUnsaved(view.value, saving.queue.value, study.value), cellRevisions: saving.queue.value.revisions })
+
+  /** @param background true when the program itself looks, because somebody else changed something */
+  async function reload(background = false) {
+    take(await api<StudyView>(`/api/studies/${first.id}`, { background }))
   }
+  const { user } = useSession()
+  const byOthers = (notice: ChangeNotice) => notice.what !== 'presence' && notice.by !== user.value?.id
+  useEventStream({ kind: 'study', id: () => first.id, only: byOthers }, () => void reload(true).catch(() => undefined))
 
   /** An act on the server, then a fresh copy. True when it was done; else `problem` says why. */
   /** One act after the other: an answer that overtakes a later one would show what is no longer true. */

@@ -47,6 +47,7 @@ export function useSession() {
 
   /** Ends the session on the server and leaves the page by a full load, so that no patient stays in memory. */
   async function signOut(because: 'asked' | 'idle' = 'asked') {
+    await useNuxtApp().$offline?.forget().catch(() => undefined)
     await postAuth('/api/auth/signout', {}).catch(() => undefined)
     window.location.assign(because === 'idle' ? '/sign-in?because=idle' : '/sign-in')
   }

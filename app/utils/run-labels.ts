@@ -2,6 +2,7 @@ import type { StimulationSite, Technique } from '#shared/catalogue/types'
 import { techniqueOf } from '#shared/catalogue/nerves'
 import type { Side } from '#shared/schemas/common'
 import type { LimbTemperature, Run, RunRow, Study } from '#shared/schemas/study'
+import { columnsOf } from './grid-columns'
 import type { EntryPlace } from './grid-entry'
 
 export const sideWord: Record<Side, string> = { right: 'RIGHT', left: 'LEFT' }
@@ -87,4 +88,14 @@ export function groupRuns(runs: Run[], before: readonly RunGroup[] = []): RunGro
     const known = before.find(each => each.id === id)
     return known && isSameGroup(known, group) ? known : group
   })
+}
+
+/** @example cellWords(study, rowId, 'latencyMs') // => 'RIGHT median motor, elbow, latency' */
+export function cellWords(study: Study, rowId: string, field: string): string {
+  const run = study.runs.find(each => each.rows.some(row => row.id === rowId))
+  const row = run?.rows.find(each => each.id === rowId)
+  if (!run || !row) return field
+  const technique = techniqueFor(run.technique)
+  const column = columnsOf(technique, run, true).find(each => each.field === field)?.label ?? field.replace(/(Ms|Mv|Uv|Mm|Ma)$/, '')
+  return `${sideWord[run.side]} ${technique.label}, ${rowLabel(technique, row)}, ${column}`
 }

@@ -2,6 +2,7 @@ import { randomUUID } from 'node:crypto'
 import type { Trx } from '#server/database/connection'
 import type { Role } from '#shared/permissions'
 import { now, type ServiceContext } from './context'
+import { recordAuditEvent } from './record-audit-event'
 
 export interface NewTask {
   kind: string
@@ -19,5 +20,7 @@ export interface NewTask {
 export async function createTask(context: ServiceContext, trx: Trx, { kind, subject, subjectId, siteId, ownerRole, ownerId, sentence, dueAt }: NewTask): Promise<void> {
   const open = await trx.selectFrom('task').select('id').where('kind', '=', kind).where('subjectId', '=', subjectId).where('siteId', 'is', siteId).where('doneAt', 'is', null).executeTakeFirst()
   if (open) return
-  await trx.insertInto('task').values({ id: randomUUID(), kind, subject, subjectId, siteId, ownerId: ownerId ?? null, ownerRole: ownerRole ?? null, sentence, createdAt: now(context), dueAt: dueAt ?? null, doneAt: null, doneBy: null }).execute()
+  const id = randomUUID()
+  await trx.insertInto('task').values({ id, kind, subject, subjectId, siteId, ownerId: ownerId ?? null, ownerRole: ownerRole ?? null, sentence, createdAt: now(context), dueAt: dueAt ?? null, doneAt: null, doneBy: null }).execute()
+  await recordAuditEvent(context, trx, { name: 'task.made', subject: 'task', subjectId: id, siteId, data: { kind } })
 }

@@ -19,6 +19,8 @@ export interface Keys {
   unsealBytes(sealed: Uint8Array): Buffer
   /** The keys of both chains, to check them in a thread of this process; they go nowhere else. */
   chainKeys: ChainKeys
+  /** 32 bytes for what one person's browser keeps on one device until the server has it. */
+  offlineKey(userId: string, deviceId: string): Buffer
   /** Encrypts the session cookie. */
   authSecret: string
   /** What is stored in place of a token, a session id or a recovery code. */
@@ -68,6 +70,7 @@ export function keysFrom(secret: Uint8Array): Keys {
     unsealBytes,
     seal: text => sealBytes(Buffer.from(text, 'utf8')).toString('base64'),
     unseal: sealed => unsealBytes(Buffer.from(sealed, 'base64')).toString('utf8'),
+    offlineKey: (userId, deviceId) => derive(`offline/${userId}/${deviceId}`),
     authSecret: derive('session').toString('base64'),
     tokenHash: mac(derive('token')),
   }

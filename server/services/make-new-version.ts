@@ -1,6 +1,7 @@
 import type { Trx } from '#server/database/connection'
 import { namesakesToTellApart } from '#server/database/queries/patients'
 import { policyInForce } from '#server/database/queries/policies'
+import { questionsOfStudy } from '#server/database/queries/questions'
 import { recipientsOfVersion } from '#server/database/queries/recipients'
 import { reportVersion } from '#server/database/queries/reports'
 import type { Report } from '#server/database/tables/report'
@@ -110,6 +111,7 @@ async function checksOf(context: ServiceContext, trx: Trx, next: ReportSnapshot,
     clinicalQuestion: next.referral.clinicalQuestion, language: next.language, recipients,
     namesakes: others.map(other => ({ recordNumber: other.recordNumber, name: `${other.familyName}, ${other.givenName}`, birthDate: other.birthDate })),
     promptFindings: next.draft.technicalOnly ? [] : promptFindings(body, next.assessment, next.draft),
+    questions: await questionsOfStudy(trx, study.id),
   })
 }
 

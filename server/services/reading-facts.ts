@@ -2,6 +2,7 @@ import type { Database } from '#server/database/connection'
 import { earlierStudies, type EarlierReport } from '#server/database/queries/earlier-studies'
 import { policyInForce } from '#server/database/queries/policies'
 import { namesakesToTellApart } from '#server/database/queries/patients'
+import { questionsOfStudy } from '#server/database/queries/questions'
 import { recipientsOfReferral, recipientsOfVersion, type Recipient } from '#server/database/queries/recipients'
 import { referralRecord } from '#server/database/queries/referrals'
 import { reportOfStudy } from '#server/database/queries/reports'
@@ -92,6 +93,6 @@ export async function readingFacts(context: ServiceContext, db: Database, studyI
   const own = await ownWords(db, { siteId: site.id, today, assessment, draft, language: referral.reportLanguage })
   const others = await namesakesToTellApart(db, patient)
   const namesakes = others.map(other => ({ recordNumber: other.recordNumber, name: `${other.familyName}, ${other.givenName}`, birthDate: other.birthDate }))
-  const checks = signChecks({ study: chosen.study, assessment, draft, findings, clinicalQuestion: referral.clinicalQuestion, language: referral.reportLanguage, recipients, namesakes, promptFindings: own.promptContact.found })
+  const checks = signChecks({ study: chosen.study, assessment, draft, findings, clinicalQuestion: referral.clinicalQuestion, language: referral.reportLanguage, recipients, namesakes, promptFindings: own.promptContact.found, questions: await questionsOfStudy(db, studyId) })
   return { assessed, report, referral, patient, site, draft, ...chosen, assessment, findings, recipients, namesakes, checks, earlier, ...own }
 }

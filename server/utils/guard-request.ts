@@ -21,12 +21,19 @@ export async function guardRequest(event: H3Event): Promise<ApiErrorBody | undef
     if (isTooLarge(event)) throw new DomainError('too-large', { message: 'The request is larger than the server takes. Nothing was stored.' })
     event.context.session = await requestSession(event)
     if (!event.context.session && !isPublicRoute(event.method, path)) throw new DomainError('not-signed-in')
+    if (isAnotherPerson(event)) throw new DomainError('not-signed-in', { message: 'Somebody else has signed in in this browser. Sign in again; what you typed is kept.' })
     return undefined
   }
   catch (error) {
     if (error instanceof DomainError) servicesOf(event).log.info({ refused: error.code, method: event.method, route: routeForLog(event) }, 'A request was refused')
     return answerError(event, error)
   }
+}
+
+/** A page says whose it is: after another person signed in in the same browser it stores nothing in their name. */
+function isAnotherPerson(event: H3Event): boolean {
+  const person = getHeader(event, 'x-person')
+  return person !== undefined && event.context.session != null && event.context.session.user.id !== person
 }
 
 const JSON_BYTES = 2_000_000

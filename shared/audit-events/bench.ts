@@ -5,6 +5,7 @@ const size = z.object({ heightCm: z.number().nullable(), weightKg: z.number().nu
 const run = z.object({ runId: z.string(), technique: z.string(), side: z.string() })
 const temperature = z.object({ temperatureId: z.string(), segment: z.string(), side: z.string(), celsius: z.number() })
 const cell = z.object({ runId: z.string(), rowId: z.string(), field: z.string(), before: z.unknown(), after: z.unknown() })
+const question = z.object({ questionId: z.string(), runId: z.string().nullable() })
 const because = (reason: string) => reason ? `: ${reason}` : ''
 
 /** Recording. Every earlier value of a cell stands here, and here only. */
@@ -22,6 +23,11 @@ export const benchEvents = {
   'study.cells-saved': event(z.object({ cells: z.array(cell) }), data => `saved ${data.cells.length === 1 ? 'one value' : `${data.cells.length} values`}`),
   'study.check-kept': event(z.object({ key: z.string(), reason: z.string() }), () => 'kept a questioned value, with a reason'),
   'study.check-reopened': event(z.object({ key: z.string(), reason: z.string() }), () => 'took back the reason for a questioned value'),
+  'question.asked': event(question, () => 'asked the readers a question'),
+  'question.seen': event(question, () => 'opened a question of the bench'),
+  'question.answered': event(question.extend({ addedRunId: z.string().nullable() }), data => `answered a question of the bench${data.addedRunId ? ' and added a run' : ''}`),
+  'question.withdrawn': event(question, () => 'took back a question'),
+  'question.overdue': event(question, () => 'nobody answered a question of the bench in time'),
   'study.handed-over': event(z.object({ flagged: z.number().int(), runs: z.number().int(), fingerprint: z.string() }), data => `handed over a study of ${data.runs} runs`),
   'study.stopped': event(nothing, () => 'stopped a study'),
   'study.circumstances-saved': event(z.object({ room: z.string(), supervision: z.string().nullable(), supervisorId: z.string().nullable(), tolerance: z.string().nullable(), equipmentIds: z.array(z.string()) }), () => 'noted room, equipment and supervision of a study'),

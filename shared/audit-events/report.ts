@@ -38,5 +38,6 @@ export const reportEvents = {
   'delivery.sent-now': event(delivery, data => `released ${data.number}, version ${data.version}, for sending`),
   'delivery.resolved': event(delivery.extend({ outcome: z.string() }), data => `settled the delivery of ${data.number}, version ${data.version}: ${data.outcome}`),
   'task.taken': event(z.object({ kind: z.string(), from: z.string().nullable() }), data => `${data.from ? 'took over' : 'took'} a task (${data.kind})`),
+  'task.made': event(z.object({ kind: z.string() }), data => `a task was made (${data.kind})`),
   'task.done': event(z.object({ kind: z.string() }), data => `finished a task (${data.kind})`),
 } as const

@@ -3,6 +3,7 @@ import type { Assessment, RunAssessment } from '../calculations/types'
 import { techniqueOf } from '../catalogue/nerves'
 import type { Side } from '../schemas/common'
 import type { ImpressionLine, ReadingView, ReportDraft, SignCheck } from '../schemas/report'
+import type { QuestionView } from '../schemas/question'
 import type { Study } from '../schemas/study'
 import { formatDay } from './dates'
 import { isNerveOrBranch, sideClaims, sidesInWords, wordsContradictField, type SideClaim } from './side-claims'
@@ -19,7 +20,10 @@ export interface SignCheckInput {
   namesakes: ReadingView['namesakes']
   /** What of this study stands on the organisation's list of findings that call for prompt contact. */
   promptFindings?: readonly { id: string, label: string, because: string }[]
+  /** What the bench asked the readers. */
+  questions: readonly AskedQuestion[]
 }
+export type AskedQuestion = Pick<QuestionView, 'id' | 'question' | 'state' | 'runId' | 'answer' | 'closedBy'>
 
 type Found = Omit<SignCheck, 'resolvedBecause'>
 /** A key is stored with its answer; the column has room for 200 signs. */
@@ -169,8 +173,17 @@ function people({ namesakes, recipients }: SignCheckInput): Found[] {
   ]
 }
 
-/** Questions about people rest on the directory and the register, not on what was measured. */
-const aboutPeople = /^(?:namesake|recipient|no-recipient)/
+/** A question of the bench that nobody answered stands in the way; an answered one is shown with its answer. */
+function askedByBench({ questions }: SignCheckInput): Found[] {
+  return questions.flatMap(({ id, question, state, runId, answer, closedBy }): Found[] => {
+    const rest = runId ? { runId } : {}
+    if (state === 'open') return [check(`question/${id}`, `The bench asked, and nobody has answered: "${question}"`, rest)]
+    return state === 'answered' ? [{ key: `answered/${id}`, strength: 'ok', sentence: `The bench asked: "${question}" ${closedBy} answered${answer ? `: "${answer}"` : ' with a run to add.'}`, answerable: false, ...rest }] : []
+  })
+}
+
+/** Questions about people rest on the directory and the register, a question of the bench on its own words, not on what was measured. */
+const aboutPeople = /^(?:namesake|recipient|no-recipient|question\/)/
 
 /**
  * What an answer was given to: the words of the question and the numbers it is about. For a side, everything that is
@@ -201,7 +214,7 @@ function answered(plain: Found, input: SignCheckInput): SignCheck {
  * @example signChecks(input).filter(isOpen) // => what still stands in the way
  */
 export function signChecks(input: SignCheckInput): SignCheck[] {
-  const found = [missing, unreviewed, wrongSides, sidesElsewhere, temperatures, questions, withoutLimits, isolated, promptContact, people].flatMap(part => part(input))
+  const found = [missing, unreviewed, wrongSides, sidesElsewhere, temperatures, questions, withoutLimits, isolated, promptContact, people, askedByBench].flatMap(part => part(input))
   const once = found.filter((item, index) => found.findIndex(other => other.key === item.key) === index)
   return once.map(item => answered(item, input))
 }

@@ -75,7 +75,7 @@ it('a broken network keeps what is typed, says so, and stores it when it is back
   await context.setOffline(true)
   await type(page, 'RIGHT fibular motor, ankle, latency, ms', '4.8')
   await type(page, 'RIGHT fibular motor, ankle, amplitude, mV', '3.2')
-  await page.locator('[data-test=save-state]').getByText('2 values not saved yet, kept here and tried again').waitFor()
+  await page.locator('[data-test=save-state]').getByText('2 values not saved yet, kept on this device and tried again').waitFor()
   expect(await cell(page, 'RIGHT fibular motor, ankle, latency').inputValue()).toBe('4.8')
   await context.setOffline(false)
   await saved(page)

@@ -31,6 +31,7 @@ const addresses: Record<string, (ask: Ask) => Promise<string[]>> = {
   'bench/walk-in.vue': async () => ['/bench/walk-in'],
   'bench/sheets/index.vue': async () => ['/bench/sheets'],
   'bench/sheets/[protocol].vue': async () => ['/bench/sheets/carpal-tunnel?side=right'],
+  'bench/offline.vue': async () => ['/bench/offline'],
   'bench/[studyId].vue': async (ask) => {
     const { sites } = await ask<{ sites: { id: string }[] }>('/api/me')
     const days = await Promise.all(sites.map(site => ask<{ studyId: string | null, state: string }[]>(`/api/bench?siteId=${site.id}`)))
@@ -43,6 +44,8 @@ const addresses: Record<string, (ask: Ask) => Promise<string[]>> = {
     const read = await ask<Rows<{ studyId: string }>>('/api/reading?state=read')
     return [...one(waiting.rows, row => String(row.readerId === null)), ...one(read.rows)].map(row => `/reading/${row.studyId}`)
   },
+  // Opens through a question that the bench asked; the demonstration has none: see ask-reader.test.ts.
+  'questions/[id].vue': async () => ['/questions/none'],
   'reports/[reportId].vue': async (ask) => {
     const { sites } = await ask<{ sites: { name: string }[] }>('/api/me')
     return one(reports.filter(report => sites.some(site => site.name === report.siteName))).map(report => `/reports/${report.reportId}`)

@@ -14,6 +14,7 @@ const pathOf: Record<string, (id: string) => string> = {
   'person': id => `/people/${id}`,
   'practice': id => `/directory/${id}`,
   'role-proposal': () => '/people',
+  'question': id => `/questions/${id}`,
 }
 
 /** Open tasks for this person: own ones, and those of a role held at the task's site, or anywhere where the task has none; what is due first comes first. */

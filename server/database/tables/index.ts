@@ -45,6 +45,7 @@ import type { StudyKeptCheckTable } from './study-kept-check'
 import type { StudyLaterEntryTable } from './study-later-entry'
 import type { StudyMoveTable } from './study-move'
 import type { StudyProtocolTable } from './study-protocol'
+import type { StudyQuestionTable } from './study-question'
 import type { StudyRowTable } from './study-row'
 import type { StudyRunTable } from './study-run'
 import type { StudyTable } from './study'
@@ -95,6 +96,7 @@ export interface Tables {
   studyLaterEntry: StudyLaterEntryTable
   studyMove: StudyMoveTable
   studyProtocol: StudyProtocolTable
+  studyQuestion: StudyQuestionTable
   report: ReportTable
   reportWriter: ReportWriterTable
   reportVersion: ReportVersionTable

@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest'
 import type { SavedCell } from '../../../../shared/schemas/bench'
-import { emptyQueue, enqueue, resolveConflict, settle, takeBatch, unsavedCells, type SaveQueue } from '../../../../app/utils/save-queue'
+import { emptyQueue, enqueue, resolveConflict, settle, takeBatch, takeFresh, unsavedCells, type SaveQueue } from '../../../../app/utils/save-queue'
 
 let serial = 0
 const newId = () => `save${++serial}`
@@ -63,4 +63,21 @@ it('nothing unacknowledged is ever lost: under way, waiting and in conflict are 
 it('a cell the answer forgot goes back in line', () => {
   const sent = takeBatch(enqueue(start(), 'r', 'latencyMs', 4), newId)
   expect(settle(sent, []).waiting['r/latencyMs']).toMatchObject({ entry: 4 })
+})
+
+describe('a fresh copy of the study never hides what somebody else stored', () => {
+  const waiting = enqueue(start(), 'r', 'latencyMs', 4)
+  it.each([
+    { name: 'a cell that waits', queue: waiting, editing: undefined, revision: 3 },
+    { name: 'a cell under way', queue: takeBatch(waiting, newId), editing: undefined, revision: 3 },
+    { name: 'a cell that is being typed into', queue: start(), editing: 'r/latencyMs', revision: 3 },
+    { name: 'a cell nobody touches', queue: start(), editing: undefined, revision: 5 },
+  ])('$name: revision $revision', ({ queue, editing, revision }) => {
+    expect(takeFresh(queue, { 'r/latencyMs': 5 }, editing).revisions['r/latencyMs']).toBe(revision)
+  })
+  it('a cell up for a choice keeps the revision of the value that is shown', () => {
+    const sent = takeBatch(waiting, newId)
+    const open = settle(sent, conflicted(sent, 7))
+    expect(takeFresh(open, { 'r/latencyMs': 12 }).revisions['r/latencyMs']).toBe(9)
+  })
 })

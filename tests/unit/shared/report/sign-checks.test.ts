@@ -15,7 +15,7 @@ const line = (words: string, rest: Partial<ImpressionLine> = {}): ImpressionLine
 function input(rest: Partial<SignCheckInput> = {}, ...lines: ImpressionLine[]): SignCheckInput {
   return {
     study, assessment, draft: { ...draftOf(), ...(lines.length > 0 ? { impression: lines } : {}) }, findings: [], clinicalQuestion: 'Median?', language: 'en',
-    recipients: [{ name: 'Dr Sam Ple', reachable: true, because: '' }], namesakes: [], ...rest,
+    recipients: [{ name: 'Dr Sam Ple', reachable: true, because: '' }], namesakes: [], questions: [], ...rest,
   }
 }
 const open = (checks: SignCheckInput) => signChecks(checks).filter(isOpen).map(check => check.key)
@@ -180,5 +180,21 @@ describe('the other points', () => {
     const draft = { ...draftOf(), resolved: [{ key, reason: 'Old injury.', about }] }
     expect(open(input({ ...at(5.2), draft }))).not.toContain(key)
     expect(open(input({ ...at(6.1), draft }))).toContain(key)
+  })
+})
+
+describe('questions of the bench', () => {
+  const asked = { id: 'q1', question: 'Add the ulnar?', runId: 'rm', answer: '', closedBy: null }
+  it.each([
+    { state: 'open' as const, rest: {}, key: 'question/q1', strength: 'check', stands: true },
+    { state: 'answered' as const, rest: { answer: 'Yes.', closedBy: 'Dr Lind' }, key: 'answered/q1', strength: 'ok', stands: false },
+    { state: 'withdrawn' as const, rest: {}, key: undefined, strength: undefined, stands: false },
+  ])('$state', ({ state, rest, key, strength, stands }) => {
+    const found = signChecks(input({ questions: [{ ...asked, state, ...rest }] })).find(item => item.key.endsWith('/q1'))
+    expect([found?.key, found?.strength, found ? isOpen(found) : false]).toEqual([key, strength, stands])
+  })
+  it('an open one can be answered with a reason', () => {
+    const checks = signChecks(input({ questions: [{ ...asked, state: 'open' }], draft: { ...draftOf(), resolved: [{ key: 'question/q1', reason: 'Answered by telephone.' }] } }))
+    expect(checks.find(item => item.key === 'question/q1')?.resolvedBecause).toBe('Answered by telephone.')
   })
 })

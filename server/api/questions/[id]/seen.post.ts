@@ -1,0 +1,12 @@
+import * as z from 'zod'
+import { siteOfQuestion } from '#server/database/queries/questions'
+import { noteQuestionSeen } from '#server/services/ask-reader'
+import { defineApiHandler } from '#server/utils/api-handler'
+import { idSchema } from '#shared/schemas/common'
+
+export default defineApiHandler({
+  allow: 'question.answer',
+  params: z.object({ id: idSchema }),
+  siteOf: (db, { params }) => siteOfQuestion(db, params.id),
+  handle: ({ context, params }) => noteQuestionSeen(context, params.id),
+})
