@@ -6,12 +6,12 @@ import * as policies from './2026-12-12-a-policies'
 import * as benchday from './2026-12-12-benchday'
 import * as dispatch from './2026-12-12-dispatch'
 import * as kinds from './2026-12-12-kinds'
+import * as offline from './2026-12-12-offline'
 import * as ownSets from './2026-12-12-own-sets'
 import * as patients from './2026-12-12-patients'
 import * as people from './2026-12-12-people'
 import * as peopleDirectory from './2026-12-12-people-directory'
 import * as peopleRetention from './2026-12-12-people-retention'
-import * as offline from './2026-12-12-offline'
 import * as reading from './2026-12-12-reading'
 
 /** Every migration, in order. Never edit one that has been released; add a new file and a line here. */
@@ -23,11 +23,11 @@ export const migrations: Record<string, Migration> = {
   '2026-12-12-benchday': benchday,
   '2026-12-12-dispatch': dispatch,
   '2026-12-12-kinds': kinds,
+  '2026-12-12-offline': offline,
   '2026-12-12-own-sets': ownSets,
   '2026-12-12-patients': patients,
   '2026-12-12-people': people,
   '2026-12-12-people-directory': peopleDirectory,
   '2026-12-12-people-retention': peopleRetention,
-  '2026-12-12-offline': offline,
   '2026-12-12-reading': reading,
 }
