@@ -5,6 +5,8 @@ import * as arrival from './2026-12-11-arrival'
 import * as policies from './2026-12-12-a-policies'
 import * as benchday from './2026-12-12-benchday'
 import * as dispatch from './2026-12-12-dispatch'
+import * as intake from './2026-12-12-intake'
+import * as intakeLists from './2026-12-12-intake-lists'
 import * as kinds from './2026-12-12-kinds'
 import * as offline from './2026-12-12-offline'
 import * as ownSets from './2026-12-12-own-sets'
@@ -22,6 +24,8 @@ export const migrations: Record<string, Migration> = {
   '2026-12-12-a-policies': policies,
   '2026-12-12-benchday': benchday,
   '2026-12-12-dispatch': dispatch,
+  '2026-12-12-intake': intake,
+  '2026-12-12-intake-lists': intakeLists,
   '2026-12-12-kinds': kinds,
   '2026-12-12-offline': offline,
   '2026-12-12-own-sets': ownSets,

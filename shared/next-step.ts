@@ -27,7 +27,9 @@ const byState: Partial<Record<ReferralState, string>> = {
  * nextStep({ state: 'draft', missing: [{ path: 'examination' }], studyState: null }) // => 'Complete the examination'
  * nextStep({ state: 'attended', missing: [], studyState: 'handed-over' }) // => 'Read and sign'
  */
-export function nextStep({ state, missing, studyState }: { state: ReferralState, missing: readonly { path: string }[], studyState: StudyState | null }): string {
+export function nextStep({ state, missing, studyState, cameBack = false, overdue = false }: { state: ReferralState, missing: readonly { path: string }[], studyState: StudyState | null, /** what was asked came back and nobody noted it */ cameBack?: boolean, /** past the organisation's clock */ overdue?: boolean }): string {
+  if (state === 'received' && cameBack) return 'Look at what came back'
+  if (state === 'returned' && overdue) return 'Remind the referring physician'
   if ((state === 'draft' || state === 'received') && missing.length > 0) return completeWords(missing)
   if (state === 'attended' && studyState) return whileAttended[studyState] ?? ''
   return byState[state] ?? ''

@@ -8,7 +8,7 @@ import { assessStoredStudy } from '#server/services/assess-stored-study'
 import { acceptReferral, receiveReferral } from '#server/services/move-referral'
 import { saveBodySize } from '#server/services/save-body-size'
 import { saveCells } from '#server/services/save-cells'
-import { addPatient } from '#server/services/save-patient'
+import { addPatient, changePatient } from '#server/services/save-patient'
 import { addReferral } from '#server/services/save-referral'
 import { changeRun } from '#server/services/save-run'
 import { addTemperature } from '#server/services/save-temperature'
@@ -46,7 +46,7 @@ async function makePatient(maker: Maker, siteId: string): Promise<string> {
   birth.setUTCDate(birth.getUTCDate() - random.whole(1, 360))
   const patient = await addPatient(await as(maker, 'administrator', siteId), {
     familyName: random.pick(familyNames), givenName: random.pick(woman ? womensNames : mensNames), birthDate: birth.toISOString().slice(0, 10),
-    sexForLimits: woman ? 'female' : 'male', gender: '', identifier: '', phone: `+00 55 ${random.whole(1000, 9999)}`, interpreter: random.chance(0.03) ? 'Ukrainian' : '',
+    sexForLimits: woman ? 'female' : 'male', gender: '', identifier: '', phone: `+00 55 ${random.whole(1000, 9999)}`, email: '', mailConsent: 'not-asked', interpreter: random.chance(0.03) ? 'Ukrainian' : '',
   })
   return patient.id
 }
@@ -92,7 +92,7 @@ export async function book(maker: Maker, { id, site }: MadeReferral, moment: Dat
     const at = new Date(moment.getTime() + step * 15 * 60_000)
     const [date, time] = [localDate(at, site.timeZone), localTime(at, site.timeZone)]
     try {
-      await bookReferral(context, { id, siteId: site.id, room: site.rooms[step % site.rooms.length]!, technologistId: null, date, time, minutes: 45 })
+      await bookReferral(context, { id, siteId: site.id, room: site.rooms[step % site.rooms.length]!, technologistId: null, date, time, minutes: 45, outsideHours: true })
       return instantOf(date, time, site.timeZone)
     }
     catch (error) {
@@ -100,6 +100,13 @@ export async function book(maker: Maker, { id, site }: MadeReferral, moment: Dat
     }
   }
   throw new Error('No free slot was found.')
+}
+
+/** A patient who agreed to mails about appointments: the confirmation leaves as the demonstration starts. */
+export async function agreeToMails(maker: Maker, { id, site }: MadeReferral): Promise<void> {
+  const { db } = maker.context
+  const patient = await db.selectFrom('referral').innerJoin('patient', 'patient.id', 'referral.patientId').select(['patient.id', 'patient.revision', 'recordNumber']).where('referral.id', '=', id).executeTakeFirstOrThrow()
+  await changePatient(await as(maker, 'administrator', site.id), { id: patient.id, revision: patient.revision, email: `${patient.recordNumber.toLowerCase()}@home.example`, mailConsent: 'yes' })
 }
 
 /** Arrival, confirmation, body size, temperatures and every planned run of the study. Ends in "recording". */

@@ -5,7 +5,7 @@ import { noteArrival } from '#server/services/start-study'
 import { returnStudy } from '#server/services/take-study'
 import { plusDays, workingTime } from './clock'
 import { deliverAsInThePast } from './deliver'
-import { as, book, keepQuestions, makeReferral, receiveAndAccept, record, type MadeReferral, type Maker } from './make-study'
+import { agreeToMails, as, book, keepQuestions, makeReferral, receiveAndAccept, record, type MadeReferral, type Maker } from './make-study'
 import { draft, sign } from './read-study'
 
 /** One finished study: from the referral two weeks before to the acknowledged report, or to the draft that waits for its signature. */
@@ -50,13 +50,14 @@ async function moveAtIntake(maker: Maker, referral: MadeReferral, stage: Stage, 
   if (['received', 'returned', 'declined'].includes(stage)) {
     await receiveReferral(context, { id })
     clock.forward(random.whole(60, 600))
-    if (stage === 'returned') await returnReferral(context, { id, reason: 'Which hand is worse, and since when?' })
+    if (stage === 'returned') await returnReferral(context, { id, reasons: ['symptoms', 'other'], note: 'Which hand is worse, and since when?' })
     if (stage === 'declined') await declineReferral(context, { id, reason: 'The question needs imaging first; advice was given by telephone.' })
     return
   }
   await receiveAndAccept(maker, referral)
   if (stage === 'accepted') return
   if (stage === 'cancelled') return await cancelReferral(context, { id, reason: 'The patient feels better and called it off.' })
+  if (stage === 'booked') await agreeToMails(maker, referral)
   const day = stage === 'booked' ? plusDays(today, random.whole(0, 9)) : ['arrived', 'recording'].includes(stage) ? today : plusDays(today, -random.whole(1, 4))
   const starts = await book(maker, referral, stage === 'booked' ? forwardWorkingTime(day, random.whole(8, 14)) : workingTime(day, random.whole(7, 12)))
   if (stage === 'booked') return

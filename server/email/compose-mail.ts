@@ -39,6 +39,7 @@ export async function composeMail({ from, to, messageId, date, content, attachme
     text: content.text,
     html: content.html,
     headers: { 'Auto-Submitted': 'auto-generated' },
+    ...(content.calendar ? { icalEvent: { method: content.calendar.method, filename: 'appointment.ics', content: content.calendar.text } } : {}),
     attachments: attachment ? [{ filename: oneLine(attachment.filename), content: Buffer.from(attachment.bytes), contentType: attachment.contentType }] : [],
     disableFileAccess: true,
     disableUrlAccess: true,

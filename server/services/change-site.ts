@@ -1,12 +1,14 @@
 import { randomUUID } from 'node:crypto'
 import type * as z from 'zod'
 import type { Trx } from '#server/database/connection'
+import { roomNames } from '#server/database/queries/site-calendar'
 import { siteBasics } from '#server/database/queries/sites'
 import { DomainError } from '#shared/errors'
 import type { siteSchema, SiteBasics } from '#shared/schemas/user'
 import { changedValues } from './changed-fields'
 import { now, type ServiceContext } from './context'
 import { recordAuditEvent } from './record-audit-event'
+import { keepRooms, keepUsualHours } from './site-calendar'
 import { isTimeZone, localDate } from './site-time'
 
 export type SiteInput = z.output<typeof siteSchema>
@@ -19,10 +21,13 @@ export async function addSite(context: ServiceContext, input: SiteInput): Promis
   return await context.db.transaction().execute(async (trx) => {
     const { id: organisationId } = await trx.selectFrom('organisation').select('id').executeTakeFirstOrThrow()
     await checkSite(trx, input, null)
-    const site = await trx.insertInto('site').values({ ...columnsOf(input), id: randomUUID(), organisationId, closedAt: null, createdAt: now(context) }).returningAll().executeTakeFirstOrThrow()
+    const { rooms, ...columns } = input
+    const site = await trx.insertInto('site').values({ ...columns, id: randomUUID(), organisationId, closedAt: null, createdAt: now(context) }).returningAll().executeTakeFirstOrThrow()
+    await keepRooms(context, trx, site.id, rooms.map(name => ({ name, note: '' })))
+    await keepUsualHours(trx, site.id)
     await recordAuditEvent(context, trx, { name: 'site.added', subject: 'site', subjectId: site.id, siteId: site.id, data: {} })
     if (context.actor.userId) await makeAdministrator(context, trx, context.actor.userId, site)
-    return siteBasics(site)
+    return siteBasics(site, rooms)
   })
 }
 
@@ -32,16 +37,22 @@ export async function changeSite(context: ServiceContext, id: string, changes: P
     const old = await trx.selectFrom('site').selectAll().where('id', '=', id).where('closedAt', 'is', null).executeTakeFirst()
     if (!old) throw new DomainError('not-found')
     await checkSite(trx, { name: changes.name ?? old.name, timeZone: changes.timeZone ?? old.timeZone }, id)
-    const changed = changedValues(siteBasics(old), changes)
-    if (changed.length === 0) return siteBasics(old)
-    const site = await trx.updateTable('site').set(columnsOf(changes)).where('id', '=', id).returningAll().executeTakeFirstOrThrow()
+    const oldRooms = (await roomNames(trx, [id])).get(id) ?? []
+    const before = siteBasics(old, oldRooms)
+    const changed = changedValues(before, changes)
+    if (changed.length === 0) return before
+    const { rooms, ...columns } = changes
+    if (rooms !== undefined && JSON.stringify(rooms) !== JSON.stringify(oldRooms)) await keepRooms(context, trx, id, await withNotes(trx, id, rooms))
+    if (Object.values(columns).some(value => value !== undefined)) await trx.updateTable('site').set(columns).where('id', '=', id).execute()
     await recordAuditEvent(context, trx, { name: 'site.changed', subject: 'site', subjectId: id, siteId: id, data: { changes: changed } })
-    return siteBasics(site)
+    return siteBasics(await trx.selectFrom('site').selectAll().where('id', '=', id).executeTakeFirstOrThrow(), rooms ?? oldRooms)
   })
 }
 
-function columnsOf<T extends Partial<SiteInput>>({ rooms, ...plain }: T): Omit<T, 'rooms'> & { roomsJson: string } {
-  return { ...plain, roomsJson: rooms === undefined ? undefined as never : JSON.stringify(rooms) }
+/** Rooms given by name alone keep what was noted about them. */
+async function withNotes(trx: Trx, siteId: string, names: readonly string[]) {
+  const known = await trx.selectFrom('siteRoom').select(['name', 'note']).where('siteId', '=', siteId).execute()
+  return names.map(name => ({ name, note: known.find(room => room.name === name)?.note ?? '' }))
 }
 
 async function checkSite(trx: Trx, input: { name: string, timeZone: string }, exceptId: string | null): Promise<void> {

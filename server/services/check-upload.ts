@@ -1,3 +1,4 @@
+import { inflateSync } from 'node:zlib'
 import { fileTypeFromBuffer } from 'file-type'
 import sharp from 'sharp'
 import { DomainError } from '#shared/errors'
@@ -9,6 +10,8 @@ export const UPLOAD_LIMIT_BYTES = 10 * 1024 * 1024
 /** A letter page scanned at 600 dots per inch has 35 million. */
 const MOST_PIXELS = 40_000_000
 const MOST_PDF_PAGES = 100
+/** All the packed objects of a letter together; more is a bomb. */
+const MOST_UNPACKED_BYTES = 32 * 1024 * 1024
 
 const refused = (message: string) => new DomainError('wrong-file-type', { message })
 
@@ -58,15 +61,46 @@ export function pdfPages(text: string): number {
  * Names as a PDF reader takes them: each character may be written as # and two hexadecimal digits (ISO 32000-2, 7.3.5,
  * from memory). `JS` counts only before a text or a reference: three bytes stand by chance in every larger scan.
  */
+const plainNames = (text: string) => text.replace(/#([0-9A-Fa-f]{2})/g, (_, digits: string) => String.fromCharCode(Number.parseInt(digits, 16)))
+
 function hasProgramOrFile(text: string): boolean {
-  const plain = text.replace(/#([0-9A-Fa-f]{2})/g, (_, digits: string) => String.fromCharCode(Number.parseInt(digits, 16)))
+  const plain = plainNames(text)
   return /\/(?:JavaScript|Launch|EmbeddedFiles?)\b/.test(plain) || /\/JS\s*(?:[(<]|\d+\s+\d+\s+R)/.test(plain)
+}
+
+/**
+ * The objects that a PDF keeps packed (object streams, ISO 32000-2, 7.5.7, from memory): pages and programs can stand
+ * there, unseen in the plain text.
+ * @throws DomainError when they cannot be unpacked, as in a file that is encrypted
+ */
+export function packedObjects(bytes: Uint8Array, text: string): string {
+  const named = /\/Type\s*\/ObjStm\b/g
+  if ((plainNames(text).match(named)?.length ?? 0) > (text.match(named)?.length ?? 0)) throw refused('The PDF hides parts of itself. Print it to a new PDF and send that. Nothing was stored.')
+  const parts: string[] = []
+  let left = MOST_UNPACKED_BYTES
+  for (const match of text.matchAll(named)) {
+    const begin = /stream\r?\n/g
+    begin.lastIndex = match.index
+    const from = begin.exec(text) ? begin.lastIndex : -1
+    const until = from < 0 ? -1 : text.indexOf('endstream', from)
+    if (until < 0) throw refused('The PDF is cut short or damaged. Nothing was stored.')
+    try {
+      const unpacked = inflateSync(bytes.subarray(from, until), { maxOutputLength: left })
+      left -= unpacked.length
+      parts.push(unpacked.toString('latin1'))
+    }
+    catch {
+      throw refused('The PDF is protected or packed in a way that cannot be checked. Print it to a new PDF and send that. Nothing was stored.')
+    }
+  }
+  return parts.join('\n')
 }
 
 function checkPdf(bytes: Uint8Array): Uint8Array {
   const text = Buffer.from(bytes.buffer, bytes.byteOffset, bytes.byteLength).toString('latin1')
   if (!text.startsWith('%PDF-') || !text.slice(-2048).includes('%%EOF')) throw refused('The PDF is cut short or damaged. Nothing was stored.')
-  if (hasProgramOrFile(text)) throw refused('The PDF has a program or another file inside. Print it to a new PDF and send that. Nothing was stored.')
-  if (pdfPages(text) > MOST_PDF_PAGES) throw refused(`The PDF has more than ${MOST_PDF_PAGES} pages. Nothing was stored.`)
+  const all = `${text}\n${packedObjects(bytes, text)}`
+  if (hasProgramOrFile(all)) throw refused('The PDF has a program or another file inside. Print it to a new PDF and send that. Nothing was stored.')
+  if (pdfPages(all) > MOST_PDF_PAGES) throw refused(`The PDF has more than ${MOST_PDF_PAGES} pages. Nothing was stored.`)
   return bytes
 }

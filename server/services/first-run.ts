@@ -11,6 +11,7 @@ import { newToken } from './keys'
 import { complaintAbout, hashPassword } from './passwords'
 import { recordAuditEvent } from './record-audit-event'
 import { isTimeZone } from './site-time'
+import { keepUsualHours } from './site-calendar'
 
 export const FIRST_RUN = 'first-run'
 const DAY_MS = 86_400_000
@@ -65,7 +66,9 @@ async function writeFirst(context: ServiceContext, trx: Trx, input: FirstAdminis
   const site = { id: randomUUID(), timeZone: input.timeZone }
   const acting = actingAs(context, { userId, label: input.name, holdings: [] })
   await trx.insertInto('organisation').values({ id: organisationId, name: input.organisationName, timeZone: input.timeZone, disclaimer: reportWords('en').disclaimerText, createdAt }).execute()
-  await trx.insertInto('site').values({ ...site, organisationId, name: input.siteName, town: input.town, roomsJson: JSON.stringify(['Room 1']), closedAt: null, createdAt }).execute()
+  await trx.insertInto('site').values({ ...site, organisationId, name: input.siteName, town: input.town, closedAt: null, createdAt }).execute()
+  await trx.insertInto('siteRoom').values({ id: randomUUID(), siteId: site.id, name: 'Room 1', position: 0, closedAt: null }).execute()
+  await keepUsualHours(trx, site.id)
   await trx.insertInto('user').values({ id: userId, email: input.email.toLowerCase(), name: input.name, printedName: input.name, passwordHash, totpSecretSealed: null, totpEnabledAt: null, totpLastStep: null, lastSeenAt: null, deactivatedAt: null, createdAt }).execute()
   await recordAuditEvent(acting, trx, { name: 'organisation.set-up', subject: 'organisation', subjectId: organisationId, data: {} })
   await recordAuditEvent(acting, trx, { name: 'site.added', subject: 'site', subjectId: site.id, siteId: site.id, data: {} })

@@ -1,4 +1,5 @@
 import type { Trx } from '#server/database/connection'
+import { roomNames } from '#server/database/queries/site-calendar'
 import { DomainError, type FieldError } from '#shared/errors'
 import type { CircumstancesInput } from '#shared/schemas/bench-day'
 import { mayAt, type ServiceContext } from './context'
@@ -8,8 +9,7 @@ import { recordAuditEvent } from './record-audit-event'
 
 async function checkChoices(trx: Trx, siteId: string, day: string, input: CircumstancesInput): Promise<void> {
   const fields: FieldError[] = []
-  const site = await trx.selectFrom('site').select('roomsJson').where('id', '=', siteId).executeTakeFirstOrThrow()
-  if (input.room && !(JSON.parse(site.roomsJson) as string[]).includes(input.room)) fields.push({ path: 'room', message: 'Choose a room of this site.' })
+  if (input.room && !(await roomNames(trx, [siteId])).get(siteId)?.includes(input.room)) fields.push({ path: 'room', message: 'Choose a room of this site.' })
   const equipment = await trx.selectFrom('equipment').select('id').where('siteId', '=', siteId).where('id', 'in', input.equipmentIds).execute()
   if (equipment.length < new Set(input.equipmentIds).size) fields.push({ path: 'equipmentIds', message: 'Choose equipment of this site.' })
   if (input.supervisorId && !(await peopleWho(trx, 'report.sign', siteId, day)).some(person => person.id === input.supervisorId)) fields.push({ path: 'supervisorId', message: 'Choose a neurologist of this site as supervising physician.' })

@@ -6,6 +6,7 @@ import { changedFields } from './changed-fields'
 import { now, type ServiceContext } from './context'
 import { nextNumber } from './next-number'
 import { recordAuditEvent } from './record-audit-event'
+import { tellAppointmentsAnew } from './tell-patient'
 import { withdrawReady } from './withdraw-ready'
 
 /** Nobody is born after today; a birth more than 125 years ago is a slip (the longest documented life was 122 years: common knowledge). */
@@ -41,6 +42,7 @@ export async function changePatient(context: ServiceContext, { id, revision, ...
     if (changes.length === 0) return patientView(before)
     const row = await trx.updateTable('patient').set({ ...change, revision: revision + 1 }).where('id', '=', id).returningAll().executeTakeFirstOrThrow()
     await recordAuditEvent(context, trx, { name: 'patient.changed', subject: 'patient', subjectId: id, patientId: id, data: { changes } })
+    if ('email' in change || 'mailConsent' in change) await tellAppointmentsAnew(context, trx, id)
     if ('birthDate' in change || 'sexForLimits' in change) await withdrawReady(context, trx, { patientId: id })
     return patientView(row)
   })

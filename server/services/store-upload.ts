@@ -59,9 +59,12 @@ async function openOwner(db: Database, place: UploadPlace): Promise<Owner> {
   return { subject, id, siteId: row.siteId, patientId: row.patientId }
 }
 
-async function insertUpload(context: ServiceContext, trx: Trx, place: UploadPlace, file: Omit<Upload, 'id' | 'createdAt' | 'createdBy' | 'removedAt' | 'referralId' | 'studyId'>): Promise<UploadView> {
+type Kept = Pick<Upload, 'storedName' | 'originalName' | 'mediaType' | 'byteCount' | 'sha256' | 'letterId'>
+
+/** Whoever sends a file is signed in, or holds the link of a letter that is open. */
+async function insertUpload(context: ServiceContext, trx: Trx, place: UploadPlace, file: Kept): Promise<UploadView> {
   const createdBy = context.actor.userId
-  if (!createdBy) throw new DomainError('not-signed-in')
+  if (!createdBy && !file.letterId) throw new DomainError('not-signed-in')
   const owner = await openOwner(trx, place)
   const { count } = await trx.selectFrom('upload').select(eb => eb.fn.countAll<number>().as('count')).where(owner.subject === 'study' ? 'studyId' : 'referralId', '=', owner.id).where('removedAt', 'is', null).executeTakeFirstOrThrow()
   if (count >= MOST_FILES) throw new DomainError('not-valid', { fields: [{ path: 'file', message: `A ${owner.subject} holds at most ${MOST_FILES} files.` }] })
@@ -74,14 +77,14 @@ async function insertUpload(context: ServiceContext, trx: Trx, place: UploadPlac
  * Keeps one letter or picture with a referral or a study: checked by content, sealed, under a random name.
  * @throws DomainError 'too-large', 'wrong-file-type', 'no-space' (from the disk), 'wrong-state'
  */
-export async function storeUpload(context: ServiceContext, { name, bytes, ...place }: UploadPlace & { name: string, bytes: Uint8Array }): Promise<UploadView> {
+export async function storeUpload(context: ServiceContext, { name, bytes, letterId = null, ...place }: UploadPlace & { name: string, bytes: Uint8Array, /** the letter whose link it came by */ letterId?: string | null }): Promise<UploadView> {
   await openOwner(context.db, place)
   const checked = await checkUpload(bytes)
   const storedName = randomBytes(24).toString('hex')
   await writeSealed(context, storedName, checked.bytes)
   try {
     return await context.db.transaction().execute(trx => insertUpload(context, trx, place, {
-      storedName, originalName: safeName(name, checked.extension), mediaType: checked.mediaType, byteCount: checked.bytes.length, sha256: sha256Hex(checked.bytes),
+      storedName, originalName: safeName(name, checked.extension), mediaType: checked.mediaType, byteCount: checked.bytes.length, sha256: sha256Hex(checked.bytes), letterId,
     }))
   }
   catch (error) {

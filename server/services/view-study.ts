@@ -2,6 +2,7 @@ import type { Database } from '#server/database/connection'
 import { cautionAnswers, patientBand, routeOf } from '#server/database/queries/bands'
 import { equipmentAt } from '#server/database/queries/equipment'
 import { uploadsOf } from '#server/database/queries/referrals'
+import { roomNames } from '#server/database/queries/site-calendar'
 import { studyAround } from '#server/database/queries/study-around'
 import { DomainError } from '#shared/errors'
 import type { Confirmation, StudyView } from '#shared/schemas/bench'
@@ -30,9 +31,8 @@ async function referralPart(db: Database, referralId: string): Promise<StudyView
 }
 
 async function choicesAt(db: Database, { siteId, studyDate }: AssessedStudy['record']): Promise<BenchChoices> {
-  const site = await db.selectFrom('site').select('roomsJson').where('id', '=', siteId).executeTakeFirstOrThrow()
-  const [supervisors, equipment] = await Promise.all([peopleWho(db, 'report.sign', siteId, studyDate), equipmentAt(db, siteId)])
-  return { rooms: JSON.parse(site.roomsJson) as string[], supervisors, equipment: equipment.filter(each => !each.retired) }
+  const [rooms, supervisors, equipment] = await Promise.all([roomNames(db, [siteId]), peopleWho(db, 'report.sign', siteId, studyDate), equipmentAt(db, siteId)])
+  return { rooms: rooms.get(siteId) ?? [], supervisors, equipment: equipment.filter(each => !each.retired) }
 }
 
 /**

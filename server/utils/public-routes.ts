@@ -11,6 +11,9 @@ const publicRoutes: readonly { methods: readonly string[], path: RegExp }[] = [
   { methods: ['POST'], path: /^\/api\/forgotten-password$/ },
   { methods: ['GET', 'POST'], path: /^\/api\/acknowledge\/[^/]+$/ },
   { methods: ['POST'], path: /^\/api\/acknowledge\/[^/]+\/(?:collect|reply|ask-link)$/ },
+  { methods: ['POST'], path: /^\/api\/acknowledge\/[^/]+\/collect$/ },
+  { methods: ['GET'], path: /^\/api\/letters\/[^/]+$/ },
+  { methods: ['POST'], path: /^\/api\/letters\/[^/]+\/(?:open|answer|uploads)$/ },
 ]
 
 /** @param path without the query */

@@ -1,6 +1,10 @@
 import * as z from 'zod'
 import { isoDateSchema, limitSexes, pageQuerySchema, type LimitSex } from './common'
 
+/** '' or one plain mailbox: appointments go there, so it has to be one that a mail can be sent to. */
+const patientEmail = z.union([z.literal(''), z.string().trim().max(200).regex(/^[^\s<>,;:"()[\]\\@]+@[^\s<>,;:"()[\]\\@]+\.[^\s<>,;:"()[\]\\@]+$/, 'Enter an e-mail address, for example name@mail.example.')])
+export const mailConsents = ['yes', 'no', 'not-asked'] as const
+
 export const patientSchema = z.object({
   familyName: z.string().trim().min(1, 'Enter the family name.').max(80),
   givenName: z.string().trim().min(1, 'Enter the given name.').max(80),
@@ -11,6 +15,9 @@ export const patientSchema = z.object({
   /** A number from elsewhere (national, insurance). */
   identifier: z.string().trim().max(40).default(''),
   phone: z.string().trim().max(40).default(''),
+  email: patientEmail.default(''),
+  /** May date and place of appointments be mailed there? Nothing medical ever is. */
+  mailConsent: z.enum(mailConsents).default('not-asked'),
   interpreter: z.string().trim().max(80).default(''),
 })
 export type PatientInput = z.infer<typeof patientSchema>
@@ -25,6 +32,8 @@ export const changePatientSchema = z.object({
   gender: z.string().trim().max(40).optional(),
   identifier: z.string().trim().max(40).optional(),
   phone: z.string().trim().max(40).optional(),
+  email: patientEmail.optional(),
+  mailConsent: z.enum(mailConsents).optional(),
   interpreter: z.string().trim().max(80).optional(),
 })
 export type PatientChange = z.infer<typeof changePatientSchema>

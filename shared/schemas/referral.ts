@@ -1,6 +1,7 @@
 import * as z from 'zod'
 import { reportLanguages } from '../report/languages'
 import { referralSides } from './common'
+import type { ReferralLetterView } from './letter'
 import type { PatientBand, PatientView } from './patient'
 import type { ReferralState, StudyState, ReportStatus, DeliveryState } from '../states'
 
@@ -74,7 +75,9 @@ export function missingForBooking(referral: ReferralInput): { path: string, mess
   return missing
 }
 
-export const acceptReferralSchema = z.object({ protocol: z.string().min(1, 'Choose a protocol.').max(80), urgency: z.enum(urgencies).optional() })
+export const acceptReferralSchema = z.object({ protocol: z.string().min(1, 'Choose a protocol.').max(80), urgency: z.enum(urgencies).optional(), /** needed when the urgency is another than was asked */ urgencyReason: z.string().trim().max(300).optional() })
+/** POST /api/referrals/:id/urgency */
+export const urgencySchema = z.object({ urgency: z.enum(urgencies), reason: z.string().trim().min(3, 'Give the reason.').max(300) })
 export const reasonSchema = z.object({ reason: z.string().trim().min(3, 'Give the reason.').max(500) })
 export const bookingSchema = z.object({
   siteId: z.string().min(1, 'Choose the site.'),
@@ -84,6 +87,10 @@ export const bookingSchema = z.object({
   date: z.iso.date('Enter the date as year-month-day, for example 2026-03-09.'),
   time: z.string().regex(/^([01]\d|2[0-3]):[0-5]\d$/, 'Enter the time as hours and minutes, for example 14:30.'),
   minutes: z.coerce.number().int().min(10).max(240).default(60),
+  /** Said on purpose: the site does not work at that time. */
+  outsideHours: z.boolean().optional(),
+  /** Why a booking moves; it stands in the history. */
+  reason: z.string().trim().max(300).optional(),
 })
 export type BookingInput = z.infer<typeof bookingSchema>
 
@@ -112,6 +119,11 @@ export interface ReferralRow {
   nextStep: string
   studyId: string | null
   bookingStartsAt: string | null
+  ownerName: string | null
+  /** What was asked came back and nobody noted it yet. */
+  cameBack: boolean
+  /** Past its hours by the organisation's clocks; null where none runs. */
+  dueAt: string | null
 }
 export interface ReferralView extends ReferralInput {
   id: string
@@ -132,6 +144,10 @@ export interface ReferralView extends ReferralInput {
   booking: BookingView | null
   study: { id: string, number: string, state: StudyState } | null
   report: { id: string, status: ReportStatus, version: number } | null
+  owner: { id: string, name: string } | null
+  letters: ReferralLetterView[]
+  dueAt: string | null
+  receivedAt: string | null
   deliveries: { id: string, state: DeliveryState, recipient: string }[]
   route: RouteNode[]
   history: { at: string, by: string, from: string | null, to: string, reason: string }[]

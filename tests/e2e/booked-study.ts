@@ -26,7 +26,7 @@ export async function bookStudy(app: App, { protocol, side, familyName, question
   await call(`/api/referrals/${id}/receive`, {})
   await call(`/api/referrals/${id}/accept`, { protocol })
   const date = new Intl.DateTimeFormat('en-CA', { timeZone: site.timeZone }).format(new Date())
-  await call(`/api/referrals/${id}/book`, { siteId: site.id, room: 'Room 2', date, time, minutes: 30 })
+  await call(`/api/referrals/${id}/book`, { siteId: site.id, room: 'Room 2', date, time, minutes: 30, outsideHours: true })
   await context.close()
   return { referralId: id, patientName: `${familyName}, Tove` }
 }

@@ -15,7 +15,7 @@ interface Wish { practice: string, physician: string, copyTo: string }
 /** People, sites and one physician of the demonstration, as its generator needs them. */
 async function organisationOf(services: Awaited<ReturnType<typeof openServices>>, app: App, { practice, physician }: Wish): Promise<Organisation> {
   const { db } = services
-  const sites = (await db.selectFrom('site').select(['id', 'name', 'roomsJson', 'timeZone']).where('name', '=', 'Harrowmere Clinic').execute()).map(({ roomsJson, ...site }) => ({ ...site, rooms: JSON.parse(roomsJson) as string[] }))
+  const sites = (await db.selectFrom('site').select(['id', 'name', 'timeZone']).where('name', '=', 'Harrowmere Clinic').execute()).map(site => ({ ...site, rooms: ['Room 1', 'Room 2'] }))
   const people: DemoPerson[] = []
   for (const role of ['technologist', 'neurologist', 'administrator'] as const) {
     const { id } = await db.selectFrom('user').select('id').where('email', '=', app.person(role).email).executeTakeFirstOrThrow()

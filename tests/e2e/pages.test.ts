@@ -24,6 +24,7 @@ const addresses: Record<string, (ask: Ask) => Promise<string[]>> = {
   'index.vue': async () => ['/'],
   'profile.vue': async () => ['/profile'],
   'intake/index.vue': async () => ['/intake', '/intake?state=all'],
+  'intake/week.vue': async () => ['/intake/week', '/intake/week?by=technologist'],
   'intake/new.vue': async () => ['/intake/new'],
   'intake/[id].vue': async ask => one((await ask<Rows<{ id: string, state: string }>>('/api/referrals?pageSize=100')).rows, row => row.state).filter(row => ['draft', 'received', 'accepted', 'answered'].includes(row.state)).map(row => `/intake/${row.id}`),
   'patients/[id].vue': async ask => one((await ask<Rows<{ id: string }>>('/api/patients?pageSize=3')).rows).map(row => `/patients/${row.id}`),
@@ -83,6 +84,7 @@ const addresses: Record<string, (ask: Ask) => Promise<string[]>> = {
   'first-run.vue': async () => ['/first-run'],
   'set-password.vue': async () => ['/set-password?token=none'],
   'acknowledge/[token].vue': async () => ['/acknowledge/none'],
+  'complete/[token].vue': async () => ['/complete/none-that-is-known-here'],
 }
 
 const files = readdirSync('app/pages', { recursive: true, encoding: 'utf8' }).filter(name => name.endsWith('.vue')).sort()

@@ -82,6 +82,7 @@ it('completes it with a letter, accepts it with a protocol and books it for toda
   await booking.getByLabel('Room').selectOption('Room 2')
   await booking.getByLabel('Time').fill('23:00')
   await booking.getByLabel('Length').fill('45')
+  await booking.getByLabel('Outside working hours on purpose').check()
   await button(page, /^Book/).click()
   await page.getByText('Booked', { exact: true }).waitFor()
   await expectNoAxeFindings(page)

@@ -161,7 +161,7 @@ describe('what closes the desk', () => {
 })
 
 describe('every other room', () => {
-  const open = /^\/api\/(?:desk|profile|me$|health$|acknowledge|first-run$|set-password$|forgotten-password$)/
+  const open = /^\/api\/(?:desk|profile|me$|health$|acknowledge|letters|first-run$|set-password$|forgotten-password$)/
   it.each(routes.filter(route => !open.test(route.path)))('$method $path is refused', async ({ method, path }) => {
     const address = path.replaceAll(/:\w+/g, mine.reportId)
     const answer = await call(method.toUpperCase(), address, { cookie: own!.cookie, body: method === 'get' ? undefined : {} })

@@ -12,6 +12,7 @@ import { auditSentence } from '#shared/audit-events'
 import { reportBlocks } from '#shared/report/index'
 import type { ReportSnapshot } from '#shared/schemas/report'
 import { fillFolder } from '../../scripts/fill/fill-folder'
+import { policies } from '#shared/policies/index'
 import { clinic } from './bench-helpers'
 import { TEST_NOW, testContext } from './helpers'
 
@@ -37,7 +38,7 @@ describe('a filled demonstration', async () => {
   await fill()
 
   it('holds so many finished studies more, and the worklist counts them', async () => {
-    const page = await listReferrals(t.db, { siteIds: [c.site.id], states: [], search: '', sort: 'number', direction: 'asc', page: 1, pageSize: 50 })
+    const page = await listReferrals(t.db, { siteIds: [c.site.id], states: [], search: '', sort: 'number', direction: 'asc', page: 1, pageSize: 50, clocks: policies.clocks.initial, now: new Date('2026-12-02T09:00:00Z') })
     expect(page).toMatchObject({ total: STUDIES + BEFORE, counts: { answered: STUDIES, accepted: BEFORE } })
     expect(page.rows).toHaveLength(50)
   })

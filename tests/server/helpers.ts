@@ -79,7 +79,9 @@ function makers(context: ServiceContext) {
   async function makeSite(changes: Partial<NewSite> = {}): Promise<Site> {
     const organisationId = await makeOrganisation()
     const n = next()
-    return await db.insertInto('site').values({ id: randomUUID(), organisationId, name: `Site ${n}`, town: `Town ${n}`, timeZone: 'Europe/Prague', roomsJson: JSON.stringify(['Room 1', 'Room 2']), createdAt, closedAt: null, ...changes }).returningAll().executeTakeFirstOrThrow()
+    const site = await db.insertInto('site').values({ id: randomUUID(), organisationId, name: `Site ${n}`, town: `Town ${n}`, timeZone: 'Europe/Prague', createdAt, closedAt: null, ...changes }).returningAll().executeTakeFirstOrThrow()
+    for (const [position, name] of ['Room 1', 'Room 2'].entries()) await db.insertInto('siteRoom').values({ id: randomUUID(), siteId: site.id, name, position, closedAt: null }).execute()
+    return site
   }
 
   async function makeUser({ roles = [], ...changes }: Partial<NewUser> & { roles?: RoleWish[] } = {}): Promise<MadeUser> {
@@ -108,6 +110,11 @@ function makers(context: ServiceContext) {
     return await db.insertInto('physician').values({ id: randomUUID(), name: `Physician ${n}`, email: `physician${n}@practice.example`, emailVerifiedAt: createdAt, leftOn: null, userId: null, createdAt, ...changes, practiceId }).returningAll().executeTakeFirstOrThrow()
   }
 
+  /** Working hours for sites made here, which have none at first: without stated hours any time may be booked. */
+  async function makeHours(siteId: string, opensAt = '08:00', closesAt = '17:00', weekdays = [1, 2, 3, 4, 5]): Promise<void> {
+    for (const weekday of weekdays) await db.insertInto('siteHours').values({ siteId, weekday, opensAt, closesAt }).execute()
+  }
+
   /** A referral in any state; give `siteId` and `createdBy`, or a site and a person are made. */
   async function makeReferral(changes: Partial<NewReferral> = {}): Promise<Referral> {
     const siteId = changes.siteId ?? (await makeSite()).id
@@ -118,5 +125,5 @@ function makers(context: ServiceContext) {
     return await db.insertInto('referral').values({ id: randomUUID(), number, state: 'received', stateSince: createdAt, clinicalQuestion: 'Median nerve at the wrist?', side: 'right', protocol: null, receivedAt: createdAt, createdAt, ...changes, siteId, patientId, createdBy, physicianId }).returningAll().executeTakeFirstOrThrow()
   }
 
-  return { makeOrganisation, makeSite, makeUser, makePatient, makePractice, makePhysician, makeReferral }
+  return { makeOrganisation, makeSite, makeHours, makeUser, makePatient, makePractice, makePhysician, makeReferral }
 }

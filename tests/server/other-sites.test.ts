@@ -9,7 +9,7 @@ import { cookieFor, routeFiles, serve } from './http'
 /** A person of one site asks for everything of another: nothing is there, and nothing is changed. */
 const t = await testContext()
 const [own, theirs] = [await clinic(t), await clinic(t)]
-const mine = /^\/api\/(?:patients|referrals|uploads|bookings|studies|bench|search|shelf)/
+const mine = /^\/api\/(?:patients|referrals|uploads|bookings|studies|bench|search|shelf|sites)/
 const routes = await Promise.all(routeFiles().filter(route => mine.test(route.path)).map(async route => ({ ...route, handler: (await import(/* @vite-ignore */ route.file) as { default: EventHandler }).default })))
 const { call } = serve(t, routes)
 
@@ -27,9 +27,13 @@ const form = await theirs.complete({ patientId: patient.id })
 const everything: [string, string, unknown?][] = [
   ['GET', `/api/referrals/${referral}`], ['PUT', `/api/referrals/${referral}`, { ...form, revision: 1 }], ['POST', '/api/referrals', form],
   ['POST', `/api/referrals/${referral}/receive`, {}], ['POST', `/api/referrals/${referral}/accept`, { protocol: 'carpal-tunnel' }],
-  ['POST', `/api/referrals/${referral}/return`, reason], ['POST', `/api/referrals/${referral}/decline`, reason], ['POST', `/api/referrals/${referral}/cancel`, reason],
+  ['POST', `/api/referrals/${referral}/return`, { reasons: ['side'] }], ['POST', `/api/referrals/${referral}/decline`, reason], ['POST', `/api/referrals/${referral}/cancel`, reason],
   ['POST', `/api/referrals/${referral}/book`, own.slot()], ['POST', `/api/referrals/${referral}/not-attended`, reason],
   ['POST', `/api/referrals/${referral}/arrive`, {}], ['POST', `/api/referrals/${referral}/start`, {}], ['POST', `/api/referrals/${referral}/uploads`, {}],
+  ['POST', `/api/referrals/${referral}/remind`, {}], ['POST', `/api/referrals/${referral}/urgency`, { urgency: 'urgent', ...reason }], ['POST', `/api/referrals/${referral}/owner`, { ownerId: null }], ['POST', `/api/referrals/${referral}/answer-seen`, {}],
+  ['GET', `/api/bookings/week?siteId=${theirs.site.id}`], ['GET', `/api/bookings/first-free?siteId=${theirs.site.id}&referralId=${referral}`],
+  ['GET', `/api/sites/${theirs.site.id}/calendar`], ['PUT', `/api/sites/${theirs.site.id}/rooms`, { rooms: [{ name: 'X' }] }], ['PUT', `/api/sites/${theirs.site.id}/hours`, { hours: [] }],
+  ['POST', `/api/sites/${theirs.site.id}/closed-days`, { day: '2026-12-24', reason: 'holiday' }], ['DELETE', `/api/sites/${theirs.site.id}/closed-days/2026-12-24`],
   ['GET', `/api/uploads/${upload}`], ['DELETE', `/api/uploads/${upload}`],
   ['GET', `/api/bookings/free?siteId=${theirs.site.id}&date=2026-12-03`], ['GET', `/api/bench?siteId=${theirs.site.id}`],
   ['GET', `/api/studies/${study}`], ['POST', `/api/studies/${study}/confirm`, { identifiers: ['name', 'birth-date'], side: 'right', cautionsRead: true }],

@@ -5,12 +5,14 @@ import { listReferrals, referralSorts, type ReferralListQuery } from '#server/da
 import { urgencies } from '#shared/schemas/referral'
 import { referralStates } from '#shared/states'
 import { cancelReferral } from '#server/services/move-referral'
+import { policies } from '#shared/policies/index'
+import { dueOf } from '#shared/referral-clocks'
 import { clinic } from './bench-helpers'
 import { testContext } from './helpers'
 
 const t = await testContext()
 const c = await clinic(t)
-const list = (changes: Partial<ReferralListQuery> = {}) => listReferrals(t.db, { siteIds: [c.site.id], states: [], search: '', sort: 'stateSince', direction: 'asc', page: 1, pageSize: 50, ...changes })
+const list = (changes: Partial<ReferralListQuery> = {}) => listReferrals(t.db, { siteIds: [c.site.id], states: [], search: '', sort: 'stateSince', direction: 'asc', page: 1, pageSize: 50, clocks: policies.clocks.initial, now: new Date('2026-12-02T09:00:00Z'), ...changes })
 
 describe('a small list', () => {
   it('filters, counts, sorts and says what to do next', async () => {
@@ -64,6 +66,30 @@ describe('a long list', () => {
     const seen = new Set<string>()
     for (const page of [1, 2, 3]) for (const row of (await list({ siteIds: [siteIds[0]!], states: ['answered', 'booked'], sort, page, pageSize: 200 })).rows) seen.add(row.id)
     expect(seen.size).toBe(600)
+  })
+  it('past their clock: the same as asking each by itself', async () => {
+    const now = new Date('2020-01-06T00:00:00Z')
+    const rows = await t.db.selectFrom('referral').select(['id', 'state', 'urgency', 'stateSince']).where('siteId', 'in', siteIds).execute()
+    const late = rows.filter((row) => {
+      const due = dueOf(row, policies.clocks.initial)
+      return due !== null && due < now.toISOString()
+    })
+    expect(late.length).toBeGreaterThan(100)
+    expect(late.length).toBeLessThan(rows.length / 2)
+    const found = await list({ siteIds, overdue: true, now, pageSize: 200 })
+    expect([found.total, found.overdue]).toEqual([late.length, late.length])
+    expect(found.rows.every(row => late.some(one => one.id === row.id))).toBe(true)
+    const urgentReceived = late.filter(row => row.state === 'received' && row.urgency === 'urgent').length
+    expect((await list({ siteIds, overdue: true, now, states: ['received'], urgency: 'urgent' })).total).toBe(urgentReceived)
+    expect((await list({ siteIds, overdue: true, now, states: ['answered'] })).total).toBe(0)
+  })
+  it('those of one person', async () => {
+    const owner = await t.makeUser()
+    const some = await t.db.selectFrom('referral').select('id').where('siteId', '=', siteIds[0]!).where('state', '=', 'received').limit(7).execute()
+    await t.db.updateTable('referral').set({ ownerId: owner.id }).where('id', 'in', some.map(row => row.id)).execute()
+    const found = await list({ siteIds, ownerId: owner.id })
+    expect(found.rows.map(row => [row.id, row.ownerName]).toSorted()).toEqual(some.map(row => [row.id, owner.name]).toSorted())
+    expect((await list({ siteIds: [siteIds[1]!], ownerId: owner.id })).total).toBe(0)
   })
   it('counts follow every change', async () => {
     const counts = async () => (await list({ siteIds })).counts

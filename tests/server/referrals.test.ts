@@ -76,7 +76,7 @@ describe('the way of a referral', () => {
   it('draft, received, returned, received, accepted, booked, did not attend, booked, with everything in history and trail', async () => {
     const id = await c.draft()
     await receiveReferral(c.admin, { id })
-    await returnReferral(c.neurologist, { id, reason: 'Which hand?' })
+    await returnReferral(c.neurologist, { id, reasons: ['other'], note: 'Which hand?' })
     await receiveReferral(c.admin, { id })
     await acceptReferral(c.neurologist, { id, protocol: 'carpal-tunnel', urgency: 'routine' })
     await bookReferral(c.admin, { id, ...c.slot({ time: '08:00' }) })
@@ -84,14 +84,14 @@ describe('the way of a referral', () => {
     await bookReferral(c.admin, { id, ...c.slot({ time: '08:30' }) })
     const seen = await view(id)
     expect(seen.history.map(change => change.to)).toEqual(['draft', 'received', 'returned', 'received', 'accepted', 'booked', 'did-not-attend', 'booked'])
-    expect(await eventNames(t, id)).toEqual(['referral.added', 'referral.received', 'referral.returned', 'referral.received', 'referral.accepted', 'referral.booked', 'referral.not-attended', 'referral.booked'])
+    expect(await eventNames(t, id)).toEqual(['referral.added', 'referral.received', 'referral.returned', 'letter.mailed', 'referral.received', 'referral.accepted', 'referral.booked', 'referral.not-attended', 'referral.booked'])
     expect(seen.route[0]).toMatchObject({ id: 'intake', state: 'here', words: 'booked', wentBack: [{ reason: 'Which hand?' }, { reason: 'did not come' }] })
     expect(seen.route.slice(1).map(node => node.state)).toEqual(['ahead', 'ahead', 'ahead'])
   })
   it.each([
     ['accept a draft', (id: string) => acceptReferral(c.neurologist, { id, protocol: 'carpal-tunnel' })],
     ['book a draft', (id: string) => bookReferral(c.admin, { id, ...c.slot() })],
-    ['return a draft', (id: string) => returnReferral(c.neurologist, { id, reason: 'why' })],
+    ['return a draft', (id: string) => returnReferral(c.neurologist, { id, reasons: ['side'], note: '' })],
     ['miss an appointment nobody made', (id: string) => noteNotAttended(c.admin, { id, reason: 'why' })],
   ])('does not let anyone %s, and writes nothing', async (_what, step) => {
     const id = await c.draft()

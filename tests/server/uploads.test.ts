@@ -1,4 +1,5 @@
 import { createServer, type Server } from 'node:http'
+import { deflateSync } from 'node:zlib'
 import { readdirSync, readFileSync } from 'node:fs'
 import { join } from 'node:path'
 import type { AddressInfo } from 'node:net'
@@ -21,6 +22,8 @@ const c = await clinic(t)
 const referral = await c.draft()
 const cookie = await cookieFor(t, c.technologistUser)
 const pdf = (inside = '', pages = 1) => Buffer.from(`%PDF-1.4\n1 0 obj<</Type /Pages /Count ${pages} /Kids []>>endobj\n2 0 obj<</Type /Page ${inside}>>endobj\ntrailer<<>>\n%%EOF\n`)
+/** Objects that stand packed in an object stream, as most programs write them today. */
+const packed = (inside: string, { name = 'ObjStm', data = deflateSync(Buffer.from(inside)) } = {}) => Buffer.concat([Buffer.from(`%PDF-1.5\n3 0 obj<</Type /${name} /Filter /FlateDecode /Length ${data.length}>>stream\r\n`), data, Buffer.from('\r\nendstream endobj\n%%EOF\n')])
 const picture = (format: 'png' | 'jpeg', width = 40, height = 20) => sharp({ create: { width, height, channels: 3, background: '#888888' } }).withExif({ IFD0: { Artist: 'SECRET-ARTIST' } })[format]().toBuffer()
 
 let server: Server
@@ -52,6 +55,9 @@ const stored = () => {
 }
 
 describe('a file is what its bytes are, not what its name says', () => {
+  it('a PDF with packed objects is kept when nothing in them forbids it', async () => {
+    expect((await send(packed('<</Type /Pages /Count 2>>'), 'packed.pdf')).status).toBe(200)
+  })
   it('a PDF named .png is kept as a PDF', async () => {
     const answer = await send(pdf(), 'scan.png', 'image/png')
     expect(answer).toMatchObject({ status: 200, body: { mediaType: 'application/pdf', originalName: 'scan.pdf' } })
@@ -65,6 +71,12 @@ describe('a file is what its bytes are, not what its name says', () => {
     { name: 'letter.pdf', bytes: pdf('/OpenAction <</S /JavaScript /JS (app.alert(1))>>') },
     { name: 'letter.pdf', bytes: pdf('/AA <</S /Launch>>') },
     { name: 'letter.pdf', bytes: pdf('', 5000) },
+    { name: 'packed-program.pdf', bytes: packed('<</S /JavaScript /JS (app.alert(1))>>') },
+    { name: 'packed-pages.pdf', bytes: packed('<</Type /Pages /Count 5000>>') },
+    { name: 'packed-file.pdf', bytes: packed('<</Names /EmbeddedFiles>>') },
+    { name: 'packed-unreadable.pdf', bytes: packed('', { data: Buffer.from('encrypted, not deflated') }) },
+    { name: 'packed-bomb.pdf', bytes: packed('', { data: deflateSync(Buffer.alloc(40 * 1024 * 1024)) }) },
+    { name: 'packed-under-another-name.pdf', bytes: packed('<</S /JavaScript>>', { name: 'Obj#53tm' }) },
     { name: 'letter.png', bytes: Buffer.from('89504e470d0a1a0a0000000d49484452000000010000000108060000001f15c489', 'hex') },
   ])('refuses $name that begins with $bytes.length bytes of something else, and keeps nothing', async ({ name, bytes }) => {
     const before = stored().length

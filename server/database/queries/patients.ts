@@ -6,8 +6,8 @@ import type { Patient } from '../tables/patient'
 import { foldWords, patientWords } from './patient-words'
 
 export function patientView(row: Patient): PatientView {
-  const { id, recordNumber, familyName, givenName, birthDate, sexForLimits, gender, identifier, phone, interpreter, revision } = row
-  return { id, recordNumber, familyName, givenName, birthDate, sexForLimits, gender, identifier, phone, interpreter, revision }
+  const { id, recordNumber, familyName, givenName, birthDate, sexForLimits, gender, identifier, phone, email, mailConsent, interpreter, revision } = row
+  return { id, recordNumber, familyName, givenName, birthDate, sexForLimits, gender, identifier, phone, email, mailConsent, interpreter, revision }
 }
 
 export async function patientById(db: Database, id: string): Promise<PatientView | undefined> {

@@ -1,9 +1,12 @@
 import { sql, type RawBuilder } from 'kysely'
 import { nextStep } from '#shared/next-step'
 import type { Page } from '#shared/schemas/common'
+import type { Clocks } from '#shared/policies/clocks'
+import { clockOfState, dueOf } from '#shared/referral-clocks'
 import { missingForBooking, urgencies, type ReferralRow, type Urgency } from '#shared/schemas/referral'
 import { referralStates, type ReferralState, type StudyState } from '#shared/states'
 import type { Database } from '../connection'
+import { cameBack } from './letters'
 import { patientWords } from './patient-words'
 import { referralInputOf } from './referrals'
 
@@ -13,13 +16,20 @@ export interface ReferralListQuery {
   siteIds: readonly string[]
   states: readonly ReferralState[]
   urgency?: Urgency
+  /** Only those of this person, past their clock, or with something that came back. */
+  ownerId?: string
+  overdue?: boolean
+  cameBack?: boolean
+  /** The organisation's clocks and the moment that they are read at. */
+  clocks: Clocks
+  now: Date
   search: string
   sort: (typeof referralSorts)[number]
   direction: 'asc' | 'desc'
   page: number
   pageSize: number
 }
-export type ReferralPage = Page<ReferralRow> & { counts: Record<ReferralState, number> }
+export type ReferralPage = Page<ReferralRow> & { counts: Record<ReferralState, number>, /** of those that are counted: past their clock, something came back */ overdue: number, cameBack: number }
 interface Group { siteId: string, state: string, urgency: string, n: number }
 
 /** Up to so many matching referrals are sorted as they are; more are read in the order of an index. */
@@ -33,9 +43,10 @@ export async function listReferrals(db: Database, query: ReferralListQuery): Pro
   const groups = await db.selectFrom('referralCount').selectAll().where('siteId', 'in', query.siteIds).where('n', '>', 0)
     .$if(query.urgency !== undefined, counts => counts.where('urgency', '=', query.urgency ?? '')).execute()
   const wanted = query.states.length ? groups.filter(group => query.states.includes(group.state as ReferralState)) : groups
-  const found = query.search.trim() === '' ? await pageOfGroups(db, query, wanted) : await pageOfSearch(db, query)
+  const narrowed = query.ownerId !== undefined || query.overdue || query.cameBack
+  const found = query.search.trim() !== '' ? await pageOfSearch(db, query) : narrowed ? await pageNarrowed(db, query) : await pageOfGroups(db, query, wanted)
   const counts = Object.fromEntries(referralStates.map(state => [state, sum(groups.filter(group => group.state === state))])) as Record<ReferralState, number>
-  return { rows: await rowsOf(db, found.ids), total: found.total, page: query.page, pageSize: query.pageSize, counts }
+  return { ...await marksOf(db, query), rows: await rowsOf(db, found.ids, query), total: found.total, page: query.page, pageSize: query.pageSize, counts }
 }
 
 const sum = (groups: Group[]) => groups.reduce((total, group) => total + group.n, 0)
@@ -62,9 +73,38 @@ const inList = (values: readonly string[]) => sql`(${sql.join(values.map(value =
 
 /** `plus` is SQLite's way of saying "not by an index of this column": where the order or a search finds the rows. */
 function filterOf(query: ReferralListQuery, plus: RawBuilder<unknown>): RawBuilder<unknown> {
-  const states = query.states.length ? query.states : referralStates
+  const states = (query.states.length ? query.states : referralStates).filter(state => !query.overdue || clockOfState[state])
   const wanted = query.urgency ? [query.urgency] : urgencies
-  return sql`${plus}referral.site_id IN ${inList(query.siteIds)} AND ${plus}referral.state IN ${inList(states)} AND ${plus}referral.urgency IN ${inList(wanted)}`
+  return sql`${plus}referral.site_id IN ${inList(query.siteIds)} AND ${plus}referral.state IN ${inList(states)} AND ${plus}referral.urgency IN ${inList(wanted)}${alsoOf(query)}`
+}
+
+/** Past its clock: one condition for each state and urgency that has one. */
+function overdueOf({ clocks, now }: ReferralListQuery): RawBuilder<unknown> {
+  const parts = referralStates.flatMap((state) => {
+    const clock = clockOfState[state]
+    return clock ? urgencies.map(urgency => sql`(referral.state = ${state} AND referral.urgency = ${urgency} AND referral.state_since < ${new Date(now.getTime() - clocks[clock][urgency] * 3_600_000).toISOString()})`) : []
+  })
+  return sql`(${sql.join(parts, sql` OR `)})`
+}
+
+function alsoOf(query: ReferralListQuery): RawBuilder<unknown> {
+  const owner = query.ownerId === undefined ? sql`` : sql` AND referral.owner_id = ${query.ownerId}`
+  return sql`${owner}${query.overdue ? sql` AND ${overdueOf(query)}` : sql``}${query.cameBack ? sql` AND ${cameBack}` : sql``}`
+}
+
+/** A few of all: counted and sorted as they are. */
+async function pageNarrowed(db: Database, query: ReferralListQuery): Promise<Found> {
+  const filter = filterOf(query, sql``)
+  const { rows: [counted] } = await sql<{ total: number }>`SELECT count(*) AS total FROM referral WHERE ${filter}`.execute(db)
+  return { ids: idsOf(await select(query, fromReferral, filter).execute(db)), total: counted?.total ?? 0 }
+}
+
+/** How many of those the person may see are past their clock, and where something came back. */
+async function marksOf(db: Database, query: ReferralListQuery): Promise<{ overdue: number, cameBack: number }> {
+  const all = { ...query, states: [], ownerId: undefined, cameBack: false }
+  const { rows: [late] } = await sql<{ n: number }>`SELECT count(*) AS n FROM referral WHERE ${filterOf({ ...all, overdue: true }, sql``)}`.execute(db)
+  const { rows: [back] } = await sql<{ n: number }>`SELECT count(DISTINCT referral.id) AS n FROM referrer_letter CROSS JOIN referral ON referral.id = referrer_letter.referral_id WHERE referrer_letter.closed_because = 'answered' AND referrer_letter.seen_at IS NULL AND ${filterOf({ ...all, overdue: false }, sql`+`)}`.execute(db)
+  return { overdue: late?.n ?? 0, cameBack: back?.n ?? 0 }
 }
 
 const fromReferral = sql`FROM referral CROSS JOIN patient ON patient.id = referral.patient_id CROSS JOIN site ON site.id = referral.site_id`
@@ -140,19 +180,20 @@ async function pageOfSearch(db: Database, query: ReferralListQuery): Promise<Fou
   return { ids: idsOf(await select(query, from, filter).execute(db)), total: counted?.total ?? 0 }
 }
 
-async function rowsOf(db: Database, ids: string[]): Promise<ReferralRow[]> {
-  const rows = await db.selectFrom('referral').innerJoin('patient', 'patient.id', 'referral.patientId').innerJoin('site', 'site.id', 'referral.siteId').leftJoin('physician', 'physician.id', 'referral.physicianId')
-    .selectAll('referral').select(['familyName', 'givenName', 'birthDate', 'recordNumber', 'site.name as siteName', 'physician.name as physicianName'])
+async function rowsOf(db: Database, ids: string[], { clocks, now }: Pick<ReferralListQuery, 'clocks' | 'now'>): Promise<ReferralRow[]> {
+  const rows = await db.selectFrom('referral').innerJoin('patient', 'patient.id', 'referral.patientId').innerJoin('site', 'site.id', 'referral.siteId').leftJoin('physician', 'physician.id', 'referral.physicianId').leftJoin('user as owner', 'owner.id', 'referral.ownerId')
+    .selectAll('referral').select(['familyName', 'givenName', 'birthDate', 'recordNumber', 'site.name as siteName', 'physician.name as physicianName', 'owner.name as ownerName'])
     .select([
+      cameBack.as('cameBack'),
       sql<string | null>`(SELECT id FROM study WHERE study.referral_id = referral.id AND study.state <> 'entered-in-error' ORDER BY created_at DESC LIMIT 1)`.as('studyId'),
       sql<StudyState | null>`(SELECT state FROM study WHERE study.referral_id = referral.id AND study.state <> 'entered-in-error' ORDER BY created_at DESC LIMIT 1)`.as('studyState'),
     ])
     .where('referral.id', 'in', ids).execute()
   const byId = new Map(rows.map(row => [row.id, row]))
-  return ids.flatMap(id => byId.get(id) ?? []).map(row => ({
+  return ids.flatMap(id => byId.get(id) ?? []).map(row => ({ ...row, cameBack: row.cameBack === 1, dueAt: dueOf(row, clocks) })).map(row => ({
     id: row.id, number: row.number, patientId: row.patientId, patientName: `${row.familyName}, ${row.givenName}`, birthDate: row.birthDate, recordNumber: row.recordNumber,
     siteId: row.siteId, siteName: row.siteName, physicianName: row.physicianName, state: row.state, stateSince: row.stateSince, urgency: row.urgency,
-    clinicalQuestion: row.clinicalQuestion, side: row.side, studyId: row.studyId, bookingStartsAt: row.bookingStartsAt,
-    nextStep: nextStep({ state: row.state, missing: missingForBooking(referralInputOf(row, [])), studyState: row.studyState }),
+    clinicalQuestion: row.clinicalQuestion, side: row.side, studyId: row.studyId, bookingStartsAt: row.bookingStartsAt, ownerName: row.ownerName, cameBack: row.cameBack, dueAt: row.dueAt,
+    nextStep: nextStep({ state: row.state, missing: missingForBooking(referralInputOf(row, [])), studyState: row.studyState, cameBack: row.cameBack, overdue: row.dueAt !== null && row.dueAt < now.toISOString() }),
   }))
 }

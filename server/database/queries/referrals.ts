@@ -2,7 +2,10 @@ import { missingForBooking, type BookingView, type ReferralInput, type ReferralV
 import type { Database } from '../connection'
 import type { Referral } from '../tables/referral'
 import { patientBand, routeOf } from './bands'
+import { dueOf } from '#shared/referral-clocks'
 import { physicianById } from './directory'
+import { lettersOf } from './letters'
+import { policyInForce } from './policies'
 import { patientById } from './patients'
 
 export async function siteOfReferral(db: Database, referralId: string): Promise<string | null> {
@@ -31,7 +34,8 @@ export function referralInputOf(row: Referral, copyPhysicianIds: string[]): Refe
 }
 
 export async function uploadsOf(db: Database, referralId: string): Promise<UploadView[]> {
-  return db.selectFrom('upload').innerJoin('user', 'user.id', 'upload.createdBy').select(['upload.id', 'originalName', 'mediaType', 'byteCount', 'upload.createdAt', 'user.name as createdBy'])
+  return db.selectFrom('upload').leftJoin('user', 'user.id', 'upload.createdBy').select(['upload.id', 'originalName', 'mediaType', 'byteCount', 'upload.createdAt'])
+    .select(eb => eb.fn.coalesce('user.name', eb.val('the referring practice')).as('createdBy'))
     .where('referralId', '=', referralId).where('removedAt', 'is', null).orderBy('upload.createdAt').execute()
 }
 
@@ -46,6 +50,10 @@ export async function bookingOf(db: Database, referralId: string): Promise<Booki
 async function physicianOf(db: Database, id: string | null, today: string): Promise<ReferralView['physician']> {
   const found = id === null ? undefined : await physicianById(db, id, today)
   return found ? { id: found.id, name: found.name, practiceName: found.practiceName, town: found.town, emailVerified: found.emailVerified } : null
+}
+
+async function ownerOf(db: Database, id: string | null): Promise<ReferralView['owner']> {
+  return id === null ? null : await db.selectFrom('user').select(['id', 'name']).where('id', '=', id).executeTakeFirst() ?? null
 }
 
 async function studyAndReport(db: Database, referralId: string): Promise<Pick<ReferralView, 'study' | 'report' | 'deliveries'>> {
@@ -70,13 +78,14 @@ export async function referralView(db: Database, referralId: string, today: stri
   if (!row) return undefined
   const input = referralInputOf(row, await copiesOf(db, referralId))
   const copyPhysicians = (await Promise.all(input.copyPhysicianIds.map(id => physicianOf(db, id, today)))).filter(copy => copy !== null)
-  const [patient, band, physician, uploads, booking, around, route, history] = await Promise.all([
+  const [patient, band, physician, uploads, booking, around, route, history, letters, clocks, owner] = await Promise.all([
     patientById(db, row.patientId), patientBand(db, referralId, today), physicianOf(db, row.physicianId, today), uploadsOf(db, referralId),
     bookingOf(db, referralId), studyAndReport(db, referralId), routeOf(db, referralId), historyOf(db, referralId),
+    lettersOf(db, referralId), policyInForce(db, 'clocks', row.siteId, today), ownerOf(db, row.ownerId),
   ])
   if (!patient || !band) return undefined
-  const { id, number, state, stateSince, stateReason, protocol, revision, createdAt } = row
-  return { ...input, id, number, state, stateSince, stateReason, protocol, revision, createdAt, patient, band, physician, copyPhysicians, missing: missingForBooking(input), uploads, booking, ...around, route, history }
+  const { id, number, state, stateSince, stateReason, protocol, revision, createdAt, receivedAt } = row
+  return { ...input, id, number, state, stateSince, stateReason, protocol, revision, createdAt, receivedAt, owner, letters, dueAt: dueOf(row, clocks.body), patient, band, physician, copyPhysicians, missing: missingForBooking(input), uploads, booking, ...around, route, history }
 }
 
 export async function siteOfUpload(db: Database, uploadId: string): Promise<string | null> {

@@ -2,8 +2,9 @@ import type { Database } from '#server/database/connection'
 import type { Site } from '#server/database/tables/site'
 import type { SiteBasics } from '#shared/schemas/user'
 
-export function siteBasics(site: Site): SiteBasics {
-  return { id: site.id, name: site.name, town: site.town, address: site.address, phone: site.phone, timeZone: site.timeZone, rooms: JSON.parse(site.roomsJson) as string[] }
+/** `rooms` are the names of those that are open (`roomNames`). */
+export function siteBasics(site: Site, rooms: string[]): SiteBasics {
+  return { id: site.id, name: site.name, town: site.town, address: site.address, phone: site.phone, timeZone: site.timeZone, rooms }
 }
 
 /** The open sites among these, by name. */

@@ -1,4 +1,5 @@
 import type { AbsenceTable } from './absence'
+import type { AppointmentTable } from './appointment'
 import type { AuditEventTable } from './audit-event'
 import type { BookingTable } from './booking'
 import type { BounceReportTable } from './bounce-report'
@@ -10,6 +11,7 @@ import type { LegalHoldTable } from './legal-hold'
 import type { DeliveryByHandTable } from './delivery-by-hand'
 import type { DeliveryReplyTable } from './delivery-reply'
 import type { IncidentTable } from './incident'
+import type { ListViewTable } from './list-view'
 import type { MetaTable } from './meta'
 import type { OneTimeLinkTable } from './one-time-link'
 import type { OrganisationTable } from './organisation'
@@ -24,11 +26,12 @@ import type { PracticeDelegateTable } from './practice-delegate'
 import type { PracticeTable } from './practice'
 import type { RecoveryCodeTable } from './recovery-code'
 import type { ReferenceAdoptionTable } from './reference-adoption'
+import type { ReferralTable } from './referral'
 import type { ReferralCopyTable } from './referral-copy'
 import type { ReferralCountTable } from './referral-count'
-import type { ReferralTable } from './referral'
-import type { ReportPdfTable } from './report-pdf'
+import type { ReferrerLetterTable } from './referrer-letter'
 import type { ReportTable } from './report'
+import type { ReportPdfTable } from './report-pdf'
 import type { ReportVersionTable } from './report-version'
 import type { ReportWriterTable } from './report-writer'
 import type { RoleHoldingTable } from './role-holding'
@@ -36,11 +39,15 @@ import type { RoleProposalTable } from './role-proposal'
 import type { RowCheckTable } from './row-check'
 import type { SessionTable } from './session'
 import type { SiteTable } from './site'
+import type { SiteClosedDayTable } from './site-closed-day'
+import type { SiteHoursTable } from './site-hours'
+import type { SiteRoomTable } from './site-room'
 import type { StateChangeTable } from './state-change'
-import type { StudyCellSaveTable } from './study-cell-save'
+import type { StudyTable } from './study'
 import type { StudyCellTable } from './study-cell'
 import type { StudyCircumstancesTable, StudyEquipmentTable } from './study-circumstances'
 import type { StudyCommentTable } from './study-comment'
+import type { StudyCellSaveTable } from './study-cell-save'
 import type { StudyKeptCheckTable } from './study-kept-check'
 import type { StudyLaterEntryTable } from './study-later-entry'
 import type { StudyMoveTable } from './study-move'
@@ -48,7 +55,6 @@ import type { StudyProtocolTable } from './study-protocol'
 import type { StudyQuestionTable } from './study-question'
 import type { StudyRowTable } from './study-row'
 import type { StudyRunTable } from './study-run'
-import type { StudyTable } from './study'
 import type { StudyTemperatureTable } from './study-temperature'
 import type { StudyVisitTable } from './study-visit'
 import type { TaskTable } from './task'
@@ -62,6 +68,9 @@ export interface Tables {
   counter: CounterTable
   organisation: OrganisationTable
   site: SiteTable
+  siteRoom: SiteRoomTable
+  siteHours: SiteHoursTable
+  siteClosedDay: SiteClosedDayTable
   user: UserTable
   recoveryCode: RecoveryCodeTable
   roleHolding: RoleHoldingTable
@@ -78,9 +87,11 @@ export interface Tables {
   referral: ReferralTable
   referralCount: ReferralCountTable
   referralCopy: ReferralCopyTable
+  referrerLetter: ReferrerLetterTable
   stateChange: StateChangeTable
   upload: UploadTable
   booking: BookingTable
+  appointment: AppointmentTable
   study: StudyTable
   studyRun: StudyRunTable
   studyRow: StudyRowTable
@@ -114,6 +125,7 @@ export interface Tables {
   policyVersion: PolicyVersionTable
   referenceAdoption: ReferenceAdoptionTable
   rowCheck: RowCheckTable
+  listView: ListViewTable
   auditEvent: AuditEventTable
   viewEvent: ViewEventTable
 }

@@ -10,6 +10,9 @@ export interface PatientTable {
   gender: Generated<string>
   identifier: Generated<string>
   phone: Generated<string>
+  email: Generated<string>
+  /** May appointments be mailed to that address? */
+  mailConsent: Generated<'yes' | 'no' | 'not-asked'>
   interpreter: Generated<string>
   mergedInto: string | null
   createdAt: string

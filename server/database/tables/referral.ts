@@ -29,6 +29,8 @@ export interface ReferralTable {
   reportLanguage: Generated<ReportLanguage>
   protocol: string | null
   receivedAt: string | null
+  /** Who looks after it at the clinic. */
+  ownerId: string | null
   /** Kept by triggers of the booking table. */
   bookingStartsAt: Generated<string | null>
   createdAt: string

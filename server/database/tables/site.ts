@@ -12,7 +12,6 @@ export interface SiteTable {
   footMinimumC: Generated<number>
   distanceUncertaintyMm: Generated<number>
   latencyUncertaintyMs: Generated<number>
-  roomsJson: Generated<string>
   closedAt: string | null
   createdAt: string
 }

@@ -10,7 +10,9 @@ export interface UploadTable {
   byteCount: number
   sha256: string
   createdAt: string
-  createdBy: string
+  /** Null when it came by a mailed link: then `letterId` says which. */
+  createdBy: string | null
+  letterId: string | null
   removedAt: string | null
 }
 export type Upload = Selectable<UploadTable>

@@ -3,8 +3,10 @@ import { accountLink, accountLinkSchema } from './account-link'
 import { accountNotice, accountNoticeSchema } from './account-notice'
 import { confirmAddress, confirmAddressSchema } from './confirm-address'
 import { linkRenewed, linkRenewedSchema } from './link-renewed'
+import { appointment, appointmentSchema } from './appointment'
 import type { MailText } from './mail-text'
 import { overdue, overdueSchema } from './overdue'
+import { referrerLetter, referrerLetterSchema } from './referrer-letter'
 import { reportReady, reportReadySchema } from './report-ready'
 import { verifyAddress, verifyAddressSchema } from './verify-address'
 
@@ -14,6 +16,8 @@ const template = <S extends z.ZodType>(schema: S, render: Template<S>['render'])
 /** Every mail of the program: its data and its words. A new mail is a file here and a line in this list. */
 export const mailTemplates = {
   'overdue': template(overdueSchema, overdue),
+  'appointment': template(appointmentSchema, appointment),
+  'referrer-letter': template(referrerLetterSchema, referrerLetter),
   'report-ready': template(reportReadySchema, reportReady),
   'link-renewed': template(linkRenewedSchema, linkRenewed),
   'verify-address': template(verifyAddressSchema, verifyAddress),

@@ -3,13 +3,13 @@ import { siteOfReferral } from '#server/database/queries/referrals'
 import { declineReferral } from '#server/services/move-referral'
 import { viewReferral } from '#server/services/view-referral'
 import { idSchema } from '#shared/schemas/common'
-import { reasonSchema } from '#shared/schemas/referral'
+import { declineSchema } from '#shared/schemas/letter'
 import { defineApiHandler } from '#server/utils/api-handler'
 
 export default defineApiHandler({
   allow: 'referral.triage',
   params: z.object({ id: idSchema }),
-  body: reasonSchema,
+  body: declineSchema,
   siteOf: (db, { params }) => siteOfReferral(db, params.id),
   handle: async ({ context, params, body }) => {
     await declineReferral(context, { id: params.id, ...body })
