@@ -136,7 +136,7 @@ it('protocol, circumstances, traces, a skipped run and the sheet before the hand
   const run = study.runs.find(each => each.technique === 'median-motor-apb')!
   await reader.page.request.post(`${app.origin}/api/studies/${id}/take`, { data: {}, headers: { origin: app.origin } })
   const answer = await reader.page.request.post(`${app.origin}/api/studies/${id}/return`, { data: { question: 'Was the wrist warm?', runId: run.id }, headers: { origin: app.origin } })
-  expect(answer.status()).toBe(200)
+  expect(answer.ok()).toBe(true)
   await reader.context.close()
   await visit(page, url)
   await page.getByRole('region', { name: 'RIGHT median motor' }).getByText('Asked by the reader: Was the wrist warm?').waitFor()
