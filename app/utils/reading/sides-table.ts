@@ -89,10 +89,13 @@ function pairRows(right: Result[], left: Result[], keyOf: (result: Result) => st
   return [...rows.values()]
 }
 
+/** What late responses, reflexes and trains are recorded for: never folded away, whether a set has a limit or not. */
+const alwaysShown = new Set(['persistencePercent', 'chronodispersionMs', 'hmRatio', 'decrementPercent', 'incrementPercent', 'r2DifferenceMs', 'stepLatencyMs'])
+
 /** Computed and judged by no limit: folded away until asked for, so that the judged numbers are read first. */
 export function isFurther(row: SidesRow): boolean {
   const results = [row.right, row.left].filter(result => result !== null)
-  return results.every(result => !result.typed && !result.flagged && result.verdict.kind === 'none') && row.difference === null
+  return results.every(result => !alwaysShown.has(result.quantity) && !result.typed && !result.flagged && result.verdict.kind === 'none') && row.difference === null
 }
 
 /** Side differences stand in the line of the value they compare: `at` of a difference names its quantity. */
