@@ -12,19 +12,20 @@ const whole = ['sent', 'given-up', 'uncertain', 'bounced', 'withdrawn']
  */
 export async function checkOutcome(db: Database, seen: ReadonlyMap<string, Seen>): Promise<Findings> {
   const wrong: string[] = []
-  const mails = await db.selectFrom('outboxMail').innerJoin('delivery', 'delivery.id', 'outboxMail.deliveryId').select(['outboxMail.id', 'messageId', 'outboxMail.state', 'delivery.state as deliveryState', 'delivery.id as deliveryId', 'delivery.reportVersionId', 'delivery.physicianId']).execute()
+  const mails = await db.selectFrom('outboxMail').leftJoin('delivery', 'delivery.id', 'outboxMail.deliveryId').select(['outboxMail.id', 'messageId', 'outboxMail.state', 'delivery.state as deliveryState', 'delivery.id as deliveryId', 'delivery.reportVersionId', 'delivery.physicianId']).execute()
   const tasks = await db.selectFrom('task').select(['subjectId', 'kind', 'sentence']).where('doneAt', 'is', null).execute()
   for (const mail of mails) {
     const { accepted, swallowed } = seen.get(mail.messageId) ?? { accepted: 0, swallowed: 0 }
     const say = (text: string) => wrong.push(`${mail.messageId} (${mail.state}): ${text}`)
     if (!whole.includes(mail.state)) say('still waits')
-    if (mail.state !== mail.deliveryState && !(mail.state === 'sent' && mail.deliveryState === 'acknowledged')) say(`its delivery is ${mail.deliveryState}`)
+    if (mail.deliveryId && mail.state !== mail.deliveryState && !(mail.state === 'sent' && mail.deliveryState === 'acknowledged')) say(`its delivery is ${mail.deliveryState}`)
     if (accepted + swallowed > 1) say(`reached the server ${accepted + swallowed} times`)
     if (mail.state === 'sent' && accepted !== 1) say('the server never took it')
     if (accepted + swallowed > 0 && !['sent', 'uncertain'].includes(mail.state)) say('the server took it')
-    const own = tasks.filter(task => task.subjectId === mail.deliveryId)
-    if (mail.state === 'uncertain' && !own.some(task => task.kind === 'delivery-uncertain' && task.sentence.includes(mail.messageId))) say('no task names it')
-    if (mail.state === 'given-up' && !own.some(task => task.kind === 'delivery-given-up')) say('no task speaks of it')
+    // A mail that carries no report has tasks of its own.
+    const own = tasks.filter(task => task.subjectId === (mail.deliveryId ?? mail.id))
+    if (mail.state === 'uncertain' && !own.some(task => ['delivery-uncertain', 'mail-uncertain'].includes(task.kind) && task.sentence.includes(mail.messageId))) say('no task names it')
+    if (mail.state === 'given-up' && !own.some(task => ['delivery-given-up', 'mail-given-up'].includes(task.kind))) say('no task speaks of it')
   }
   const known = new Set(mails.map(mail => mail.messageId))
   for (const id of seen.keys()) if (!known.has(id)) wrong.push(`${id}: the server got a mail that nobody knows`)
