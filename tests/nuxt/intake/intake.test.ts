@@ -23,7 +23,7 @@ const placing: Placing = { referralId: 'r2', bookingId: null, who: 'Other, Otto'
 describe('the week', () => {
   it('names each booking in full, shows closed days with their reason and how much is booked', async () => {
     const grid = await mountSuspended(WeekGrid, { props: { week, kind: 'room', placing: null, day: '2026-12-02' } })
-    expect(grid.find('[data-booking="REF-1"]').attributes('aria-label')).toBe('Wed 2 Dec 2026, 09:00 to 10:00, Novak, Ida, Room 1, Ann Invented, urgent')
+    expect(grid.find('[data-booking="REF-1"]').attributes('aria-label')).toBe('09:00 Novak: Wed 2 Dec 2026, 09:00 to 10:00, Novak, Ida, Room 1, Ann Invented, urgent')
     expect(grid.text()).toContain('closed: holiday')
     expect(grid.text()).toContain('1 h of 9 h booked')
     await grid.find('[data-booking="REF-1"]').trigger('click')
