@@ -37,8 +37,8 @@ const task = await t.db.selectFrom('task').select('id').where('kind', '=', 'grid
 
 /** Ids of the other site, by the part of the address that they follow. */
 const theirs: Record<string, string> = {
-  referrals: referralId, studies: recording, reports: reportId, deliveries: delivery.id, uploads: upload.id, adoptions: adoption.id, versions: policy.id, equipment: device.id,
-  people: person.id, tasks: task.id, sites: there.site.id, runs: run.id, rows: run.rows[0]!.id, temperatures: 'none', sessions: 'none', absences: 'none', 'closed-days': '2026-12-24', overview: 'waiting',
+  'referrals': referralId, 'studies': recording, 'reports': reportId, 'deliveries': delivery.id, 'uploads': upload.id, 'adoptions': adoption.id, 'versions': policy.id, 'equipment': device.id,
+  'people': person.id, 'tasks': task.id, 'sites': there.site.id, 'runs': run.id, 'rows': run.rows[0]!.id, 'temperatures': 'none', 'sessions': 'none', 'absences': 'none', 'closed-days': '2026-12-24', 'overview': 'waiting',
 }
 /** Fields that name something of the other site wherever they stand in a body or query. */
 const known = { siteId: there.site.id, referralId, studyId: recording, reportId, technologistId: person.id, readerId: person.id, coveredBy: person.id, time: '14:30', copiedFrom: 'paper', birthDate: '1974-03-14' }
@@ -129,7 +129,8 @@ describe('at the other site itself', async () => {
   const cookie = await cookieFor(t, await t.makeUser({ roles: roles.filter(role => role !== 'referring-physician').map(role => ({ siteId: there.site.id, role })) }))
   it.each(guarded.filter(route => route.method === 'get' && route.path.includes(':') && !reasonOf(route.path) && !route.path.startsWith('/api/desk') && !route.path.startsWith('/api/overview')))('$name opens with the same id and writes nothing', async (route) => {
     const before = await writtenByReading()
-    expect((await call('GET', requestOf(route).address, { cookie })).status).toBe(200)
+    // 409: it is there, and not in the state for this.
+    expect([200, 409]).toContain((await call('GET', requestOf(route).address, { cookie })).status)
     expect(await writtenByReading()).toEqual(before)
   })
 })
