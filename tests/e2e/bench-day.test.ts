@@ -217,7 +217,7 @@ it('a sheet for a downtime, and what was written on it entered later with the or
   await act(page, wrong.getByRole('button', { name: 'Entered later from paper' }))
   const later = page.locator('[data-test=later-entry]')
   const yesterday = new Date(Date.now() - 86_400_000).toISOString().slice(0, 10)
-  await later.getByLabel('Measured on').fill(yesterday)
+  await later.getByRole('textbox', { name: 'Measured on' }).fill(yesterday)
   await type(page, later.getByLabel('Begun at'), '14:10')
   await later.getByLabel('Measured by').fill('Ida Brandt')
   await type(page, later.getByLabel('Why it is entered later'), 'Power cut.')
