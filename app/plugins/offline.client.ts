@@ -116,8 +116,12 @@ export default defineNuxtPlugin(() => {
 
   /** The page comes back without the server; only the bench asks for it. */
   async function register() {
-    if (!offBecause.value) await navigator.serviceWorker?.register('/sw.js', { scope: SCOPE }).then(() => navigator.storage?.persist?.()).catch(() => undefined)
+    const registration = offBecause.value ? undefined : await navigator.serviceWorker?.register('/sw.js', { scope: SCOPE }).catch(() => undefined)
+    // A worker that is just being installed is told as soon as it can listen, not at the next turn of the clock.
+    const coming = registration?.installing ?? registration?.waiting
+    coming?.addEventListener('statechange', () => void hold())
     await hold()
+    void navigator.storage?.persist?.().catch(() => undefined)
   }
 
   if (!offBecause.value) setInterval(() => void hold(), HOLD_MS)
