@@ -25,6 +25,7 @@ export const permissions = {
   'referral.write': [T, A],
   'referral.triage': [N, A, D],
   'referral.book': [A],
+  'referral.import': [A],
   'referral.walk-in': [T],
   'upload.read': [T, N, A, D],
   'upload.write': [T, N, A],

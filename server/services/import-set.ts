@@ -1,4 +1,3 @@
-import { CsvError, parse } from 'csv-parse/sync'
 import type * as z from 'zod'
 import { checkTable } from '#reference-tables/check-table'
 import { referenceTable } from '#reference-tables/index'
@@ -10,6 +9,7 @@ import { ownSetColumns, type ownSetImportSchema, type OwnSetAnswer, type OwnSetR
 import { referenceTableSchema, type ReferenceTable } from '#shared/schemas/reference-table'
 import { canonicalJson, sha256Hex } from './canonical-json'
 import { now, type ServiceContext } from './context'
+import { csvLines, type CsvLines } from './csv-lines'
 import { organisationDay } from './organisation-day'
 import { recordAuditEvent } from './record-audit-event'
 
@@ -53,7 +53,7 @@ const stop = (message: string, row: number | null = null, column = ''): OwnSetRe
 const takenName = (id: string): OwnSetRemark[] => referenceTable(id) ? [stop(`"${id}" is the name of a set that comes with the program. Choose another one.`, null, 'id')] : []
 
 async function readCsv(context: ServiceContext, trx: Trx, { head, text }: Extract<Import, { format: 'csv' }>): Promise<Read> {
-  const lines = csvLines(text)
+  const lines = recordsOf(text)
   if ('remark' in lines) return { table: null, remarks: [lines.remark] }
   const { table, remarks, lineOf } = ownTable({ ...head, version: await nextVersion(trx, head.id), date: await organisationDay({ ...context, db: trx }) }, lines.records)
   const found = checkTable(table).map(({ rowId, strength, column, message }): OwnSetRemark => ({ strength, row: lineOf.get(rowId) ?? null, column, message }))
@@ -62,24 +62,14 @@ async function readCsv(context: ServiceContext, trx: Trx, { head, text }: Extrac
   return { table, remarks: [...takenName(head.id), ...missingCells(lines.records), ...remarks, ...found, ...unfit].toSorted((a, b) => (a.row ?? 0) - (b.row ?? 0)) }
 }
 
-/** The head decides, so that a decimal comma in a line stays one. */
-function separatorOf(text: string): string {
-  const head = text.split(/\r?\n/, 1)[0] ?? ''
-  return ['\t', ';'].find(sign => head.includes(sign)) ?? ','
-}
-
-function csvLines(text: string): { records: Partial<Record<string, string>>[] } | { remark: OwnSetRemark } {
-  try {
-    const records = parse(text, { bom: true, columns: head => head.map((name: string) => name.trim().toLowerCase()), delimiter: separatorOf(text), skip_empty_lines: true, skip_records_with_empty_values: true, trim: true, relax_column_count: false }) as Partial<Record<string, string>>[]
-    const unknown = Object.keys(records[0] ?? {}).filter(name => !(ownSetColumns as readonly string[]).includes(name))
-    if (records.length === 0) return { remark: stop('The file has no lines below its head.') }
-    if (records.length > 2000) return { remark: stop('The file has more than 2000 lines.') }
-    return unknown.length ? { remark: stop(`The head has columns that are not known: ${unknown.join(', ')}. Begin with the template.`, 1) } : { records }
-  }
-  catch (error) {
-    if (!(error instanceof CsvError)) throw error
-    return { remark: stop('A line has another number of cells than the head, or quotation marks that do not close.', 'lines' in error && typeof error.lines === 'number' ? error.lines : null) }
-  }
+function recordsOf(text: string): { records: CsvLines['records'] } | { remark: OwnSetRemark } {
+  const lines = csvLines(text)
+  if ('brokenAt' in lines) return { remark: stop('A line has another number of cells than the head, or quotation marks that do not close.', lines.brokenAt) }
+  const { columns, records } = lines
+  if (records.length === 0) return { remark: stop('The file has no lines below its head.') }
+  if (records.length > 2000) return { remark: stop('The file has more than 2000 lines.') }
+  const unknown = columns.filter(name => !(ownSetColumns as readonly string[]).includes(name))
+  return unknown.length ? { remark: stop(`The head has columns that are not known: ${unknown.join(', ')}. Begin with the template.`, 1) } : { records }
 }
 
 /** `technique`, `quantity`, `bound` and `value` have to be there in each line. */

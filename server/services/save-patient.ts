@@ -1,4 +1,5 @@
 import { randomUUID } from 'node:crypto'
+import type { Trx } from '#server/database/connection'
 import { patientView } from '#server/database/queries/patients'
 import { DomainError } from '#shared/errors'
 import type { PatientChange, PatientInput, PatientView } from '#shared/schemas/patient'
@@ -17,15 +18,18 @@ function checkBirthDate(context: ServiceContext, birthDate: string | undefined):
   if (message) throw new DomainError('not-valid', { fields: [{ path: 'birthDate', message }] })
 }
 
+/** A new person, inside a transaction that does more with it. */
+export async function insertPatient(context: ServiceContext, trx: Trx, input: PatientInput): Promise<PatientView> {
+  checkBirthDate(context, input.birthDate)
+  const recordNumber = await nextNumber(trx, 'patient', context.clock().getUTCFullYear())
+  const row = await trx.insertInto('patient').values({ id: randomUUID(), recordNumber, ...input, mergedInto: null, createdAt: now(context), createdBy: context.actor.userId }).returningAll().executeTakeFirstOrThrow()
+  await recordAuditEvent(context, trx, { name: 'patient.added', subject: 'patient', subjectId: row.id, patientId: row.id, data: { recordNumber } })
+  return patientView(row)
+}
+
 /** Enters a new person into the register. Namesakes are shown before, by another route; they do not stop this one. */
 export async function addPatient(context: ServiceContext, input: PatientInput): Promise<PatientView> {
-  checkBirthDate(context, input.birthDate)
-  return context.db.transaction().execute(async (trx) => {
-    const recordNumber = await nextNumber(trx, 'patient', context.clock().getUTCFullYear())
-    const row = await trx.insertInto('patient').values({ id: randomUUID(), recordNumber, ...input, mergedInto: null, createdAt: now(context), createdBy: context.actor.userId }).returningAll().executeTakeFirstOrThrow()
-    await recordAuditEvent(context, trx, { name: 'patient.added', subject: 'patient', subjectId: row.id, patientId: row.id, data: { recordNumber } })
-    return patientView(row)
-  })
+  return context.db.transaction().execute(trx => insertPatient(context, trx, input))
 }
 
 /**

@@ -26,6 +26,7 @@ const addresses: Record<string, (ask: Ask) => Promise<string[]>> = {
   'intake/index.vue': async () => ['/intake', '/intake?state=all'],
   'intake/week.vue': async () => ['/intake/week', '/intake/week?by=technologist'],
   'intake/new.vue': async () => ['/intake/new'],
+  'intake/import.vue': async () => ['/intake/import'],
   'intake/[id].vue': async ask => one((await ask<Rows<{ id: string, state: string }>>('/api/referrals?pageSize=100')).rows, row => row.state).filter(row => ['draft', 'received', 'accepted', 'answered'].includes(row.state)).map(row => `/intake/${row.id}`),
   'patients/[id].vue': async ask => one((await ask<Rows<{ id: string }>>('/api/patients?pageSize=3')).rows).map(row => `/patients/${row.id}`),
   'bench/index.vue': async () => ['/bench'],
