@@ -62,7 +62,7 @@ describe('prompt contact', () => {
   const contact = { who: 'Dr Sam Ple', at: '9 March 2026, 14:05', means: 'telephone', readBack: true, note: '' }
   const input = (rest: Partial<SignCheckInput> = {}): SignCheckInput => ({
     study: studyOf(both.map(item => item.run)), assessment: made(both), draft: draftOf(), findings: [], clinicalQuestion: 'Median?', language: 'en',
-    recipients: [{ name: 'Dr Sam Ple', reachable: true, because: '' }], namesakes: [], promptFindings: [{ id: 'a', label: 'Severed nerve', because: 'the impression says "severed"' }], ...rest,
+    recipients: [{ name: 'Dr Sam Ple', reachable: true, because: '' }], namesakes: [], questions: [], promptFindings: [{ id: 'a', label: 'Severed nerve', because: 'the impression says "severed"' }], ...rest,
   })
   const prompts = (rest: Partial<SignCheckInput>) => signChecks(input(rest)).filter(check => check.key.startsWith('prompt'))
   it('is asked for by words of the impression and by what is met', () => {
@@ -88,7 +88,7 @@ describe('an answer', () => {
   it('counts for the numbers it was given to, and no longer', () => {
     const isolatedIn = (latencyMs: number, resolved: { key: string, reason: string, about?: string }[] = []) => {
       const runs = [outside('rm', 'median-motor-apb', 'right', latencyMs)]
-      return signChecks({ study: studyOf(runs.map(item => item.run)), assessment: made(runs), draft: { ...draftOf(), resolved }, findings: [], clinicalQuestion: 'Median?', language: 'en', recipients: [{ name: 'Dr Sam Ple', reachable: true, because: '' }], namesakes: [] }).find(check => check.key === 'isolated')
+      return signChecks({ study: studyOf(runs.map(item => item.run)), assessment: made(runs), draft: { ...draftOf(), resolved }, findings: [], clinicalQuestion: 'Median?', language: 'en', recipients: [{ name: 'Dr Sam Ple', reachable: true, because: '' }], namesakes: [], questions: [] }).find(check => check.key === 'isolated')
     }
     const asked = isolatedIn(5.2)!
     const answer = [{ key: 'isolated', reason: 'Fits the history', about: asked.about }]
