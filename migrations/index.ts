@@ -15,6 +15,7 @@ import * as people from './2026-12-12-people'
 import * as peopleDirectory from './2026-12-12-people-directory'
 import * as peopleRetention from './2026-12-12-people-retention'
 import * as reading from './2026-12-12-reading'
+import * as referringDesk from './2026-12-12-referring-desk'
 
 /** Every migration, in order. Never edit one that has been released; add a new file and a line here. */
 export const migrations: Record<string, Migration> = {
@@ -34,4 +35,5 @@ export const migrations: Record<string, Migration> = {
   '2026-12-12-people-directory': peopleDirectory,
   '2026-12-12-people-retention': peopleRetention,
   '2026-12-12-reading': reading,
+  '2026-12-12-referring-desk': referringDesk,
 }

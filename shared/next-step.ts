@@ -20,6 +20,8 @@ const byState: Partial<Record<ReferralState, string>> = {
   'did-not-attend': 'Book again or cancel', 'attended': 'Record',
 }
 
+const openStates: readonly ReferralState[] = ['received', 'accepted', 'booked', 'did-not-attend']
+
 /**
  * What to do next with a referral, as one sentence; '' when nothing is left to do.
  *
@@ -27,7 +29,8 @@ const byState: Partial<Record<ReferralState, string>> = {
  * nextStep({ state: 'draft', missing: [{ path: 'examination' }], studyState: null }) // => 'Complete the examination'
  * nextStep({ state: 'attended', missing: [], studyState: 'handed-over' }) // => 'Read and sign'
  */
-export function nextStep({ state, missing, studyState, cameBack = false, overdue = false }: { state: ReferralState, missing: readonly { path: string }[], studyState: StudyState | null, /** what was asked came back and nobody noted it */ cameBack?: boolean, /** past the organisation's clock */ overdue?: boolean }): string {
+export function nextStep({ state, missing, studyState, cameBack = false, overdue = false, identify = false }: { state: ReferralState, missing: readonly { path: string }[], studyState: StudyState | null, /** what was asked came back and nobody noted it */ cameBack?: boolean, /** past the organisation's clock */ overdue?: boolean, /** it came from the desk and nobody has said who the patient is */ identify?: boolean }): string {
+  if (identify && openStates.includes(state)) return 'Say who the patient is'
   if (state === 'received' && cameBack) return 'Look at what came back'
   if (state === 'returned' && overdue) return 'Remind the referring physician'
   if ((state === 'draft' || state === 'received') && missing.length > 0) return completeWords(missing)

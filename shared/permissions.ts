@@ -70,6 +70,8 @@ export const permissions = {
 
   // The desk of a referring physician: own referrals and final reports of own patients only.
   'desk.read': [R],
+  // Refers a new patient, without a look at the register, and completes what an own referral misses.
+  'desk.refer': [R],
 } as const satisfies Record<string, readonly Role[]>
 
 export type Action = keyof typeof permissions

@@ -81,8 +81,13 @@ export function checkPass(context: ServiceContext, { token, pass }: { token: str
 }
 
 function checkOpen(found: Found): void {
-  const state = stateOf(found)
-  if (state === 'locked') throw new DomainError('too-many-requests', { message: 'A wrong date of birth was entered too often. Telephone the laboratory named in the mail; it sends a new link.' })
+  if (stateOf(found) === 'locked') throw new DomainError('too-many-requests', { message: 'A wrong date of birth was entered too often. Telephone the laboratory named in the mail; it sends a new link.' })
+  checkStands(found)
+}
+
+/** Still asked, whoever answers: wrong birth dates lock the link of the mail, not the desk. */
+function checkStands(found: Found): void {
+  const state = stateOf({ ...found, letter: { ...found.letter, wrongBirths: 0 } })
   if (state === 'done') throw new DomainError('wrong-state', { message: 'This was completed before. Nothing more is needed.' })
   if (state === 'withdrawn') throw new DomainError('wrong-state', { message: 'This is no longer needed: the laboratory has moved on with this referral. Telephone it if something has to be added.' })
 }
@@ -110,7 +115,8 @@ async function noteOpening(context: ServiceContext, found: Found, right: boolean
   })
 }
 
-async function formOf(context: ServiceContext, { letter, referral }: Found): Promise<Pick<OpenedLetter, 'asked' | 'values' | 'uploads'>> {
+/** What is asked, with what stands: the same form behind the link of the mail and at the desk. */
+export async function formOf(context: ServiceContext, { letter, referral }: Found): Promise<Pick<OpenedLetter, 'asked' | 'values' | 'uploads'>> {
   const asked = askedBy(JSON.parse(letter.reasonsJson) as string[])
   const stands = referralInputOf(referral, [])
   const uploads = await context.db.selectFrom('upload').select(['id', 'originalName', 'byteCount']).where('letterId', '=', letter.id).where('removedAt', 'is', null).orderBy('createdAt').execute()
@@ -135,8 +141,10 @@ function checkAnswer(asked: Asked, values: Partial<ReferralInput>, words: string
  */
 export async function answerLetter(context: ServiceContext, { pass, values, words, ...call }: LetterCall & AnswerLetter): Promise<void> {
   checkPass(context, { token: call.token, pass })
-  const { letter } = await letterOf(context, call)
+  const found = await letterOf(context, call)
+  const { letter } = found
   if (letter.kind !== 'information') throw new DomainError('not-found')
+  checkOpen(found)
   await practice(context).db.transaction().execute(trx => takeAnswer(practice(context), trx, letter.id, values, words))
 }
 
@@ -145,7 +153,7 @@ export async function takeAnswer(context: ServiceContext, trx: Trx, letterId: st
   const letter = await trx.selectFrom('referrerLetter').selectAll().where('id', '=', letterId).executeTakeFirstOrThrow()
   const referral = await trx.selectFrom('referral').selectAll().where('id', '=', letter.referralId).executeTakeFirstOrThrow()
   const found = { letter, referral }
-  checkOpen(found)
+  checkStands(found)
   const asked = askedBy(JSON.parse(letter.reasonsJson) as string[])
   const before = referralInputOf(referral, await copiesOf(trx, referral.id))
   const after = referralSchema.parse({ ...before, ...Object.fromEntries(asked.fields.flatMap(field => sent[field] === undefined ? [] : [[field, sent[field]]])) })

@@ -24,7 +24,7 @@ async function spend(db: Database, name: LimitName, key: string): Promise<void> 
 
 type Delivery = Awaited<ReturnType<typeof deliveryOfToken>>
 const asRecipient = (context: ServiceContext) => actingAs(context, { userId: null, label: 'recipient, by the link of the mail', holdings: [] })
-const about = (delivery: Delivery) => ({ subject: 'delivery', subjectId: delivery.id, siteId: delivery.siteId, patientId: delivery.patientId, data: { number: delivery.number, version: delivery.version } })
+const about = (delivery: Pick<Delivery, 'id' | 'siteId' | 'patientId' | 'number' | 'version'>) => ({ subject: 'delivery', subjectId: delivery.id, siteId: delivery.siteId, patientId: delivery.patientId, data: { number: delivery.number, version: delivery.version } })
 
 /**
  * Opens the page of a mail's link and notes it in the trail. It acknowledges nothing.
@@ -43,6 +43,12 @@ export async function openLink(context: ServiceContext, input: AcknowledgeInput)
  */
 export async function replyToReport(context: ServiceContext, { words, fromName, ...input }: AcknowledgeInput & { words: string, fromName: string }): Promise<AcknowledgeView> {
   const delivery = await deliveryOfToken(context, input)
+  await writeReply(asRecipient(context), delivery, { words, fromName })
+  return await viewAcknowledge(context, input)
+}
+
+/** The words of a recipient, whichever way they came: the link of the mail or the desk. @throws DomainError 'too-many-requests' after five a day */
+export async function writeReply(context: ServiceContext, delivery: Pick<Delivery, 'id' | 'siteId' | 'patientId' | 'number' | 'version' | 'reportVersionId'>, { words, fromName }: { words: string, fromName: string }): Promise<void> {
   await spend(context.db, 'replies', delivery.id)
   await context.db.transaction().execute(async (trx) => {
     const id = randomUUID()
@@ -53,9 +59,8 @@ export async function replyToReport(context: ServiceContext, { words, fromName, 
       sentence: `A recipient thinks that something in ${delivery.number}, version ${delivery.version}, is wrong. Read what they write, answer them by telephone, and correct the report if they are right.`,
       dueAt: new Date(context.clock().getTime() + 24 * 3_600_000).toISOString(),
     })
-    await recordAuditEvent(asRecipient(context), trx, { name: 'delivery.replied', ...about(delivery) })
+    await recordAuditEvent(context, trx, { name: 'delivery.replied', ...about(delivery) })
   })
-  return await viewAcknowledge(context, input)
 }
 
 /**

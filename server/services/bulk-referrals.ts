@@ -1,4 +1,5 @@
 import { mailableReferrer, lastReminded } from '#server/database/queries/letters'
+import { isToIdentify } from '#server/database/queries/desk-referrals'
 import { copiesOf, referralInputOf } from '#server/database/queries/referrals'
 import type { Referral } from '#server/database/tables/referral'
 import { DomainError } from '#shared/errors'
@@ -58,6 +59,7 @@ async function previewOf(context: ServiceContext, line: Line, input: BulkInput):
 async function previewAccept(context: ServiceContext, line: Line, protocol: string): Promise<Outcome> {
   if (line.state !== 'received') return no(`Is ${stateLabels[line.state]}: only received referrals can be accepted.`)
   const missing = missingForBooking(referralInputOf(line, await copiesOf(context.db, line.id)))
+  if (await isToIdentify(context.db, line.id)) return no('Say first who the patient is: it came from the desk.')
   if (missing.length) return no(`${nextStep({ state: line.state, missing, studyState: null })} first.`)
   const found = await protocolAt(context, context.db, { siteId: line.siteId, id: protocol })
   return found ? yes(`Is accepted with the protocol ${found.protocol.label} and waits to be booked.`) : no('This site has no such protocol.')

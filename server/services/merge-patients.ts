@@ -27,21 +27,26 @@ function checkSamePerson(kept: Patient, merged: Patient): void {
  * @throws DomainError 'not-valid' when birth date or sex for limits differ, 'wrong-state' when one is merged already
  */
 export async function mergePatients(context: ServiceContext, { keptId, mergedId, reason }: { keptId: string, mergedId: string, reason: string }): Promise<{ mergeId: string }> {
+  return await context.db.transaction().execute(trx => mergePatientsIn(context, trx, { keptId, mergedId, reason }))
+}
+
+/** `mergePatients` as a part of something larger. */
+export async function mergePatientsIn(context: ServiceContext, trx: Trx, { keptId, mergedId, reason }: { keptId: string, mergedId: string, reason: string }): Promise<{ mergeId: string }> {
   const mergedBy = context.actor.userId
   if (!mergedBy) throw new DomainError('not-signed-in')
   if (keptId === mergedId) throw new DomainError('not-valid', { fields: [{ path: 'mergedId', message: 'Choose another record than this one.' }] })
-  return await context.db.transaction().execute(async (trx) => {
-    const [kept, merged] = [await openRecord(trx, keptId), await openRecord(trx, mergedId)]
-    checkSamePerson(kept, merged)
-    const moved = await moveAll(trx, mergedId, keptId)
-    const mergeId = randomUUID()
-    await trx.insertInto('patientMerge').values({ id: mergeId, keptId, mergedId, movedJson: JSON.stringify(moved), reason, mergedAt: now(context), mergedBy, undoneAt: null, undoneBy: null }).execute()
-    await trx.updateTable('patient').set({ mergedInto: keptId, revision: merged.revision + 1 }).where('id', '=', mergedId).execute()
-    const data = { keptNumber: kept.recordNumber, mergedNumber: merged.recordNumber, referrals: moved.referrals.length, studies: moved.studies.length }
-    for (const patientId of [keptId, mergedId]) await recordAuditEvent(context, trx, { name: 'patient.merged', subject: 'patient', subjectId: patientId, patientId, data })
-    await withdrawReady(context, trx, { patientId: keptId })
-    return { mergeId }
-  })
+  const [kept, merged] = [await openRecord(trx, keptId), await openRecord(trx, mergedId)]
+  checkSamePerson(kept, merged)
+  const moved = await moveAll(trx, mergedId, keptId)
+  const mergeId = randomUUID()
+  await trx.insertInto('patientMerge').values({ id: mergeId, keptId, mergedId, movedJson: JSON.stringify(moved), reason, mergedAt: now(context), mergedBy, undoneAt: null, undoneBy: null }).execute()
+  await trx.updateTable('patient').set({ mergedInto: keptId, revision: merged.revision + 1 }).where('id', '=', mergedId).execute()
+  const data = { keptNumber: kept.recordNumber, mergedNumber: merged.recordNumber, referrals: moved.referrals.length, studies: moved.studies.length }
+  for (const patientId of [keptId, mergedId]) await recordAuditEvent(context, trx, { name: 'patient.merged', subject: 'patient', subjectId: patientId, patientId, data })
+  // Whoever puts two records together has said who the patient of a referral from the desk is.
+  await trx.updateTable('deskReferral').set({ identifiedAt: now(context), identifiedBy: mergedBy, outcome: 'known', mergeId }).where('patientId', 'in', [keptId, mergedId]).where('identifiedAt', 'is', null).execute()
+  await withdrawReady(context, trx, { patientId: keptId })
+  return { mergeId }
 }
 
 async function moveAll(trx: Trx, from: string, to: string): Promise<Moved> {
@@ -67,6 +72,7 @@ export async function undoMerge(context: ServiceContext, { mergeId, reason }: { 
     for (const id of moved.studies) await trx.updateTable('study').set({ patientId: mergedId }).where('id', '=', id).where('patientId', '=', keptId).execute()
     for (const id of moved.outsideStudies) await trx.updateTable('outsideStudy').set({ patientId: mergedId }).where('id', '=', id).where('patientId', '=', keptId).execute()
     await trx.updateTable('patient').set(eb => ({ mergedInto: null, revision: eb('revision', '+', 1) })).where('id', '=', mergedId).execute()
+    await trx.updateTable('deskReferral').set({ identifiedAt: null, identifiedBy: null, outcome: null, mergeId: null }).where('mergeId', '=', mergeId).execute()
     await trx.updateTable('patientMerge').set({ undoneAt: now(context), undoneBy: context.actor.userId, undoReason: reason }).where('id', '=', mergeId).execute()
     const numbers = await trx.selectFrom('patient').select(['id', 'recordNumber']).where('id', 'in', [keptId, mergedId]).execute()
     const numberOf = (id: string) => numbers.find(row => row.id === id)?.recordNumber ?? ''

@@ -1,4 +1,5 @@
 import type { Trx } from '#server/database/connection'
+import { isToIdentify } from '#server/database/queries/desk-referrals'
 import { copiesOf, referralInputOf } from '#server/database/queries/referrals'
 import type { Referral } from '#server/database/tables/referral'
 import { DomainError } from '#shared/errors'
@@ -46,6 +47,7 @@ export async function acceptReferral(context: ServiceContext, { id, protocol, ur
     const changed = urgency !== undefined && urgency !== before.urgency
     if (changed && (urgencyReason ?? '').length < 3) throw new DomainError('not-valid', { fields: [{ path: 'urgencyReason', message: 'Say why the urgency changes.' }] })
     const missing = missingForBooking({ ...before, ...(changed ? { urgency, urgencyReason } : {}) })
+    if (referral.state === 'received' && await isToIdentify(trx, id)) throw new DomainError('not-valid', { fields: [{ path: 'patientId', message: 'Say first who the patient is: a new one, or one of the register.' }] })
     if (referral.state === 'received' && missing.length) throw new DomainError('not-valid', { fields: missing })
     await moveState(context, trx, { subject: 'referral', id, from: 'received', to: 'accepted' })
     await trx.updateTable('referral').set({ protocol, revision: referral.revision + 1 }).where('id', '=', id).execute()

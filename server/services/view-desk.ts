@@ -1,9 +1,11 @@
 import { deskReferrals, deskReports, entriesOfAccount, sentVersionsOf } from '#server/database/queries/desk'
-import type { Trx } from '#server/database/connection'
+import type { Database, Trx } from '#server/database/connection'
 import { DomainError } from '#shared/errors'
+import type { AcknowledgeView } from '#shared/schemas/delivery'
 import type { DeskPage, DeskReferral } from '#shared/schemas/desk'
 import type { ReportView } from '#shared/schemas/report'
 import { acknowledgeIn } from './acknowledge-delivery'
+import { writeReply } from './answer-link'
 import { now, type ServiceContext } from './context'
 import { reportPdf } from './make-report-pdf'
 import { moveState } from './move-state'
@@ -14,7 +16,8 @@ import { viewReport } from './view-report'
 /** What the laboratory says to the referring physician; reasons of other states are its own affair. */
 const reasonsForReferrer = ['returned', 'declined', 'cancelled', 'did-not-attend']
 
-async function ownEntries(context: ServiceContext) {
+/** The directory entries that the account of this request stands for now. */
+export async function ownEntries(context: ServiceContext) {
   return await entriesOfAccount(context.db, context.actor.userId ?? '', await organisationDay(context))
 }
 
@@ -25,8 +28,8 @@ export async function viewDesk(context: ServiceContext, query: { show: 'all' | '
   const { rows, total } = await deskReferrals(context.db, { ...query, physicianIds })
   const reports = await deskReports(context.db, physicianIds, rows.map(row => row.id))
   return {
-    rows: rows.map(({ physicianId, bookingStartsAt, stateReason, ...row }): DeskReferral => ({
-      ...row, reason: reasonsForReferrer.includes(row.state) ? stateReason : '', bookedFor: row.state === 'booked' ? bookingStartsAt : null, copy: !physicianIds.includes(physicianId ?? ''),
+    rows: rows.map(({ physicianId, bookingStartsAt, stateReason, asked, ...row }): DeskReferral => ({
+      ...row, reason: reasonsForReferrer.includes(row.state) ? stateReason : '', bookedFor: row.state === 'booked' ? bookingStartsAt : null, copy: !physicianIds.includes(physicianId ?? ''), answerable: Number(asked) === 1 && physicianIds.includes(physicianId ?? ''),
       reports: latestOnly(reports.filter(report => report.referralId === row.id)).map(({ referralId: _referralId, superseded, ...report }) => ({ ...report, superseded: Number(superseded) === 1 })),
     })),
     total, page: query.page, pageSize: query.pageSize,
@@ -50,13 +53,14 @@ export async function ownVersion(context: ServiceContext, { reportId, version }:
   return { ...found, versions: sent.map(row => row.version) }
 }
 
-export interface DeskReportView { report: ReportView, deliveryId: string, acknowledgedAt: string | null }
+export interface DeskReportView { report: ReportView, deliveryId: string, acknowledgedAt: string | null, /** what was written about this version from here, and whether it was answered */ replies: AcknowledgeView['replies'] }
 
 /** The same frozen copy as in the laboratory, with the versions that were sent here; what went back inside stays inside. @throws DomainError as `ownVersion` */
 export async function viewDeskReport(context: ServiceContext, asked: { reportId: string, version?: number }): Promise<DeskReportView> {
   const own = await ownVersion(context, asked)
   const report = await viewReport(context, { reportId: asked.reportId, version: own.version })
-  return { report: { ...report, versions: report.versions.filter(line => own.versions.includes(line.version)), route: report.route.map(node => ({ ...node, wentBack: [] })) }, deliveryId: own.deliveryId, acknowledgedAt: own.acknowledgedAt }
+  const replies = await repliesTo(context, own.deliveryId)
+  return { report: { ...report, versions: report.versions.filter(line => own.versions.includes(line.version)), route: report.route.map(node => ({ ...node, wentBack: [] })) }, deliveryId: own.deliveryId, acknowledgedAt: own.acknowledgedAt, replies }
 }
 
 /** The stored PDF of such a version, in clear: the connection and the sign-in protect it. @throws DomainError as `ownVersion` */
@@ -67,20 +71,37 @@ export async function deskReportPdf(context: ServiceContext, asked: { reportId: 
   return pdf.bytes
 }
 
+const repliesTo = (context: ServiceContext, deliveryId: string): Promise<AcknowledgeView['replies']> => context.db.selectFrom('deliveryReply').select(['at', 'answeredAt']).where('deliveryId', '=', deliveryId).orderBy('at').execute()
+
+/** A delivery to the physician who is signed in, once it left. @throws DomainError 'not-found' for every other */
+async function ownDelivery(context: ServiceContext, db: Database | Trx, deliveryId: string) {
+  const entries = await ownEntries(context)
+  const delivery = await db.selectFrom('delivery').innerJoin('reportVersion', 'reportVersion.id', 'delivery.reportVersionId').innerJoin('report', 'report.id', 'reportVersion.reportId').innerJoin('study', 'study.id', 'report.studyId')
+    .select(['delivery.id', 'delivery.state', 'delivery.siteId', 'delivery.reportVersionId', 'report.number', 'reportVersion.version', 'study.patientId'])
+    .where('delivery.id', '=', deliveryId).where('delivery.physicianId', 'in', entries.map(entry => entry.id)).where('delivery.state', 'not in', ['held', 'withdrawn']).executeTakeFirst()
+  if (!delivery) throw new DomainError('not-found')
+  return delivery
+}
+
 /**
  * "I have it": acknowledges an own delivery. A second press changes nothing.
  * @throws DomainError 'not-found' for a delivery to someone else, a withdrawn one, or one that did not leave
  */
 export async function acknowledgeOwn(context: ServiceContext, deliveryId: string): Promise<void> {
-  const entries = await ownEntries(context)
   await context.db.transaction().execute(async (trx) => {
-    const delivery = await trx.selectFrom('delivery').innerJoin('reportVersion', 'reportVersion.id', 'delivery.reportVersionId').innerJoin('report', 'report.id', 'reportVersion.reportId').innerJoin('study', 'study.id', 'report.studyId')
-      .select(['delivery.id', 'delivery.state', 'delivery.siteId', 'report.number', 'reportVersion.version', 'study.patientId'])
-      .where('delivery.id', '=', deliveryId).where('delivery.physicianId', 'in', entries.map(entry => entry.id)).where('delivery.state', 'not in', ['held', 'withdrawn']).executeTakeFirst()
-    if (!delivery) throw new DomainError('not-found')
+    const delivery = await ownDelivery({ ...context, db: trx }, trx, deliveryId)
     if (delivery.state === 'given-up' || delivery.state === 'bounced') await readHere(context, trx, delivery.id)
     await acknowledgeIn(context, trx, delivery)
   })
+}
+
+/**
+ * "I think this is wrong": the words reach the neurologist who signed, with the name of who is signed in.
+ * @throws DomainError as `acknowledgeOwn`, 'too-many-requests' after five a day
+ */
+export async function replyOwn(context: ServiceContext, { id, words }: { id: string, words: string }): Promise<Pick<DeskReportView, 'replies'>> {
+  await writeReply(context, await ownDelivery(context, context.db, id), { words, fromName: context.actor.label })
+  return { replies: await repliesTo(context, id) }
 }
 
 /** What could not be mailed has reached them all the same: nobody needs to deliver it by hand any more. */

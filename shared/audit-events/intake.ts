@@ -17,6 +17,8 @@ export const intakeEvents = {
   'referral.added': event(z.object({ number: z.string() }), data => `entered the referral ${data.number}`),
   'referral.changed': event(changes, data => `changed a referral: ${changedFields(data)}`),
   'referral.received': event(nothing, () => 'received a referral'),
+  'referral.sent-from-desk': event(z.object({ number: z.string() }), data => `sent the referral ${data.number} from the desk`),
+  'referral.patient-identified': event(z.object({ outcome: z.enum(['new', 'known']) }), data => data.outcome === 'new' ? 'said that the patient of a referral from the desk is new in the register' : 'said that the patient of a referral from the desk has a record already'),
   'referral.accepted': event(z.object({ protocol: z.string() }), data => `accepted a referral with the protocol ${data.protocol}`),
   'referral.returned': event(nothing, () => 'returned a referral for information'),
   'referral.declined': event(nothing, () => 'declined a referral'),

@@ -2,7 +2,7 @@ import * as z from 'zod'
 import { reportLanguages } from '../report/languages'
 import { referralSides } from './common'
 import type { ReferralLetterView } from './letter'
-import type { PatientBand, PatientView } from './patient'
+import type { Namesake, PatientBand, PatientView } from './patient'
 import type { ReferralState, StudyState, ReportStatus, DeliveryState } from '../states'
 
 export const threeAnswers = ['yes', 'no', 'not-asked'] as const
@@ -125,6 +125,10 @@ export interface ReferralRow {
   /** Past its hours by the organisation's clocks; null where none runs. */
   dueAt: string | null
 }
+/** POST /api/referrals/:id/identify: the record of the register that is the same person, or null for a new one. */
+export const identifySchema = z.object({ knownId: z.string().max(64).nullable(), reason: z.string().trim().max(500).default('') })
+/** While `identifiedAt` is null the patient's record is what the desk typed, and `candidates` may be the same person. */
+export interface DeskOrigin { sentBy: string, sentAt: string, identifiedAt: string | null, identifiedBy: string | null, outcome: 'new' | 'known' | null, candidates: Namesake[] }
 export interface ReferralView extends ReferralInput {
   id: string
   number: string
@@ -146,6 +150,8 @@ export interface ReferralView extends ReferralInput {
   report: { id: string, status: ReportStatus, version: number } | null
   owner: { id: string, name: string } | null
   letters: ReferralLetterView[]
+  /** It was sent from the desk of a referring physician. */
+  desk: DeskOrigin | null
   dueAt: string | null
   receivedAt: string | null
   deliveries: { id: string, state: DeliveryState, recipient: string }[]

@@ -84,6 +84,17 @@ describe('after it was sent', () => {
     const page = await desk(own!)
     expect([page.total, page.rows.flatMap(row => row.reports).map(line => line.reportId)]).toEqual([1, [mine.reportId]])
   })
+  it('what looks wrong in an own report reaches its signer, under the name of who is signed in; about another\'s nothing is found', async () => {
+    const [delivery] = await deliveriesOf(mine.reportId)
+    const [notMine] = await deliveriesOf(theirs.reportId)
+    const body = { words: 'The side contradicts what I see.' }
+    expect((await call('POST', `/api/desk/deliveries/${notMine!.id}/reply`, { cookie: own!.cookie, body })).status).toBe(404)
+    expect((await call('POST', `/api/desk/deliveries/${delivery!.id}/reply`, { cookie: own!.cookie, body: { words: 'short' } })).status).toBe(422)
+    expect((await call('POST', `/api/desk/deliveries/${delivery!.id}/reply`, { cookie: own!.cookie, body })).body).toMatchObject({ replies: [{ answeredAt: null }] })
+    expect(await t.db.selectFrom('deliveryReply').select(['deliveryId', 'words', 'fromName']).execute()).toEqual([{ deliveryId: delivery!.id, ...body, fromName: 'Dr Own Sample' }])
+    expect(await t.db.selectFrom('task').select('ownerId').where('kind', '=', 'recipient-reply').execute()).toEqual([{ ownerId: room.reader.actor.userId }])
+    expect(((await report(own!, mine.reportId)).body as unknown as DeskReportView).replies).toHaveLength(1)
+  })
   it('who is named for a copy sees the referral as such, with the report', async () => {
     const page = await desk(reads!)
     expect(page.rows.map(row => [row.copy, row.reports.map(line => line.reportId)])).toEqual([[true, [theirs.reportId]]])

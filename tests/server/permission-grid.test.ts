@@ -61,6 +61,7 @@ const noSite: [RegExp, string][] = [
   [/^\/api\/shelf\/(?:sets|row-checks)/, 'sets belong to the organisation'],
   [/^\/api\/ledger\/(?:verify|access-report)/, 'the chains are one; what a patient is told covers every site'],
   [/^\/api\/policies\/:name/, 'a policy by its name; its site stands in the query'],
+  [/^\/api\/desk\/drafts/, 'a draft is its writer\'s alone, and a referral may go to any open site; desk-refer.test.ts'],
   [/^\/api\/people\/role-proposals\/:id/, 'decided by who approves at the site; attack-two-people.test.ts'],
 ]
 const routes = await Promise.all(routeFiles().filter(route => !route.path.includes('**')).map(async (route) => {

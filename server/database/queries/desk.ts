@@ -29,6 +29,7 @@ export async function deskReferrals(db: Database, wish: DeskWish) {
   const { total } = await own(db, wish).select(eb => eb.fn.countAll<number>().as('total')).executeTakeFirstOrThrow()
   const rows = await own(db, wish).innerJoin('patient', 'patient.id', 'referral.patientId').innerJoin('site', 'site.id', 'referral.siteId')
     .select(['referral.id', 'referral.number', 'referral.state', 'stateSince', 'stateReason', 'urgency', 'clinicalQuestion as question', 'side', 'physicianId', 'bookingStartsAt', 'familyName', 'givenName', 'birthDate', 'site.name as siteName', 'site.phone as sitePhone', 'site.timeZone'])
+    .select(eb => eb.exists(eb.selectFrom('referrerLetter').select(sql`1`.as('one')).whereRef('referrerLetter.referralId', '=', 'referral.id').where('kind', '=', 'information').where('closedAt', 'is', null).where('referral.state', '=', 'returned')).as('asked'))
     .orderBy('stateSince', 'desc').orderBy('referral.id').limit(wish.pageSize).offset((wish.page - 1) * wish.pageSize).execute()
   return { rows, total }
 }

@@ -6,6 +6,7 @@ import { clockOfState, dueOf } from '#shared/referral-clocks'
 import { missingForBooking, urgencies, type ReferralRow, type Urgency } from '#shared/schemas/referral'
 import { referralStates, type ReferralState, type StudyState } from '#shared/states'
 import type { Database } from '../connection'
+import { toIdentify } from './desk-referrals'
 import { cameBack } from './letters'
 import { patientWords } from './patient-words'
 import { referralInputOf } from './referrals'
@@ -185,6 +186,7 @@ async function rowsOf(db: Database, ids: string[], { clocks, now }: Pick<Referra
     .selectAll('referral').select(['familyName', 'givenName', 'birthDate', 'recordNumber', 'site.name as siteName', 'physician.name as physicianName', 'owner.name as ownerName'])
     .select([
       cameBack.as('cameBack'),
+      toIdentify.as('toIdentify'),
       sql<string | null>`(SELECT id FROM study WHERE study.referral_id = referral.id AND study.state <> 'entered-in-error' ORDER BY created_at DESC LIMIT 1)`.as('studyId'),
       sql<StudyState | null>`(SELECT state FROM study WHERE study.referral_id = referral.id AND study.state <> 'entered-in-error' ORDER BY created_at DESC LIMIT 1)`.as('studyState'),
     ])
@@ -194,6 +196,6 @@ async function rowsOf(db: Database, ids: string[], { clocks, now }: Pick<Referra
     id: row.id, number: row.number, patientId: row.patientId, patientName: `${row.familyName}, ${row.givenName}`, birthDate: row.birthDate, recordNumber: row.recordNumber,
     siteId: row.siteId, siteName: row.siteName, physicianName: row.physicianName, state: row.state, stateSince: row.stateSince, urgency: row.urgency,
     clinicalQuestion: row.clinicalQuestion, side: row.side, studyId: row.studyId, bookingStartsAt: row.bookingStartsAt, ownerName: row.ownerName, cameBack: row.cameBack, dueAt: row.dueAt,
-    nextStep: nextStep({ state: row.state, missing: missingForBooking(referralInputOf(row, [])), studyState: row.studyState, cameBack: row.cameBack, overdue: row.dueAt !== null && row.dueAt < now.toISOString() }),
+    nextStep: nextStep({ state: row.state, missing: missingForBooking(referralInputOf(row, [])), studyState: row.studyState, cameBack: row.cameBack, overdue: row.dueAt !== null && row.dueAt < now.toISOString(), identify: row.toIdentify === 1 }),
   }))
 }

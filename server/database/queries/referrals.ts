@@ -3,6 +3,7 @@ import type { Database } from '../connection'
 import type { Referral } from '../tables/referral'
 import { patientBand, routeOf } from './bands'
 import { dueOf } from '#shared/referral-clocks'
+import { deskOriginOf } from './desk-referrals'
 import { physicianById } from './directory'
 import { lettersOf } from './letters'
 import { policyInForce } from './policies'
@@ -78,14 +79,14 @@ export async function referralView(db: Database, referralId: string, today: stri
   if (!row) return undefined
   const input = referralInputOf(row, await copiesOf(db, referralId))
   const copyPhysicians = (await Promise.all(input.copyPhysicianIds.map(id => physicianOf(db, id, today)))).filter(copy => copy !== null)
-  const [patient, band, physician, uploads, booking, around, route, history, letters, clocks, owner] = await Promise.all([
+  const [patient, band, physician, uploads, booking, around, route, history, letters, clocks, owner, desk] = await Promise.all([
     patientById(db, row.patientId), patientBand(db, referralId, today), physicianOf(db, row.physicianId, today), uploadsOf(db, referralId),
     bookingOf(db, referralId), studyAndReport(db, referralId), routeOf(db, referralId), historyOf(db, referralId),
-    lettersOf(db, referralId), policyInForce(db, 'clocks', row.siteId, today), ownerOf(db, row.ownerId),
+    lettersOf(db, referralId), policyInForce(db, 'clocks', row.siteId, today), ownerOf(db, row.ownerId), deskOriginOf(db, referralId),
   ])
   if (!patient || !band) return undefined
   const { id, number, state, stateSince, stateReason, protocol, revision, createdAt, receivedAt } = row
-  return { ...input, id, number, state, stateSince, stateReason, protocol, revision, createdAt, receivedAt, owner, letters, dueAt: dueOf(row, clocks.body), patient, band, physician, copyPhysicians, missing: missingForBooking(input), uploads, booking, ...around, route, history }
+  return { ...input, id, number, state, stateSince, stateReason, protocol, revision, createdAt, receivedAt, owner, letters, desk, dueAt: dueOf(row, clocks.body), patient, band, physician, copyPhysicians, missing: missingForBooking(input), uploads, booking, ...around, route, history }
 }
 
 export async function siteOfUpload(db: Database, uploadId: string): Promise<string | null> {

@@ -5,6 +5,8 @@ import type { BookingTable } from './booking'
 import type { BounceReportTable } from './bounce-report'
 import type { CounterTable } from './counter'
 import type { DeliveryTable } from './delivery'
+import type { DeskDraftTable } from './desk-draft'
+import type { DeskReferralTable } from './desk-referral'
 import type { EmergencyAccessTable } from './emergency-access'
 import type { EquipmentTable } from './equipment'
 import type { LegalHoldTable } from './legal-hold'
@@ -87,6 +89,8 @@ export interface Tables {
   referral: ReferralTable
   referralCount: ReferralCountTable
   referralCopy: ReferralCopyTable
+  deskDraft: DeskDraftTable
+  deskReferral: DeskReferralTable
   referrerLetter: ReferrerLetterTable
   stateChange: StateChangeTable
   upload: UploadTable
