@@ -37,7 +37,7 @@ export async function makePresent(maker: Maker, stage: Stage, today: Date): Prom
   const { clock, random, organisation } = maker
   const site = stage === 'arrived' || stage === 'recording' ? organisation.sites[0]! : random.pick(organisation.sites)
   clock.set(plusDays(today, -random.whole(7, 12)))
-  const referral = await makeReferral(maker, site, { complete: stage !== 'draft', again: stage === 'handed-over', ...(random.chance(0.25) ? { urgency: random.pick(['urgent', 'same-week'] as const) } : {}) })
+  const referral = await makeReferral(maker, site, { complete: stage !== 'draft', fromDesk: stage === 'returned', again: stage === 'handed-over', ...(random.chance(0.25) ? { urgency: random.pick(['urgent', 'same-week'] as const) } : {}) })
   if (stage === 'draft') return
   await moveAtIntake(maker, referral, stage, today)
 }

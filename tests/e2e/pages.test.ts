@@ -70,6 +70,8 @@ const addresses: Record<string, (ask: Ask) => Promise<string[]>> = {
   'directory/new.vue': async () => ['/directory/new'],
   'directory/[practiceId].vue': async ask => one((await ask<Rows<{ id: string }>>('/api/directory/practices')).rows).map(row => `/directory/${row.id}`),
   'desk/index.vue': async () => ['/desk'],
+  'desk/refer.vue': async () => ['/desk/refer'],
+  'desk/answer/[referralId].vue': async ask => (await ask<Rows<{ id: string, answerable: boolean }>>('/api/desk/referrals?show=open')).rows.filter(row => row.answerable).slice(0, 1).map(row => `/desk/answer/${row.id}`),
   'desk/[reportId].vue': async ask => (await ask<Rows<{ reports: { reportId: string }[] }>>('/api/desk/referrals?show=answered')).rows.flatMap(row => row.reports).slice(0, 1).map(report => `/desk/${report.reportId}`),
   'people/index.vue': async () => ['/people'],
   'people/new.vue': async () => ['/people/new'],
