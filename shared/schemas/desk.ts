@@ -86,7 +86,8 @@ export function deskProblems(values: DeskDraftValues): FieldError[] {
   const atSomeSite = deskReferralOf({ ...values, siteId: 'any' }, 'new').data
   const ofSchema = [patient, referral].flatMap(({ error }) => error?.issues.map(issue => ({ path: issue.path.join('.'), message: issue.message })) ?? [])
   const phone = values.phone.trim() ? [] : [{ path: 'phone', message: 'Enter a telephone number of the patient, or write "none".' }]
-  const found = [...ofSchema, ...phone, ...(atSomeSite ? missingForBooking(atSomeSite) : [])]
+  const birth = values.birthDate.trim() ? [] : [{ path: 'birthDate', message: 'Enter the date of birth, for example 1974-03-14.' }]
+  const found = [...birth, ...ofSchema, ...phone, ...(atSomeSite ? missingForBooking(atSomeSite) : [])]
   const order = [...Object.keys(deskDraftSchema.shape).slice(2), 'physicianId', 'siteId']
   const place = (path: string) => order.indexOf(path.split('.')[0] ?? '')
   return found.filter((error, index) => found.findIndex(other => other.path === error.path) === index).sort((a, b) => place(a.path) - place(b.path))

@@ -89,7 +89,7 @@ it('the clinic says that the patient has a record, and asks what is missing', as
   const { page } = clinic
   await visit(page, `${app.origin}/intake?state=received&search=${number}`)
   await page.getByText('Say who the patient is').first().waitFor()
-  await page.getByRole('link', { name: new RegExp(number) }).first().click()
+  await page.getByRole('row').filter({ hasText: number }).getByRole('link').first().click()
   const panel = page.locator('[data-test=identify]')
   await panel.waitFor()
   await page.waitForLoadState('networkidle')
