@@ -61,12 +61,12 @@ it('is signed with the wrong side, against the question of the program, and goes
   const { page, context } = neurologist
   const side = made.line.side!
   const impression = made.draft.impression.map(line => line.id === made.line.id ? { ...line, side: other(side), words: swapped(line.words, side) } : line)
-  const put = async (draft: object, revision: number) => await (await context.request.put(`${app.origin}/api/studies/${studyId}/draft`, { data: { draft, revision } })).json() as { revision: number, view: { checks: { key: string, strength: string, resolvedBecause?: string }[] } }
+  const put = async (draft: object, revision: number) => await (await context.request.put(`${app.origin}/api/studies/${studyId}/draft`, { data: { draft, revision } })).json() as { revision: number, view: { checks: { key: string, strength: string, about?: string, resolvedBecause?: string }[] } }
   const reading = await (await context.request.get(`${app.origin}/api/studies/${studyId}/reading`)).json() as { draftRevision: number }
   const saved = await put({ ...made.draft, impression }, reading.draftRevision)
   const open = saved.view.checks.filter(check => check.strength !== 'ok' && !check.resolvedBecause)
   expect(open.some(check => check.key.includes('side'))).toBe(true)
-  await put({ ...made.draft, impression, resolved: [...made.draft.resolved ?? [], ...open.map(check => ({ key: check.key, reason: 'Read from the trace.' }))] }, saved.revision)
+  await put({ ...made.draft, impression, resolved: [...made.draft.resolved ?? [], ...open.map(check => ({ key: check.key, reason: 'Read from the trace.', about: check.about }))] }, saved.revision)
   await visit(page, `${app.origin}/reading/${studyId}`)
   await page.getByLabel(/I reviewed the data/).check()
   await page.getByLabel('Your password, again').fill(app.person('neurologist').password)

@@ -55,7 +55,7 @@ describe('the newest first', () => {
 describe('the list of read studies', () => {
   it.each([['of everybody', undefined], ['of one reader', readers[1]], ['of nobody', null]])('%s is counted and paged', async (_name, readerId) => {
     const expected = await sorted({ siteIds: sites, states: ['read'] }, readerId)
-    const pages = await Promise.all([1, 2, 3, 4, 5].map(page => readingPage(t.db, { siteIds: sites, states: ['read'], ...(readerId !== undefined && { readerId }) }, { page, pageSize: 10 })))
+    const pages = await Promise.all([1, 2, 3, 4, 5].map(page => readingPage(t.db, { siteIds: sites, states: ['read'], ...(readerId !== undefined && { readerIds: readerId === null ? null : [readerId!] }) }, { page, pageSize: 10 })))
     expect(pages.flatMap(page => page.rows.map(row => row.studyId))).toEqual(expected)
     expect(pages[0]!.total).toBe(expected.length)
   })
