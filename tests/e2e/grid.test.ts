@@ -2,7 +2,7 @@ import type { Page } from 'playwright-core'
 import { afterAll, afterEach, beforeAll, expect, it } from 'vitest'
 import { startApp, type App, type Window } from './app'
 import { cell, saved, startRecording, studyOf, type } from './bench-start'
-import { expectFocus, press } from './keyboard'
+import { expectFocus, focused, press } from './keyboard'
 
 /** The recording grid as a spreadsheet: keys, units, blocks in and out, and nothing that moves while one types. */
 let app: App
@@ -112,7 +112,8 @@ it('a fall without slowing offers the median nerve at the elbow as a row; record
   await press(page, '?')
   await expectFocus(page, /^Add the row: median nerve at the elbow/)
   await press(page, 'Enter')
-  await expectFocus(page, /^RIGHT ulnar motor, median nerve at the elbow, latency/)
+  await expect.poll(async () => (await focused(page)).name).toMatch(/^RIGHT ulnar motor, median nerve at the elbow, latency/)
+  await expectFocus(page)
   await page.keyboard.type('6,1')
   await press(page, 'Tab')
   await page.keyboard.type('3,1')

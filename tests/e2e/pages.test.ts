@@ -19,6 +19,9 @@ const one = <T>(rows: readonly T[], group: (row: T) => string = () => ''): T[] =
 /** The administrator, who comes first, finds them; a technologist may read a report and has no list of them. */
 let reports: { reportId: string, siteName: string }[] = []
 
+/** The technologist asks it before the neurologist's pages are looked at: the demonstration has none. */
+let question = ''
+
 /** Where each page file is looked at; what differs by state is looked at in each state. */
 const addresses: Record<string, (ask: Ask) => Promise<string[]>> = {
   'index.vue': async () => ['/'],
@@ -46,8 +49,7 @@ const addresses: Record<string, (ask: Ask) => Promise<string[]>> = {
     const read = await ask<Rows<{ studyId: string }>>('/api/reading?state=read')
     return [...one(waiting.rows, row => String(row.readerId === null)), ...one(read.rows)].map(row => `/reading/${row.studyId}`)
   },
-  // Opens through a question that the bench asked; the demonstration has none: see ask-reader.test.ts.
-  'questions/[id].vue': async () => ['/questions/none'],
+  'questions/[id].vue': async () => question ? [`/questions/${question}`] : [],
   'reports/[reportId].vue': async (ask) => {
     const { sites } = await ask<{ sites: { name: string }[] }>('/api/me')
     return one(reports.filter(report => sites.some(site => site.name === report.siteName))).map(report => `/reports/${report.reportId}`)
@@ -117,6 +119,7 @@ it.each(rolesInOrder)('the pages of the %s are in order, the others closed', asy
   await window.context.clearCookies()
   await signIn(app, window.page, app.person(role))
   if (role === 'administrator') reports = (await asker(window.context.request)<Rows<{ reportId: string, siteName: string }>>('/api/dispatch?pageSize=100')).rows
+  if (role === 'technologist') question = await askQuestion()
   const mine = files.filter(file => !isPublic(file) && (!actionOf(file) || roleMay(role, actionOf(file)!)))
   expect(await lookAt(mine, role)).toEqual([])
   // The demonstration's medical director is a neurologist as well, whose rooms are looked at under that name.
@@ -136,6 +139,16 @@ const asker = (request: APIRequestContext): Ask => async (path) => {
   const answer = await request.get(`${app.origin}${path}`)
   if (!answer.ok()) throw new Error(`${path} answered ${answer.status()}.`)
   return await answer.json()
+}
+
+/** A question of the bench to the readers, so that its page has something to show. */
+async function askQuestion(): Promise<string> {
+  const ask = asker(window.context.request)
+  const { sites } = await ask<{ sites: { id: string }[] }>('/api/me')
+  const days = await Promise.all(sites.map(site => ask<{ studyId: string | null, state: string }[]>(`/api/bench?siteId=${site.id}`)))
+  const study = days.flat().find(row => row.studyId && row.state === 'recording')
+  const answer = await window.context.request.post(`${app.origin}/api/studies/${study?.studyId}/questions`, { data: { question: 'Is the fibular nerve enough?' } })
+  return (await answer.json() as { id: string }).id
 }
 
 /** Everything that is wrong with the pages, by address and screen; nothing when all is well. */
