@@ -142,8 +142,8 @@ it('two records are put together and taken apart again', async () => {
 it('a study from elsewhere is entered with its values', async () => {
   const { page } = administrator
   await button(page, 'Enter one').click()
-  await page.getByLabel('Day of the study').fill('2025-03-04')
-  await page.getByLabel('Where').fill('Another laboratory')
+  await page.getByLabel('Day of the study', { exact: true }).fill('2025-03-04')
+  await page.getByLabel('Where', { exact: true }).fill('Another laboratory')
   await page.getByLabel('What it said').fill('Slowing of the median nerve at the wrist.')
   await button(page, 'Save study').click()
   await page.locator('[data-test=outside-study]', { hasText: 'Another laboratory' }).waitFor()
