@@ -1,6 +1,7 @@
 import { randomUUID } from 'node:crypto'
 import type { Trx } from '#server/database/connection'
 import type { ReferenceAdoption } from '#server/database/tables/reference-adoption'
+import { techniquesNeeded } from '#shared/catalogue/comparisons'
 import { techniqueOf } from '#shared/catalogue/nerves'
 import { DomainError, type FieldError } from '#shared/errors'
 import { now, type ServiceContext } from './context'
@@ -20,7 +21,7 @@ async function todayAt(context: ServiceContext, trx: Trx, siteId: string): Promi
 async function checkProposal(trx: Trx, { setId, setVersion, techniques, effectiveOn }: Proposal, today: string): Promise<void> {
   const fields: FieldError[] = []
   if (!await referenceSet(trx, setId, setVersion)) fields.push({ path: 'setId', message: 'Choose a set of the shelf.' })
-  if (techniques?.some(id => !techniqueOf(id)) || techniques?.length === 0) fields.push({ path: 'techniques', message: 'Choose techniques of the catalogue, or none for all.' })
+  if (techniques?.some(id => !techniquesNeeded(id).every(technique => techniqueOf(technique))) || techniques?.length === 0) fields.push({ path: 'techniques', message: 'Choose one nerve or more, or take the whole set.' })
   if (effectiveOn < today) fields.push({ path: 'effectiveOn', message: 'The first day must not lie in the past: studies that were made are judged by what was in use then.' })
   if (fields.length) throw new DomainError('not-valid', { fields })
 }

@@ -57,8 +57,12 @@ it('corrected it is stored, proposed by one and approved by another', async () =
   await button(page, 'Store as version 1').click()
   await page.waitForURL(/\/shelf\/northmere-2026/)
   await page.getByLabel('Propose for site').selectOption({ label: 'Harrowmere Clinic' })
+  await page.getByLabel('Only for some nerves').check()
+  await expectNoAxeFindings(page)
+  await page.getByLabel('median motor').check()
   await button(page, 'Propose set').click()
   await page.getByText('waits for approval by a medical director').waitFor()
+  await page.getByText('one technique').waitFor()
   await expectNoAxeFindings(page)
 
   await signIn(app, director.page, app.person('medical-director'))
