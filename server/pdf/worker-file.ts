@@ -22,18 +22,18 @@ function nearest(from: string, name: string): string | undefined {
 }
 
 /**
- * The bundled PDF worker. In the built server it lies in `workers/`, wherever the build was copied to; in development
- * and tests it is bundled on first use.
+ * The bundled file of a worker thread, and the fonts of the one that draws. In the built server it lies in `workers/`,
+ * wherever the build was copied to; in development and tests it is bundled on first use.
  *
  * @throws when there is neither: the build is incomplete
  */
-export async function findWorkerFile(): Promise<WorkerFile> {
+export async function findWorkerFile(name: 'pdf' | 'long-read' = 'pdf'): Promise<WorkerFile> {
   const here = dirname(fileURLToPath(import.meta.url))
-  const built = nearest(here, 'workers/pdf.cjs')
+  const built = nearest(here, `workers/${name}.cjs`)
   if (built) return { file: built, fontsDir: join(dirname(built), 'fonts') }
   const script = nearest(here, 'scripts/build-workers.mjs') ?? nearest(process.cwd(), 'scripts/build-workers.mjs')
-  if (!script) throw new Error('The PDF worker is missing: workers/pdf.cjs belongs to the build.')
+  if (!script) throw new Error(`A worker is missing: workers/${name}.cjs belongs to the build.`)
   // The address is made at run time, so that the build does not follow it: esbuild is no part of the server.
-  const { buildWorkerIntoCache } = await import(/* @vite-ignore */ pathToFileURL(script).href) as { buildWorkerIntoCache: () => Promise<WorkerFile> }
-  return await buildWorkerIntoCache()
+  const { buildWorkerIntoCache } = await import(/* @vite-ignore */ pathToFileURL(script).href) as { buildWorkerIntoCache: (name: string) => Promise<WorkerFile> }
+  return await buildWorkerIntoCache(name)
 }

@@ -1,10 +1,10 @@
 import { join } from 'node:path'
 import { Worker } from 'node:worker_threads'
+import { findWorkerFile } from '#server/pdf/worker-file'
 import { DomainError } from '#shared/errors'
 import type { ServiceContext } from './context'
 import type { LongReadInput, LongReadName, LongReadResult } from './long-reads/index'
 import type { LongReadAnswer, LongReadJob } from './long-reads/worker'
-import { findWorker } from './worker-files'
 
 const timeoutMs = 120_000
 /** One after the other: two at once would only take the processor from the requests. */
@@ -22,7 +22,7 @@ export function longRead<N extends LongReadName>(context: ServiceContext, name: 
 }
 
 async function runInThread(job: LongReadJob): Promise<unknown> {
-  const worker = new Worker(await findWorker('long-read'), { workerData: job, resourceLimits: { maxOldGenerationSizeMb: 1024 } })
+  const worker = new Worker((await findWorkerFile('long-read')).file, { workerData: job, resourceLimits: { maxOldGenerationSizeMb: 1024 } })
   try {
     return await new Promise((resolve, reject) => {
       const timer = setTimeout(() => reject(failed('too long')), timeoutMs)

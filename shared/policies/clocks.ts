@@ -37,7 +37,7 @@ export const clocks = policyKind({
     ...usual,
     offerAppointment: { 'routine': 42 * day, 'urgent': 14 * day, 'same-week': 5 * day },
     sign: { 'routine': 2 * day, 'urgent': day, 'same-week': 8 },
-    acknowledge: { 'routine': 7 * day, 'urgent': 2 * day, 'same-week': day },
+    acknowledge: { 'routine': 5 * day, 'urgent': 2 * day, 'same-week': day },
     escalate: { 'routine': 7 * day, 'urgent': 2 * day, 'same-week': day },
   },
 })

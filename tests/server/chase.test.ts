@@ -11,7 +11,8 @@ import { makeNewVersion } from '#server/services/make-new-version'
 import { runOutboxOnce } from '#server/services/run-outbox'
 import { takeTask } from '#server/services/take-task'
 import { resolveDeliverySchema } from '#shared/schemas/delivery'
-import { chaseDueAt } from '#shared/chase'
+import { approvePolicy, proposePolicy } from '#server/services/policies'
+import { clocks } from '#shared/policies/clocks'
 import { TEST_NOW, testContext } from './helpers'
 import { finishedDraft, meaning, PASSWORD, readingRoom } from './reading-helpers'
 
@@ -56,7 +57,7 @@ describe('a report that nobody acknowledged', () => {
     await chaseUnacknowledged(t.context)
     await chaseUnacknowledged(t.context)
     expect((await tasks(id)).map(task => task.kind)).toEqual(['delivery-unacknowledged'])
-    expect(await listed(id)).toMatchObject({ urgency, state: 'sent', dueAt: chaseDueAt((await row(id)).sentAt!, urgency) })
+    expect(await listed(id)).toMatchObject({ urgency, state: 'sent', dueAt: new Date(Date.parse((await row(id)).sentAt!) + days * DAY * 60_000).toISOString() })
   })
   it('is gone from both once it is acknowledged', async () => {
     const { id } = await sent()
@@ -143,4 +144,17 @@ describe('what somebody records', () => {
     await resolveDelivery(room.admin, { id, outcome: 'by-hand', note: 'By post', hand: { ...hand, means: 'letter' } })
     expect((await withdrawDelivery(room.admin, { id, reason: 'Wrong practice' })).incidentId).not.toBeNull()
   })
+})
+
+it('the hours that two people approved are those that count', async () => {
+  const body = { ...clocks.initial, acknowledge: { ...clocks.initial.acknowledge, urgent: 3 } }
+  const { id: policyId } = await proposePolicy(room.director, { name: 'clocks', siteId: null, body, note: 'Telephone sooner', effectiveOn: TEST_NOW.slice(0, 10) })
+  await approvePolicy(t.as(await t.makeUser({ roles: ['medical-director'] })), { id: policyId })
+  const { id } = await sent('urgent')
+  t.clock.minutes(179)
+  await chaseUnacknowledged(t.context)
+  expect([await listed(id), await tasks(id)]).toEqual([undefined, []])
+  t.clock.minutes(2)
+  await chaseUnacknowledged(t.context)
+  expect([(await listed(id))?.urgency, (await tasks(id)).length]).toEqual(['urgent', 1])
 })
