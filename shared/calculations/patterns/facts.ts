@@ -4,7 +4,9 @@ import type { Side } from '../../schemas/common'
 import type { Run } from '../../schemas/study'
 import { countsAsCold } from '../temperature'
 import type { AppliedLimit, Result, RunAssessment } from '../types'
+import type { MotorNerve, MotorRun } from './motor-nerves'
 import type { PatternInput } from './pattern-input'
+import type { SensoryNerve } from './sensory-nerves'
 
 /** One number as a rule sees it. A response looked for and not found is told apart from one that is not known. */
 export interface Reading {
@@ -23,6 +25,8 @@ export interface RunFacts {
   technique: Technique
   /** Why it does not count: "cold: RIGHT hand 28.0 °C, below 32 °C"; '' when it does. */
   cold: string
+  /** As rules on motor nerves look at it: made when the first one asks. */
+  motor?: MotorRun
 }
 
 /** A study as the pattern sets look at it; built once per assessment. */
@@ -31,6 +35,12 @@ export interface Facts {
   run: (technique: string, side: Side) => RunFacts | undefined
   /** Set when a limit was used that is recalled and that nobody compared with the paper. */
   usedRecalled: boolean
+  /**
+   * What several sets ask for, made when the first one asks. It stands here and not in a WeakMap beside the rules: there
+   * it would keep every assessment alive until the next full collection.
+   */
+  motorNerves?: readonly MotorNerve[]
+  sensoryNerves?: readonly SensoryNerve[]
 }
 
 /** Gathers what was studied; each run once. */

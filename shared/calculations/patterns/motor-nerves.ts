@@ -45,16 +45,9 @@ const recordings: readonly { nerve: LimbNerve, motor: readonly string[], fWave?:
   { nerve: 'tibial', motor: ['tibial-motor-ah'], fWave: 'tibial-f-ah' },
 ]
 
-/** Several sets ask for the nerves of one study: gathered once. */
-const gathered = new WeakMap<Facts, readonly MotorNerve[]>()
-
 /** Every motor nerve of the limbs that was studied, right before left. */
 export function motorNervesOf(facts: Facts): readonly MotorNerve[] {
-  const known = gathered.get(facts)
-  if (known) return known
-  const nerves = sides.flatMap(side => recordings.map(one => motorNerve(facts, one, side)).filter(nerve => nerve !== null))
-  gathered.set(facts, nerves)
-  return nerves
+  return facts.motorNerves ??= sides.flatMap(side => recordings.map(one => motorNerve(facts, one, side)).filter(nerve => nerve !== null))
 }
 
 function motorNerve(facts: Facts, { nerve, motor, fWave }: (typeof recordings)[number], side: Side): MotorNerve | null {
@@ -78,15 +71,9 @@ function fReading(facts: Facts, run: RunFacts): Reading {
   return shortest
 }
 
-const looked = new WeakMap<RunFacts, MotorRun>()
-
 /** A motor run as the rules look at it; looked at once. */
 export function motorRun(facts: Facts, run: RunFacts): MotorRun {
-  const known = looked.get(run)
-  if (known) return known
-  const made = makeMotorRun(facts, run)
-  looked.set(run, made)
-  return made
+  return run.motor ??= makeMotorRun(facts, run)
 }
 
 function makeMotorRun(facts: Facts, run: RunFacts): MotorRun {

@@ -27,8 +27,8 @@ const recordings: readonly { nerve: string, techniques: readonly string[] }[] = 
 ]
 
 /** Every sensory nerve of arms and legs that was studied, right before left. */
-export function sensoryNervesOf(facts: Facts): SensoryNerve[] {
-  return sides.flatMap(side => recordings.map(({ nerve, techniques }) => {
+export function sensoryNervesOf(facts: Facts): readonly SensoryNerve[] {
+  return facts.sensoryNerves ??= sides.flatMap(side => recordings.map(({ nerve, techniques }) => {
     const run = techniques.map(technique => facts.run(technique, side)).find(one => one !== undefined)
     return run && sensoryNerve(facts, run, nerve, side)
   }).filter(nerve => nerve !== undefined))
