@@ -7,7 +7,7 @@ import type { PlacedRow } from '../placed-rows'
 import type { KnownRun } from '../study-context'
 import { absenceLabels } from '../../schemas/study'
 import type { Remark, RunAssessment } from '../types'
-import { addRemark, type RemarkList } from './remark'
+import { addRemark, hasResponse, type RemarkList } from './remark'
 
 /** Difference between sites that asks for a look, in per cent: formula collection F1.6, from memory. */
 export const NOTABLE_PERCENT = 20
@@ -30,6 +30,7 @@ function remarkOnPair(list: RemarkList, known: KnownRun, previous: PlacedRow, pl
   const [distal, proximal] = [previous.row.values.amplitudeMv, placed.row.values.amplitudeMv]
   if (typeof distal !== 'number' || typeof proximal !== 'number' || distal <= 0) return
   const fall = 100 * (1 - proximal / distal)
+  if (Math.abs(fall) <= NOTABLE_PERCENT) return
   const where = { runId: known.run.id, rowId: placed.row.id, quantity: 'amplitudeMv' }
   remarkOnStimulus(list, known, previous, placed, fall)
   const beside = besideWords(known)
@@ -97,19 +98,24 @@ function remarkOnStimulus(list: RemarkList, known: KnownRun, previous: PlacedRow
   addRemark(list, { code: 'weak-stimulus', strength: 'check', runId: known.run.id, rowId: placed.row.id, quantity: 'stimulusMa', sentence: `The response at ${placed.label} is smaller than at ${previous.label} and the stimulus no stronger (${proximal} mA): was it supramaximal?` })
 }
 
+/** What a row that was begun has to hold, in words. */
+const neededWords = {
+  motor: [['latencyMs', 'latency'], ['amplitudeMv', 'amplitude']],
+  sensory: [['onsetLatencyMs', 'onset latency'], ['amplitudeUv', 'amplitude']],
+} as const
+
 /** A column that was begun and left out in one row. */
 function remarkOnGaps(list: RemarkList, known: KnownRun, rows: readonly PlacedRow[]): void {
   const kind = known.technique?.kind
   if (kind !== 'motor' && kind !== 'sensory' && kind !== 'mixed') return
-  const started = rows.filter(({ row }) => Object.entries(row.values).some(([quantity, entry]) => quantity !== 'distanceMm' && typeof entry === 'number'))
+  const started = rows.filter(({ row }) => hasResponse(row))
+  const needed = kind === 'motor' ? neededWords.motor : neededWords.sensory
+  const hasDurations = kind === 'motor' && started.length > 1 && started.some(({ row }) => typeof row.values.durationMs === 'number')
   for (const { row, label } of started) {
-    const needed = kind === 'motor' ? ['latencyMs', 'amplitudeMv'] as const : ['onsetLatencyMs', 'amplitudeUv'] as const
-    const words = { latencyMs: 'latency', amplitudeMv: 'amplitude', onsetLatencyMs: 'onset latency', amplitudeUv: 'amplitude' }
-    for (const quantity of needed) {
-      if (row.values[quantity] === undefined) addRemark(list, { code: 'empty', strength: 'note', runId: known.run.id, rowId: row.id, quantity, sentence: `The ${words[quantity]} at ${label} is empty.` })
+    for (const [quantity, words] of needed) {
+      if (row.values[quantity] === undefined) addRemark(list, { code: 'empty', strength: 'note', runId: known.run.id, rowId: row.id, quantity, sentence: `The ${words} at ${label} is empty.` })
     }
     if (row.values.distanceMm === undefined) addRemark(list, { code: 'empty', strength: 'note', runId: known.run.id, rowId: row.id, quantity: 'distanceMm', sentence: `The distance at ${label} is empty: no velocity can be computed and no limit at a fixed distance applied.` })
-    const others = started.some(other => typeof other.row.values.durationMs === 'number')
-    if (kind === 'motor' && started.length > 1 && others && row.values.durationMs === undefined) addRemark(list, { code: 'empty', strength: 'note', runId: known.run.id, rowId: row.id, quantity: 'durationMs', sentence: `The duration at ${label} is empty: dispersion cannot be judged there.` })
+    if (hasDurations && row.values.durationMs === undefined) addRemark(list, { code: 'empty', strength: 'note', runId: known.run.id, rowId: row.id, quantity: 'durationMs', sentence: `The duration at ${label} is empty: dispersion cannot be judged there.` })
   }
 }

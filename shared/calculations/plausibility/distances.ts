@@ -3,7 +3,7 @@ import { numberOf } from '../computed-value'
 import { roundForPrint } from '../round-for-print'
 import type { PlacedRow } from '../placed-rows'
 import type { KnownRun } from '../study-context'
-import type { Result, RunAssessment } from '../types'
+import type { Remark, Result, RunAssessment } from '../types'
 import { capital } from '../words'
 import { addRemark, OWN_DECISION, type RemarkList } from './remark'
 
@@ -59,17 +59,17 @@ function remarkOnVelocity(list: RemarkList, result: Result, known: KnownRun): vo
   const { possible, usual } = quantityOf('velocityMps')
   // Over 20 mm a tenth of a millisecond moves the velocity by half: the step itself is what is looked at.
   if (velocity === null || !possible || !usual || isShortStep(known, result.rowId)) return
-  const where = { runId: result.runId, rowId: result.rowId, quantity: result.quantity }
-  const said = `${capital(result.label)} comes to ${roundForPrint(velocity, velocity < 10 ? 1 : 0)} m/s`
+  const add = (code: string, strength: Remark['strength'], words: string) => addRemark(list, {
+    runId: result.runId, rowId: result.rowId, quantity: result.quantity, code, strength, source: OWN_DECISION,
+    sentence: `${capital(result.label)} comes to ${roundForPrint(velocity, velocity < 10 ? 1 : 0)} m/s${words}`,
+  })
   if (velocity < possible.min || velocity > possible.max) {
-    addRemark(list, { ...where, code: 'velocity-impossible', strength: 'stop', source: OWN_DECISION, sentence: `${said}; nerves carry between ${possible.min} and ${possible.max} m/s. Check the distance and both latencies.` })
+    add('velocity-impossible', 'stop', `; nerves carry between ${possible.min} and ${possible.max} m/s. Check the distance and both latencies.`)
     return
   }
   const leg = known.technique?.limb === 'leg' && known.technique.kind === 'motor' && result.at === 'leg'
   const max = leg ? LEG_SEGMENT_MPS : usual.max
-  if (velocity < usual.min || velocity > max) {
-    addRemark(list, { ...where, code: 'velocity-unusual', strength: 'check', source: OWN_DECISION, sentence: `${said}, usually between ${usual.min} and ${max} m/s. Check the distance, the cursors, cathode and anode.` })
-  }
+  if (velocity < usual.min || velocity > max) add('velocity-unusual', 'check', `, usually between ${usual.min} and ${max} m/s. Check the distance, the cursors, cathode and anode.`)
 }
 
 /** Skin and nerve move differently when the elbow bends: the position belongs to the distance. */

@@ -19,7 +19,7 @@ export function findRemarks(context: StudyContext, runs: readonly RunAssessment[
     const assessed = runs[index]
     if (!known.technique || !assessed || known.supersededBy !== undefined) continue
     const { rows } = known
-    remarkOnValues(list, known, [...rows, ...known.asides])
+    remarkOnValues(list, known, known.asides.length > 0 ? [...rows, ...known.asides] : rows)
     remarkOnOrder(list, known, rows)
     remarkOnDistances(list, known, rows, assessed)
     remarkOnAmplitudes(list, known, rows, assessed)

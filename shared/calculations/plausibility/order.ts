@@ -27,11 +27,10 @@ const numberIn = ({ row }: PlacedRow, quantity: QuantityId): number | null => {
 function remarkOnSites(list: RemarkList, known: KnownRun, rows: readonly PlacedRow[]): void {
   const { technique, run } = known
   if (!technique || technique.kind === 'needle') return
-  const seen = new Set<string>()
-  for (const { row, site, label } of rows) {
+  for (const [index, { row, site, label }] of rows.entries()) {
     if (!site) addRemark(list, { code: 'unknown-site', strength: 'check', runId: run.id, rowId: row.id, sentence: `The site ${label} does not belong to ${technique.label}.` })
-    if (seen.has(row.site) && technique.kind !== 'repetitive') addRemark(list, { code: 'site-twice', strength: 'check', runId: run.id, rowId: row.id, sentence: `${label.charAt(0).toUpperCase()}${label.slice(1)} stands twice in ${technique.label}.` })
-    seen.add(row.site)
+    const isRepeated = rows.findIndex(other => other.row.site === row.site) < index
+    if (isRepeated && technique.kind !== 'repetitive') addRemark(list, { code: 'site-twice', strength: 'check', runId: run.id, rowId: row.id, sentence: `${label.charAt(0).toUpperCase()}${label.slice(1)} stands twice in ${technique.label}.` })
   }
 }
 

@@ -1,5 +1,6 @@
+import type { QuantityId } from '../../catalogue/quantities'
 import type { Side } from '../../schemas/common'
-import type { KeptCheck, Study } from '../../schemas/study'
+import type { KeptCheck, RunRow, Study } from '../../schemas/study'
 import type { KnownRun } from '../study-context'
 import type { Remark } from '../types'
 import { sideWords } from '../words'
@@ -27,7 +28,7 @@ export const COMMON_PRACTICE = 'common practice'
 export const OWN_DECISION = 'this project\'s ranges: common practice, wide enough for severe disease'
 
 export function addRemark(list: RemarkList, input: RemarkInput): void {
-  const key = [input.code, input.runId, input.rowId, input.quantity].filter(part => part !== undefined).join('/')
+  const key = input.code + under(input.runId) + under(input.rowId) + under(input.quantity)
   const remark: Remark = { key, source: COMMON_PRACTICE, ...input }
   const kept = list.kept.get(key)
   const answersThis = kept !== undefined && (kept.sentence === undefined || kept.sentence === remark.sentence)
@@ -35,9 +36,17 @@ export function addRemark(list: RemarkList, input: RemarkInput): void {
   list.remarks.push(remark)
 }
 
+const under = (part: string | undefined) => part === undefined ? '' : `/${part}`
+
 /** "RIGHT ulnar motor": how a sentence names a run. */
 export function runName({ run, technique }: Pick<KnownRun, 'run' | 'technique'>): string {
   return `${sideWords[run.side]} ${technique?.label ?? run.technique}`
 }
 
 export const sideWord = (side: Side) => sideWords[side]
+
+/** Does the row hold a number besides its distance? */
+export function hasResponse({ values }: RunRow): boolean {
+  for (const quantity in values) if (quantity !== 'distanceMm' && typeof values[quantity as QuantityId] === 'number') return true
+  return false
+}

@@ -5,14 +5,15 @@ import { standingRun, type KnownRun, type StudyContext } from '../study-context'
 import { numberOf } from '../computed-value'
 import type { ComparisonAssessment } from '../types'
 import { roundForPrint } from '../round-for-print'
-import { addRemark, runName, sideWord, type RemarkList } from './remark'
+import { addRemark, hasResponse, runName, sideWord, type RemarkList } from './remark'
 
 /** What is seen only when runs are looked at together: sides, copies, doubles, and pictures that do not go together. */
 export function remarkOnStudy(list: RemarkList, context: StudyContext, comparisons: readonly ComparisonAssessment[]): void {
-  remarkOnReferralSide(list, context)
-  remarkOnDoubles(list, context)
-  remarkOnMirrored(list, context)
-  remarkOnSuralAlone(list, context)
+  const measured = context.runs.filter(known => known.measured && known.supersededBy === undefined)
+  remarkOnReferralSide(list, context, measured)
+  remarkOnDoubles(list, context, measured)
+  remarkOnMirrored(list, context, measured)
+  remarkOnSuralAlone(list, measured)
   remarkOnSensoryBesideLatency(list, context)
   remarkOnHalfAmplitude(list, comparisons)
   for (const known of context.runs) {
@@ -20,21 +21,20 @@ export function remarkOnStudy(list: RemarkList, context: StudyContext, compariso
   }
 }
 
-const measured = (context: StudyContext) => context.runs.filter(known => known.measured && known.supersededBy === undefined)
-
 /** The other side alone: a comparison side is usual, the wrong one is not. */
-function remarkOnReferralSide(list: RemarkList, context: StudyContext): void {
+function remarkOnReferralSide(list: RemarkList, context: StudyContext, measured: readonly KnownRun[]): void {
   const asked = context.study.referralSide
   if (asked !== 'right' && asked !== 'left') return
-  const sides = new Set<Side>(measured(context).map(known => known.run.side))
+  const sides = new Set<Side>(measured.map(known => known.run.side))
   if (sides.size !== 1 || sides.has(asked)) return
   addRemark(list, { code: 'side-unlike-referral', strength: 'check', sentence: `The referral asks for the ${sideWord(asked)} side; only the ${sideWord(otherSide(asked))} was recorded.` })
 }
 
-function remarkOnDoubles(list: RemarkList, context: StudyContext): void {
+function remarkOnDoubles(list: RemarkList, context: StudyContext, measured: readonly KnownRun[]): void {
+  if (measured.every(known => standingRun(context, known.run.technique, known.run.side) === known)) return
   const seen = new Map<string, KnownRun>()
   // By id, so that the order of the runs does not decide which one is named.
-  for (const known of measured(context).sort((a, b) => a.run.id < b.run.id ? -1 : 1)) {
+  for (const known of measured.toSorted((a, b) => a.run.id < b.run.id ? -1 : 1)) {
     const key = `${known.run.technique}/${known.run.side}`
     const before = seen.get(key)
     seen.set(key, known)
@@ -45,8 +45,8 @@ function remarkOnDoubles(list: RemarkList, context: StudyContext): void {
 }
 
 /** Every number the same on both sides is rather a copy, or one side recorded twice. */
-function remarkOnMirrored(list: RemarkList, context: StudyContext): void {
-  for (const right of measured(context)) {
+function remarkOnMirrored(list: RemarkList, context: StudyContext, measured: readonly KnownRun[]): void {
+  for (const right of measured) {
     if (right.run.side !== 'right') continue
     const left = standingRun(context, right.run.technique, 'left')
     if (!left) continue
@@ -72,12 +72,12 @@ function isCopy(right: KnownRun, left: KnownRun): boolean {
   return count >= 3
 }
 
-const hasResponse = ({ run }: KnownRun) => run.rows.some(row => Object.entries(row.values).some(([quantity, entry]) => quantity !== 'distanceMm' && typeof entry === 'number'))
-const isSilent = (known: KnownRun) => !hasResponse(known) && known.run.rows.some(row => Object.values(row.values).includes('no-response'))
+const isAnswered = ({ run }: KnownRun) => run.rows.some(hasResponse)
+const isSilent = (known: KnownRun) => !isAnswered(known) && known.run.rows.some(row => Object.values(row.values).includes('no-response'))
 
-function remarkOnSuralAlone(list: RemarkList, context: StudyContext): void {
-  const nerves = measured(context).filter(({ technique }) => technique && ['motor', 'sensory', 'mixed'].includes(technique.kind))
-  const sural = nerves.filter(known => known.run.technique === 'sural' && hasResponse(known))
+function remarkOnSuralAlone(list: RemarkList, measured: readonly KnownRun[]): void {
+  const nerves = measured.filter(({ technique }) => technique && ['motor', 'sensory', 'mixed'].includes(technique.kind))
+  const sural = nerves.filter(known => known.run.technique === 'sural' && isAnswered(known))
   const others = nerves.filter(known => known.run.technique !== 'sural')
   const [first] = sural
   if (!first || others.length < 3 || !others.every(isSilent)) return
@@ -92,7 +92,7 @@ function remarkOnSensoryBesideLatency(list: RemarkList, context: StudyContext): 
     const motor = standingRun(context, 'median-motor-apb', side)
     const sensory = standingRun(context, 'median-sensory-d2', side)
     const latency = motor?.usual?.row.values.latencyMs
-    if (!motor || !sensory || typeof latency !== 'number' || latency <= LATENCY_WITH_SENSORY_MS || !hasResponse(sensory)) continue
+    if (!motor || !sensory || typeof latency !== 'number' || latency <= LATENCY_WITH_SENSORY_MS || !isAnswered(sensory)) continue
     addRemark(list, { code: 'sensory-beside-long-latency', strength: 'note', runId: motor.run.id, sentence: `A ${sideWord(side)} median sensory response beside a distal motor latency of ${latency} ms is unusual: check stimulation and recording.`, source: 'Clin Neurol Neurosurg 2016;148:45-48, doi:10.1016/j.clineuro.2016.06.019 (read)' })
   }
 }

@@ -1,10 +1,12 @@
 import { possibleRange } from '../../catalogue/possible-range'
 import { quantities, quantityOf, type Quantity, type QuantityId } from '../../catalogue/quantities'
+import type { Entry } from '../../schemas/study'
 import { quantityInfo } from '../quantity-info'
 import { roundForPrint } from '../round-for-print'
 import type { PlacedRow } from '../placed-rows'
 import type { KnownRun } from '../study-context'
 import { TOLERANCE } from '../tolerance'
+import type { Remark } from '../types'
 import { capital } from '../words'
 import { addRemark, OWN_DECISION, type RemarkList } from './remark'
 
@@ -14,7 +16,9 @@ import { addRemark, OWN_DECISION, type RemarkList } from './remark'
  */
 export function remarkOnValues(list: RemarkList, known: KnownRun, rows: readonly PlacedRow[]): void {
   for (const placed of rows) {
-    for (const [quantity, entry] of Object.entries(placed.row.values)) {
+    const { values } = placed.row
+    for (const quantity in values) {
+      const entry = values[quantity as QuantityId]
       if (typeof entry === 'number') remarkOnNumber(list, known, placed, quantity as QuantityId, entry, placed !== rows[0])
     }
     remarkOnSeries(list, known, placed)
@@ -24,9 +28,10 @@ export function remarkOnValues(list: RemarkList, known: KnownRun, rows: readonly
 
 /** The single responses of a series, as one remark for the row. */
 function remarkOnSeries(list: RemarkList, known: KnownRun, { row, label }: PlacedRow): void {
+  if (!row.series) return
   const quantity: QuantityId = known.technique?.kind === 'f-wave' ? 'minimumLatencyMs' : 'amplitudeMv'
   const { possible, unit } = quantityOf(quantity)
-  const wrong = (row.series ?? []).filter((entry): entry is number => typeof entry === 'number').find(entry => possible && (entry < possible.min || entry > possible.max))
+  const wrong = row.series.filter((entry): entry is number => typeof entry === 'number').find(entry => possible && (entry < possible.min || entry > possible.max))
   if (wrong === undefined || !possible) return
   addRemark(list, {
     code: 'series-impossible', strength: 'stop', runId: known.run.id, rowId: row.id, source: OWN_DECISION,
@@ -34,26 +39,29 @@ function remarkOnSeries(list: RemarkList, known: KnownRun, { row, label }: Place
   })
 }
 
-function remarkOnNumber(list: RemarkList, known: KnownRun, { row, label, site }: PlacedRow, id: QuantityId, value: number, isProximal: boolean): void {
+/** Words are made for the few numbers that need some. */
+function remarkOnNumber(list: RemarkList, known: KnownRun, placed: PlacedRow, id: QuantityId, value: number, isProximal: boolean): void {
   if (!(id in quantities)) return
   const quantity = quantityOf(id)
-  const where = { runId: known.run.id, rowId: row.id, quantity: id }
-  const name = capital(`${quantityInfo(id).label} at ${label}`)
-  const isCount = quantity.kind === 'count'
-  if (value <= 0 && !isCount) {
-    addRemark(list, { ...where, code: 'zero', strength: 'stop', source: OWN_DECISION, sentence: value === 0 ? `${name}: 0 is no measurement. Enter no response, technical, not done or stopped.` : `${name} must be above 0.` })
+  const add = (code: string, strength: Remark['strength'], words: string) =>
+    addRemark(list, { runId: known.run.id, rowId: placed.row.id, quantity: id, code, strength, source: OWN_DECISION, sentence: capital(`${quantityInfo(id).label} at ${placed.label}${words}`) })
+  if (value <= 0 && quantity.kind !== 'count') {
+    add('zero', 'stop', value === 0 ? ': 0 is no measurement. Enter no response, technical, not done or stopped.' : ' must be above 0.')
     return
   }
-  const possible = possibleRange(quantity, site)
-  if (possible && (value < possible.min - TOLERANCE || value > possible.max + TOLERANCE)) {
-    addRemark(list, { ...where, code: 'impossible', strength: 'stop', source: OWN_DECISION, sentence: `${name} must be between ${possible.min} and ${possible.max}${unitOf(quantity)}; ${plain(value)} was entered.${slipHint(quantity, value, possible)}` })
+  const possible = possibleRange(quantity, placed.site)
+  if (possible && isBeyond(value, possible)) {
+    add('impossible', 'stop', ` must be between ${rangeWords(quantity, value, possible)}`)
     return
   }
   const usual = usualRange(known, quantity, isProximal)
-  if (usual && (value < usual.min - TOLERANCE || value > usual.max + TOLERANCE)) {
-    addRemark(list, { ...where, code: 'unusual', strength: 'check', source: OWN_DECISION, sentence: `${name} is usually between ${usual.min} and ${usual.max}${unitOf(quantity)}; ${plain(value)} was entered.${slipHint(quantity, value, usual)}` })
-  }
+  if (usual && isBeyond(value, usual)) add('unusual', 'check', ` is usually between ${rangeWords(quantity, value, usual)}`)
 }
+
+type Range = NonNullable<Quantity['usual']>
+const isBeyond = (value: number, { min, max }: Range) => value < min - TOLERANCE || value > max + TOLERANCE
+const rangeWords = (quantity: Quantity, value: number, range: Range) =>
+  `${range.min} and ${range.max}${unitOf(quantity)}; ${plain(value)} was entered.${slipHint(quantity, value, range)}`
 
 /**
  * A response to a proximal stimulus comes later: at a usual velocity of 40 m/s and 500 mm after 12 ms more (common practice,
@@ -81,11 +89,16 @@ function slipHint(quantity: Quantity, value: number, range: { min: number, max: 
 
 /** A number beside "no response" of the same response cannot both be right. */
 function remarkOnContradiction(list: RemarkList, known: KnownRun, { row, label }: PlacedRow): void {
-  for (const amplitude of ['amplitudeMv', 'amplitudeUv'] as const) {
-    const size = row.values[amplitude]
-    const timed = (['latencyMs', 'onsetLatencyMs', 'peakLatencyMs'] as const).filter(quantity => row.values[quantity] !== undefined)
-    const contradicts = timed.some(quantity => (size === 'no-response' && typeof row.values[quantity] === 'number') || (typeof size === 'number' && row.values[quantity] === 'no-response'))
-    if (!contradicts) continue
+  for (const amplitude of sizes) {
+    if (!contradictsTimes(row, row.values[amplitude])) continue
     addRemark(list, { code: 'response-and-none', strength: 'stop', runId: known.run.id, rowId: row.id, quantity: amplitude, sentence: `At ${label} a number stands beside no response: correct the latency or the amplitude.` })
   }
+}
+
+const sizes = ['amplitudeMv', 'amplitudeUv'] as const
+const times = ['latencyMs', 'onsetLatencyMs', 'peakLatencyMs'] as const
+
+function contradictsTimes({ values }: PlacedRow['row'], size: Entry | undefined): boolean {
+  if (size === 'no-response') return times.some(quantity => typeof values[quantity] === 'number')
+  return typeof size === 'number' && times.some(quantity => values[quantity] === 'no-response')
 }
