@@ -6,7 +6,7 @@ const QUIET_MS = 2_000
 /**
  * Connects this tab to the browser's one event stream while somebody is signed in: through a worker that all tabs share,
  * so that one connection is held whatever is open; where there is none (some tablets) the tab asks every few seconds.
- * The page's own work goes first; what happens until the line stands is asked for afterwards.
+ * The page's own work goes first; what happened since its server read who is signed in is asked for afterwards.
  */
 export default defineNuxtPlugin(() => {
   const { user, may } = useSession()
@@ -24,7 +24,7 @@ export default defineNuxtPlugin(() => {
     port.onmessage = ({ data }: MessageEvent<ChangeMessage>) => tell(data)
     return { start: () => port.postMessage('start'), stop: () => port.postMessage('bye') }
   }
-  /** What happened between the page and the line. */
+  /** What happened between the answer that made the page and the line. */
   async function catchUp(after: number) {
     const { news } = await ask(`/api/events/news?after=${after}`)
     if (news?.again) tell({ type: 'again' })
@@ -33,11 +33,12 @@ export default defineNuxtPlugin(() => {
   let line: ReturnType<typeof connect> | undefined
   async function start() {
     if (!user.value || user.value.mustEnrol || !may('changes.hear')) return
-    const before = await ask('/api/events/news').catch(() => null)
+    // Read before anything the page shows was fetched: what changed while it was on its way is told too.
+    const before = user.value.changesUpTo
     await whenQuiet(QUIET_MS)
     line ??= connect()
     line.start()
-    if (before?.news) await catchUp(before.news.seq).catch(() => undefined)
+    await catchUp(before).catch(() => undefined)
   }
   watch(() => user.value?.id, () => void start(), { immediate: true })
   watch(signedOut, out => out || void start())

@@ -26,7 +26,7 @@ export async function deliveryOfToken(context: ServiceContext, { token, address 
   if (used && used.consumedPoints >= wrongLinks.points) throw new DomainError('too-many-requests')
   const delivery = await context.db.selectFrom('delivery').innerJoin('reportVersion', 'reportVersion.id', 'delivery.reportVersionId').innerJoin('report', 'report.id', 'reportVersion.reportId')
     .innerJoin('study', 'study.id', 'report.studyId').innerJoin('site', 'site.id', 'delivery.siteId').innerJoin('organisation', 'organisation.id', 'site.organisationId').innerJoin('practice', 'practice.id', 'delivery.practiceId')
-    .select(['delivery.id', 'delivery.state', 'delivery.siteId', 'delivery.method', 'delivery.createdAt', 'delivery.sentAt', 'delivery.linkRenewedAt', 'delivery.reportVersionId', 'practice.passphraseSealed', 'acknowledgedAt', 'report.id as reportId', 'report.number', 'reportVersion.version', 'organisation.name as organisation', 'study.patientId'])
+    .select(['delivery.id', 'delivery.state', 'delivery.siteId', 'delivery.method', 'delivery.createdAt', 'delivery.sentAt', 'delivery.linkRenewedAt', 'delivery.reportVersionId', 'delivery.practiceId', 'delivery.physicianId', 'practice.passphraseSealed', 'acknowledgedAt', 'report.id as reportId', 'report.number', 'reportVersion.version', 'organisation.name as organisation', 'study.patientId'])
     .where('acknowledgeTokenHash', '=', context.keys.tokenHash(token)).executeTakeFirst()
   if (delivery) return delivery
   await limiter.consume(address).catch(() => undefined)

@@ -45,7 +45,7 @@ function sessionUserOf(context: ServiceContext, rows: SessionRows): SessionUser 
     id: first.id, email: first.email, name: first.name, printedName: first.printedName, credentials: first.credentials, emailConfirmed: first.emailConfirmedAt !== null,
     holdings, sites: [...sites.values()], secondFactor, inTraining: first.inTraining === 1,
     mustEnrol: !secondFactor && holdings.some(holding => rolesWithSecondFactor.includes(holding.role)),
-    demonstration: context.settings.demonstration, idleMinutes: context.settings.idleMinutes, openTasks: 0,
+    demonstration: context.settings.demonstration, idleMinutes: context.settings.idleMinutes, openTasks: 0, changesUpTo: 0,
   }
 }
 

@@ -10,8 +10,7 @@ const publicRoutes: readonly { methods: readonly string[], path: RegExp }[] = [
   { methods: ['POST'], path: /^\/api\/set-password$/ },
   { methods: ['POST'], path: /^\/api\/forgotten-password$/ },
   { methods: ['GET', 'POST'], path: /^\/api\/acknowledge\/[^/]+$/ },
-  { methods: ['POST'], path: /^\/api\/acknowledge\/[^/]+\/(?:collect|reply|ask-link)$/ },
-  { methods: ['POST'], path: /^\/api\/acknowledge\/[^/]+\/collect$/ },
+  { methods: ['POST'], path: /^\/api\/acknowledge\/[^/]+\/(?:collectors|collect|reply|ask-link)$/ },
   { methods: ['GET'], path: /^\/api\/letters\/[^/]+$/ },
   { methods: ['POST'], path: /^\/api\/letters\/[^/]+\/(?:open|answer|uploads)$/ },
 ]

@@ -32,7 +32,8 @@ export const reportEvents = {
   'incident.opened': event(delivery.extend({ incidentId: z.string() }), data => `opened the incident of ${data.number}, version ${data.version}`),
   'incident.changed': event(delivery.extend({ incidentId: z.string() }).extend(changes.shape), data => `changed the incident of ${data.number}, version ${data.version}: ${changedFields(data)}`),
   'incident.closed': event(delivery.extend({ incidentId: z.string(), decision: z.string() }), data => `closed the incident of ${data.number}, version ${data.version}`),
-  'delivery.collected': event(delivery, data => `the recipient collected ${data.number}, version ${data.version}, by the link of the mail`),
+  // Older events do not say who: it was not asked.
+  'delivery.collected': event(delivery.extend({ collector: z.object({ kind: z.enum(['physician', 'delegate']), id: z.string() }).optional() }), data => `the recipient collected ${data.number}, version ${data.version}, by the link of the mail`),
   'delivery.collect-refused': event(delivery.extend({ because: z.string() }), data => `collecting ${data.number}, version ${data.version}, was refused: ${data.because}`),
   'delivery.withdrawn': event(delivery.extend({ wasSent: z.boolean() }), data => `withdrew the delivery of ${data.number}, version ${data.version}${data.wasSent ? ', after it was sent' : ''}`),
   'delivery.sent-now': event(delivery, data => `released ${data.number}, version ${data.version}, for sending`),

@@ -27,6 +27,8 @@ export interface DeliveryRow {
   /** How often the page of the mail's link was opened, and the report collected there. */
   opened: number
   collected: number
+  /** Who collected it last, as they said. */
+  collectedBy: string | null
   /** The collection link works until then; null where there is none. */
   linkUntil: string | null
   incidentId: string | null
@@ -61,5 +63,8 @@ export const finishTaskSchema = z.object({ resolution: z.string().trim().max(500
 
 /** GET /api/acknowledge/:token: nothing about the patient. */
 export interface AcknowledgeView { reportNumber: string, version: number, organisation: string, superseded: boolean, withdrawn: boolean, acknowledgedAt: string | null, /** the collection link is older than it may be */ expired: boolean, /** what the recipient wrote back, without their words */ replies: { at: string, answeredAt: string | null }[], /** the report is collected here, with the passphrase of the practice */ collect: boolean }
-export const collectSchema = z.object({ passphrase: z.string().trim().min(1, 'Enter the passphrase of your practice.').max(400) })
+export const collectorsSchema = z.object({ passphrase: z.string().trim().min(1, 'Enter the passphrase of your practice.').max(400) })
+export const collectSchema = collectorsSchema.extend({ collectorId: z.uuid('Choose who collects.') })
+/** POST /api/acknowledge/:token/collectors: who may collect for the practice, told to whoever has its passphrase. */
+export interface Collector { id: string, name: string, duty: string }
 export interface TaskRow { id: string, kind: string, sentence: string, createdAt: string, dueAt: string | null, siteName: string | null, ownerName: string | null, link: string | null }

@@ -21,6 +21,8 @@ export interface SessionUser {
   demonstration: boolean
   idleMinutes: number
   openTasks: number
+  /** Where the audit trail stood when this was read: what happens later is told by the event stream. */
+  changesUpTo: number
 }
 
 export const signInSchema = z.object({

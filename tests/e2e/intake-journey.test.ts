@@ -250,6 +250,7 @@ it('a view is saved under a name, found again, and shown to another person by it
   await button(page, 'Save this view').click()
   await page.getByLabel('Name of the view').fill('Late and urgent')
   await button(page, 'Save view').click()
+  await page.getByRole('link', { name: 'Late and urgent' }).waitFor()
   await visit(page, `${app.origin}/intake`)
   await page.getByRole('link', { name: 'Late and urgent' }).click()
   await page.waitForURL(/overdue=1/)

@@ -1,7 +1,7 @@
 import { execFileSync, spawnSync } from 'node:child_process'
 import { writeFileSync } from 'node:fs'
 import { join } from 'node:path'
-import type { Page } from 'playwright-core'
+import type { Page, Route } from 'playwright-core'
 import { afterAll, afterEach, beforeAll, expect, it } from 'vitest'
 import { expectNoAxeFindings, signIn, startApp, visit, type App, type Window } from './app'
 import { routePatient, routeRuns } from './route-study'
@@ -183,9 +183,13 @@ it('returns it with a question; the changed latency moves flags and sentences', 
   const reader = neurologist.page
   await button(reader, /Return to bench/).click()
   await reader.getByRole('textbox', { name: 'Question', exact: true }).fill('Was the distal latency measured to the onset?')
-  await button(reader, 'Return study to bench').click()
   const { page } = technologist
-  await visit(page, `${app.origin}/bench/${studyPath}`)
+  // The page is on its way to the technologist when the study comes back: it shows what is true all the same.
+  const release = await holdScripts(page)
+  await page.goto(`${app.origin}/bench/${studyPath}`, { waitUntil: 'commit' })
+  await page.getByText('Handed over').first().waitFor()
+  await returnStudy(reader)
+  await release()
   await page.getByText('Was the distal latency measured to the onset?').first().waitFor()
   await retype(page, '4.2')
   expect((await velocities(page))[0]).toBe('43')
@@ -205,7 +209,7 @@ it('changed back and handed over again, it is signed with the password and a mea
   const reader = neurologist.page
   await button(reader, /Return to bench/).click()
   await reader.getByRole('textbox', { name: 'Question', exact: true }).fill('The first value was right: enter 5.2 again.')
-  await button(reader, 'Return study to bench').click()
+  await returnStudy(reader)
   const { page } = technologist
   await visit(page, `${app.origin}/bench/${studyPath}`)
   await retype(page, '5.2')
@@ -286,6 +290,26 @@ async function handOver(page: Page, { notDone }: { notDone?: string }): Promise<
   await panel.getByRole('button', { name: 'Hand over', exact: true }).click()
   await panel.getByRole('button', { name: 'Hand over to the reader' }).click()
   await page.locator('[data-test=hand-over]').waitFor({ state: 'detached' })
+}
+
+/** Presses the button and waits for the answer. */
+async function returnStudy(reader: Page): Promise<void> {
+  await Promise.all([reader.waitForResponse(response => response.url().endsWith('/return') && response.ok()), button(reader, 'Return study to bench').click()])
+}
+
+/** Keeps the scripts of the page back until `release` is called: what a slow line does. */
+async function holdScripts(page: Page): Promise<() => Promise<void>> {
+  let release = () => {}
+  const held = new Promise<void>(done => release = done)
+  const hold = async (route: Route) => {
+    if (route.request().resourceType() === 'script') await held
+    await route.continue()
+  }
+  await page.route('**/_nuxt/**', hold)
+  return async () => {
+    release()
+    await page.unroute('**/_nuxt/**', hold)
+  }
 }
 
 /** Types the distal latency of the RIGHT median motor run anew and waits until it is stored. */

@@ -1,8 +1,10 @@
 import type { EventHandler } from 'h3'
-import { simpleParser, type ParsedMail } from 'mailparser'
+import { simpleParser } from 'mailparser'
 import { beforeAll, describe, expect, it } from 'vitest'
 import { withdrawDelivery } from '#server/services/change-delivery'
+import { dispatchPage } from '#server/database/queries/deliveries'
 import { changePractice } from '#server/services/change-practice'
+import { addDelegate, endDelegate } from '#server/services/practice-delegates'
 import { runOutboxOnce } from '#server/services/run-outbox'
 import { TEST_NOW, testContext } from './helpers'
 import { routeFiles, serve } from './http'
@@ -32,13 +34,20 @@ async function mailed() {
   t.clock.minutes(2)
   await runOutboxOnce(t.context, { transport, owner: 'test' })
   const mail = await simpleParser(received.at(-1)!)
-  return { mail, delivery, token: /acknowledge\/(\S+)/.exec(mail.text ?? '')![1]! }
+  return { mail, delivery, practice, physician, token: /acknowledge\/(\S+)/.exec(mail.text ?? '')![1]! }
 }
-const collect = async (token: string, passphrase: unknown) => await call('POST', `/api/acknowledge/${token}/collect`, { body: { passphrase } })
+const askWho = async (token: string, passphrase: unknown) => await call('POST', `/api/acknowledge/${token}/collectors`, { body: { passphrase } })
+const collectAs = async (token: string, passphrase: unknown, collectorId: unknown) => await call('POST', `/api/acknowledge/${token}/collect`, { body: { passphrase, collectorId } })
+/** As the page does it: first who may, then the first of them. */
+async function collect(token: string, passphrase: unknown) {
+  const who = await askWho(token, passphrase)
+  return who.status === 200 ? await collectAs(token, passphrase, (who.body as { id: string }[])[0]?.id) : who
+}
+const lastData = async (id: string) => JSON.parse((await t.db.selectFrom('auditEvent').select('dataJson').where('subjectId', '=', id).where('name', 'like', 'delivery.collect%').orderBy('seq', 'desc').executeTakeFirstOrThrow()).dataJson) as unknown
 const trail = async (id: string) => (await t.db.selectFrom('auditEvent').select('name').where('subjectId', '=', id).where('name', 'like', 'delivery.collect%').orderBy('seq').execute()).map(event => event.name)
 
 describe('a report that is collected', () => {
-  let made: { mail: ParsedMail, delivery: { id: string, method: string }, token: string }
+  let made: Awaited<ReturnType<typeof mailed>>
   beforeAll(async () => {
     made = await mailed()
   })
@@ -65,6 +74,33 @@ describe('a report that is collected', () => {
     const { token } = await mailed()
     for (let wrong = 0; wrong < 10; wrong++) await collect(token, `wrong ${wrong}`)
     expect((await collect(token, PASSPHRASE)).status).toBe(429)
+  })
+  it('asks who collects: the physician it went to, the others of the practice, and those it named', async () => {
+    const { token, delivery, practice, physician } = await mailed()
+    const colleague = await t.makePhysician({ practiceId: practice.id, name: 'Dr Aaron Invented' })
+    const delegate = await addDelegate(admin, practice.id, { name: 'Bea Invented', duty: 'secretary', phone: '' })
+    const ended = await addDelegate(admin, practice.id, { name: 'Cal Invented', duty: 'secretary', phone: '' })
+    await endDelegate(admin, ended.id)
+    expect((await askWho(token, PASSPHRASE)).body).toEqual([
+      { id: physician.id, name: physician.name, duty: '' }, { id: colleague.id, name: 'Dr Aaron Invented', duty: '' }, { id: delegate.id, name: 'Bea Invented', duty: 'secretary' },
+    ])
+    expect((await collectAs(token, PASSPHRASE, delegate.id)).status).toBe(200)
+    expect(await lastData(delivery.id)).toMatchObject({ collector: { kind: 'delegate', id: delegate.id } })
+    const [row] = (await dispatchPage(t.db, { siteIds: [room.site.id] }, { page: 1, pageSize: 50 })).rows.filter(each => each.id === delivery.id)
+    expect([row?.collected, row?.collectedBy]).toEqual([1, 'Bea Invented'])
+  })
+  it('gives it to nobody else, and tells no name without the passphrase', async () => {
+    const { token, delivery, practice } = await mailed()
+    const ended = await addDelegate(admin, practice.id, { name: 'Cal Invented', duty: 'secretary', phone: '' })
+    await endDelegate(admin, ended.id)
+    const other = await t.makePhysician()
+    for (const id of [ended.id, other.id]) {
+      const answer = await collectAs(token, PASSPHRASE, id)
+      expect([answer.status, answer.body.fields]).toEqual([422, [expect.objectContaining({ path: 'collectorId' })]])
+    }
+    expect((await collectAs(token, PASSPHRASE, undefined)).status).toBe(422)
+    expect(JSON.stringify((await askWho(token, 'wrong words')).body)).not.toContain('Dr ')
+    expect(await trail(delivery.id)).toEqual(['delivery.collect-refused', 'delivery.collect-refused', 'delivery.collect-refused'])
   })
   it('collecting is no receipt: the button is', async () => {
     expect((await call('GET', `/api/acknowledge/${made.token}`)).body).toMatchObject({ collect: true, acknowledgedAt: null })

@@ -10,7 +10,7 @@ export default defineApiHandler({
   params: z.object({ token: z.string().min(20).max(100) }),
   body: collectSchema,
   handle: async ({ event, context, params, body }) => {
-    const { bytes, number, version } = await collectReport(context, { token: params.token, address: clientAddress(event), passphrase: body.passphrase })
+    const { bytes, number, version } = await collectReport(context, { token: params.token, address: clientAddress(event), ...body })
     setResponseHeaders(event, { 'Content-Type': 'application/pdf', 'Content-Disposition': `attachment; filename="${number}-version-${version}.pdf"`, 'X-Content-Type-Options': 'nosniff' })
     return Buffer.from(bytes)
   },
