@@ -1,4 +1,5 @@
 import { fileURLToPath } from 'node:url'
+import { framePolicy, writePdfFrame } from './scripts/pdf-frame.mjs'
 import { writeServiceWorker } from './scripts/service-worker.mjs'
 
 const root = (path: string) => fileURLToPath(new URL(path, import.meta.url))
@@ -39,6 +40,7 @@ export default defineNuxtConfig({
     '#migrations': root('./migrations'),
     '#server': root('./server'),
   },
+  routeRules: { '/pdf-frame.html': { security: { headers: false }, headers: framePolicy } },
   // No manifest request: nothing is fetched that the page does not need.
   experimental: { appManifest: false },
   compatibilityDate: '2026-01-01',
@@ -55,7 +57,11 @@ export default defineNuxtConfig({
   telemetry: false,
   hooks: {
     // After the client is built and before the server lists its files.
-    'nitro:build:public-assets': nitro => writeServiceWorker({ publicDir: nitro.options.output.publicDir, buildId: String(nitro.options.runtimeConfig.app.buildId) }),
+    'nitro:build:public-assets': async (nitro) => {
+      const { publicDir } = nitro.options.output
+      await writeServiceWorker({ publicDir, buildId: String(nitro.options.runtimeConfig.app.buildId) })
+      await writePdfFrame({ publicDir })
+    },
   },
   eslint: { config: { stylistic: { semi: false, quotes: 'single', indent: 2 } } },
   security: {
@@ -75,7 +81,8 @@ export default defineNuxtConfig({
         'connect-src': ['\'self\''],
         // The service worker of the bench and the worker that holds the event stream.
         'worker-src': ['\'self\''],
-        'frame-src': ['\'self\'', 'blob:'],
+        // The closed frame that draws uploaded PDFs.
+        'frame-src': ['\'self\''],
         'base-uri': ['\'none\''],
         'object-src': ['\'none\''],
         'form-action': ['\'self\''],

@@ -70,6 +70,7 @@ it('completes it with a letter, accepts it with a protocol and books it for toda
 
   await page.locator('input[type=file]').setInputFiles({ name: 'letter.pdf', mimeType: 'application/pdf', buffer: onePagePdf() })
   await page.getByText('letter.pdf').first().waitFor()
+  await seeInClosedFrame(page)
   await page.locator('input[type=file]').setInputFiles({ name: 'holiday.pdf', mimeType: 'application/pdf', buffer: Buffer.from('<html>not a PDF</html>') })
   await page.getByText('not a PDF, PNG or JPEG').first().waitFor()
 
@@ -189,7 +190,7 @@ it('returns it with a question; the changed latency moves flags and sentences', 
   await page.goto(`${app.origin}/bench/${studyPath}`, { waitUntil: 'commit' })
   await page.getByText('Handed over').first().waitFor()
   await returnStudy(reader)
-  await release()
+  release()
   await page.getByText('Was the distal latency measured to the onset?').first().waitFor()
   await retype(page, '4.2')
   expect((await velocities(page))[0]).toBe('43')
@@ -269,7 +270,7 @@ it('nothing went to another address and no page complained', () => {
   for (const window of [administrator, technologist, neurologist]) {
     expect(window.outside).toEqual([])
     // The refusals that the journey provokes on purpose are answers, not faults.
-    expect(window.problems.filter(text => !/status of (415|422)/.test(text))).toEqual([])
+    expect(window.problems.filter(text => !/status of (415|422)|api\/me.*Content Security Policy/.test(text))).toEqual([])
   }
 })
 
@@ -292,13 +293,35 @@ async function handOver(page: Page, { notDone }: { notDone?: string }): Promise<
   await page.locator('[data-test=hand-over]').waitFor({ state: 'detached' })
 }
 
+/** The letter is drawn where nothing of the program can be reached: no origin, no cookies, no network. */
+async function seeInClosedFrame(page: Page): Promise<void> {
+  await button(page, 'Show letter.pdf').click()
+  await page.locator('[data-test=pdf-state]').getByText('1 page').waitFor()
+  const frame = page.frame({ url: /pdf-frame/ })!
+  await frame.getByRole('img', { name: 'Page 1 of 1' }).waitFor()
+  await frame.getByText('Dear colleague').waitFor()
+  const seen = await frame.evaluate(async () => ({
+    origin: window.origin,
+    cookies: (() => {
+      try {
+        return document.cookie
+      }
+      catch { return 'refused' }
+    })(),
+    network: await fetch('/api/me').then(() => 'answered', () => 'refused'),
+  }))
+  expect(seen).toEqual({ origin: 'null', cookies: 'refused', network: 'refused' })
+  await expectNoAxeFindings(page)
+  await button(page, 'Hide letter.pdf').click()
+}
+
 /** Presses the button and waits for the answer. */
 async function returnStudy(reader: Page): Promise<void> {
   await Promise.all([reader.waitForResponse(response => response.url().endsWith('/return') && response.ok()), button(reader, 'Return study to bench').click()])
 }
 
 /** Keeps the scripts of the page back until `release` is called: what a slow line does. */
-async function holdScripts(page: Page): Promise<() => Promise<void>> {
+async function holdScripts(page: Page): Promise<() => void> {
   let release = () => {}
   const held = new Promise<void>(done => release = done)
   const hold = async (route: Route) => {
@@ -306,10 +329,7 @@ async function holdScripts(page: Page): Promise<() => Promise<void>> {
     await route.continue()
   }
   await page.route('**/_nuxt/**', hold)
-  return async () => {
-    release()
-    await page.unroute('**/_nuxt/**', hold)
-  }
+  return release
 }
 
 /** Types the distal latency of the RIGHT median motor run anew and waits until it is stored. */
@@ -361,7 +381,8 @@ const today = () => new Intl.DateTimeFormat('en-CA', { timeZone: 'Europe/Prague'
 
 /** The smallest PDF that every checker takes: one blank page. */
 function onePagePdf(): Buffer {
-  const parts = ['%PDF-1.4\n', '1 0 obj<</Type/Catalog/Pages 2 0 R>>endobj\n', '2 0 obj<</Type/Pages/Kids[3 0 R]/Count 1>>endobj\n', '3 0 obj<</Type/Page/Parent 2 0 R/MediaBox[0 0 200 200]>>endobj\n']
+  const words = 'BT /F1 14 Tf 20 100 Td (Dear colleague) Tj ET'
+  const parts = ['%PDF-1.4\n', '1 0 obj<</Type/Catalog/Pages 2 0 R>>endobj\n', '2 0 obj<</Type/Pages/Kids[3 0 R]/Count 1>>endobj\n', '3 0 obj<</Type/Page/Parent 2 0 R/MediaBox[0 0 200 200]/Contents 4 0 R/Resources<</Font<</F1 5 0 R>>>>>>endobj\n', `4 0 obj<</Length ${words.length}>>stream\n${words}\nendstream endobj\n`, '5 0 obj<</Type/Font/Subtype/Type1/BaseFont/Helvetica>>endobj\n']
   let at = parts[0]!.length
   const offsets = parts.slice(1).map((part) => {
     const here = at
@@ -369,5 +390,5 @@ function onePagePdf(): Buffer {
     return here
   })
   const table = offsets.map(offset => `${String(offset).padStart(10, '0')} 00000 n \n`).join('')
-  return Buffer.from(`${parts.join('')}xref\n0 4\n0000000000 65535 f \n${table}trailer<</Size 4/Root 1 0 R>>\nstartxref\n${at}\n%%EOF\n`)
+  return Buffer.from(`${parts.join('')}xref\n0 ${parts.length}\n0000000000 65535 f \n${table}trailer<</Size ${parts.length}/Root 1 0 R>>\nstartxref\n${at}\n%%EOF\n`)
 }

@@ -1,4 +1,4 @@
-import type { Page } from 'playwright-core'
+import type { APIRequestContext, Page } from 'playwright-core'
 import { afterAll, afterEach, beforeAll, expect, it } from 'vitest'
 import type { ReportView } from '#shared/schemas/report'
 import { expectNoAxeFindings, signIn, startApp, visit, type App, type Window } from './app'
@@ -45,6 +45,13 @@ async function mailsTo(address: string, count: number) {
     await new Promise(done => setTimeout(done, 500))
   }
   throw new Error(`No ${count} mails for ${address} within 50 seconds.`)
+}
+/** The practice wants links from now on, and names somebody who may collect for it. */
+async function collects(request: APIRequestContext): Promise<void> {
+  const { rows } = await (await request.get(`${app.origin}/api/directory/practices?search=Chapel`)).json() as { rows: { id: string }[] }
+  const path = `${app.origin}/api/directory/practices/${rows[0]!.id}`
+  expect((await request.patch(path, { data: { deliveryMethod: 'collection-link' } })).ok()).toBe(true)
+  expect((await request.post(`${path}/delegates`, { data: { name: 'Nell Fennimore', duty: 'practice secretary', phone: '' } })).ok()).toBe(true)
 }
 const linkOf = (text: string | undefined) => /http:\/\/\S+\/acknowledge\/\S+/.exec(text ?? '')![0]
 const rowOf = (page: Page, practice: string) => page.getByRole('row').filter({ hasText: first.number }).filter({ hasText: practice })
@@ -103,7 +110,8 @@ it('is withdrawn with a record whose factors are filled in and whose clocks run'
 })
 
 it('goes to the right one of the two, shown with practice and town', async () => {
-  const { page } = administrator
+  const { page, context } = administrator
+  await collects(context.request)
   const panel = page.getByRole('region', { name: 'The right recipient' })
   await panel.getByLabel('Recipient').fill('Ashdown')
   const offered = panel.getByRole('button', { name: /Dr Martin Ashdown/ })
@@ -169,6 +177,29 @@ it('version 1 is as it was and opens as superseded, on screen and by its link', 
   await visit(reader.page, linkOf((await mailsTo(copyBox, 2))[0]!.mail.text))
   await reader.page.getByText('A newer version stands instead of this one').waitFor()
   await expectNoAxeFindings(reader.page)
+})
+
+it('the right practice collects it: with its passphrase, and whoever it is says so', async () => {
+  const { page } = await app.open({ width: 390 })
+  await visit(page, linkOf((await mailsTo(rightBox, 2)).at(-1)!.mail.text))
+  const passphrase = page.getByLabel('Passphrase of your practice')
+  await passphrase.fill('not these words')
+  await passphrase.press('Enter')
+  await page.getByText('This is not the passphrase of your practice').waitFor()
+  await passphrase.fill(app.practices.find(practice => practice.name === 'Chapel Row Medical Centre')!.passphrase)
+  await passphrase.press('Enter')
+  const who = page.getByRole('group', { name: 'Who collects?' })
+  await who.waitFor()
+  expect(await who.getByRole('radio').count()).toBe(3)
+  await expectNoAxeFindings(page)
+  await button(page, 'Collect the report').press('Enter')
+  await who.getByText('Choose who collects.').waitFor()
+  await who.getByLabel('Nell Fennimore, practice secretary').check()
+  const [file] = await Promise.all([page.waitForEvent('download'), button(page, 'Collect the report').press('Enter')])
+  expect(file.suggestedFilename()).toBe(`${first.number}.pdf`)
+  await page.locator('[data-test=collected]').waitFor()
+  await visit(administrator.page, `${app.origin}/dispatch?state=sent`)
+  await rowOf(administrator.page, 'Chapel Row Medical Centre').getByText('collected once, last by Nell Fennimore').waitFor()
 })
 
 it('a recipient who thinks that it is wrong says so without an account, and the reader answers on that version', async () => {

@@ -41,7 +41,7 @@ const collectAs = async (token: string, passphrase: unknown, collectorId: unknow
 /** As the page does it: first who may, then the first of them. */
 async function collect(token: string, passphrase: unknown) {
   const who = await askWho(token, passphrase)
-  return who.status === 200 ? await collectAs(token, passphrase, (who.body as { id: string }[])[0]?.id) : who
+  return who.status === 200 ? await collectAs(token, passphrase, (who.body as unknown as { id: string }[])[0]?.id) : who
 }
 const lastData = async (id: string) => JSON.parse((await t.db.selectFrom('auditEvent').select('dataJson').where('subjectId', '=', id).where('name', 'like', 'delivery.collect%').orderBy('seq', 'desc').executeTakeFirstOrThrow()).dataJson) as unknown
 const trail = async (id: string) => (await t.db.selectFrom('auditEvent').select('name').where('subjectId', '=', id).where('name', 'like', 'delivery.collect%').orderBy('seq').execute()).map(event => event.name)
