@@ -75,8 +75,8 @@ function patternInput(context: StudyContext, runs: RunAssessment[], comparisons:
 
 function limitsOfResult(context: StudyContext, result: Result | undefined): LimitsOfResult {
   if (!result) return { because: 'not recorded' }
-  const answer = context.limitsByKey.get(result.key)
-  if (answer?.kind === 'limits') return { ...(answer.lower && { lower: answer.lower }), ...(answer.upper && { upper: answer.upper }) }
+  const answer = context.limitsOf.get(result)
+  if (answer) return answer
   const { verdict } = result
   return { because: verdict.kind === 'no-limit' || verdict.kind === 'not-judged' ? verdict.because : 'no limit' }
 }

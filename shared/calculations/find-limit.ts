@@ -11,8 +11,9 @@ import type { AdoptedSet, AppliedLimit, Policy } from './types'
 export type { LimitPerson, LimitQuery } from './limit-query'
 
 /** The part after "no limit: " or "not judged: " is `because`. */
+export interface FoundLimits { kind: 'limits', upper?: AppliedLimit, lower?: AppliedLimit }
 export type FoundLimit
-  = | { kind: 'limits', upper?: AppliedLimit, lower?: AppliedLimit }
+  = | FoundLimits
     | { kind: 'no-limit', because: string }
     | { kind: 'not-judged', because: string }
 

@@ -48,7 +48,7 @@ const noLimits: readonly AppliedLimit[] = []
 export function makeResult(context: StudyContext, owner: Owner, input: ResultInput): Result {
   const info = quantityInfo(input.quantity)
   const key = owner.keyStart + (input.keyEnd ?? input.quantity)
-  const answer = askFor(context, key, input)
+  const answer = askFor(input)
   const verdict = verdictOf(context, owner, input, answer, info)
   const limits = 'limits' in verdict ? verdict.limits : noLimits
   const print = printOf(input.value, limits, info)
@@ -64,15 +64,14 @@ export function makeResult(context: StudyContext, owner: Owner, input: ResultInp
   if (input.at !== undefined) result.at = input.at
   if (input.how !== undefined) result.how = input.how
   if (limits.length > 0) addScore(context, result, limits)
+  if (answer.kind === 'limits') context.limitsOf.set(result, answer)
   return result
 }
 
-function askFor(context: StudyContext, key: string, input: ResultInput): FoundLimit {
+function askFor(input: ResultInput): FoundLimit {
   if (!input.asker) return noQuestion
   if (input.noLimitBecause) return { kind: 'no-limit', because: input.noLimitBecause }
-  const answer = input.asker.ask(input.quantity, input.askAt === undefined ? input.at ?? null : input.askAt)
-  if (answer.kind === 'limits') context.limitsByKey.set(key, answer)
-  return answer
+  return input.asker.ask(input.quantity, input.askAt === undefined ? input.at ?? null : input.askAt)
 }
 
 function verdictOf(context: StudyContext, owner: Owner, input: ResultInput, answer: FoundLimit, info: QuantityInfo): Verdict {

@@ -5,7 +5,7 @@ import type { Side } from '../schemas/common'
 import type { Run, Study } from '../schemas/study'
 import { ageInYears } from './age-on-date'
 import { bodyMassIndex } from './bmi'
-import type { FoundLimit } from './find-limit'
+import type { FoundLimits } from './find-limit'
 import { notCold, type ColdBearing } from './judge'
 import { askerFor, type AskerFor } from './limit-asker'
 import { ageNumber } from './limit-words'
@@ -13,7 +13,7 @@ import { placedRows, usualIndex, type PlacedRow } from './placed-rows'
 import { rowFinder } from './row-finder'
 import { roundForPrint } from './round-for-print'
 import { coldOfRun, countsAsCold, temperatureContext, type Cold } from './temperature'
-import type { AppliedLimit, Assessment, Policy, RunAssessment } from './types'
+import type { AppliedLimit, Assessment, Policy, Result, RunAssessment } from './types'
 
 /** A run with all that is known before its numbers are judged. */
 export interface KnownRun {
@@ -50,8 +50,8 @@ export interface StudyContext {
   applied: Set<AppliedLimit>
   /** The row of a set that a limit came from. */
   rowOf: (limit: AppliedLimit) => ReferenceTable['rows'][number] | undefined
-  /** Limits by result key, where the verdict alone does not carry them. */
-  limitsByKey: Map<string, FoundLimit>
+  /** Limits of each result, also where the verdict does not carry them. */
+  limitsOf: Map<Result, FoundLimits>
   assessed: Map<string, RunAssessment>
 }
 
@@ -65,7 +65,7 @@ export function studyContext(study: Study, tables: readonly ReferenceTable[], po
     standing: standingRuns(runs),
     expanded: { distanceMm: policy.distanceUncertaintyMm, latencyMs: policy.latencyUncertaintyMs },
     askerFor: askerFor(tables, policy, { ageYears: person.ageYears, sexForLimits: person.sexForLimits, heightCm: person.heightCm, bmi: person.bmi }),
-    applied: new Set(), rowOf: rowFinder(tables), limitsByKey: new Map(), assessed: new Map(),
+    applied: new Set(), rowOf: rowFinder(tables), limitsOf: new Map(), assessed: new Map(),
   }
 }
 

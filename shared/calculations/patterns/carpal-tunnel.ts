@@ -1,6 +1,6 @@
 import type { Side } from '../../schemas/common'
 import { beyondLimit } from './criteria'
-import { comparisonReading, readingOf, usualSite, type Facts, type Reading, type RunFacts } from './facts'
+import { comparisonReading, noted, readingOf, recall, usualSite, type Facts, type Reading, type RunFacts } from './facts'
 import { allOf, anyOf, joined, met, named, negated, notAssessable, type Finding, type Truth } from './finding'
 import { isAnswered, isSilent, isSlow, sensoryNerve, type SensoryNerve } from './sensory-nerves'
 
@@ -35,8 +35,12 @@ const sensitiveTests = [
   ['combined-sensory-index', 'combinedIndexMs', 'combined index'],
 ] as const
 
-/** The hand as the scales see it; null when the median nerve of this side was not studied. */
+/** The hand as the scales see it; null when the median nerve of this side was not studied. Looked at once for both scales. */
 export function handFacts(facts: Facts, side: Side): HandFacts | null {
+  return recall(facts, facts.hands[side] ??= noted(facts, () => lookAtHand(facts, side)))
+}
+
+function lookAtHand(facts: Facts, side: Side): HandFacts | null {
   const motor = facts.run('median-motor-apb', side)
   const sensory = fingers.map(id => facts.run(id, side)).filter(run => run !== undefined)
   const palm = facts.run('median-mixed-palm', side)

@@ -1,6 +1,6 @@
 import { siteOf } from '../../catalogue/nerves'
 import type { Side } from '../../schemas/common'
-import { definiteIn, dispersionIn, overPairs, probableIn, ratioIn, type PairRule } from './change-rules'
+import { definiteIn, dispersion, lowRatio, overPairs, probableIn, type PairRule } from './change-rules'
 import type { Facts, RunFacts } from './facts'
 import { anyOf, criterion, notAssessable, type Criterion, type CriterionText, type Finding } from './finding'
 import { motorRun, type MotorRun } from './motor-nerves'
@@ -15,6 +15,7 @@ const nerves = [
   { technique: 'fibular-motor-edb', name: 'fibular to EDB', named: true, arm: false },
   { technique: 'fibular-motor-ta', name: 'fibular to TA', named: true, arm: false },
 ] as const
+type Nerve = (typeof nerves)[number]
 
 const texts = {
   definite: { id: 'definite', text: 'definite block: area fall at least 50 %, duration rise at most 30 %, distal amplitude above 1 mV and above 20 % of its lower limit', basis: 'read' },
@@ -23,6 +24,18 @@ const texts = {
   ratio: { id: 'ratio', text: 'proximal to distal amplitude below 0.5, or below 0.36 where the distal amplitude is at most 1 mV (beyond what loss of motor neurons alone gave)', basis: 'read' },
 } as const satisfies Record<string, CriterionText>
 type TextId = keyof typeof texts
+const textIds = Object.keys(texts) as TextId[]
+
+/** The same words for each nerve. */
+const textsFor = Object.fromEntries(nerves.map(nerve => [nerve.technique, textsOf(nerve)])) as Record<Nerve['technique'], Record<TextId, CriterionText>>
+
+function textsOf({ technique, name, named }: Nerve): Record<TextId, CriterionText> {
+  const entries = textIds.map((id): [TextId, CriterionText] => {
+    const { text, basis } = texts[id]
+    return [id, { id: `${technique}/${id}`, text: `${name}: ${text}${named ? '' : ' (nerve not named by the source)'}`, basis: named ? basis : 'derived' }]
+  })
+  return Object.fromEntries(entries) as Record<TextId, CriterionText>
+}
 
 /**
  * How the motor response changes between sites, by EFNS/PNS 2010, with limits that depend on the distal amplitude beside
@@ -35,13 +48,13 @@ export const changeBetweenSites: PatternSet = {
   assess: assessChange,
 }
 
-interface Asked { name: string, named: boolean, run: RunFacts, findings: Record<TextId, Finding> }
+interface Asked { nerve: Nerve, run: RunFacts, findings: Record<TextId, Finding> }
 
 function assessChange(facts: Facts, side: Side): Assessed | null {
-  const asked = nerves.flatMap(({ technique, ...nerve }) => {
-    const run = facts.run(technique, side)
+  const asked = nerves.flatMap((nerve): Asked[] => {
+    const run = facts.run(nerve.technique, side)
     if (!run || sitesStimulated(run) < 2) return []
-    return [{ ...nerve, run, findings: findingsOf(facts, motorRun(facts, run), nerve.arm) }]
+    return [{ nerve, run, findings: findingsOf(facts, motorRun(facts, run), nerve.arm) }]
   })
   if (asked.length === 0) return null
   const criteria = [...asked.flatMap(criteriaOf), entrapmentCriterion(facts)]
@@ -51,27 +64,24 @@ function assessChange(facts: Facts, side: Side): Assessed | null {
 const sitesStimulated = ({ assessment }: RunFacts) => new Set(assessment.results.filter(result => (result.quantity === 'amplitudeMv' || result.quantity === 'areaMvMs') && !siteOf(assessment.technique, result.at ?? '')?.aside).map(result => result.at)).size
 
 function findingsOf(facts: Facts, run: MotorRun, arm: boolean): Record<TextId, Finding> {
-  const pairs = run.pairs.filter(pair => !facts.input.policy.leaveOutEntrapmentSites || !pair.entrapment)
+  const pairs = facts.input.policy.leaveOutEntrapmentSites ? run.pairs.filter(pair => !pair.entrapment) : run.pairs
   const ask = (rule: PairRule) => run.facts.cold
     ? notAssessable(run.facts.cold)
     : pairs.length === 0 ? notAssessable('no pair of sites is left') : overPairs(pairs, rule)
   return {
-    definite: ask(pair => definiteIn(facts, run, pair)),
-    probable: ask(pair => probableIn(pair, arm)),
-    dispersion: ask(dispersionIn),
-    ratio: ask(ratioIn),
+    definite: ask(definiteIn(facts, run)),
+    probable: ask(probableIn(arm)),
+    dispersion: ask(dispersion),
+    ratio: ask(lowRatio),
   }
 }
 
-function criteriaOf({ name, named, run, findings }: Asked): Criterion[] {
-  return (Object.keys(texts) as TextId[]).map((id) => {
-    const { text, basis } = texts[id]
-    return criterion({ id: `${run.technique.id}/${id}`, text: `${name}: ${text}${named ? '' : ' (nerve not named by the source)'}`, basis: named ? basis : 'derived' }, findings[id])
-  })
+function criteriaOf({ nerve, findings }: Asked): Criterion[] {
+  return textIds.map(id => criterion(textsFor[nerve.technique][id], findings[id]))
 }
 
 function outcomeOf(asked: readonly Asked[]): Assessed['outcome'] {
-  const namesOf = (id: TextId) => asked.filter(({ findings }) => findings[id].result === 'met').map(({ name }) => name)
+  const namesOf = (id: TextId) => asked.filter(({ findings }) => findings[id].result === 'met').map(({ nerve }) => nerve.name)
   const definite = namesOf('definite')
   const probable = namesOf('probable').filter(name => !definite.includes(name))
   const said = [

@@ -15,17 +15,19 @@ const riseLarge: Bar = { op: 'above', value: 30 }
 
 const truthOf = (change: Change, bar: Bar): Truth => change.state === 'missing' ? 'not-assessable' : passes(change.percent, bar) ? 'met' : 'not-met'
 
-/** What a rule says of one pair; the words are made for the pairs that are shown. */
-export interface PairFinding { result: Truth, because: () => string, words: () => string }
-export type PairRule = (pair: SitePair) => PairFinding
+/** A rule on one pair; the words are made for the pairs that are shown. */
+export interface PairRule {
+  of: (pair: SitePair) => Truth
+  because: (pair: SitePair) => string
+  words: (pair: SitePair) => string
+}
 
 /** Definite: area falls by half or more, duration rises by 30 % at most, distal amplitude above 1 mV and above 20 % of its lower limit. */
-export function definiteIn(facts: Facts, run: MotorRun, pair: SitePair): PairFinding {
-  const size = largeEnough(facts, run, pair)
+export function definiteIn(facts: Facts, run: MotorRun): PairRule {
   return {
-    result: allOf([truthOf(pair.areaFall, areaHalf), truthOf(pair.durationRise, riseSmall), size.result]),
-    because: () => joined([pair.areaFall.because, pair.durationRise.because, size.because]),
-    words: () => `${changeWords('area fall', pair.areaFall, areaHalf)}, ${changeWords('duration rise', pair.durationRise, riseSmall)}, distal ${printBeside(pair.distalAmplitude.value, 1, oneMillivolt)} mV`,
+    of: pair => allOf([truthOf(pair.areaFall, areaHalf), truthOf(pair.durationRise, riseSmall), largeEnough(facts, run, pair).result]),
+    because: pair => joined([pair.areaFall.because, pair.durationRise.because, largeEnough(facts, run, pair).because]),
+    words: pair => `${changeWords('area fall', pair.areaFall, areaHalf)}, ${changeWords('duration rise', pair.durationRise, riseSmall)}, distal ${printBeside(pair.distalAmplitude.value, 1, oneMillivolt)} mV`,
   }
 }
 
@@ -45,12 +47,14 @@ function largeEnough(facts: Facts, run: MotorRun, { distalAmplitude }: SitePair)
  * Probable at least: area falls by 30 % or more over a long segment of the arm while the duration rises by 30 % at most,
  * or it falls by half or more, whatever the duration does (then it is definite or probable).
  */
-export function probableIn(pair: SitePair, isArm: boolean): PairFinding {
-  const overLong = isArm && isLongSegment(pair) ? allOf([truthOf(pair.areaFall, areaThird), truthOf(pair.durationRise, riseSmall)]) : 'not-met'
+export function probableIn(isArm: boolean): PairRule {
   return {
-    result: anyOf([overLong, truthOf(pair.areaFall, areaHalf)]),
-    because: () => joined([pair.areaFall.because, pair.durationRise.because]),
-    words: () => joined([changeWords('area fall', pair.areaFall, isLongSegment(pair) ? areaThird : areaHalf), changeWords('duration rise', pair.durationRise, riseSmall)]).replace('; ', ', '),
+    of: pair => anyOf([
+      isArm && isLongSegment(pair) ? allOf([truthOf(pair.areaFall, areaThird), truthOf(pair.durationRise, riseSmall)]) : 'not-met',
+      truthOf(pair.areaFall, areaHalf),
+    ]),
+    because: pair => joined([pair.areaFall.because, pair.durationRise.because]),
+    words: pair => joined([changeWords('area fall', pair.areaFall, isLongSegment(pair) ? areaThird : areaHalf), changeWords('duration rise', pair.durationRise, riseSmall)]).replace('; ', ', '),
   }
 }
 
@@ -60,22 +64,27 @@ const atElbow = ['elbow', 'below-elbow', 'above-elbow']
 const isLongSegment = ({ from, to }: SitePair) => (atWrist.includes(from.id) && atElbow.includes(to.id)) || (atElbow.includes(from.id) && to.id === 'axilla')
 
 /** Dispersion: the negative peak gets longer by more than 30 %. */
-export function dispersionIn(pair: SitePair): PairFinding {
-  return { result: truthOf(pair.durationRise, riseLarge), because: () => pair.durationRise.because, words: () => changeWords('duration rise', pair.durationRise, riseLarge) }
+export const dispersion: PairRule = {
+  of: pair => truthOf(pair.durationRise, riseLarge),
+  because: pair => pair.durationRise.because,
+  words: pair => changeWords('duration rise', pair.durationRise, riseLarge),
 }
 
 /** Proximal to distal amplitude under 0.5, or under 0.36 where the distal amplitude is not above 1 mV. */
-export function ratioIn({ amplitudeFall, distalAmplitude }: SitePair): PairFinding {
-  const isLarge = passes(distalAmplitude.value, oneMillivolt)
-  const bar: Bar = { op: 'below', value: isLarge ? 0.5 : 0.36 }
-  const ratio = 1 - amplitudeFall.percent / 100
-  const isKnown = amplitudeFall.state === 'number' && distalAmplitude.state === 'number'
-  return {
-    result: !isKnown ? 'not-assessable' : passes(ratio, bar) ? 'met' : 'not-met',
-    because: () => amplitudeFall.because || (distalAmplitude.state === 'number' ? '' : `distal amplitude ${distalAmplitude.because}`),
-    words: () => `ratio ${printBeside(ratio, 2, bar)}, limit ${bar.value} at ${printBeside(distalAmplitude.value, 1, oneMillivolt)} mV`,
-  }
+export const lowRatio: PairRule = {
+  of: (pair) => {
+    const isKnown = pair.amplitudeFall.state === 'number' && pair.distalAmplitude.state === 'number'
+    return !isKnown ? 'not-assessable' : passes(ratioOf(pair), ratioBar(pair)) ? 'met' : 'not-met'
+  },
+  because: ({ amplitudeFall, distalAmplitude }) => amplitudeFall.because || (distalAmplitude.state === 'number' ? '' : `distal amplitude ${distalAmplitude.because}`),
+  words: (pair) => {
+    const bar = ratioBar(pair)
+    return `ratio ${printBeside(ratioOf(pair), 2, bar)}, limit ${bar.value} at ${printBeside(pair.distalAmplitude.value, 1, oneMillivolt)} mV`
+  },
 }
+
+const ratioOf = ({ amplitudeFall }: SitePair) => 1 - amplitudeFall.percent / 100
+const ratioBar = ({ distalAmplitude }: SitePair): Bar => ({ op: 'below', value: passes(distalAmplitude.value, oneMillivolt) ? 0.5 : 0.36 })
 
 function changeWords(what: string, change: Change, bar: Bar): string {
   return change.state === 'number' ? `${what} ${printBeside(change.percent, 0, bar)} %` : ''
@@ -83,11 +92,11 @@ function changeWords(what: string, change: Change, bar: Bar): string {
 
 /** Asks each pair; those that are met stand for the nerve, else all that are open, else the pair with the greatest fall. */
 export function overPairs(pairs: readonly SitePair[], rule: PairRule): Finding {
-  const asked = pairs.map(pair => ({ pair, finding: rule(pair) }))
-  const result = anyOf(asked.map(({ finding }) => finding.result))
-  if (result === 'not-assessable') return notAssessable(joined(asked.map(({ finding }) => finding.result === 'not-assessable' ? finding.because() : '')))
-  const found = result === 'met' ? asked.filter(({ finding }) => finding.result === 'met') : asked.slice(0, 1).map(first => asked.reduce((most, one) => sizeOf(one.pair) > sizeOf(most.pair) ? one : most, first))
-  return { result, numbers: joined(found.map(({ pair, finding }) => `${pair.label}: ${finding.words()}`)) }
+  const truths = pairs.map(pair => rule.of(pair))
+  const result = anyOf(truths)
+  if (result === 'not-assessable') return notAssessable(joined(pairs.map((pair, index) => truths[index] === 'not-assessable' ? rule.because(pair) : '')))
+  const shown = result === 'met' ? pairs.filter((_, index) => truths[index] === 'met') : [pairs.reduce((most, one) => sizeOf(one) > sizeOf(most) ? one : most)]
+  return { result, numbers: joined(shown.map(pair => `${pair.label}: ${rule.words(pair)}`)) }
 }
 
 const sizeOf = ({ areaFall, amplitudeFall }: SitePair) => areaFall.state === 'number' ? areaFall.percent : amplitudeFall.state === 'number' ? amplitudeFall.percent : Number.NEGATIVE_INFINITY

@@ -1,6 +1,6 @@
 import type { Criterion, Finding } from './finding'
 import type { MotorNerve } from './motor-nerves'
-import { decideNerves, withOther, type Holds, type RuleTable } from './nerve-truths'
+import { decideNerves, hasState, metIn, withOther, type Holds, type RuleTable } from './nerve-truths'
 
 /** Parameters of demyelination, each asked of every nerve once. */
 export interface Parameters {
@@ -43,11 +43,10 @@ function hasOther(parameters: Parameters, nerve: MotorNerve, main: ParameterId, 
  * missing where the response is small and, in the fibular nerve, in health.
  */
 export function decideOneNerve(parameters: Parameters): Finding {
-  const truths = positive.flatMap(id => [...parameters[id]])
-  const names = new Set(truths.filter(([, truth]) => truth.state === 'met').map(([nerve]) => nerve.name))
+  const tables = positive.map(id => parameters[id])
+  const names = new Set(tables.flatMap(metIn).map(nerve => nerve.name))
   if (names.size > 0) return { result: 'met', numbers: [...names].join(', ') }
-  const states = truths.map(([, truth]) => truth.state)
-  if (states.includes('unknown') || !states.includes('not-met')) return { result: 'not-assessable', numbers: '', because: 'none in what could be assessed' }
+  if (tables.some(table => hasState(table, 'unknown')) || !tables.some(table => hasState(table, 'not-met'))) return { result: 'not-assessable', numbers: '', because: 'none in what could be assessed' }
   return { result: 'not-met', numbers: 'none' }
 }
 

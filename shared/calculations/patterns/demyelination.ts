@@ -116,16 +116,14 @@ function ofPairs(facts: Facts, nerve: MotorNerve, counts: (pair: SitePair) => bo
 
 /** Met by any pair; otherwise the pair with the greatest change says how far from it the nerve is. */
 function mostTelling(pairs: readonly SitePair[], changeOf: (pair: SitePair) => Change, barOf: (pair: SitePair) => Bar, what: string): NerveTruth {
-  const known = pairs.map(pair => ({ pair, change: changeOf(pair), bar: barOf(pair) }))
-  const numbers = known.filter(one => one.change.state === 'number').sort((a, b) => b.change.percent - a.change.percent)
-  const telling = numbers.find(one => passes(one.change.percent, one.bar)) ?? numbers[0]
-  const isMet = telling !== undefined && passes(telling.change.percent, telling.bar)
-  const words = telling && `${what} ${printBeside(telling.change.percent, 0, telling.bar)} %, ${telling.pair.label}`
-  if (isMet) return nerveIs(true, words ?? '')
-  const gap = known.find(one => one.change.state === 'missing')
+  const isMet = (pair: SitePair) => passes(changeOf(pair).percent, barOf(pair))
+  const numbers = pairs.filter(pair => changeOf(pair).state === 'number').sort((a, b) => changeOf(b).percent - changeOf(a).percent)
+  const telling = numbers.find(isMet) ?? numbers[0]
+  const truth = telling ? nerveIs(isMet(telling), `${what} ${printBeside(changeOf(telling).percent, 0, barOf(telling))} %, ${telling.label}`) : leftOut()
+  if (truth.state === 'met') return truth
+  const gap = pairs.map(changeOf).find(change => change.state === 'missing')
   // Areas and durations that nobody typed are not recorded rather than in doubt.
-  if (gap && !gap.change.because.endsWith('not recorded')) return unknown(gap.change.because)
-  return words === undefined ? leftOut() : nerveIs(false, words)
+  return gap && !gap.because.endsWith('not recorded') ? unknown(gap.because) : truth
 }
 
 /** Limits of the duration of the distal negative peak in ms, by low-frequency filter in Hz. */

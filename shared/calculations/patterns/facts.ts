@@ -4,6 +4,8 @@ import type { Side } from '../../schemas/common'
 import type { Run } from '../../schemas/study'
 import { countsAsCold } from '../temperature'
 import type { AppliedLimit, Result, RunAssessment } from '../types'
+import type { HandFacts } from './carpal-tunnel'
+import type { Finding } from './finding'
 import type { MotorNerve, MotorRun } from './motor-nerves'
 import type { PatternInput } from './pattern-input'
 import type { SensoryNerve } from './sensory-nerves'
@@ -27,6 +29,8 @@ export interface RunFacts {
   cold: string
   /** As rules on motor nerves look at it: made when the first one asks. */
   motor?: MotorRun
+  /** The same of a sensory run. */
+  isAbnormal?: Noted<Finding>
 }
 
 /** A study as the pattern sets look at it; built once per assessment. */
@@ -41,6 +45,25 @@ export interface Facts {
    */
   motorNerves?: readonly MotorNerve[]
   sensoryNerves?: readonly SensoryNerve[]
+  hands: Partial<Record<Side, Noted<HandFacts | null>>>
+}
+
+/** An answer for several sets, and whether it rests on a recalled limit: then each of them does. */
+export interface Noted<T> { answer: T, usedRecalled: boolean }
+
+/** Works an answer out and notes whether it used a recalled limit. */
+export function noted<T>(facts: Facts, make: () => T): Noted<T> {
+  const before = facts.usedRecalled
+  facts.usedRecalled = false
+  const one = { answer: make(), usedRecalled: facts.usedRecalled }
+  facts.usedRecalled = before
+  return one
+}
+
+/** Gives a noted answer to the set that is being asked. */
+export function recall<T>(facts: Facts, { answer, usedRecalled }: Noted<T>): T {
+  facts.usedRecalled ||= usedRecalled
+  return answer
 }
 
 /** Gathers what was studied; each run once. */
@@ -51,7 +74,7 @@ export function factsOf(input: PatternInput): Facts {
     if (!runs.has(technique)) runs.set(technique, runFacts(input, technique, side))
     return runs.get(technique)
   }
-  return { input, usedRecalled: false, run }
+  return { input, usedRecalled: false, run, hands: {} }
 }
 
 function runFacts(input: PatternInput, technique: string, side: Side): RunFacts | undefined {

@@ -55,7 +55,9 @@ export function printBeside(value: number, decimals: number, bar: Bar): string {
  * plainNumber(50) // => '50'
  */
 export function plainNumber(value: number): string {
-  return roundForPrint(value, 2).replace(/\.?0+$/, '')
+  const text = roundForPrint(value, 2)
+  if (text.endsWith('.00')) return text.slice(0, -3)
+  return text.endsWith('0') ? text.slice(0, -1) : text
 }
 
 export const met = (numbers: string, because?: string): Finding => finding('met', numbers, because)

@@ -3,7 +3,7 @@ import { distalLatencyRule, fAbsentRule, fallRule, fLatencyRule, riseRule, veloc
 import type { Facts } from './facts'
 import { criterion, passes, printBeside, type Bar, type Criterion, type CriterionText, type Finding, type Truth } from './finding'
 import type { MotorNerve } from './motor-nerves'
-import { anyTruth, askEach, decideNerves, leftOut, nerveIs, nerveWords, unknown, type NerveTruth, type RuleTable } from './nerve-truths'
+import { anyTruth, askEach, decideNerves, leftOut, nerveIs, unknown, type NerveTruth, type RuleTable } from './nerve-truths'
 
 /** The features of demyelination of one set of criteria for Guillain-Barré syndrome, as data. */
 export interface FeatureBars {
@@ -68,7 +68,7 @@ export const isInexcitable = (nerve: MotorNerve): boolean => nerve.runs.every(ru
 
 /** One feature by itself: in any nerve, with the numbers of every nerve. */
 export function featureCriterion(text: CriterionText, table: RuleTable, nerves: readonly MotorNerve[]): Criterion {
-  return criterion(text, { ...inNerves(table, nerves, 1), numbers: nerveWords(table, ['met', 'not-met']) })
+  return criterion(text, inNerves(table, nerves, 1))
 }
 
 /** "Not met" only where every feature could be looked at in some nerve; otherwise it stays open. */

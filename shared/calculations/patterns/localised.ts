@@ -63,7 +63,7 @@ export function otherNervesNormal(facts: Facts, side: Side, ownNerves: readonly 
   const results = facts.input.runs.map(({ technique, side: runSide }) => facts.run(technique, runSide))
     .filter((run, place, all) => run && all.indexOf(run) === place && !run.cold && !(ownNerves.includes(run.technique.nerve) && run.assessment.side === side))
     .map(run => run as RunFacts)
-  const judged = results.filter(run => run.assessment.results.some(result => readingOfResult(result).state !== 'missing' && 'limits' in result.verdict))
+  const judged = results.filter(run => run.assessment.results.some(result => 'limits' in result.verdict && readingOfResult(result).state !== 'missing'))
   if (judged.length === 0) return notAssessable('no other nerve judged by a limit')
   const flagged = judged.filter(run => run.assessment.results.some(result => result.flagged))
   const names = joined(flagged.map(run => `${sideWords[run.assessment.side]} ${run.technique.label}`))

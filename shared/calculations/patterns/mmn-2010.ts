@@ -1,11 +1,10 @@
-import { definiteIn, overPairs, probableIn, type PairFinding } from './change-rules'
+import { definiteIn, overPairs, probableIn, type PairRule } from './change-rules'
 import type { Facts } from './facts'
 import { allOf, anyOf, criterion, joined, notAssessable, notTruth, type CriterionText, type Finding, type Truth } from './finding'
-import { motorNervesOf, type MotorNerve } from './motor-nerves'
-import { anyTruth, askEach, decideNerves, leftOut, nerveIs, unknown, type RuleTable } from './nerve-truths'
+import { motorNervesOf, type MotorNerve, type MotorRun } from './motor-nerves'
+import { anyTruth, askEach, decideNerves, leftOut, metIn, nerveIs, unknown, type RuleTable } from './nerve-truths'
 import { eachOnce, type Assessed, type PatternSet } from './pattern-set'
 import { isAbnormal, sensoryNervesOf, type SensoryNerve } from './sensory-nerves'
-import type { SitePair } from './site-pairs'
 
 const texts = {
   definite: { id: 'definite', text: 'Definite block outside entrapment sites in one nerve (median, ulnar, fibular): area fall at least 50 %, duration rise at most 30 %, distal amplitude above 1 mV and above 20 % of its lower limit', basis: 'read' },
@@ -29,8 +28,8 @@ const hasSites = (nerve: MotorNerve) => nerve.runs.some(run => run.pairs.length 
 function assessMmn(facts: Facts): Assessed | null {
   const nerves = motorNervesOf(facts).filter(nerve => named.includes(nerve.nerve) && hasSites(nerve))
   if (nerves.length === 0) return null
-  const definite = blockTable(nerves, (pair, run) => definiteIn(facts, run, pair))
-  const probable = blockTable(nerves, (pair, _run, nerve) => probableIn(pair, nerve.nerve !== 'fibular'))
+  const definite = blockTable(nerves, run => definiteIn(facts, run))
+  const probable = blockTable(nerves, (_run, nerve) => probableIn(nerve.nerve !== 'fibular'))
   const sensory = sensoryNervesOf(facts)
   const inOne = atLeastNerves(definite, nerves, 1)
   const atLeastProbable = atLeastNerves(probable, nerves, 1)
@@ -43,15 +42,15 @@ function assessMmn(facts: Facts): Assessed | null {
   return { outcome: outcomeOf(inOne, atLeastProbable, same), criteria, runIds }
 }
 
-type BlockRule = (pair: SitePair, run: MotorNerve['runs'][number], nerve: MotorNerve) => PairFinding
+type BlockRule = (run: MotorRun, nerve: MotorNerve) => PairRule
 
 /** The rule asked of every pair of sites that does not lie across an entrapment site. */
-function blockTable(nerves: readonly MotorNerve[], rule: BlockRule): RuleTable {
+function blockTable(nerves: readonly MotorNerve[], ruleFor: BlockRule): RuleTable {
   return askEach(nerves, nerve => anyTruth(nerve.runs.map((run) => {
     if (run.facts.cold) return unknown(run.facts.cold)
     const pairs = run.pairs.filter(pair => !pair.entrapment)
     if (pairs.length === 0) return leftOut()
-    const { result, numbers, because } = overPairs(pairs, pair => rule(pair, run, nerve))
+    const { result, numbers, because } = overPairs(pairs, ruleFor(run, nerve))
     return result === 'not-assessable' ? unknown(because ?? '') : nerveIs(result === 'met', numbers)
   })))
 }
@@ -64,7 +63,7 @@ function atLeastNerves(table: RuleTable, nerves: readonly MotorNerve[], count: n
 const sensoryFor: Record<string, string> = { median: 'median', ulnar: 'ulnar', fibular: 'superficial-fibular' }
 
 function sensoryOfSame(facts: Facts, sensory: readonly SensoryNerve[], definite: RuleTable): Finding {
-  const found = [...definite].filter(([, truth]) => truth.state === 'met').map(([nerve]) => nerve)
+  const found = metIn(definite)
   if (found.length === 0) return notAssessable('no nerve with a definite block')
   const findings = found.map((nerve): Finding => {
     const same = sensory.find(one => one.nerve === sensoryFor[nerve.nerve] && one.side === nerve.side)

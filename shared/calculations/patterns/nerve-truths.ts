@@ -58,7 +58,11 @@ export function decideNerves(table: RuleTable, needed: number, rule: (holds: Hol
   return { result: 'not-assessable', numbers: words, because: nerveWords(table, ['unknown']) || 'depends on another criterion that could not be assessed' }
 }
 
-const countOf = (table: RuleTable, states: readonly NerveTruth['state'][]) => [...table.values()].filter(truth => states.includes(truth.state)).length
+function countOf(table: RuleTable, states: readonly NerveTruth['state'][]): number {
+  let count = 0
+  for (const truth of table.values()) if (states.includes(truth.state)) count += 1
+  return count
+}
 
 function tooFew(table: RuleTable, needed: number, nothing: string): string {
   const count = countOf(table, ['met', 'not-met', 'unknown'])
@@ -69,21 +73,33 @@ function tooFew(table: RuleTable, needed: number, nothing: string): string {
 
 /** "RIGHT ulnar 5.6 ms, 156 % of 3.6 ms; LEFT tibial 6.2 ms, 103 % of 6 ms": those that count first; the same reason of several nerves once. */
 export function nerveWords(table: RuleTable, states: readonly NerveTruth['state'][]): string {
-  const byWords = new Map<string, string[]>()
+  const reasons: string[] = []
+  const names: string[] = []
   for (const state of states) {
     for (const [nerve, truth] of table) {
       if (truth.state !== state || !truth.words) continue
-      const names = byWords.get(truth.words)
-      if (names) names.push(nerve.name)
-      else byWords.set(truth.words, [nerve.name])
+      const place = reasons.indexOf(truth.words)
+      if (place < 0) names[reasons.push(truth.words) - 1] = nerve.name
+      else names[place] += `, ${nerve.name}`
     }
   }
-  return [...byWords].map(([words, names]) => `${names.join(', ')} ${words}`).join('; ')
+  return reasons.map((words, place) => `${names[place]} ${words}`).join('; ')
 }
 
-/** Names of the nerves for which a rule is met. */
-export function namesMet(table: RuleTable): string {
-  return [...table].filter(([, truth]) => truth.state === 'met').map(([nerve]) => nerve.name).join(', ')
+/** The nerves for which a rule is met. */
+export function metIn(table: RuleTable): MotorNerve[] {
+  const nerves: MotorNerve[] = []
+  for (const [nerve, truth] of table) if (truth.state === 'met') nerves.push(nerve)
+  return nerves
+}
+
+/** Their names. */
+export const namesMet = (table: RuleTable): string => metIn(table).map(nerve => nerve.name).join(', ')
+
+/** Does any nerve say so? */
+export function hasState(table: RuleTable, state: NerveTruth['state']): boolean {
+  for (const truth of table.values()) if (truth.state === state) return true
+  return false
 }
 
 /**

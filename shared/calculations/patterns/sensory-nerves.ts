@@ -2,7 +2,7 @@ import { nerveLabels } from '../../catalogue/nerves'
 import { sides, type Side } from '../../schemas/common'
 import { sideWords } from '../words'
 import { beyondLimit } from './criteria'
-import { readingOf, usualSite, type Facts, type Reading, type RunFacts } from './facts'
+import { noted, readingOf, recall, usualSite, type Facts, type Reading, type RunFacts } from './facts'
 import { anyOf, joined, met, notAssessable, type Finding } from './finding'
 
 /** A sensory nerve of one side at its usual site. */
@@ -75,6 +75,10 @@ export function isLow(facts: Facts, nerve: SensoryNerve): Finding {
  * isAbnormal(facts, sural) // => { result: 'met', numbers: 'amplitude 2.1 µV, limit 4 µV' }
  */
 export function isAbnormal(facts: Facts, nerve: SensoryNerve): Finding {
+  return recall(facts, nerve.run.isAbnormal ??= noted(facts, () => lookForAbnormal(facts, nerve)))
+}
+
+function lookForAbnormal(facts: Facts, nerve: SensoryNerve): Finding {
   if (isSilent(nerve)) return met('no response')
   const parts = [
     { what: 'amplitude', finding: beyondLimit(facts, nerve.amplitude, 'lower') },
