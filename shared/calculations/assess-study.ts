@@ -28,7 +28,7 @@ export function assessStudy(study: Study, tables: readonly ReferenceTable[], pol
   const context = studyContext(study, tables, policy)
   const runs = assessRuns(context)
   const comparisons = [...compareWithinLimbs(context), ...compareSides(context)]
-  const results = [...runs, ...comparisons].flatMap(one => one.results)
+  const results = resultsOf([...runs, ...comparisons])
   return {
     calculationVersion: CALCULATION_VERSION,
     studyId: study.id,
@@ -54,6 +54,12 @@ function assessRuns(context: StudyContext): RunAssessment[] {
     if (known) context.assessed.set(known.run.id, assessRun(context, known))
   }
   return context.runs.map(known => context.assessed.get(known.run.id)).filter(run => run !== undefined)
+}
+
+function resultsOf(parts: readonly { results: readonly Result[] }[]): Result[] {
+  const all: Result[] = []
+  for (const { results } of parts) all.push(...results)
+  return all
 }
 
 /** What the published criteria may look at. */

@@ -15,7 +15,8 @@ export type AskerFor = (recorded: Recorded) => LimitAsker
  * loaded). What is kept are numbers of the sets; nothing says whose they are.
  */
 const KEPT = 8
-interface Shelf { key: string, tables: readonly ReferenceTable[], askers: Map<string, LimitAsker> }
+interface Shelf { key: string, tables: readonly ReferenceTable[], /** by technique */ askers: Map<string, KnownAsker[]>, count: number }
+interface KnownAsker extends LimitAsker { recorded: Recorded }
 let shelves: Shelf[] = []
 
 /**
@@ -27,29 +28,32 @@ let shelves: Shelf[] = []
 export function askerFor(tables: readonly ReferenceTable[], policy: Policy, person: LimitPerson): AskerFor {
   const shelf = shelfFor(tables, policy, person)
   return (recorded) => {
-    const key = `${recorded.technique}|${recorded.direction}|${recorded.amplitudeDefinition}|${recorded.distanceMm}`
-    let asker = shelf.askers.get(key)
-    if (!asker) {
-      asker = newAsker({ tables, policy: { adopted: policy.adopted.map(one => ({ ...one })) } }, recorded, person)
-      shelf.askers.set(key, asker)
-    }
+    const known = shelf.askers.get(recorded.technique) ?? []
+    for (const asker of known) if (isSameWay(asker.recorded, recorded)) return asker
+    const asker = newAsker({ tables, policy: { adopted: policy.adopted.map(one => ({ ...one })) } }, recorded, person)
+    shelf.askers.set(recorded.technique, [...known, asker])
+    shelf.count += 1
     return asker
   }
 }
+
+const isSameWay = (one: Recorded, other: Recorded) =>
+  one.distanceMm === other.distanceMm && one.direction === other.direction && one.amplitudeDefinition === other.amplitudeDefinition
 
 function shelfFor(tables: readonly ReferenceTable[], policy: Policy, person: LimitPerson): Shelf {
   const key = `${person.ageYears}|${person.sexForLimits}|${person.heightCm}|${person.bmi}|${JSON.stringify(policy.adopted)}`
   const known = shelves.find(shelf => shelf.key === key && shelf.tables.length === tables.length && shelf.tables.every((table, index) => table === tables[index]))
   // A study with very many distances must not fill the memory.
-  if (known && known.askers.size < 2000) return known
-  const shelf = { key, tables: [...tables], askers: new Map<string, LimitAsker>() }
+  if (known && known.count < 2000) return known
+  const shelf: Shelf = { key, tables: [...tables], askers: new Map(), count: 0 }
   shelves = [shelf, ...shelves.filter(one => one !== known)].slice(0, KEPT)
   return shelf
 }
 
-function newAsker(shelf: { tables: readonly ReferenceTable[], policy: Pick<Policy, 'adopted'> }, recorded: Recorded, person: LimitPerson): LimitAsker {
+function newAsker(shelf: { tables: readonly ReferenceTable[], policy: Pick<Policy, 'adopted'> }, recorded: Recorded, person: LimitPerson): KnownAsker {
   const answers = new Map<string, Map<string | null, FoundLimit>>()
   return {
+    recorded,
     ask: (quantity, at) => {
       let byPlace = answers.get(quantity)
       if (!byPlace) answers.set(quantity, byPlace = new Map())

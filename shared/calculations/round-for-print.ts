@@ -39,8 +39,9 @@ function withPoint(whole: number, decimals: number): string {
 
 /** Moves the decimal point on the decimal digits, so that 4.35 becomes 43.5 and not 43.49999. */
 function shift(value: number, places: number): number {
-  const [digits, exponent = '0'] = String(value).split('e')
-  return Number(`${digits}e${Number(exponent) + places}`)
+  const digits = String(value)
+  const mark = digits.indexOf('e')
+  return Number(mark < 0 ? `${digits}e${places}` : `${digits.slice(0, mark)}e${Number(digits.slice(mark + 1)) + places}`)
 }
 
 /**

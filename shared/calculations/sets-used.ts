@@ -6,20 +6,17 @@ import type { AppliedLimit, Assessment } from './types'
  * these a named person compared with the paper.
  */
 export function setsUsed(applied: ReadonlySet<AppliedLimit>, tables: readonly ReferenceTable[]): Assessment['setsUsed'] {
-  const sets = new Map<string, Assessment['setsUsed'][number]>()
-  const seen = new Set<string>()
+  const found: { set: Assessment['setsUsed'][number], rowIds: Set<string> }[] = []
   for (const limit of applied) {
-    const key = `${limit.setId}/${limit.setVersion}`
-    if (seen.has(`${key}/${limit.rowId}`)) continue
-    seen.add(`${key}/${limit.rowId}`)
-    const set = sets.get(key) ?? emptySet(limit, tables)
-    if (limit.basis === 'from memory') {
-      set.recalledRows += 1
-      if (limit.verified) set.verifiedRows += 1
-    }
-    sets.set(key, set)
+    let known = found.find(({ set }) => set.setId === limit.setId && set.version === limit.setVersion)
+    if (!known) found.push(known = { set: emptySet(limit, tables), rowIds: new Set() })
+    if (known.rowIds.has(limit.rowId)) continue
+    known.rowIds.add(limit.rowId)
+    if (limit.basis !== 'from memory') continue
+    known.set.recalledRows += 1
+    if (limit.verified) known.set.verifiedRows += 1
   }
-  return [...sets.values()].sort((a, b) => a.setId < b.setId ? -1 : a.setId > b.setId ? 1 : a.version - b.version)
+  return found.map(({ set }) => set).sort((a, b) => a.setId < b.setId ? -1 : a.setId > b.setId ? 1 : a.version - b.version)
 }
 
 function emptySet(limit: AppliedLimit, tables: readonly ReferenceTable[]): Assessment['setsUsed'][number] {

@@ -131,10 +131,12 @@ function compareVelocities(pair: Pair, results: Result[]): void {
     if (one.quantity !== 'velocityMps' || one.value.kind !== 'value') continue
     const other = left.find(result => result.at === one.at)
     if (other?.value.kind !== 'value') continue
-    const common = { of: 'velocityMps', label: `${one.label}, side difference`, formula: `${one.print} and ${other.print} m/s` }
-    addSide(pair, results, { ...common, quantity: 'sideDifferenceMps', keyEnd: `sideDifferenceMps/velocityMps/${one.at ?? ''}`, value: sideDifference(one.value.value, other.value.value, one.value.uncertainty, other.value.uncertainty) })
-    if (pair.asker.ask('sideDifferencePercent', 'velocityMps').kind !== 'limits') continue
-    addSide(pair, results, { ...common, quantity: 'sideDifferencePercent', keyEnd: `sideDifferencePercent/velocityMps/${one.at ?? ''}`, value: sideDifferencePercent(one.value.value, other.value.value) })
+    const add = (quantity: string, value: ComputedValue) => addSide(pair, results, {
+      of: 'velocityMps', quantity, keyEnd: `${quantity}/velocityMps/${one.at ?? ''}`, value,
+      label: `${one.label}, side difference`, formula: `${one.print} and ${other.print} m/s`,
+    })
+    add('sideDifferenceMps', sideDifference(one.value.value, other.value.value, one.value.uncertainty, other.value.uncertainty))
+    if (pair.asker.ask('sideDifferencePercent', 'velocityMps').kind === 'limits') add('sideDifferencePercent', sideDifferencePercent(one.value.value, other.value.value))
   }
 }
 

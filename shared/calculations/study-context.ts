@@ -91,12 +91,11 @@ function sexWord(sex: Assessment['person']['sexForLimits'], ageYears: number | n
 
 function knownRuns(study: Study, tables: readonly ReferenceTable[], policy: Policy): KnownRun[] {
   const temperatures = temperatureContext(study, tables, policy)
-  return study.runs.map((run) => {
-    const recorded = recordedRun(run)
-    const { technique, rows } = recorded
+  return study.runs.map((run): KnownRun => {
+    const { technique, measured, rows, asides } = recordedRun(run)
     const cold = coldOfRun(temperatures, run, technique)
     const bearing: ColdBearing = countsAsCold(cold, run) ? { state: 'all', words: cold.because } : notCold
-    return { ...recorded, cold, bearing, usual: technique && rows[usualIndex(rows, technique)] }
+    return { run, technique, measured, rows, asides, cold, bearing, usual: technique && rows[usualIndex(rows, technique)] }
   })
 }
 
@@ -104,7 +103,8 @@ function knownRuns(study: Study, tables: readonly ReferenceTable[], policy: Poli
 export function recordedRun(run: Run): Pick<KnownRun, 'run' | 'technique' | 'measured' | 'rows' | 'asides'> {
   const technique = techniqueOf(run.technique)
   const placed = technique ? placedRows(run, technique) : []
-  return { run, technique, measured: isMeasured(run), rows: placed.filter(one => !one.site?.aside), asides: placed.filter(one => one.site?.aside) }
+  const asides = placed.filter(one => one.site?.aside)
+  return { run, technique, measured: isMeasured(run), rows: asides.length > 0 ? placed.filter(one => !one.site?.aside) : placed, asides }
 }
 
 /** Was anything recorded, an absent response included? A run marked as not done was not. */

@@ -27,15 +27,14 @@ function remarkOnSegment(list: RemarkList, known: KnownRun, { row, site, label }
   if (typeof distance !== 'number' || !site?.segmentMm || distance <= 0) return
   const { usualMin, usualMax, possibleMin, possibleMax } = site.segmentMm
   if (distance < possibleMin || distance > possibleMax) return
-  const where = { runId: known.run.id, rowId: row.id, quantity: 'distanceMm' }
   const isSegment = known.technique?.kind === 'motor' && index > 0
   if (isSegment && distance < SHORT_SEGMENT_MM) {
     const hint = centimetres(distance, site.segmentMm)
-    if (!isShort(known)) addRemark(list, { ...where, code: 'short-segment', strength: 'check', sentence: `The segment to ${label} is ${distance} mm, under ${SHORT_SEGMENT_MM} mm: a small slip of the tape changes the velocity much. Declare a short-segment study or measure again.${hint}`, source: 'Maynard and Stolov 1972, from memory (about 100 mm); Landau et al. 2003, from memory (60 mm)' })
+    if (!isShort(known)) addRemark(list, { runId: known.run.id, rowId: row.id, quantity: 'distanceMm', code: 'short-segment', strength: 'check', sentence: `The segment to ${label} is ${distance} mm, under ${SHORT_SEGMENT_MM} mm: a small slip of the tape changes the velocity much. Declare a short-segment study or measure again.${hint}`, source: 'Maynard and Stolov 1972, from memory (about 100 mm); Landau et al. 2003, from memory (60 mm)' })
     return
   }
   if (distance >= usualMin && distance <= usualMax) return
-  addRemark(list, { ...where, code: 'distance-unusual', strength: 'check', source: OWN_DECISION, sentence: `Distance at ${label} is usually between ${usualMin} and ${usualMax} mm in adults; ${distance} was entered.${centimetres(distance, site.segmentMm)}` })
+  addRemark(list, { runId: known.run.id, rowId: row.id, quantity: 'distanceMm', code: 'distance-unusual', strength: 'check', source: OWN_DECISION, sentence: `Distance at ${label} is usually between ${usualMin} and ${usualMax} mm in adults; ${distance} was entered.${centimetres(distance, site.segmentMm)}` })
 }
 
 const centimetres = (distance: number, { usualMin, usualMax }: { usualMin: number, usualMax: number }) =>

@@ -25,14 +25,14 @@ const rules: Record<NonNullable<KnownRun['technique']>['kind'], (maker: RunMaker
  * title and has no results.
  */
 export function assessRun(context: StudyContext, known: KnownRun): RunAssessment {
-  const { run, technique, cold, supersededBy } = known
+  const { run, technique, supersededBy } = known
   const title = `${sideWords[run.side]} ${technique ? techniqueTitle(technique) : run.technique}`
   const assessment: RunAssessment = { runId: run.id, technique: run.technique, side: run.side, title, cold: coldSaid(known), results: [] }
   if (supersededBy !== undefined) assessment.supersededBy = supersededBy
   const reason = run.notDoneBecause?.trim()
   if (reason) assessment.notDone = `${technique?.kind === 'needle' ? 'not examined' : 'not done'}: ${reason}`
   if (!technique) return assessment
-  const maker = runMaker(context, { ...known, cold }, technique)
+  const maker = runMaker(context, known, technique)
   rules[technique.kind](maker)
   assessment.results = maker.results
   return assessment
