@@ -1,4 +1,4 @@
-import { otherSide } from '../words'
+import { capital, otherSide } from '../words'
 import type { QuantityId } from '../../catalogue/quantities'
 import type { Side } from '../../schemas/common'
 import { standingRun, type KnownRun, type StudyContext } from '../study-context'
@@ -103,7 +103,7 @@ function remarkOnHalfAmplitude(list: RemarkList, comparisons: readonly Compariso
     for (const result of comparison.results) {
       const difference = numberOf(result.value)
       if (result.quantity !== 'sideDifferencePercent' || !result.at?.startsWith('amplitude') || difference === null || difference <= 50 + 1e-9 || result.flagged) continue
-      addRemark(list, { code: `side-amplitude/${comparison.id}`, strength: 'note', quantity: result.quantity, sentence: `${comparison.title}: the amplitude differs by ${roundForPrint(difference, 0)} % between the sides. A question to the reader, not a flag.`, source: 'usual 50 %, from memory (Buschbacher; textbooks)' })
+      addRemark(list, { code: `side-amplitude/${comparison.id}`, strength: 'note', quantity: result.quantity, sentence: `${capital(comparison.title)}: the amplitude differs by ${roundForPrint(difference, 0)} % between the sides. A question to the reader, not a flag.`, source: 'usual 50 %, from memory (Buschbacher; textbooks)' })
     }
   }
 }

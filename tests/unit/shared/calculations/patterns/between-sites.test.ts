@@ -2,14 +2,14 @@ import { describe, expect, it } from 'vitest'
 import type { Entry, Run, RunRow } from '#shared/schemas/study'
 import type { Side } from '#shared/schemas/common'
 import { run } from '../study-maker'
-import { cardLimits, criterionOf, has, outcome, patternsOf, pick, said, sensory, truths, type Given, type Limit } from './pattern-maker'
+import { cardLimits, criterionOf, has, outcome, patternOf, patternsOf, said, sensory, truths, type Given, type Limit } from './pattern-maker'
 
 /** Site with amplitude (mV), area (mV ms) and duration (ms). */
 type Site = [site: string, amplitude: Entry | undefined, area?: Entry, duration?: Entry]
 const motor = (technique: string, side: Side, sites: Site[]): Run => run(technique, side, sites.map(([site, amplitudeMv, areaMvMs, durationMs]) =>
   [site, Object.fromEntries(Object.entries({ amplitudeMv, areaMvMs, durationMs }).filter(([, value]) => value !== undefined)) as RunRow['values']]))
 const median = (sites: Site[]) => motor('median-motor-apb', 'right', sites)
-const change = (runs: Run[], given: Given = {}) => pick(patternsOf(runs, { limits: cardLimits, ...given }), 'change-between-sites-2010', 'right')
+const change = (runs: Run[], given: Given = {}) => patternOf('change-between-sites-2010', runs, { limits: cardLimits, ...given }, 'right')
 const of = (pattern: ReturnType<typeof change>, nerve = 'median-motor-apb') =>
   Object.fromEntries((['definite', 'probable', 'dispersion', 'ratio'] as const).map(id => [id, criterionOf(pattern, `${nerve}/${id}`).result]))
 
@@ -104,7 +104,7 @@ describe('motor response between sites', () => {
 
 describe('multifocal motor neuropathy, electrical part', () => {
   const limits: Limit[] = [...cardLimits, ['median-sensory-d2', 'amplitudeUv', 'wrist', 'lower', 11], ['ulnar-sensory-d5', 'amplitudeUv', 'wrist', 'lower', 10], ['sural', 'amplitudeUv', 'calf', 'lower', 4]]
-  const mmn = (runs: Run[], given: Given = {}) => pick(patternsOf(runs, { limits, ...given }), 'mmn-efns-pns-2010')
+  const mmn = (runs: Run[], given: Given = {}) => patternOf('mmn-efns-pns-2010', runs, { limits, ...given })
   const blocked = (technique = 'median-motor-apb', side: Side = 'right') => motor(technique, side, technique === 'median-motor-apb' ? [['wrist', 10, 30, 5], ['elbow', 4, 12, 5]] : [['wrist', 10, 30, 5], ['below-elbow', 4, 12, 5]])
   const normalSensory = [sensory('median-sensory-d2', 'right', { amplitude: 20 }), sensory('ulnar-sensory-d5', 'right', { amplitude: 20 }), sensory('sural', 'right', { amplitude: 9 })]
 

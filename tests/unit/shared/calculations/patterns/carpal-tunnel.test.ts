@@ -3,7 +3,7 @@ import type { Side } from '#shared/schemas/common'
 import type { Entry, Run } from '#shared/schemas/study'
 import { assess } from '../study-maker'
 import { carpalTunnelStudy } from '../../../../fixtures/carpal-tunnel-study'
-import { criterionOf, has, motorNerve, outcome, patternsOf, pick, said, sensory, truths, type Given, type Limit } from './pattern-maker'
+import { criterionOf, has, motorNerve, outcome, patternOf, patternsOf, pick, said, sensory, truths, type Given, type Limit } from './pattern-maker'
 
 /** Limits as of the operational additions to the grading: latency 4.5 ms, velocity 40 m/s (140 mm in 3.5 ms). */
 const limits: readonly Limit[] = [
@@ -25,8 +25,8 @@ function hand({ dml, cmap, snap, ring = snap === 'no-response' ? null : 0.1 }: H
     ...(ring === null ? [] : [sensory('median-sensory-d4', side, { peak: 3.2 + ring }), sensory('ulnar-sensory-d4', side, { peak: 3.2 })]),
   ]
 }
-const grade = (one: Hand, given: Given = {}) => outcome(pick(patternsOf(hand(one), { limits, ...given }), 'bland-2000', 'right'))
-const paduaClass = (one: Hand, given: Given = {}) => outcome(pick(patternsOf(hand(one), { limits, ...given }), 'padua-1997', 'right'))
+const grade = (one: Hand, given: Given = {}) => outcome(patternOf('bland-2000', hand(one), { limits, ...given }, 'right'))
+const paduaClass = (one: Hand, given: Given = {}) => outcome(patternOf('padua-1997', hand(one), { limits, ...given }, 'right'))
 
 describe('grades of Bland and classes of Padua', () => {
   const rows: [name: string, hand: Hand, bland: string, padua: string][] = [
@@ -167,7 +167,7 @@ describe('combined sensory index', () => {
       ...pair('median-sensory-d1', 'radial-sensory-d1', thumb, 2.6, 100, 'antidromic'),
     ]
   }
-  const index = (runs: Run[]) => pick(patternsOf(runs), 'combined-sensory-index', 'right')
+  const index = (runs: Run[]) => patternOf('combined-sensory-index', runs, {}, 'right')
 
   it('single tests: exactly on the limit is not above it', () => {
     expect(truths(index(parts({ palm: 0.3, ring: 0.4, thumb: 0.5 })))).toMatchObject({ 'palm': 'not-met', 'ring': 'not-met', 'thumb': 'not-met', 'index': 'met', 'grey-zone': 'met' })

@@ -2,12 +2,12 @@ import { describe, expect, it } from 'vitest'
 import type { Side } from '#shared/schemas/common'
 import type { Run } from '#shared/schemas/study'
 import { run } from '../study-maker'
-import { cardLimits, criterionOf, has, motorNerve, outcome, patternsOf, pick, said, sensory, truths, type Given, type Limit, type Motor, type NerveNumbers } from './pattern-maker'
+import { cardLimits, criterionOf, has, motorNerve, outcome, patternOf, patternsOf, said, sensory, truths, type Given, type Limit, type Motor, type NerveNumbers } from './pattern-maker'
 
 type Study = Partial<Record<Motor, NerveNumbers>>
 const runsOf = (study: Study, side: Side = 'right') => (Object.entries(study) as [Motor, NerveNumbers][]).flatMap(([nerve, numbers]) => motorNerve(nerve, side, numbers))
 const cidp = (id: 'cidp-efns-pns-2010' | 'cidp-ean-pns-2021') => (study: Study | Run[], given: Given = {}) =>
-  pick(patternsOf(Array.isArray(study) ? study : runsOf(study), { limits: cardLimits, ...given }), id)
+  patternOf(id, Array.isArray(study) ? study : runsOf(study), { limits: cardLimits, ...given })
 const of2010 = cidp('cidp-efns-pns-2010')
 const of2021 = cidp('cidp-ean-pns-2021')
 

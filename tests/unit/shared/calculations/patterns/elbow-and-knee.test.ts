@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest'
 import type { Run, RunRow } from '#shared/schemas/study'
 import { run } from '../study-maker'
-import { criterionOf, has, outcome, patternsOf, pick, said, sensory, truths, type Limit } from './pattern-maker'
+import { criterionOf, has, outcome, patternOf, patternsOf, pick, said, sensory, truths, type Limit } from './pattern-maker'
 
 const elbowLimits: readonly Limit[] = [
   ['ulnar-motor-adm', 'velocityMps', 'across-elbow', 'lower', 50],
@@ -18,8 +18,8 @@ function ulnar({ forearm = 60, elbow = 56, below = 9, above = 8.8 as RunRow['val
     ['above-elbow', { latencyMs: above === 'no-response' ? 'no-response' : aboveMs, ...(above !== undefined && { amplitudeMv: above }), distanceMm: 100 }],
   ], more)
 }
-const elbow = (runs: Run[], limits = elbowLimits) => pick(patternsOf(runs, { limits }), 'ulnar-elbow', 'right')
-const elbow1999 = (runs: Run[], limits = elbowLimits) => pick(patternsOf(runs, { limits }), 'ulnar-elbow-parameter-1999', 'right')
+const elbow = (runs: Run[], limits = elbowLimits) => patternOf('ulnar-elbow', runs, { limits }, 'right')
+const elbow1999 = (runs: Run[], limits = elbowLimits) => patternOf('ulnar-elbow-parameter-1999', runs, { limits }, 'right')
 
 describe('ulnar nerve at the elbow', () => {
   it('normal', () => expect(outcome(elbow([ulnar()]))).toBe('not-met: 0 of 3 findings, 2 asked for'))
@@ -111,7 +111,7 @@ const ta = ({ head = 50, below = 5, above = 4.8 } = {}) => run('fibular-motor-ta
   ['below-fibular-head', { latencyMs: 3, amplitudeMv: below, distanceMm: 100 }],
   ['above-fibular-head', { latencyMs: 3 + 100 / head, amplitudeMv: above, distanceMm: 100 }],
 ])
-const knee = (runs: Run[], limits: readonly Limit[] = kneeLimits) => pick(patternsOf(runs, { limits }), 'fibular-knee', 'right')
+const knee = (runs: Run[], limits: readonly Limit[] = kneeLimits) => patternOf('fibular-knee', runs, { limits }, 'right')
 
 describe('fibular nerve at the knee', () => {
   it('normal', () => expect(outcome(knee([edb(), ta()]))).toBe('not-met: 0 of 5 findings, 2 asked for'))

@@ -1,11 +1,11 @@
 import { describe, expect, it } from 'vitest'
 import type { Run } from '#shared/schemas/study'
 import { run } from '../study-maker'
-import { cardLimits, criterionOf, motorNerve, outcome, patternsOf, pick, said, sensory, truths, type Given, type Limit, type Motor, type NerveNumbers } from './pattern-maker'
+import { cardLimits, criterionOf, motorNerve, outcome, patternOf, said, sensory, truths, type Given, type Limit, type Motor, type NerveNumbers } from './pattern-maker'
 
 type Study = Partial<Record<Motor, NerveNumbers>>
 const runsOf = (study: Study) => (Object.entries(study) as [Motor, NerveNumbers][]).flatMap(([nerve, numbers]) => motorNerve(nerve, 'right', numbers))
-const set = (id: string) => (study: Study | Run[], given: Given = {}) => pick(patternsOf(Array.isArray(study) ? study : runsOf(study), { limits: cardLimits, ...given }), id)
+const set = (id: string) => (study: Study | Run[], given: Given = {}) => patternOf(id, Array.isArray(study) ? study : runsOf(study), { limits: cardLimits, ...given })
 const [ho, hadden, rajabally] = ['gbs-ho-1995', 'gbs-hadden-1998', 'gbs-rajabally-2015'].map(set) as [ReturnType<typeof set>, ReturnType<typeof set>, ReturnType<typeof set>]
 
 /** Normal by all three sets; limits are those of the card. */

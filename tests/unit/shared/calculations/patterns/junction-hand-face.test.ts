@@ -1,11 +1,11 @@
 import { describe, expect, it } from 'vitest'
 import type { Entry, Run, RunRow } from '#shared/schemas/study'
 import { run } from '../study-maker'
-import { criterionOf, has, motorNerve, outcome, patternsOf, pick, said, truths, type Given, type Limit } from './pattern-maker'
+import { criterionOf, has, motorNerve, outcome, patternOf, patternsOf, pick, said, truths, type Given, type Limit } from './pattern-maker'
 
 type TrainRow = [site: string, values: RunRow['values'], series?: Entry[]]
 const trains = (rows: TrainRow[], technique = 'repetitive-ulnar-adm') => run(technique, 'right', rows)
-const decrement = (rows: TrainRow[], technique?: string, given: Given = {}) => pick(patternsOf([trains(rows, technique)], given), 'myasthenic-decrement', 'right')
+const decrement = (rows: TrainRow[], technique?: string, given: Given = {}) => patternOf('myasthenic-decrement', [trains(rows, technique)], given, 'right')
 const rest = [8.0, 6.9, 6.4, 6.2, 6.3]
 const repaired = [8.2, 7.9, 7.7, 7.6, 7.6]
 const exhausted = [8.0, 6.6, 5.9, 5.6, 5.7]
@@ -71,7 +71,7 @@ describe('decrement', () => {
 })
 
 describe('increment', () => {
-  const increment = (rows: TrainRow[], more: Run[] = [], given: Given = {}) => pick(patternsOf([trains(rows), ...more], given), 'lambert-eaton-increment', 'right')
+  const increment = (rows: TrainRow[], more: Run[] = [], given: Given = {}) => patternOf('lambert-eaton-increment', [trains(rows), ...more], given, 'right')
   const after = (before: number, then: number) => increment([['rest', { amplitudeMv: before }], ['after-exercise', { amplitudeMv: then, secondsAfterExercise: 0 }]])
   it('59, 60 and 100 %', () => {
     expect(outcome(after(1, 1.59))).toBe('not-met: increment 59 %')
@@ -109,7 +109,7 @@ describe('increment', () => {
 
 describe('split hand', () => {
   const hand = (apb: Entry, fdi: Entry, adm: Entry) => [...motorNerve('median', 'right', { amp: apb }), run('ulnar-motor-fdi', 'right', [['wrist', { amplitudeMv: fdi }]]), ...motorNerve('ulnar', 'right', { amp: adm })]
-  const split = (runs: Run[], given: Given = {}) => pick(patternsOf(runs, given), 'split-hand-index', 'right')
+  const split = (runs: Run[], given: Given = {}) => patternOf('split-hand-index', runs, given, 'right')
   it('between the cut-offs it stays open', () => {
     expect(outcome(split(hand(5, 10, 10)))).toBe('met: below every cut-off that was read')
     expect(outcome(split(hand(6, 10, 10)))).toBe('not-assessable: between the published cut-offs')

@@ -36,6 +36,9 @@ export function pick(patterns: readonly PatternResult[], id: string, side?: Side
   if (!found) throw new Error(`no ${id} ${side ?? ''} among ${patterns.map(one => `${one.id} ${one.side ?? ''}`).join(', ')}`)
   return found
 }
+/** One pattern alone: the other sets are off. */
+export const patternOf = (id: string, runs: Run[], given: Given = {}, side?: Side): PatternResult => pick(patternsOf(runs, { ...given, policy: { patternsOff: patternSets.map(one => one.id).filter(one => one !== id), ...given.policy } }), id, side)
+
 export const has = (patterns: readonly PatternResult[], id: string, side?: Side): boolean => patterns.some(one => one.id === id && one.side === side)
 export const outcome = ({ outcome: { met, label } }: PatternResult): string => `${met}: ${label}`
 

@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest'
 import type { Entry, Run } from '#shared/schemas/study'
-import { cardLimits, criterionOf, has, motorNerve, outcome, patternsOf, pick, said, sensory, truths, type Given, type Limit } from './pattern-maker'
+import { cardLimits, criterionOf, has, motorNerve, outcome, patternOf, patternsOf, said, sensory, truths, type Given, type Limit } from './pattern-maker'
 
 /** Limits at the 1st and 99th percentile, as the definition asks for. */
 const percentile = { percentile: 1 }
@@ -11,7 +11,7 @@ const limits: Limit[] = [
 ]
 const sural = (amplitude: Entry, side: 'right' | 'left' = 'right') => sensory('sural', side, amplitude === 'no-response' ? { onset: amplitude, amplitude } : { onset: 3, amplitude })
 const fibular = (amp: Entry) => motorNerve('fibular', 'right', { dml: 5, amp, mcv: 45 })
-const england = (runs: Run[], given: Given = {}) => pick(patternsOf(runs, { limits, ...given }), 'length-dependent-2005')
+const england = (runs: Run[], given: Given = {}) => patternOf('length-dependent-2005', runs, { limits, ...given })
 
 describe('length-dependent polyneuropathy', () => {
   it('sural and another nerve', () => {
@@ -70,7 +70,7 @@ describe('length-dependent polyneuropathy', () => {
 
 describe('sural to radial ratio', () => {
   const pair = (suralUv: Entry, radialUv: Entry, more: Partial<Run> = {}) => [sural(suralUv), sensory('radial-sensory-snuffbox', 'right', { amplitude: radialUv }, 100, more)]
-  const ratio = (runs: Run[], given: Given = {}) => pick(patternsOf(runs, given), 'sural-radial-1997', 'right')
+  const ratio = (runs: Run[], given: Given = {}) => patternOf('sural-radial-1997', runs, given, 'right')
   it('below 0.40, exactly 0.40 is not', () => {
     expect(outcome(ratio(pair(3.9, 10)))).toBe('met: ratio 0.39, below 0.40')
     expect(outcome(ratio(pair(4, 10)))).toBe('not-met: ratio 0.40')

@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest'
 import { cellsBehind } from '#shared/calculations/plausibility/kept-answer'
 import type { Run, Study } from '#shared/schemas/study'
-import { assess, remarkOf, run, studyWith } from './study-maker'
+import { assess, remarkOf, run, studyWith } from '../study-maker'
 
 const legRun = (distanceMm: number, latencyMs = 4.5): Run => run('fibular-motor-edb', 'right', [['ankle', { latencyMs, amplitudeMv: 5, distanceMm: 80 }], ['below-fibular-head', { latencyMs: 15, amplitudeMv: 4.8, distanceMm }]])
 const sural = (amplitudeUv: number, changes: Partial<Run> = {}): Run => run('sural', 'right', [['calf', { onsetLatencyMs: 3.2, peakLatencyMs: 4, amplitudeUv, distanceMm: 140 }]], changes)

@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest'
 import type { Run, RunRow, Study } from '#shared/schemas/study'
-import { carpalTunnelStudy } from '../../../fixtures/carpal-tunnel-study'
-import { assess, codes, remarkOf, run, studyWith } from './study-maker'
+import { carpalTunnelStudy } from '../../../../fixtures/carpal-tunnel-study'
+import { assess, codes, remarkOf, run, studyWith } from '../study-maker'
 
 type Values = RunRow['values']
 const median = (wrist: Values, elbow?: Values, changes: Partial<Run> = {}) => run('median-motor-apb', 'right', [['wrist', wrist], ...(elbow ? [['elbow', elbow] as [string, Values]] : [])], changes)
