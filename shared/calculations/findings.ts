@@ -47,7 +47,7 @@ function runText(known: Told, run: RunAssessment, words: FindingWords): string {
   const beside = new Set(known.asides.map(({ row }) => row.id))
   const told = run.results.filter(result => isTold(result) || (beside.has(result.rowId ?? '') && result.quantity === 'amplitudeMv'))
   const cold = coldWords(run, words)
-  if (told.length === 0) return `${title}: ${run.results.length > 0 ? words.nothingToJudge : words.nothingRecorded}${cold}.`
+  if (told.length === 0) return `${title}: ${words.nothingToJudge}${cold}.`
   const judged = told.filter(result => result.verdict.kind === 'within')
   if (judged.length === told.length && cold === '' && !told.some(isNear)) return `${title}: ${words.listed(within(told, words))} ${words.withinLimits}.`
   return `${title}: ${told.map(value => valueText(value, words)).join(', ')}${cold}.`
