@@ -69,7 +69,7 @@ export function usePersonMark() {
 
 /** True once a request was refused because the session ended; the frame then offers to sign in again in a new tab. */
 export function useSignedOut() {
-  return useState('signed-out', () => false)
+  return storeToRefs(useSessionStore()).signedOut
 }
 
 /**

@@ -29,7 +29,7 @@ function readResult(url: string): SignInResult {
  * may('referral.book', referral.siteId)
  */
 export function useSession() {
-  const user = useState<SessionUser | null>('session-user', () => null)
+  const { user } = storeToRefs(useSessionStore())
   /** useRequestFetch passes the cookie on while the server renders; it must be taken before any await. */
   const requestFetch = useRequestFetch()
 

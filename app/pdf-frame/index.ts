@@ -23,32 +23,57 @@ const MAX_CANVAS_PX = 2400
 const pages = document.getElementById('pages')!
 const answer = (message: PdfFrameAnswer) => window.parent.postMessage(message, '*')
 
-/** A picture of the page as wide as the frame on this screen, and its words for those who hear it. */
-async function draw(page: PDFPageProxy, label: string): Promise<void> {
-  const { width } = page.getViewport({ scale: 1 })
-  const viewport = page.getViewport({ scale: Math.min(MAX_CANVAS_PX, Math.max(600, pages.clientWidth) * window.devicePixelRatio) / width })
+interface Place { canvas: HTMLCanvasElement, page: PDFPageProxy }
+
+/** Room for a page in its proportions, to be drawn when it comes into view. */
+function placeFor(page: PDFPageProxy, label: string): Place {
+  const { width, height } = page.getViewport({ scale: 1 })
   const canvas = document.createElement('canvas')
-  Object.assign(canvas, { width: Math.round(viewport.width), height: Math.round(viewport.height) })
+  Object.assign(canvas.style, { aspectRatio: `${width} / ${height}` })
   canvas.setAttribute('role', 'img')
   canvas.setAttribute('aria-label', label)
   pages.append(canvas)
-  await page.render({ canvas, viewport }).promise
-  const text = document.createElement('p')
-  text.className = 'text'
-  text.textContent = (await page.getTextContent()).items.map(item => 'str' in item ? item.str + (item.hasEOL ? '\n' : ' ') : '').join('')
-  pages.append(text)
+  return { canvas, page }
 }
+
+/** As wide as the frame on this screen. */
+async function draw({ canvas, page }: Place): Promise<void> {
+  const wide = Math.min(MAX_CANVAS_PX, Math.max(600, pages.clientWidth) * window.devicePixelRatio)
+  const viewport = page.getViewport({ scale: wide / page.getViewport({ scale: 1 }).width })
+  Object.assign(canvas, { width: Math.round(viewport.width), height: Math.round(viewport.height) })
+  await page.render({ canvas, viewport }).promise
+}
+
+/** The words of a page behind its picture, for those who hear them. */
+async function addWords({ canvas, page }: Place): Promise<void> {
+  const words = document.createElement('p')
+  words.className = 'words'
+  words.textContent = (await page.getTextContent()).items.map(item => 'str' in item ? item.str + (item.hasEOL ? '\n' : ' ') : '').join('')
+  canvas.after(words)
+}
+
+const failed = (error: unknown) => answer({ pdfFrame: 'failed', because: error instanceof Error && error.name === 'PasswordException' ? 'password' : 'unreadable' })
 
 async function show({ bytes, title }: PdfFrameQuestion): Promise<void> {
   document.title = title
   const pdf = await getDocument({ data: bytes, isEvalSupported: false, enableXfa: false, useWorkerFetch: false, useSystemFonts: true, WasmFactory: Decoders }).promise
-  for (let number = 1; number <= pdf.numPages; number++) await draw(await pdf.getPage(number), `Page ${number} of ${pdf.numPages}`)
+  const places: Place[] = []
+  for (let number = 1; number <= pdf.numPages; number++) places.push(placeFor(await pdf.getPage(number), `Page ${number} of ${pdf.numPages}`))
+  const [first, ...later] = places
+  if (first) await draw(first)
   answer({ pdfFrame: 'shown', pages: pdf.numPages })
+  const seen = new IntersectionObserver(entries => entries.filter(entry => entry.isIntersecting).forEach(({ target }) => {
+    seen.unobserve(target)
+    const place = later.find(each => each.canvas === target)
+    if (place) draw(place).catch(failed)
+  }), { rootMargin: '100% 0%' })
+  later.forEach(place => seen.observe(place.canvas))
+  for (const place of places) await addWords(place)
 }
 
 window.addEventListener('message', ({ data, source }: MessageEvent<PdfFrameQuestion>) => {
   if (source !== window.parent || !(data?.bytes instanceof ArrayBuffer)) return
   pages.replaceChildren()
-  show(data).catch((error: unknown) => answer({ pdfFrame: 'failed', because: error instanceof Error && error.name === 'PasswordException' ? 'password' : 'unreadable' }))
+  show(data).catch(failed)
 })
 answer({ pdfFrame: 'ready' })

@@ -15,7 +15,7 @@ function impressionFor({ picture }: MadeReferral, flags: ReturnType<typeof flags
   return lines.map((line, index) => ({ id: `line-${index + 1}`, words: line.words, nerve: line.nerve, pattern: null, side: line.side, degree: null, abnormal: line.abnormal }))
 }
 
-const english = { correlation: ['Fits the history.', 'Explains the symptoms in part.', 'To be read with the clinical examination.'], limitations: ['Small fibres are not assessed by this method.', 'None identified.', 'Needle examination was not done.'], recommendation: 'Clinical review in three months.' }
+const english = { correlation: ['Fits the history.', 'Explains the symptoms in part.', 'To be read with the clinical examination.'], limitations: ['Small fibres are not assessed by this method.', 'none identified', 'Needle examination was not performed.'], recommendation: 'Clinical review in three months.' }
 const german = { correlation: ['Passt zur Anamnese.', 'Erklärt die Beschwerden teilweise.', 'Zusammen mit der klinischen Untersuchung zu lesen.'], limitations: ['Dünne Fasern werden mit dieser Methode nicht erfasst.', 'Keine erkannt.', 'Eine Nadeluntersuchung wurde nicht durchgeführt.'], recommendation: 'Klinische Kontrolle in drei Monaten.' }
 
 /** Takes the study and writes the draft; answers what the program asks before signing. */
