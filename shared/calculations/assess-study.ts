@@ -64,7 +64,6 @@ function resultsOf(parts: readonly { results: readonly Result[] }[]): Result[] {
 
 /** What the published criteria may look at. */
 function patternInput(context: StudyContext, runs: RunAssessment[], comparisons: ComparisonAssessment[], results: readonly Result[]): PatternInput {
-  const bySide = new Map(comparisons.map(one => [`${one.id}/${one.side ?? ''}`, one]))
   return {
     study: context.study, policy: context.policy, person: context.person, runs, comparisons,
     runFor: (technique: string, side: Side) => {
@@ -73,7 +72,6 @@ function patternInput(context: StudyContext, runs: RunAssessment[], comparisons:
     },
     recordedRun: runId => context.known.get(runId)?.run,
     resultOf: (run, quantity, at) => run?.results.find(result => result.quantity === quantity && (at === undefined || result.at === at)),
-    comparisonResult: (id, side, quantity) => bySide.get(`${id}/${side ?? ''}`)?.results.find(result => result.quantity === quantity),
     limitsOf: result => limitsOfResult(context, result),
     results,
   }

@@ -44,12 +44,11 @@ function runText(known: Told, run: RunAssessment, words: FindingWords): string {
   if (run.notDone !== undefined) return `${title}: ${words.say(run.notDone.replace(/\.$/, ''))}.`
   if (known.technique?.kind === 'needle') return needleText(title, known, known.technique, words)
   if (!known.measured) return `${title}: ${words.nothingRecorded}.`
-  const beside = new Set(known.asides.map(({ row }) => row.id))
-  const told = run.results.filter(result => isTold(result) || (beside.has(result.rowId ?? '') && result.quantity === 'amplitudeMv'))
+  const isBeside = (result: Result) => result.quantity === 'amplitudeMv' && known.asides.some(({ row }) => row.id === result.rowId)
+  const told = run.results.filter(result => isTold(result) || isBeside(result))
   const cold = coldWords(run, words)
   if (told.length === 0) return `${title}: ${words.nothingToJudge}${cold}.`
-  const judged = told.filter(result => result.verdict.kind === 'within')
-  if (judged.length === told.length && cold === '' && !told.some(isNear)) return `${title}: ${words.listed(within(told, words))} ${words.withinLimits}.`
+  if (cold === '' && told.every(isClearlyWithin)) return `${title}: ${words.listed(within(told, words))} ${words.withinLimits}.`
   return `${title}: ${told.map(value => valueText(value, words)).join(', ')}${cold}.`
 }
 
@@ -71,7 +70,7 @@ function isTold(result: Result): boolean {
   return !result.verdict.because.startsWith(STANDS_FOR)
 }
 
-const isNear = (result: Result) => result.verdict.kind === 'within' && result.verdict.nearLimit
+const isClearlyWithin = ({ verdict }: Result) => verdict.kind === 'within' && !verdict.nearLimit
 
 /** Each kind of number once: "latency, amplitude and velocity". */
 function within(results: readonly Result[], words: FindingWords): string[] {
@@ -79,7 +78,8 @@ function within(results: readonly Result[], words: FindingWords): string[] {
 }
 
 function withUnit(result: Result, words: FindingWords): string {
-  return result.value.kind === 'value' ? [result.print, result.unit].filter(Boolean).join(' ') : words.say(result.print)
+  if (result.value.kind !== 'value') return words.say(result.print)
+  return result.unit === '' ? result.print : `${result.print} ${result.unit}`
 }
 
 /**
@@ -126,13 +126,13 @@ function needleText(title: string, known: Told, technique: Technique, words: Fin
 /** Side differences are told only where a set has a limit; the others also where there is no number, with the reason. */
 function comparisonText(comparison: ComparisonAssessment, words: FindingWords): string | null {
   const isSides = comparison.side === undefined
-  const told = comparison.results.filter(result => isSides ? ['within', 'outside', 'absent', 'cold'].includes(result.verdict.kind) : true)
+  const told = isSides ? comparison.results.filter(({ verdict }) => 'limits' in verdict) : comparison.results
   if (told.length === 0) return null
   const title = capital(words.say(comparison.title))
   const missing = told.filter(result => result.value.kind === 'not-computable')
   const [first] = missing
   if (missing.length === told.length && first?.value.kind === 'not-computable') return `${title}: ${words.notComputable}: ${words.say(first.value.because.replace(/\b(right|left)\b/, side => side.toUpperCase()))}.`
-  if (told.every(result => result.verdict.kind === 'within' && !isNear(result))) return `${title}: ${told.map(result => `${words.say(result.label)} ${withUnit(result, words)}`).join(', ')}, ${words.withinLimits}.`
+  if (told.every(isClearlyWithin)) return `${title}: ${told.map(result => `${words.say(result.label)} ${withUnit(result, words)}`).join(', ')}, ${words.withinLimits}.`
   return `${title}: ${told.map(result => comparedText(result, words)).join(', ')}.`
 }
 

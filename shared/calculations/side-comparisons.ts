@@ -131,13 +131,17 @@ function compareVelocities(pair: Pair, results: Result[]): void {
     if (one.quantity !== 'velocityMps' || one.value.kind !== 'value') continue
     const other = left.find(result => result.at === one.at)
     if (other?.value.kind !== 'value') continue
-    const add = (quantity: string, value: ComputedValue) => addSide(pair, results, {
-      of: 'velocityMps', quantity, keyEnd: `${quantity}/velocityMps/${one.at ?? ''}`, value,
-      label: `${one.label}, side difference`, formula: `${one.print} and ${other.print} m/s`,
-    })
-    add('sideDifferenceMps', sideDifference(one.value.value, other.value.value, one.value.uncertainty, other.value.uncertainty))
-    if (pair.asker.ask('sideDifferencePercent', 'velocityMps').kind === 'limits') add('sideDifferencePercent', sideDifferencePercent(one.value.value, other.value.value))
+    addVelocitySide(pair, results, one, other, 'sideDifferenceMps', sideDifference(one.value.value, other.value.value, one.value.uncertainty, other.value.uncertainty))
+    if (pair.asker.ask('sideDifferencePercent', 'velocityMps').kind !== 'limits') continue
+    addVelocitySide(pair, results, one, other, 'sideDifferencePercent', sideDifferencePercent(one.value.value, other.value.value))
   }
+}
+
+function addVelocitySide(pair: Pair, results: Result[], one: Result, other: Result, quantity: string, value: ComputedValue): void {
+  addSide(pair, results, {
+    quantity, of: 'velocityMps', keyEnd: `${quantity}/velocityMps/${one.at ?? ''}`, label: `${one.label}, side difference`, value,
+    formula: `${one.print} and ${other.print} m/s`,
+  })
 }
 
 const SOURCE = 'Buschbacher (from memory); common practice'

@@ -53,7 +53,7 @@ interface Asked { nerve: Nerve, run: RunFacts, findings: Record<TextId, Finding>
 function assessChange(facts: Facts, side: Side): Assessed | null {
   const asked = nerves.flatMap((nerve): Asked[] => {
     const run = facts.run(nerve.technique, side)
-    if (!run || sitesStimulated(run) < 2) return []
+    if (!run || !isStimulatedTwice(run)) return []
     return [{ nerve, run, findings: findingsOf(facts, motorRun(facts, run), nerve.arm) }]
   })
   if (asked.length === 0) return null
@@ -61,7 +61,15 @@ function assessChange(facts: Facts, side: Side): Assessed | null {
   return { outcome: outcomeOf(asked), criteria, runIds: eachOnce(asked.map(({ run }) => run.id)) }
 }
 
-const sitesStimulated = ({ assessment }: RunFacts) => new Set(assessment.results.filter(result => (result.quantity === 'amplitudeMv' || result.quantity === 'areaMvMs') && !siteOf(assessment.technique, result.at ?? '')?.aside).map(result => result.at)).size
+function isStimulatedTwice({ assessment }: RunFacts): boolean {
+  let first: string | undefined
+  for (const { quantity, at = '' } of assessment.results) {
+    if ((quantity !== 'amplitudeMv' && quantity !== 'areaMvMs') || siteOf(assessment.technique, at)?.aside) continue
+    if (first !== undefined && first !== at) return true
+    first = at
+  }
+  return false
+}
 
 function findingsOf(facts: Facts, run: MotorRun, arm: boolean): Record<TextId, Finding> {
   const pairs = facts.input.policy.leaveOutEntrapmentSites ? run.pairs.filter(pair => !pair.entrapment) : run.pairs
@@ -90,7 +98,7 @@ function outcomeOf(asked: readonly Asked[]): Assessed['outcome'] {
     namesOf('dispersion').length > 0 && `dispersion: ${namesOf('dispersion').join(', ')}`,
     namesOf('ratio').length > 0 && `amplitude ratio: ${namesOf('ratio').join(', ')}`,
   ].filter(part => part !== false)
-  const met = anyOf(asked.flatMap(({ findings }) => Object.values(findings).map(({ result }) => result)))
+  const met = anyOf(asked.flatMap(({ findings }) => textIds.map(id => findings[id].result)))
   if (met === 'met') return { met, label: said.join('; ') }
   return { met, label: met === 'not-met' ? 'none' : 'none in what could be assessed' }
 }

@@ -90,6 +90,7 @@ const absenceReasons = { 'technical': 'not recordable for technical reasons', 'n
 
 /** A reading that is not known, and why. */
 export const missing = (because: string): Reading => ({ state: 'missing', value: Number.NaN, because })
+const notRecorded = missing('not recorded')
 
 /**
  * A number of a run. Nothing of a cold run counts.
@@ -98,14 +99,14 @@ export const missing = (because: string): Reading => ({ state: 'missing', value:
  * readingOf(facts, facts.run('median-motor-apb', 'right'), 'latencyMs', 'wrist').value // => 5.2 (ms)
  */
 export function readingOf(facts: Facts, run: RunFacts | undefined, quantity: string, at?: string): Reading {
-  if (!run) return missing('not recorded')
+  if (!run) return notRecorded
   if (run.cold) return missing(run.cold)
   return readingOfResult(facts.input.resultOf(run.assessment, quantity, at))
 }
 
 /** A result as a reading. */
 export function readingOfResult(result: Result | undefined): Reading {
-  if (!result) return missing('not recorded')
+  if (!result) return notRecorded
   const { value } = result
   if (value.kind === 'value') return { state: 'number', value: value.value, because: '', result }
   if (value.kind === 'not-computable') return { ...missing(value.because), result }
@@ -116,12 +117,12 @@ export function readingOfResult(result: Result | undefined): Reading {
 /** A number of a comparison within a limb; not where one of its runs is cold. */
 export function comparisonReading(facts: Facts, id: string, side: Side, quantity: string): Reading {
   const comparison = facts.input.comparisons.find(one => one.id === id && one.side === side)
-  if (!comparison) return missing('not recorded')
+  if (!comparison) return notRecorded
   for (const runId of comparison.runIds) {
     const assessment = facts.input.runs.find(run => run.runId === runId)
     if (assessment && countsAsCold(assessment.cold, facts.input.recordedRun(runId) ?? {})) return missing(`cold: ${assessment.cold.because}`)
   }
-  return readingOfResult(facts.input.comparisonResult(id, side, quantity))
+  return readingOfResult(comparison.results.find(result => result.quantity === quantity))
 }
 
 /**

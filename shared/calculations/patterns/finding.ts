@@ -119,7 +119,7 @@ export function atLeast(needed: number, truths: readonly Truth[]): Truth {
 export function joined(parts: readonly (string | undefined)[]): string {
   const kept: string[] = []
   for (const part of parts) if (part && !kept.includes(part)) kept.push(part)
-  return kept.join('; ')
+  return kept.length === 1 ? kept[0] as string : kept.join('; ')
 }
 
 /** The finding with what its numbers are of: "distal latency 5.2 ms". */

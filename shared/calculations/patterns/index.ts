@@ -33,5 +33,7 @@ function resultOf(set: PatternSet, facts: Facts, side: Side | undefined): Patter
   if (!assessed) return null
   const source = facts.usedRecalled ? `${set.source}. ${RECALLED}` : set.source
   const { id, version, title, basis } = set
-  return { id, version, title, ...(side && { side }), source, basis, outcome: assessed.outcome, criteria: assessed.criteria, runIds: [...assessed.runIds] }
+  const { outcome, criteria } = assessed
+  const runIds = [...assessed.runIds]
+  return side ? { id, version, title, side, source, basis, outcome, criteria, runIds } : { id, version, title, source, basis, outcome, criteria, runIds }
 }

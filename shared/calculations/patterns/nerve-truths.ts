@@ -53,10 +53,12 @@ export function decideNerves(table: RuleTable, needed: number, rule: (holds: Hol
   const words = nerveWords(table, ['met', 'not-met'])
   if (rule((one, nerve) => one.get(nerve)?.state === 'met')) return { result: 'met', numbers: words }
   if (countOf(table, ['met', 'not-met', 'unknown']) < needed) return { result: 'not-assessable', numbers: words, because: tooFew(table, needed, nothing) }
-  const isOpen = rule((one, nerve) => ['met', 'unknown'].includes(one.get(nerve)?.state ?? 'left-out'))
+  const isOpen = rule((one, nerve) => mayCount(one.get(nerve)))
   if (!isOpen) return { result: 'not-met', numbers: words }
   return { result: 'not-assessable', numbers: words, because: nerveWords(table, ['unknown']) || 'depends on another criterion that could not be assessed' }
 }
+
+const mayCount = (truth: NerveTruth | undefined) => truth?.state === 'met' || truth?.state === 'unknown'
 
 function countOf(table: RuleTable, states: readonly NerveTruth['state'][]): number {
   let count = 0

@@ -19,8 +19,6 @@ export interface PatternInput {
   recordedRun: (runId: string) => Run | undefined
   /** A result of a run by quantity and, where it matters, site or segment id. */
   resultOf: (run: RunAssessment | undefined, quantity: string, at?: string) => Result | undefined
-  /** A result of a comparison by id, side and quantity. */
-  comparisonResult: (id: string, side: Side | undefined, quantity: string) => Result | undefined
   /** Every result of every run and comparison, in printing order. */
   results: readonly Result[]
   /** Limits of a result, also where the verdict is cold or absent, and for a sensory velocity the one derived from the onset latency. */

@@ -3,7 +3,7 @@ import { numberOf } from '../computed-value'
 import { roundForPrint } from '../round-for-print'
 import type { PlacedRow } from '../placed-rows'
 import type { KnownRun } from '../study-context'
-import type { Remark, Result, RunAssessment } from '../types'
+import type { Result, RunAssessment } from '../types'
 import { capital } from '../words'
 import { addRemark, OWN_DECISION, type RemarkList } from './remark'
 
@@ -58,25 +58,29 @@ function remarkOnVelocity(list: RemarkList, result: Result, known: KnownRun): vo
   const { possible, usual } = quantityOf('velocityMps')
   // Over 20 mm a tenth of a millisecond moves the velocity by half: the step itself is what is looked at.
   if (velocity === null || !possible || !usual || isShortStep(known, result.rowId)) return
-  const add = (code: string, strength: Remark['strength'], words: string) => addRemark(list, {
+  const isImpossible = velocity < possible.min || velocity > possible.max
+  const leg = known.technique?.limb === 'leg' && known.technique.kind === 'motor' && result.at === 'leg'
+  const max = leg ? LEG_SEGMENT_MPS : usual.max
+  if (!isImpossible && velocity >= usual.min && velocity <= max) return
+  const [code, strength, words] = isImpossible
+    ? ['velocity-impossible', 'stop', `; nerves carry between ${possible.min} and ${possible.max} m/s. Check the distance and both latencies.`] as const
+    : ['velocity-unusual', 'check', `, usually between ${usual.min} and ${max} m/s. Check the distance, the cursors, cathode and anode.`] as const
+  addRemark(list, {
     runId: result.runId, rowId: result.rowId, quantity: result.quantity, code, strength, source: OWN_DECISION,
     sentence: `${capital(result.label)} comes to ${roundForPrint(velocity, velocity < 10 ? 1 : 0)} m/s${words}`,
   })
-  if (velocity < possible.min || velocity > possible.max) {
-    add('velocity-impossible', 'stop', `; nerves carry between ${possible.min} and ${possible.max} m/s. Check the distance and both latencies.`)
-    return
-  }
-  const leg = known.technique?.limb === 'leg' && known.technique.kind === 'motor' && result.at === 'leg'
-  const max = leg ? LEG_SEGMENT_MPS : usual.max
-  if (velocity < usual.min || velocity > max) add('velocity-unusual', 'check', `, usually between ${usual.min} and ${max} m/s. Check the distance, the cursors, cathode and anode.`)
 }
+
+const ELBOW_SOURCE = 'AAEM/AAN/AAPMR practice parameter, Campbell et al., Muscle Nerve 1999;22:408-411: 70 to 90°, from memory'
 
 /** Skin and nerve move differently when the elbow bends: the position belongs to the distance. */
 function remarkOnElbow(list: RemarkList, known: KnownRun, rows: readonly PlacedRow[]): void {
   const across = rows.find(placed => placed.site?.segment?.id === 'across-elbow' && typeof placed.row.values.latencyMs === 'number')
   if (!across || known.technique?.kind !== 'motor') return
   const angle = known.run.elbowFlexionDegrees
-  const where = { runId: known.run.id, rowId: across.row.id, strength: 'note' as const, source: 'AAEM/AAN/AAPMR practice parameter, Campbell et al., Muscle Nerve 1999;22:408-411: 70 to 90°, from memory' }
-  if (angle === undefined) addRemark(list, { ...where, code: 'elbow-position-missing', sentence: 'Elbow position not recorded; bent by 70 to 90° is usual.' })
-  else if (angle < 70 || angle > 90) addRemark(list, { ...where, code: 'elbow-position', sentence: `Elbow bent by ${angle}°; limits are usually for 70 to 90°.` })
+  if (angle !== undefined && angle >= 70 && angle <= 90) return
+  addRemark(list, {
+    runId: known.run.id, rowId: across.row.id, strength: 'note', source: ELBOW_SOURCE, code: angle === undefined ? 'elbow-position-missing' : 'elbow-position',
+    sentence: angle === undefined ? 'Elbow position not recorded; bent by 70 to 90° is usual.' : `Elbow bent by ${angle}°; limits are usually for 70 to 90°.`,
+  })
 }

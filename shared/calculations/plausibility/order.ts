@@ -1,4 +1,5 @@
 import type { QuantityId } from '../../catalogue/quantities'
+import { numberOf } from '../computed-value'
 import type { PlacedRow } from '../placed-rows'
 import { fMeasures } from '../runs/f-wave'
 import type { KnownRun } from '../study-context'
@@ -59,7 +60,7 @@ function remarkOnFWave(list: RemarkList, known: KnownRun, placed: PlacedRow): vo
   if (minimum.kind === 'value' && m !== null && minimum.value <= m + TOLERANCE) {
     addRemark(list, { ...where, code: 'f-before-m', strength: 'stop', quantity: 'minimumLatencyMs', sentence: `The shortest F latency (${minimum.value} ms) must be longer than the M latency (${m} ms).` })
   }
-  const ordered = [minimum, mean, maximum].flatMap(value => value.kind === 'value' ? [value.value] : [])
+  const ordered = [minimum, mean, maximum].map(numberOf).filter(value => value !== null)
   if (ordered.some((value, index) => index > 0 && value < (ordered[index - 1] as number) - TOLERANCE)) {
     addRemark(list, { ...where, code: 'f-order', strength: 'stop', sentence: 'The F latencies must stand in the order shortest, mean, longest.' })
   }

@@ -43,19 +43,23 @@ function remarkOnSeries(list: RemarkList, known: KnownRun, { row, label }: Place
 function remarkOnNumber(list: RemarkList, known: KnownRun, placed: PlacedRow, id: QuantityId, value: number, isProximal: boolean): void {
   if (!(id in quantities)) return
   const quantity = quantityOf(id)
-  const add = (code: string, strength: Remark['strength'], words: string) =>
-    addRemark(list, { runId: known.run.id, rowId: placed.row.id, quantity: id, code, strength, source: OWN_DECISION, sentence: capital(`${quantityInfo(id).label} at ${placed.label}${words}`) })
-  if (value <= 0 && quantity.kind !== 'count') {
-    add('zero', 'stop', value === 0 ? ': 0 is no measurement. Enter no response, technical, not done or stopped.' : ' must be above 0.')
-    return
-  }
-  const possible = possibleRange(quantity, placed.site)
-  if (possible && isBeyond(value, possible)) {
-    add('impossible', 'stop', ` must be between ${rangeWords(quantity, value, possible)}`)
-    return
-  }
+  const said = value <= 0 && quantity.kind !== 'count' ? zero(value) : beyond(known, placed, quantity, value, isProximal)
+  if (!said) return
+  const { code, strength, words } = said
+  addRemark(list, { runId: known.run.id, rowId: placed.row.id, quantity: id, code, strength, source: OWN_DECISION, sentence: capital(`${quantityInfo(id).label} at ${placed.label}${words}`) })
+}
+
+interface Said { code: string, strength: Remark['strength'], words: string }
+
+function zero(value: number): Said {
+  return { code: 'zero', strength: 'stop', words: value === 0 ? ': 0 is no measurement. Enter no response, technical, not done or stopped.' : ' must be above 0.' }
+}
+
+function beyond(known: KnownRun, { site }: PlacedRow, quantity: Quantity, value: number, isProximal: boolean): Said | null {
+  const possible = possibleRange(quantity, site)
+  if (possible && isBeyond(value, possible)) return { code: 'impossible', strength: 'stop', words: ` must be between ${rangeWords(quantity, value, possible)}` }
   const usual = usualRange(known, quantity, isProximal)
-  if (usual && isBeyond(value, usual)) add('unusual', 'check', ` is usually between ${rangeWords(quantity, value, usual)}`)
+  return usual && isBeyond(value, usual) ? { code: 'unusual', strength: 'check', words: ` is usually between ${rangeWords(quantity, value, usual)}` } : null
 }
 
 type Range = NonNullable<Quantity['usual']>

@@ -17,17 +17,14 @@ export interface RunMaker {
   technique: Technique
   rows: readonly PlacedRow[]
   asides: readonly PlacedRow[]
-  owners: ReadonlyMap<RunRow, Owner>
+  /** Of the row that a result was added to last. */
+  owner?: Owner
   results: Result[]
 }
 
 export function runMaker(context: StudyContext, known: KnownRun, technique: Technique): RunMaker {
   const { run, rows, asides } = known
-  const owners = new Map<RunRow, Owner>()
-  for (const { row } of [...rows, ...asides]) {
-    owners.set(row, { keyStart: `${run.id}/${row.id}/`, runId: run.id, rowId: row.id, side: run.side, cold: known.bearing, supersededBy: known.supersededBy })
-  }
-  return { context, known, run, technique, rows, asides, owners, results: [] }
+  return { context, known, run, technique, rows, asides, results: [] }
 }
 
 /**
@@ -50,7 +47,13 @@ export const isLatency = (quantity: string) => latencies.has(quantity)
 
 /** Adds a result to a row of this run. */
 export function add(maker: RunMaker, placed: PlacedRow, input: ResultInput): void {
-  maker.results.push(makeResult(maker.context, maker.owners.get(placed.row) as Owner, input))
+  maker.results.push(makeResult(maker.context, ownerOf(maker, placed), input))
+}
+
+function ownerOf(maker: RunMaker, { row }: PlacedRow): Owner {
+  const { known, run, owner } = maker
+  if (owner?.rowId === row.id) return owner
+  return maker.owner = { keyStart: `${run.id}/${row.id}/`, runId: run.id, rowId: row.id, side: run.side, cold: known.bearing, supersededBy: known.supersededBy }
 }
 
 /** Who knows the limits for a run recorded like this one, at this distance from stimulus to recording electrode. */
