@@ -27,11 +27,13 @@ export function definiteIn(facts: Facts, run: MotorRun): PairRule {
   return {
     of: pair => allOf([truthOf(pair.areaFall, areaHalf), truthOf(pair.durationRise, riseSmall), largeEnough(facts, run, pair).result]),
     because: pair => joined([pair.areaFall.because, pair.durationRise.because, largeEnough(facts, run, pair).because]),
-    words: pair => `${changeWords('area fall', pair.areaFall, areaHalf)}, ${changeWords('duration rise', pair.durationRise, riseSmall)}, distal ${printBeside(pair.distalAmplitude.value, 1, oneMillivolt)} mV`,
+    words: pair => joined([changeWords('area fall', pair.areaFall, areaHalf), changeWords('duration rise', pair.durationRise, riseSmall), distalWords(pair)]).replaceAll('; ', ', '),
   }
 }
 
 const oneMillivolt: Bar = { op: 'above', value: 1 }
+
+const distalWords = ({ distalAmplitude }: SitePair) => distalAmplitude.state === 'number' ? `distal ${printBeside(distalAmplitude.value, 1, oneMillivolt)} mV` : ''
 
 /** The amplitude at the distal site of the pair; its lower limit is that of the distal site of the nerve. */
 function largeEnough(facts: Facts, run: MotorRun, { distalAmplitude }: SitePair): { result: Truth, because: string } {

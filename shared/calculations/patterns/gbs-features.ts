@@ -1,7 +1,7 @@
 import { shareOf } from './criteria'
 import { distalLatencyRule, fAbsentRule, fallRule, fLatencyRule, riseRule, velocityRule, type BandedBar } from './demyelination'
 import type { Facts } from './facts'
-import { criterion, passes, printBeside, type Bar, type Criterion, type CriterionText, type Finding, type Truth } from './finding'
+import { criterion, joined, passes, printBeside, type Bar, type Criterion, type CriterionText, type Finding, type Truth } from './finding'
 import type { MotorNerve } from './motor-nerves'
 import { anyTruth, askEach, decideNerves, leftOut, nerveIs, unknown, type NerveTruth, type RuleTable } from './nerve-truths'
 
@@ -74,6 +74,12 @@ export function featureCriterion(text: CriterionText, table: RuleTable, nerves: 
 /** "Not met" only where every feature could be looked at in some nerve; otherwise it stays open. */
 export function strictly(result: Truth, features: readonly Criterion[]): Truth {
   return result === 'not-met' && features.some(feature => feature.result === 'not-assessable') ? 'not-assessable' : result
+}
+
+/** A finding that is open says why: for want of a reason of its own, with those of what keeps it open. */
+export function withReason(finding: Finding, parts: readonly Pick<Finding, 'result' | 'because'>[]): Finding {
+  if (finding.result !== 'not-assessable' || finding.because) return finding
+  return { ...finding, because: joined(parts.filter(part => part.result === 'not-assessable').map(part => part.because)) }
 }
 
 /** What a nerve says, as a truth: without a part in the rule it does not fulfil it. */

@@ -1,6 +1,6 @@
 import type { Facts } from './facts'
 import { allOf, anyOf, atLeast, criterion, notTruth, type Criterion, type CriterionText, type Finding, type Truth } from './finding'
-import { amplitudeTable, anyFeature, featureCriterion, featuresOf, inNerves, isInexcitable, strictly, truthOf, type FeatureBars } from './gbs-features'
+import { amplitudeTable, anyFeature, featureCriterion, featuresOf, inNerves, isInexcitable, strictly, truthOf, withReason, type FeatureBars } from './gbs-features'
 import { motorNervesOf, type MotorNerve } from './motor-nerves'
 import { namesMet, type RuleTable } from './nerve-truths'
 import { entrapmentCriterion, entrapmentText, eachOnce, type Assessed, type PatternSet } from './pattern-set'
@@ -59,9 +59,9 @@ function classesOf(facts: Facts, nerves: readonly MotorNerve[], tables: readonly
   const isAnyLow = inNerves(low, nerves, 1)
   return {
     inexcitable: inexcitable(nerves, under10),
-    demyelinating: { ...inTwo, result: demyelinating, numbers: namesMet(any) },
-    axonal: { ...axonal, result: allOf([isFree, oneAtMost, axonal.result]) },
-    normal: { ...isAnyLow, result: allOf([strictlyFree(notTruth(inNerves(any, nerves, 1).result), each), notTruth(isAnyLow.result)]) },
+    demyelinating: withReason({ ...inTwo, result: demyelinating, numbers: namesMet(any) }, each),
+    axonal: withReason({ ...axonal, result: allOf([isFree, oneAtMost, axonal.result]) }, each),
+    normal: withReason({ ...isAnyLow, result: allOf([strictlyFree(notTruth(inNerves(any, nerves, 1).result), each), notTruth(isAnyLow.result)]) }, each),
   }
 }
 

@@ -2,7 +2,7 @@ import { shareOf } from './criteria'
 import type { Facts } from './facts'
 import { motorNervesOf } from './motor-nerves'
 import { allOf, criterion, joined, notTruth, passes, type CriterionText, type Finding } from './finding'
-import { amplitudeTable, anyFeature, featureCriterion, featuresOf, inNerves, strictly, type FeatureBars } from './gbs-features'
+import { amplitudeTable, anyFeature, featureCriterion, featuresOf, inNerves, strictly, withReason, type FeatureBars } from './gbs-features'
 import { namesMet } from './nerve-truths'
 import { entrapmentCriterion, entrapmentText, eachOnce, type Assessed, type PatternSet } from './pattern-set'
 import { isSilent, sensoryNervesOf } from './sensory-nerves'
@@ -39,12 +39,12 @@ function assessHo(facts: Facts): Assessed | null {
   const any = anyFeature([features.velocity, features.latency, features.rise, features.fLatency], nerves)
   const each = (['velocity', 'latency', 'rise', 'fLatency'] as const).map(id => featureCriterion(texts[id], features[id], nerves))
   const inTwo = inNerves(any, nerves, 2)
-  const demyelinating: Finding = { ...inTwo, result: strictly(inTwo.result, each), numbers: namesMet(any) }
+  const demyelinating = withReason({ ...inTwo, result: strictly(inTwo.result, each), numbers: namesMet(any) }, each)
   const low = inNerves(amplitudeTable(facts, nerves, { op: 'below', value: 80 }), nerves, 1)
   const criteria = [
     ...each,
     criterion(texts.demyelinating, demyelinating),
-    criterion(texts.axonal, { ...low, result: allOf([notTruth(demyelinating.result), low.result]) }),
+    criterion(texts.axonal, withReason({ ...low, result: allOf([notTruth(demyelinating.result), low.result]) }, [demyelinating])),
     criterion(texts.sensory, lowSensory(facts)),
     entrapmentCriterion(facts),
   ]

@@ -76,7 +76,7 @@ function sensoryOfSame(facts: Facts, sensory: readonly SensoryNerve[], definite:
 }
 
 function allSensoryNormal(facts: Facts, sensory: readonly SensoryNerve[]): Finding {
-  if (sensory.length < 3) return notAssessable(`${sensory.length} sensory nerves studied`)
+  if (sensory.length < 3) return notAssessable(`${sensory.length} sensory ${sensory.length === 1 ? 'nerve' : 'nerves'} studied`)
   const findings = sensory.map(nerve => ({ nerve, finding: isAbnormal(facts, nerve) }))
   const result: Truth = allOf(findings.map(({ finding }) => notTruth(finding.result)))
   const abnormal = findings.filter(({ finding }) => finding.result === 'met').map(({ nerve }) => nerve.name)

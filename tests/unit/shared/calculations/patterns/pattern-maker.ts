@@ -52,6 +52,8 @@ export function said(pattern: PatternResult, id: string): string {
   const { result, numbers, because } = criterionOf(pattern, id)
   return `${result}: ${numbers}${because ? ` [${because}]` : ''}`
 }
+/** The whole check list: its outcome, then each criterion as "id: met: 5.2 ms, limit 4.4 ms [because]". */
+export const sheet = (pattern: PatternResult): string[] => [outcome(pattern), ...pattern.criteria.map(({ id }) => `${id}: ${said(pattern, id)}`)]
 export const truths = (pattern: PatternResult): Record<string, string> => Object.fromEntries(pattern.criteria.map(one => [one.id, one.result]))
 
 const motors = {
