@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest'
 import { patternOf, sheet } from './pattern-maker'
-import { limits, studies } from './sheet-studies'
+import { limits, studies } from './nerve-studies'
 
 /**
  * Whole check lists as a reader sees them: outcome, then each criterion with its numbers and, in brackets, why it cannot be
