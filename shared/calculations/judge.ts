@@ -1,4 +1,4 @@
-import type { FoundLimit } from './find-limit'
+import type { FoundLimit, FoundLimits } from './find-limit'
 import type { ColdEffect } from './quantity-info'
 import { isOutside } from './round-for-print'
 import { TOLERANCE } from './tolerance'
@@ -25,10 +25,16 @@ export function judge(value: ComputedValue, answer: FoundLimit, effect: ColdEffe
   if (value.kind === 'not-computable') return { kind: 'none' }
   if (value.kind === 'absent' && value.absence !== 'no-response') return { kind: 'not-judged', because: absenceReasons[value.absence] }
   if (answer.kind !== 'limits') return answer
-  const limits = [answer.upper, answer.lower].filter(limit => limit !== undefined)
+  const limits = limitsIn(answer)
   if (limits.length === 0) return { kind: 'no-limit', because: 'no row fits' }
   if (value.kind === 'absent') return { kind: 'absent', limits }
   return judgeNumber(value.value, value.uncertainty ?? 0, limits, effect, cold)
+}
+
+function limitsIn({ upper, lower }: FoundLimits): AppliedLimit[] {
+  if (upper && lower) return [upper, lower]
+  const one = upper ?? lower
+  return one ? [one] : []
 }
 
 function judgeNumber(value: number, uncertainty: number, limits: AppliedLimit[], effect: ColdEffect, cold: ColdBearing): Verdict {

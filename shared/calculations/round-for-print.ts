@@ -54,16 +54,19 @@ function shift(value: number, places: number): number {
  */
 export function roundBesideLimits(value: number, decimals: number, limits: readonly Pick<AppliedLimit, 'value' | 'bound'>[]): string {
   const plain = roundForPrint(value, decimals)
-  if (limits.length === 0 || limits.every(limit => sameSide(value, Number(plain), limit))) return plain
+  if (standsWhere(value, plain, limits)) return plain
   for (let more = decimals + 1; more <= decimals + 8; more += 1) {
     const text = roundForPrint(value, more)
-    if (limits.every(limit => sameSide(value, Number(text), limit))) return text
+    if (standsWhere(value, text, limits)) return text
   }
   return String(value)
 }
 
-function sameSide(value: number, printed: number, limit: Pick<AppliedLimit, 'value' | 'bound'>): boolean {
-  return isOutside(value, limit) === isOutside(printed, limit)
+/** Does the print stand on the same side of every limit as the value? */
+function standsWhere(value: number, text: string, limits: readonly Pick<AppliedLimit, 'value' | 'bound'>[]): boolean {
+  if (limits.length === 0) return true
+  const printed = Number(text)
+  return limits.every(limit => isOutside(value, limit) === isOutside(printed, limit))
 }
 
 /**

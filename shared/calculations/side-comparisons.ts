@@ -13,32 +13,25 @@ import type { BySide, KnownRun, StudyContext } from './study-context'
 import type { ComparisonAssessment, ComputedValue, Result } from './types'
 
 /** One measure of the sides: what is compared, as which quantity. `limitedOnly`: shown only where a set has a limit. */
-interface Measure { of: QuantityId, quantity: string, limitedOnly?: boolean }
+interface Measure { of: QuantityId, quantity: string, limitedOnly: boolean, keyEnd: string, label: string }
+const always = (of: QuantityId, quantity: string, limitedOnly = false): Measure =>
+  ({ of, quantity, limitedOnly, keyEnd: `${quantity}/${of}`, label: `${quantityInfo(of).label}, ${quantityInfo(quantity).label}` })
+const whereLimited = (of: QuantityId, quantity: string): Measure => always(of, quantity, true)
 
-const sensoryMeasures: Measure[] = [
-  { of: 'onsetLatencyMs', quantity: 'sideDifferenceMs' },
-  { of: 'peakLatencyMs', quantity: 'sideDifferenceMs' },
-  { of: 'amplitudeUv', quantity: 'sideDifferencePercent' },
-  { of: 'amplitudeUv', quantity: 'sideDifferenceUv', limitedOnly: true },
+const sensoryMeasures = [
+  always('onsetLatencyMs', 'sideDifferenceMs'), always('peakLatencyMs', 'sideDifferenceMs'),
+  always('amplitudeUv', 'sideDifferencePercent'), whereLimited('amplitudeUv', 'sideDifferenceUv'),
 ]
 const byKind: Partial<Record<Technique['kind'], Measure[]>> = {
   'motor': [
-    { of: 'latencyMs', quantity: 'sideDifferenceMs' },
-    { of: 'latencyMs', quantity: 'sideDifferencePercent', limitedOnly: true },
-    { of: 'amplitudeMv', quantity: 'sideDifferencePercent' },
-    { of: 'amplitudeMv', quantity: 'sideDifferenceMv', limitedOnly: true },
+    always('latencyMs', 'sideDifferenceMs'), whereLimited('latencyMs', 'sideDifferencePercent'),
+    always('amplitudeMv', 'sideDifferencePercent'), whereLimited('amplitudeMv', 'sideDifferenceMv'),
   ],
   'sensory': sensoryMeasures,
   'mixed': sensoryMeasures,
-  'f-wave': [{ of: 'minimumLatencyMs', quantity: 'sideDifferenceMs' }],
-  'h-reflex': [
-    { of: 'hLatencyMs', quantity: 'sideDifferenceMs' },
-    { of: 'hAmplitudeMv', quantity: 'sideRatio', limitedOnly: true },
-  ],
-  'blink': [
-    { of: 'r1Ms', quantity: 'sideDifferenceMs' },
-    { of: 'r2IpsilateralMs', quantity: 'sideDifferenceMs' },
-  ],
+  'f-wave': [always('minimumLatencyMs', 'sideDifferenceMs')],
+  'h-reflex': [always('hLatencyMs', 'sideDifferenceMs'), whereLimited('hAmplitudeMv', 'sideRatio')],
+  'blink': [always('r1Ms', 'sideDifferenceMs'), always('r2IpsilateralMs', 'sideDifferenceMs')],
 }
 
 /** What the measures of one technique share. */
@@ -49,15 +42,6 @@ interface Pair {
   owner: Owner
   asker: LimitAsker
   noLimitBecause: string | undefined
-}
-
-/** Words of a measure of two sides; built once. */
-const labels = new Map<string, string>()
-function labelOf(of: string, quantity: string): string {
-  const key = `${of}/${quantity}`
-  let label = labels.get(key)
-  if (label === undefined) labels.set(key, label = `${quantityInfo(of).label}, ${quantityInfo(quantity).label}`)
-  return label
 }
 
 const catalogueOrder = new Map(techniques.map((technique, index) => [technique.id, index]))
@@ -110,7 +94,7 @@ function compareCells(pair: Pair, measure: Measure, results: Result[]): void {
   const uncertainty = isLatency(measure.of) ? pair.context.expanded.latencyMs : undefined
   const value = between(cellOf(one.row, measure.of, uncertainty), cellOf(other.row, measure.of, uncertainty), measure.quantity)
   if (!value) return
-  addSide(pair, results, { quantity: measure.quantity, of: measure.of, keyEnd: `${measure.quantity}/${measure.of}`, label: labelOf(measure.of, measure.quantity), value, formula: `${right} and ${left}` })
+  addSide(pair, results, { quantity: measure.quantity, of: measure.of, keyEnd: measure.keyEnd, label: measure.label, value, formula: `${right} and ${left}` })
 }
 
 /** A number from two numbers; "no response" when one side alone has none; nothing otherwise. */

@@ -96,26 +96,35 @@ export interface FallRule {
 
 /** The amplitude falls from a distal to a proximal site. */
 export function fallRule(facts: Facts, rule: FallRule): NerveRule {
+  const size: Bar = { op: 'at-least', value: rule.amplitudeAtLeastPercent }
+  const asked: ChangeRule = {
+    what: 'amplitude fall', counts: rule.pairCounts, changeOf: pair => pair.amplitudeFall,
+    barOf: pair => (pair.from.id === 'wrist' && pair.to.id === 'erb' && rule.toErb) || rule.fall,
+  }
   return nerve => nerve.nerve === 'tibial' && rule.withoutTibial
     ? leftOut()
-    : ofPairs(facts, nerve, rule.pairCounts, pair => pair.amplitudeFall, pair => (pair.from.id === 'wrist' && pair.to.id === 'erb' && rule.toErb) || rule.fall, 'amplitude fall', rule.amplitudeAtLeastPercent)
+    : anyTruth(nerve.runs.map(run => run.facts.cold ? unknown(run.facts.cold) : whereAmplitude(facts, run, size, () => mostTelling(run, asked))))
 }
 
 /** The negative peak gets longer from a distal to a proximal site: dispersion. */
 export function riseRule(facts: Facts, rise: Bar, pairCounts: (pair: SitePair) => boolean, byNerve: Partial<Record<LimbNerve, Bar>> = {}): NerveRule {
-  return nerve => ofPairs(facts, nerve, pairCounts, pair => pair.durationRise, () => byNerve[nerve.nerve] ?? rise, 'duration rise', null)
+  return (nerve) => {
+    const asked: ChangeRule = { what: 'duration rise', counts: pairCounts, changeOf: pair => pair.durationRise, barOf: () => byNerve[nerve.nerve] ?? rise }
+    return anyTruth(nerve.runs.map(run => run.facts.cold ? unknown(run.facts.cold) : mostTelling(run, asked)))
+  }
 }
 
-function ofPairs(facts: Facts, nerve: MotorNerve, counts: (pair: SitePair) => boolean, changeOf: (pair: SitePair) => Change, barOf: (pair: SitePair) => Bar, what: string, amplitudeAtLeast: number | null): NerveTruth {
-  return anyTruth(nerve.runs.map((run) => {
-    if (run.facts.cold) return unknown(run.facts.cold)
-    const truth = () => mostTelling(run.pairs.filter(counts), changeOf, barOf, what)
-    return amplitudeAtLeast === null ? truth() : whereAmplitude(facts, run, { op: 'at-least', value: amplitudeAtLeast }, truth)
-  }))
+/** A change between two sites against a bar. */
+interface ChangeRule {
+  what: string
+  counts: (pair: SitePair) => boolean
+  changeOf: (pair: SitePair) => Change
+  barOf: (pair: SitePair) => Bar
 }
 
 /** Met by any pair; otherwise the pair with the greatest change says how far from it the nerve is. */
-function mostTelling(pairs: readonly SitePair[], changeOf: (pair: SitePair) => Change, barOf: (pair: SitePair) => Bar, what: string): NerveTruth {
+function mostTelling(run: MotorRun, { what, counts, changeOf, barOf }: ChangeRule): NerveTruth {
+  const pairs = run.pairs.filter(counts)
   const isMet = (pair: SitePair) => passes(changeOf(pair).percent, barOf(pair))
   const numbers = pairs.filter(pair => changeOf(pair).state === 'number').sort((a, b) => changeOf(b).percent - changeOf(a).percent)
   const telling = numbers.find(isMet) ?? numbers[0]

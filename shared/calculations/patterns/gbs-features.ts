@@ -1,5 +1,5 @@
 import { shareOf } from './criteria'
-import { distalLatencyRule, fAbsentRule, fallRule, fLatencyRule, riseRule, velocityRule, type BandedBar } from './demyelination'
+import { distalLatencyRule, fallRule, fLatencyRule, riseRule, velocityRule, type BandedBar } from './demyelination'
 import type { Facts } from './facts'
 import { criterion, joined, passes, printBeside, type Bar, type Criterion, type CriterionText, type Finding, type Truth } from './finding'
 import type { MotorNerve } from './motor-nerves'
@@ -17,7 +17,7 @@ export interface FeatureBars {
 }
 
 /** Each feature asked of every nerve. */
-export interface Features { velocity: RuleTable, latency: RuleTable, fLatency: RuleTable, rise: RuleTable, fall: RuleTable, fAbsent: RuleTable }
+export interface Features { velocity: RuleTable, latency: RuleTable, fLatency: RuleTable, rise: RuleTable, fall: RuleTable }
 
 /**
  * Asks every nerve for every feature. With the setting on, segments across the elbow and the fibular head and the median
@@ -34,7 +34,6 @@ export function featuresOf(facts: Facts, nerves: readonly MotorNerve[], bars: Fe
     fLatency: askEach(nerves, fLatencyRule(facts, bars.fLatency)),
     rise: rise ? askEach(nerves, riseRule(facts, rise, counts)) : none,
     fall: fall ? askEach(nerves, fallRule(facts, { fall: fall.bar, amplitudeAtLeastPercent: fall.amplitudeAtLeastPercent, withoutTibial: fall.withoutTibial, pairCounts: counts })) : none,
-    fAbsent: askEach(nerves, fAbsentRule(facts, 20)),
   }
 }
 

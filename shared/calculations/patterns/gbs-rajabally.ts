@@ -1,8 +1,9 @@
+import { fAbsentRule } from './demyelination'
 import type { Facts } from './facts'
 import { allOf, anyOf, criterion, joined, notTruth, type CriterionText, type Finding } from './finding'
-import { amplitudeTable, anyFeature, featureCriterion, featuresOf, inNerves, strictly, type FeatureBars, type Features } from './gbs-features'
+import { amplitudeTable, anyFeature, featureCriterion, featuresOf, inNerves, strictly, type FeatureBars } from './gbs-features'
 import { motorNervesOf, type MotorNerve } from './motor-nerves'
-import { decideNerves, namesMet, nerveWords, withOther, type RuleTable } from './nerve-truths'
+import { askEach, decideNerves, namesMet, nerveWords, withOther, type RuleTable } from './nerve-truths'
 import { entrapmentCriterion, entrapmentText, eachOnce, type Assessed, type PatternSet } from './pattern-set'
 
 const bars: FeatureBars = {
@@ -33,7 +34,7 @@ export const gbsRajabally: PatternSet = {
 function assessRajabally(facts: Facts): Assessed | null {
   const nerves = motorNervesOf(facts)
   if (nerves.length < 2) return null
-  const features = featuresOf(facts, nerves, bars)
+  const features = { ...featuresOf(facts, nerves, bars), fAbsent: askEach(nerves, fAbsentRule(facts, 20)) }
   const three = anyFeature([features.velocity, features.latency, features.fLatency], nerves)
   const inTwo = inNerves(three, nerves, 2)
   const fAbsent = besideOther(features.fAbsent, anyFeature([three, features.fall], nerves), nerves)
@@ -55,7 +56,7 @@ function besideOther(main: RuleTable, other: RuleTable, nerves: readonly MotorNe
   return decideNerves(main, 2, holds => withOther(nerves, 2, nerve => holds(main, nerve), nerve => holds(other, nerve)))
 }
 
-function axonalOf(facts: Facts, nerves: readonly MotorNerve[], { fAbsent, fall }: Features, demyelinating: Finding): Finding {
+function axonalOf(facts: Facts, nerves: readonly MotorNerve[], { fAbsent, fall }: Record<'fAbsent' | 'fall', RuleTable>, demyelinating: Finding): Finding {
   const low = amplitudeTable(facts, nerves, { op: 'below', value: 80 })
   const lowOrFall = anyFeature([low, fall], nerves)
   const one = decideNerves(fAbsent, 1, holds => withOther(nerves, 1, nerve => holds(fAbsent, nerve), nerve => holds(lowOrFall, nerve)))

@@ -154,12 +154,12 @@ function addChange(maker: RunMaker, previous: PlacedRow, placed: PlacedRow, chan
 function addLimitedOnly(maker: RunMaker, previous: PlacedRow, placed: PlacedRow, at: string, asker: LimitAsker): void {
   const [distal, proximal] = [previous.row.values.amplitudeMv, placed.row.values.amplitudeMv]
   if (typeof distal !== 'number' || typeof proximal !== 'number') return
-  const common = { at, typed: false, asker, label: `, ${previous.label} to ${placed.label}` }
+  const between = `, ${previous.label} to ${placed.label}`
   if (asker.ask('amplitudeFallMv', at).kind === 'limits') {
-    add(maker, placed, { ...common, quantity: 'amplitudeFallMv', label: `amplitude fall in mV${common.label}`, value: valueOf(distal - proximal), how: { formula: `${distal} mV - ${proximal} mV`, source: CHANGE_SOURCE } })
+    add(maker, placed, { at, typed: false, asker, quantity: 'amplitudeFallMv', label: `amplitude fall in mV${between}`, value: valueOf(distal - proximal), how: { formula: `${distal} mV - ${proximal} mV`, source: CHANGE_SOURCE } })
   }
   if (asker.ask('amplitudeRatio', at).kind === 'limits') {
-    add(maker, placed, { ...common, quantity: 'amplitudeRatio', label: `amplitude ratio${common.label}`, value: amplitudeRatio({ distal, proximal }), how: { formula: `${proximal} mV / ${distal} mV`, source: CHANGE_SOURCE } })
+    add(maker, placed, { at, typed: false, asker, quantity: 'amplitudeRatio', label: `amplitude ratio${between}`, value: amplitudeRatio({ distal, proximal }), how: { formula: `${proximal} mV / ${distal} mV`, source: CHANGE_SOURCE } })
   }
 }
 
