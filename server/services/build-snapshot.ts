@@ -7,6 +7,8 @@ import { studyAround } from '#server/database/queries/study-around'
 import { techniqueOf } from '#shared/catalogue/nerves'
 import { SNAPSHOT_FORMAT, type ReportSnapshot } from '#shared/schemas/report'
 import { DomainError } from '#shared/errors'
+import type { ReportFormPolicy } from '#shared/policies/report-form'
+import type { OtherLanguage } from '#shared/report/languages'
 import { isOpen } from '#shared/report/sign-checks'
 import type { ServiceContext } from './context'
 import { printedNameOf } from './printed-name'
@@ -65,6 +67,12 @@ async function benchPart(db: Database, { assessed }: ReadingFacts): Promise<Repo
   return { circumstances, overdue, visits, laterEntry, move, stopped, protocol: protocol && { label: protocol.label, version: protocol.version } }
 }
 
+/** The caution in the language of the report, where the organisation worded it. */
+function ownWords({ disclaimerIn }: ReportFormPolicy, language: string): { disclaimerTranslated?: string } {
+  const words = language === 'en' ? '' : disclaimerIn[language as OtherLanguage]
+  return words ? { disclaimerTranslated: words } : {}
+}
+
 /** The first signed copy: everything the report says, frozen; nothing of it is looked up again later. */
 export async function buildSnapshot(context: ServiceContext, db: Database, facts: ReadingFacts, { number, signature }: { number: string, signature: Signature }): Promise<ReportSnapshot> {
   const { site, study, policy, assessment, draft, referral, assessed, report } = facts
@@ -75,7 +83,7 @@ export async function buildSnapshot(context: ServiceContext, db: Database, facts
     format: SNAPSHOT_FORMAT,
     demonstration: organisation.demonstration === 1 || context.settings.demonstration,
     number, version: 1, status: 'final', reason: '', supersedes: null,
-    organisation: { name: organisation.name, disclaimer: form.disclaimer, paperSize: form.paperSize, timeZone: organisation.timeZone },
+    organisation: { name: organisation.name, disclaimer: form.disclaimer, ...ownWords(form, referral.reportLanguage), paperSize: form.paperSize, timeZone: organisation.timeZone },
     site: { name: site.name, town: site.town, address: site.address, phone: site.phone, timeZone: site.timeZone },
     language: referral.reportLanguage,
     patient: { id, recordNumber, familyName, givenName, birthDate, sexForLimits },

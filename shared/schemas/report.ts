@@ -130,7 +130,7 @@ export interface ReportSnapshot {
   status: Exclude<ReportStatus, 'preliminary' | 'cancelled'>
   reason: string
   supersedes: { version: number, sha256: string } | null
-  organisation: { name: string, disclaimer: string, paperSize: 'A4' | 'LETTER', timeZone: string }
+  organisation: { name: string, disclaimer: string, /** in the language of the report, where the organisation worded it */ disclaimerTranslated?: string, paperSize: 'A4' | 'LETTER', timeZone: string }
   site: { name: string, town: string, address: string, phone: string, timeZone: string }
   language: string
   patient: Pick<PatientView, 'id' | 'recordNumber' | 'familyName' | 'givenName' | 'birthDate' | 'sexForLimits'>

@@ -41,15 +41,16 @@ export const versions: ReportSection<ReportSource> = {
 }
 
 /**
- * The organisation's own wording; it can be changed and not removed. In another language the default stands in that
- * language, and wording of the organisation's own after it, as it was written.
+ * The organisation's own wording; it can be changed and not removed. In another language: its wording in that language,
+ * else the program's in that language with the organisation's after it, as it was written.
  */
-export function disclaimerIn(words: ReportWords, own: string): string {
+export function disclaimerIn(words: ReportWords, own: string, translated?: string): string {
   if (words.language === 'en') return own
+  if (translated) return translated
   return own === reportWords('en').disclaimerText ? words.disclaimerText : `${words.disclaimerText} ${own}`
 }
 
 export const disclaimer: ReportSection<ReportSource> = {
   id: 'disclaimer',
-  blocks: ({ snapshot }) => [paragraph(disclaimerIn(reportWords(snapshot.language), snapshot.organisation.disclaimer), 'faint')],
+  blocks: ({ snapshot }) => [paragraph(disclaimerIn(reportWords(snapshot.language), snapshot.organisation.disclaimer, snapshot.organisation.disclaimerTranslated), 'faint')],
 }

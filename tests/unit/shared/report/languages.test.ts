@@ -124,6 +124,8 @@ describe('languages', () => {
     expect(disclaimerIn(reportWords('en'), 'Our own words.')).toBe('Our own words.')
     expect(disclaimerIn(de, reportWords('en').disclaimerText)).toBe(de.disclaimerText)
     expect(disclaimerIn(de, 'Our own words.')).toBe(`${de.disclaimerText} Our own words.`)
+    expect(disclaimerIn(de, 'Our own words.', 'Unsere eigenen Worte.')).toBe('Unsere eigenen Worte.')
+    expect(disclaimerIn(reportWords('en'), 'Our own words.', 'Unsere eigenen Worte.')).toBe('Our own words.')
   })
   it('a referral takes a known language only', () => {
     const shape = referralSchema.shape.reportLanguage
