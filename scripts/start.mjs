@@ -2,8 +2,8 @@
 // the local mail server, prints address and sign-ins. PORT, MAIL_PORT, DATA_DIR, DEMO=0, SMTP_URL, APP_ORIGIN and the settings
 // of README are honoured.
 import { spawn, spawnSync } from 'node:child_process'
-import { existsSync, mkdirSync, readFileSync } from 'node:fs'
-import { join, resolve } from 'node:path'
+import { existsSync, mkdirSync, openSync, readFileSync } from 'node:fs'
+import { join, relative, resolve } from 'node:path'
 import { buildIsFresh, checkNode, installPackages, projectRoot, run } from './lib.mjs'
 
 checkNode()
@@ -55,7 +55,9 @@ if (demo) {
   }
 }
 
-const server = spawn(process.execPath, [join(projectRoot, '.output/server/index.mjs')], { stdio: 'inherit', env })
+// In the demonstration the log goes to a file, so that the sign-ins stay in view.
+const logFile = demo ? join(dataDir, 'server.log') : undefined
+const server = spawn(process.execPath, [join(projectRoot, '.output/server/index.mjs')], { stdio: ['inherit', logFile ? openSync(logFile, 'w', 0o600) : 'inherit', 'inherit'], env })
 const stop = (code) => {
   server.kill('SIGTERM')
   fake?.close()
@@ -90,4 +92,5 @@ if (demo && existsSync(signIns)) {
   console.log(`The present code of a second factor stands at the foot of http://127.0.0.1:${fake.pagePort}`)
   console.log('DEMO=0 npm start begins without invented people, in a data folder of its own.')
 }
+if (logFile) console.log(`What the application logs goes to ${relative(process.cwd(), logFile)}`)
 console.log('\nCtrl C stops it.')

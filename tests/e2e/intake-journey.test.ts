@@ -195,6 +195,11 @@ it('is put elsewhere by pointer, and nothing is stored before it is confirmed', 
   await expect.poll(() => preview.innerText()).toContain(elsewhere)
   await page.locator('[data-test=placing]').getByRole('button', { name: 'Go back' }).click()
   await preview.waitFor({ state: 'detached' })
+  // The same by dragging it there.
+  await page.locator(`[data-booking="${number}"]`).dragTo(page.locator(`[data-lane$="${elsewhere}"]`).last(), { targetPosition: { x: 20, y: 240 } })
+  await expect.poll(() => preview.innerText()).toContain(elsewhere)
+  await page.locator('[data-test=placing]').getByRole('button', { name: 'Go back' }).click()
+  await preview.waitFor({ state: 'detached' })
   const view = await call<{ booking: { room: string } }>(`/api/referrals/${referralId}`)
   expect(view.booking.room).toBe(room)
 })
