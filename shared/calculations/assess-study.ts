@@ -5,13 +5,13 @@ import { chanceOf } from './chance'
 import { compareWithEarlier } from './compare-with-earlier'
 import { compareWithinLimbs } from './comparisons'
 import { draftFindings } from './findings'
-import { assessPatterns, type LimitsOfResult, type PatternInput } from './patterns'
+import { assessPatterns, type PatternInput } from './patterns'
 import { findRemarks } from './plausibility'
 import { assessRun } from './runs'
 import { setsUsed } from './sets-used'
 import { compareSides } from './side-comparisons'
 import { standingRun, studyContext, type StudyContext } from './study-context'
-import type { Assessment, ComparisonAssessment, EarlierStudy, Policy, Result, RunAssessment } from './types'
+import type { AppliedLimit, Assessment, ComparisonAssessment, EarlierStudy, Policy, Result, RunAssessment } from './types'
 
 /** Stands in every assessment and every signed report. Raised whenever a result could come out differently. */
 export const CALCULATION_VERSION = '1.1.0'
@@ -72,15 +72,17 @@ function patternInput(context: StudyContext, runs: RunAssessment[], comparisons:
     },
     recordedRun: runId => context.known.get(runId)?.run,
     resultOf: (run, quantity, at) => run?.results.find(result => result.quantity === quantity && (at === undefined || result.at === at)),
-    limitsOf: result => limitsOfResult(context, result),
+    limitOf: (result, bound) => limitOfResult(context, result, bound),
     results,
   }
 }
 
-function limitsOfResult(context: StudyContext, result: Result | undefined): LimitsOfResult {
-  if (!result) return { because: 'not recorded' }
-  const answer = context.limitsOf.get(result)
-  if (answer) return answer
+function limitOfResult(context: StudyContext, result: Result | undefined, bound: AppliedLimit['bound']): AppliedLimit | string {
+  if (!result) return 'not recorded'
   const { verdict } = result
-  return { because: verdict.kind === 'no-limit' || verdict.kind === 'not-judged' ? verdict.because : 'no limit' }
+  const nothing = `none for a ${bound} bound`
+  if ('limits' in verdict) return verdict.limits.find(limit => limit.bound === bound) ?? nothing
+  const unsaid = context.limitsUnsaid.get(result)
+  if (unsaid) return unsaid[bound] ?? nothing
+  return verdict.kind === 'no-limit' || verdict.kind === 'not-judged' ? verdict.because : 'no limit'
 }

@@ -64,7 +64,7 @@ export function makeResult(context: StudyContext, owner: Owner, input: ResultInp
   if (input.at !== undefined) result.at = input.at
   if (input.how !== undefined) result.how = input.how
   if (limits.length > 0) addScore(context, result, limits)
-  if (answer.kind === 'limits') context.limitsOf.set(result, answer)
+  if (answer.kind === 'limits' && limits.length === 0) context.limitsUnsaid.set(result, answer)
   return result
 }
 

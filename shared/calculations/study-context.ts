@@ -50,8 +50,8 @@ export interface StudyContext {
   applied: Set<AppliedLimit>
   /** The row of a set that a limit came from. */
   rowOf: (limit: AppliedLimit) => ReferenceTable['rows'][number] | undefined
-  /** Limits of each result, also where the verdict does not carry them. */
-  limitsOf: Map<Result, FoundLimits>
+  /** Limits that there are and that the verdict does not carry: superseded, not recordable, judged by another number. */
+  limitsUnsaid: Map<Result, FoundLimits>
   assessed: Map<string, RunAssessment>
 }
 
@@ -65,7 +65,7 @@ export function studyContext(study: Study, tables: readonly ReferenceTable[], po
     standing: standingRuns(runs),
     expanded: { distanceMm: policy.distanceUncertaintyMm, latencyMs: policy.latencyUncertaintyMs },
     askerFor: askerFor(tables, policy, { ageYears: person.ageYears, sexForLimits: person.sexForLimits, heightCm: person.heightCm, bmi: person.bmi }),
-    applied: new Set(), rowOf: rowFinder(tables), limitsOf: new Map(), assessed: new Map(),
+    applied: new Set(), rowOf: rowFinder(tables), limitsUnsaid: new Map(), assessed: new Map(),
   }
 }
 

@@ -130,16 +130,13 @@ export function comparisonReading(facts: Facts, id: string, side: Side, quantity
  * "not judged: height missing".
  */
 export function limitOf(facts: Facts, reading: Reading, bound: 'upper' | 'lower'): AppliedLimit | string {
-  const limits = facts.input.limitsOf(reading.result)
-  const limit = limits[bound]
-  if (limit) {
+  const limit = facts.input.limitOf(reading.result, bound)
+  if (typeof limit !== 'string') {
     if (limit.basis === 'from memory' && !limit.verified) facts.usedRecalled = true
     return limit
   }
   const isNotJudged = reading.result?.verdict.kind === 'not-judged' && reading.state !== 'missing'
-  const because = limits.because ?? `none for a ${bound} bound`
-  if (because === 'no limit') return because
-  return `${isNotJudged ? 'not judged' : 'no limit'}: ${because}`
+  return limit === 'no limit' ? limit : `${isNotJudged ? 'not judged' : 'no limit'}: ${limit}`
 }
 
 /** Id of the site that the distal limits are for: the first usual one. */

@@ -6,7 +6,7 @@ import type { PatternInput } from './pattern-input'
 import type { PatternSet } from './pattern-set'
 
 export { isOn, patternSets } from './all-sets'
-export type { LimitsOfResult, PatternInput } from './pattern-input'
+export type { PatternInput } from './pattern-input'
 export type { PatternSet } from './pattern-set'
 
 const RECALLED = 'Judged with limits that are recalled, not verified.'

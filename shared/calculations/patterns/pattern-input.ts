@@ -2,9 +2,6 @@ import type { Side } from '../../schemas/common'
 import type { Run, Study } from '../../schemas/study'
 import type { AppliedLimit, Assessment, ComparisonAssessment, Policy, Result, RunAssessment } from '../types'
 
-/** The limits that apply to one result; `because` says why there is none ("height missing", "no set adopted here"). */
-export interface LimitsOfResult { lower?: AppliedLimit, upper?: AppliedLimit, because?: string }
-
 /** Everything a published criterion may use: what was measured, what was computed from it, and the limits that applied. */
 export interface PatternInput {
   study: Study
@@ -21,6 +18,9 @@ export interface PatternInput {
   resultOf: (run: RunAssessment | undefined, quantity: string, at?: string) => Result | undefined
   /** Every result of every run and comparison, in printing order. */
   results: readonly Result[]
-  /** Limits of a result, also where the verdict is cold or absent, and for a sensory velocity the one derived from the onset latency. */
-  limitsOf: (result: Result | undefined) => LimitsOfResult
+  /**
+   * The limit of a result, also where the verdict is cold or absent, and for a sensory velocity the one derived from the
+   * onset latency; or why there is none ("height missing", "no set adopted here").
+   */
+  limitOf: (result: Result | undefined, bound: AppliedLimit['bound']) => AppliedLimit | string
 }

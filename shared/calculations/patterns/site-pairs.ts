@@ -25,7 +25,9 @@ interface SiteReadings { site: StimulationSite, place: number, amplitude: Readin
 /** Every pair of sites of a motor run that were both stimulated, distal before proximal. */
 export function sitePairs(facts: Facts, run: RunFacts): SitePair[] {
   if (run.cold) return []
-  const stimulated = run.technique.sites.map((site, place): SiteReadings => ({
+  const { results } = run.assessment
+  const places = run.technique.sites.map((site, place) => ({ site, place })).filter(({ site }) => results.some(result => result.at === site.id))
+  const stimulated = places.map(({ site, place }): SiteReadings => ({
     site, place,
     amplitude: readingOf(facts, run, 'amplitudeMv', site.id),
     area: readingOf(facts, run, 'areaMvMs', site.id),

@@ -73,15 +73,15 @@ describe('the verdict', () => {
     expect([verdictLine(result.verdict), result.flagged]).toEqual([verdict, flagged])
   })
   it('says which run stands in its place', () => expect(make({}, { supersededBy: 'later' }, upper).result.verdict).toEqual({ kind: 'superseded', by: 'later' }))
-  it('keeps what was applied, and the limits of every result', () => {
+  it('keeps what was applied, and the limits that the verdict does not carry', () => {
     const applied = (...args: Parameters<typeof make>) => [...make(...args).context.applied].map(one => one.value)
     expect(applied({}, {}, found(limit('upper', 4.4), limit('lower', 2)))).toEqual([4.4, 2])
     expect(applied({}, {}, undefined)).toEqual([])
     expect(applied({}, {}, found(limit('lower', 42, { derivation: 'from onset latency' })))).toEqual([])
     expect(applied({}, { supersededBy: 'later' }, upper)).toEqual([])
     const repeated = make({}, { supersededBy: 'later' }, upper)
-    expect(repeated.context.limitsOf.get(repeated.result)).toBe(upper)
-    expect(make({}, {}, { kind: 'no-limit', because: 'none' }).context.limitsOf.size).toBe(0)
+    expect(repeated.context.limitsUnsaid.get(repeated.result)).toBe(upper)
+    expect(make({}, {}, { kind: 'no-limit', because: 'none' }).context.limitsUnsaid.size).toBe(0)
   })
 })
 
