@@ -19,7 +19,11 @@ function judgedBy(tables: readonly ReferenceTable[]): { tables: readonly Referen
   return { tables, policy: { ...defaultPolicy, adopted: tables.map(({ id, version }) => ({ setId: id, version, adoptedOn: '2026-01-01', adoptedBy: 'the bench', verifiedRows: [] })) } }
 }
 
-/** Each turn judges a study with other values than the turn before, as typing does. */
+/**
+ * Each turn judges a study with other values than the turn before, as typing does. From turn to turn the library keeps the
+ * answers of the sets for one person and the indices of the sets, as it does in the program; nothing of a study is kept
+ * (nothing-kept.test.ts), so no turn is answered from another one.
+ */
 function assessing(runs: number, { tables, policy }: ReturnType<typeof judgedBy>): () => number {
   const studies = Array.from({ length: VARIANTS }, (_, turn) => studyOfRuns(runs, turn))
   const act = (turn: number) => assessStudy(studies[turn % VARIANTS]!, tables, policy)
@@ -27,6 +31,7 @@ function assessing(runs: number, { tables, policy }: ReturnType<typeof judgedBy>
   return () => timeOf(act, TIME_MS)
 }
 
+/** A copy of what goes in, the study. */
 function cloning(runs: number): () => number {
   const study = studyOfRuns(runs)
   const act = () => structuredClone(study)

@@ -4,7 +4,8 @@ import { defaultPolicy } from '#shared/calculations/types'
 import { referenceTables } from '#reference-tables'
 import { assessStudy } from '#shared/calculations/assess-study'
 import { carpalTunnelStudy, ndtfPolicy } from '../../../../fixtures/carpal-tunnel-study'
-import { cardLimits, has, motorNerve, patternsOf, pick, sensory } from './pattern-maker'
+import { cardLimits, has, motorNerve, patternsOf, pick, sensory, type Limit } from './pattern-maker'
+import { run } from '../study-maker'
 
 describe('the sets', () => {
   it('ids are unique and fit the drafts that name them', () => {
@@ -67,5 +68,33 @@ describe('what is shown', () => {
     expect(pick(patternsOf(runs), 'bland-2000', 'right')).toMatchObject({ version: 1, side: 'right', basis: 'read' })
     expect(pick(patternsOf(runs), 'cidp-ean-pns-2021')).toMatchObject({ version: 1, basis: 'memory' })
     expect('side' in pick(patternsOf(runs), 'cidp-ean-pns-2021')).toBe(false)
+  })
+})
+
+/** What several sets ask is looked at once; a recalled limit in it counts for each of them, and for no other. */
+describe('a set says the same alone as beside the others', () => {
+  const recalled = { basis: 'from memory' } as const
+  const legs: Limit[] = [
+    ['fibular-motor-edb', 'velocityMps', 'across-fibular-head', 'lower', 41],
+    ['sural', 'amplitudeUv', 'calf', 'lower', 4], ['superficial-fibular', 'amplitudeUv', 'lower-leg', 'lower', 4], ['median-sensory-d2', 'amplitudeUv', 'wrist', 'lower', 11],
+  ]
+  const only = (quantity: string): Limit[] => legs.map(([technique, what, at, bound, value]) => [technique, what, at, bound, value, what === quantity ? recalled : {}])
+  const fibular = run('fibular-motor-edb', 'right', [['ankle', { latencyMs: 4, amplitudeMv: 5, distanceMm: 80 }], ['below-fibular-head', { latencyMs: 11, amplitudeMv: 4.8, distanceMm: 320 }], ['above-fibular-head', { latencyMs: 13, amplitudeMv: 4.7, distanceMm: 90 }]])
+  const runs = [
+    fibular, ...motorNerve('median', 'right', { dml: 5, amp: 8, mcv: 52 }), sensory('median-sensory-d2', 'right', { onset: 4, amplitude: 9 }),
+    sensory('sural', 'right', { onset: 3, amplitude: 9 }), sensory('superficial-fibular', 'right', { onset: 3, amplitude: 9 }),
+  ]
+  const hand: Limit[] = cardLimits.map(([technique, what, at, bound, value]) => [technique, what, at, bound, value, technique.startsWith('median') ? recalled : {}])
+  it.each<[name: string, limits: Limit[], recalledIn: string[]]>([
+    ['the hand', hand, ['bland-2000', 'padua-1997']],
+    ['a velocity that one set asks', only('velocityMps'), ['fibular-knee']],
+    ['sensory amplitudes that many ask', only('amplitudeUv'), ['fibular-knee', 'mmn-efns-pns-2010', 'cidp-efns-pns-2010', 'length-dependent-2005']],
+  ])('%s', (_, limits, recalledIn) => {
+    const ids = patternSets.map(({ id }) => id)
+    const together = patternsOf(runs, { limits })
+    const alone = ids.flatMap(id => patternsOf(runs, { limits, policy: { patternsOff: ids.filter(other => other !== id) } }))
+    expect(alone).toEqual(together)
+    const saying = together.filter(({ source }) => source.includes('recalled, not verified.')).map(({ id }) => id)
+    expect(saying).toEqual(expect.arrayContaining(recalledIn))
   })
 })
