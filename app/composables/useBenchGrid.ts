@@ -38,7 +38,7 @@ export function useBenchGrid(bench: Bench) {
   /** From this width on a sheet has no scroll bar of its own (see BenchRunSheet). */
   const rowsFit = useMediaQuery('(min-width: 1181px)')
 
-  const groups = computed<RunGroup[]>(before => groupRuns(bench.study.value.runs, before))
+  const groups = computed<RunGroup[]>(before => groupRuns(bench.drawn.value.runs, before))
   const explainable = computed(() => new Set(bench.assessment.value.runs.flatMap(run => run.results.map(result => result.rowId))))
   const sheets = computed<GridSheet[]>(() => groups.value.flatMap(group => group.runs).filter(({ run }) => !run.notDoneBecause).map(({ run, technique }) => {
     const fields = columnsOf(technique, run, bench.allColumns.value).map(column => column.field)
@@ -47,11 +47,16 @@ export function useBenchGrid(bench: Bench) {
 
   const element = (to: CellAddress) => root.value?.querySelector<HTMLElement>(`[data-cell="${CSS.escape(`${to.rowId}/${to.field}`)}"]`)
 
-  /** Looking whether it must scroll makes the browser lay the page out at once: within a row that is not needed. */
+  /** The whole run that is entered comes into view, so that the page stands still while it is typed. */
+  function scrollTo(target: HTMLElement) {
+    target.closest('section')?.scrollIntoView({ block: 'nearest' })
+    target.scrollIntoView({ block: 'nearest' })
+  }
+  /** The cursor moves at once; scrolling makes the browser lay the page out and draw more of it, and has a frame of its own. */
   function focusCell(to: CellAddress | null, isInView = false) {
     const target = to && element(to)
     target?.focus({ preventScroll: true })
-    if (!isInView) target?.scrollIntoView({ block: 'nearest' })
+    if (target && !isInView) bench.turns.soon(scrollTo, () => scrollTo(target))
   }
   /** The first cell of a run, for the list of runs and for remarks. */
   function focusRun(runId: string, rowId?: string, field?: string) {

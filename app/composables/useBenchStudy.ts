@@ -10,6 +10,7 @@ import { entryText } from '~/utils/grid-entry'
 import { emptyHistory, redo as redoStep, remember, undo as undoStep, type CellEdit } from '~/utils/grid-history'
 import { cellKey, type CellAddress } from '~/utils/grid-moves'
 import { syncMap } from '~/utils/keep-same'
+import { makeTurns } from '~/utils/turns'
 import { unsavedCells, type SaveQueue } from '~/utils/save-queue'
 import { cellContent, findRow, sameContent, withCell, type CellContent } from '~/utils/study-edits'
 
@@ -60,21 +61,31 @@ export function useBenchStudy(first: StudyView) {
   const api = useApi()
   const view = shallowRef(first)
   const study = shallowRef(first.study)
+  const turns = makeTurns()
+  onBeforeUnmount(turns.stop)
+  /** The study as the sheets show it. What is typed stands in its own cell at once, around it after the next frame. */
+  const drawn = shallowRef(first.study)
+  const draw = () => drawn.value = study.value
+  function show(next: Study) {
+    study.value = next
+    turns.soon(draw, draw)
+  }
   const history = shallowRef(emptyHistory())
   const problem = ref<ApiErrorBody | null>(null)
   /** Which act the problem belongs to, so that it is said once, where the act was. */
   const problemOf = ref('')
   const busy = ref(false)
   const saving = useCellSaving(first, {
-    onTheirs: (rowId, field, entry) => study.value = withCell(study.value, rowId, field, entry),
-    onRestored: cells => study.value = cells.reduce((state, cell) => withCell(state, cell.rowId, cell.field, cell.entry), study.value),
+    onTheirs: (rowId, field, entry) => show(withCell(study.value, rowId, field, entry)),
+    onRestored: cells => show(cells.reduce((state, cell) => withCell(state, cell.rowId, cell.field, cell.entry), study.value)),
   })
   const policy = computed(() => view.value.policy)
-  const live = useLiveAssessment(study, policy, () => view.value.assessment)
+  const live = useLiveAssessment(study, policy, () => view.value.assessment, turns)
   const path = (rest: string) => `/api/studies/${first.id}/${rest}`
 
   const mayType = computed(() => view.value.mayRecord && (view.value.state === 'recording' || view.value.state === 'returned'))
-  const at = ref<CellAddress | null>(null)
+  const at = shallowRef<CellAddress | null>(null)
+  const runInHand = computed(() => at.value?.runId)
   const editor = shallowRef<CellEditor | null>(null)
   const explained = shallowRef<Explained | null>(null)
   const allColumns = ref(false)
@@ -85,19 +96,25 @@ export function useBenchStudy(first: StudyView) {
 
   /** Shows a value while it is typed, without storing it. */
   function preview(rowId: string, field: string, content: CellContent) {
-    study.value = withCell(study.value, rowId, field, content)
+    show(withCell(study.value, rowId, field, content))
   }
 
   function apply(edits: CellEdit[]) {
-    study.value = withoutFallenAnswers(edits.reduce((state, edit) => withCell(state, edit.rowId, edit.field, edit.after), study.value))
+    show(withoutFallenAnswers(edits.reduce((state, edit) => withCell(state, edit.rowId, edit.field, edit.after), study.value)))
     saving.save(edits.map(edit => ({ rowId: edit.rowId, field: edit.field, entry: edit.after })))
   }
 
-  function change(edits: CellEdit[]) {
+  /** A cell that was typed into: it shows its own text, so that the sheet around it may follow. */
+  function store(edits: CellEdit[]) {
     const real = edits.filter(edit => !sameContent(edit.before, edit.after))
     if (real.length === 0) return
     history.value = remember(history.value, real)
     apply(real)
+  }
+  /** Any other change stands on the page at once. */
+  function change(edits: CellEdit[]) {
+    store(edits)
+    draw()
   }
 
   /** Undo and redo answer with the cell they changed, for the cursor to go there. */
@@ -106,6 +123,7 @@ export function useBenchStudy(first: StudyView) {
     history.value = step.history
     const edits = step.edits.filter(edit => findRow(study.value, edit.rowId))
     apply(edits)
+    draw()
     const lastEdit = edits.at(-1)
     const row = lastEdit && findRow(study.value, lastEdit.rowId)
     return lastEdit && row ? { runId: row.run.id, rowId: lastEdit.rowId, field: lastEdit.field } : null
@@ -113,7 +131,7 @@ export function useBenchStudy(first: StudyView) {
 
   function take(fresh: StudyView) {
     view.value = fresh
-    study.value = withUnsaved(fresh, saving.queue.value, study.value)
+    show(withUnsaved(fresh, saving.queue.value, study.value))
     const typing = editor.value?.isDirty() ? cellKey(editor.value.address) : undefined
     saving.takeRevisions(fresh.cellRevisions, typing)
     if (saving.outstanding.value === 0) live.compareWith(fresh.study, fresh.assessment)
@@ -145,6 +163,7 @@ export function useBenchStudy(first: StudyView) {
       await saving.flush()
       await api(path(rest), { method, body })
       await reload()
+      turns.now()
       return true
     }
     catch (error) {
@@ -157,14 +176,30 @@ export function useBenchStudy(first: StudyView) {
     }
   }
 
+  /** What each run comes to: the run in hand is drawn anew first, the others a frame later each. */
+  const assessed = shallowReactive(new Map(live.assessment.value.runs.map(run => [run.runId, run])))
+  function drawRun(runId: string) {
+    const now = live.assessment.value.runs.find(run => run.runId === runId)
+    if (now) assessed.set(runId, now)
+    else assessed.delete(runId)
+  }
+  watch(live.assessment, ({ runs }) => {
+    const known = new Map(runs.map(run => [run.runId, run]))
+    const changed = [...new Set([...known.keys(), ...assessed.keys()])].filter(runId => assessed.get(runId) !== known.get(runId))
+    for (const runId of changed.sort((a, b) => Number(b === runInHand.value) - Number(a === runInHand.value))) turns.soon(runId, () => drawRun(runId))
+  }, { flush: 'sync' })
+
   /** Open questions by cell, the stronger one where there are two. Each cell listens to its own key alone. */
   const askedAt = shallowReactive(new Map<string, 'stop' | 'check'>())
-  watch(() => live.assessment.value.remarks, remarks => syncMap(askedAt, openByCell(remarks)), { immediate: true })
+  syncMap(askedAt, openByCell(live.assessment.value.remarks))
+  watch(() => live.assessment.value.remarks, () => turns.soon(askedAt, () => syncMap(askedAt, openByCell(live.assessment.value.remarks))), { flush: 'sync' })
   /** Why the server refused a cell, by its key. */
   const refusals = shallowReactive(new Map<string, string>())
   watch(() => saving.queue.value.refusals, found => syncMap(refusals, new Map(Object.entries(found).map(([key, { message }]) => [key, message]))), { immediate: true })
   /** From a cell to its question at the side, else to the first open one. */
-  function goToRemark(key: string) {
+  async function goToRemark(key: string) {
+    turns.now()
+    await nextTick()
     const list = [...document.querySelectorAll<HTMLElement>('[data-remark-for]')]
     const found = list.find(item => item.dataset.remarkFor === key) ?? list[0]
     found?.querySelector<HTMLElement>('button')?.focus()
@@ -177,12 +212,18 @@ export function useBenchStudy(first: StudyView) {
   }
   const earlierSource = (run: Run) => view.value.earlier[`${run.technique}/${run.side}`]
 
+  /** What stands in a cell now; the sheet may show it a frame later. */
+  function contentOf(rowId: string, field: string): CellContent {
+    const found = findRow(study.value, rowId)
+    return found ? cellContent(found.row, field) : null
+  }
+
   /** Against the revision that stands when its turn comes: two quick choices after each other do not contradict each other. */
   const changeRun = (runId: string, changes: object) => act(`runs/${runId}`, 'PATCH', () => ({ ...changes, revision: view.value.runRevisions[runId] ?? 0 }))
 
   return {
-    view, study, policy, saving, assessment: live.assessment, isLive: live.live, liveProblem: live.problem, differences: live.differences, mayType, busy, problem, problemOf, at, editor, explained, allColumns, notesOf, unaccepted,
-    preview, change, reload, act, changeRun, askedAt, goToRemark, earlierOf, earlierSource,
+    view, study, drawn, turns, policy, saving, assessment: live.assessment, assessed, isLive: live.live, liveProblem: live.problem, differences: live.differences, mayType, busy, problem, problemOf, at, runInHand, editor, explained, allColumns, notesOf, unaccepted,
+    contentOf, preview, store, change, reload, act, changeRun, askedAt, goToRemark, earlierOf, earlierSource,
     undo: () => walk(undoStep(history.value)),
     redo: () => walk(redoStep(history.value)),
     refusal: (rowId: string, field: string) => refusals.get(cellKey({ rowId, field })) ?? '',

@@ -1,4 +1,5 @@
 import type { ShallowRef } from 'vue'
+import { whenFree } from '~/utils/when-free'
 import { newId } from '~/utils/new-id'
 import { mergeKept, unsavedCells, type SaveQueue } from '~/utils/save-queue'
 
@@ -22,6 +23,7 @@ export function useKeptQueue(studyId: string, number: string, queue: ShallowRef<
 
   async function writeNow() {
     while (written.value !== queue.value) {
+      await whenFree()
       const state = queue.value
       const store = await offline?.store()
       if (!store) return

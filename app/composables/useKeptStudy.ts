@@ -1,4 +1,5 @@
 import type { StudyView } from '#shared/schemas/bench'
+import { whenFree } from '~/utils/when-free'
 
 const PAUSE_MS = 1_000
 
@@ -25,7 +26,7 @@ export function useKeptStudy(changed: () => unknown, copy: () => StudyView | nul
   }
   onMounted(() => {
     void offline?.register()
-    later()
+    void whenFree().then(keep)
   })
   watch(changed, later)
   onBeforeUnmount(() => clearTimeout(timer))

@@ -1,7 +1,8 @@
 import type { Assessment, Policy } from '#shared/calculations/types'
 import type { ReferenceTable } from '#shared/schemas/reference-table'
 import type { Study } from '#shared/schemas/study'
-import { withPatch } from '~/utils/assessment-patch'
+import { patchOf, withPatch } from '~/utils/runs-patch'
+import type { Turns } from '~/utils/turns'
 import type { FromAssessor, ToAssessor } from '~/workers/assess.worker'
 
 /**
@@ -11,9 +12,9 @@ import type { FromAssessor, ToAssessor } from '~/workers/assess.worker'
  *
  * @returns `differences`: results that the server sees differently for the same values; its answer stands and they are said
  * @example
- * const { assessment, differences } = useLiveAssessment(study, policy, () => view.value.assessment)
+ * const { assessment, differences } = useLiveAssessment(study, policy, () => view.value.assessment, turns)
  */
-export function useLiveAssessment(study: Ref<Study>, policy: Ref<Policy>, fromServer: () => Assessment) {
+export function useLiveAssessment(study: Ref<Study>, policy: Ref<Policy>, fromServer: () => Assessment, turns: Turns) {
   const tables = shallowRef<ReferenceTable[] | null>(null)
   const computedHere = shallowRef<Assessment>()
   const problem = ref('')
@@ -23,6 +24,8 @@ export function useLiveAssessment(study: Ref<Study>, policy: Ref<Policy>, fromSe
   /** One study under way at a time; of those typed meanwhile only the last is looked at. */
   let isBusy = false
   let isWaiting = false
+  /** The study as the worker knows it. */
+  let sent: Study | undefined
 
   const post = (message: ToAssessor) => worker?.postMessage(message)
 
@@ -43,7 +46,9 @@ export function useLiveAssessment(study: Ref<Study>, policy: Ref<Policy>, fromSe
     isWaiting = isBusy
     if (isBusy || !worker || !tables.value) return
     isBusy = true
-    post({ kind: 'assess', study: toRaw(study.value), policy: toRaw(policy.value) })
+    const now = toRaw(study.value)
+    post({ kind: 'assess', patch: patchOf(sent, now), policy: toRaw(policy.value) })
+    sent = now
   }
 
   function onAnswer({ data }: MessageEvent<FromAssessor>) {
@@ -66,7 +71,7 @@ export function useLiveAssessment(study: Ref<Study>, policy: Ref<Policy>, fromSe
   })
   onBeforeUnmount(() => worker?.terminate())
   watch(() => policy.value.adopted.map(set => `${set.setId}/${set.version}`).join(' '), loadTables)
-  watch([study, policy], ask)
+  watch([study, policy], () => turns.soon(ask, ask), { flush: 'sync' })
 
   /** Compares with the server's assessment of the same stored study. */
   function compareWith(stored: Study, server: Assessment) {

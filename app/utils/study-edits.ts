@@ -24,17 +24,20 @@ function rowWith(row: RunRow, field: string, content: CellContent): RunRow {
   return { ...row, values: content === null ? without(row.values, field) : { ...row.values, [field]: content as Entry } }
 }
 
+export const sameContent = (a: CellContent, b: CellContent) => a === b || JSON.stringify(a) === JSON.stringify(b)
+
 /**
- * The study with one cell changed. Only the run and row of that cell are new objects, so that nothing else is drawn again.
+ * The study with one cell changed. Only the run and row of that cell are new objects, so that nothing else is drawn again;
+ * where the cell holds this already it is the same study.
  *
  * @example withCell(study, 'row1', 'latencyMs', 4.2)
  */
 export function withCell(study: Study, rowId: string, field: string, content: CellContent): Study {
-  const inRun = (run: Run) => run.rows.some(row => row.id === rowId)
+  const found = findRow(study, rowId)
+  if (!found || sameContent(cellContent(found.row, field), content)) return study
+  const inRun = (run: Run) => run === found.run
   return { ...study, runs: study.runs.map(run => inRun(run) ? { ...run, rows: run.rows.map(row => row.id === rowId ? rowWith(row, field, content) : row) } : run) }
 }
-
-export const sameContent = (a: CellContent, b: CellContent) => JSON.stringify(a) === JSON.stringify(b)
 
 /** Row and run of a row id; undefined when it was removed. */
 export function findRow(study: Study, rowId: string): { run: Run, row: RunRow, index: number } | undefined {

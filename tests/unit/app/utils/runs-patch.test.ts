@@ -1,6 +1,6 @@
 import { expect, it } from 'vitest'
 import { assess, run, studyWith } from '../../shared/calculations/study-maker'
-import { patchOf, withPatch } from '../../../../app/utils/assessment-patch'
+import { patchOf, withPatch } from '../../../../app/utils/runs-patch'
 
 const study = (latencyMs: number, more = false) => studyWith([
   run('median-motor-apb', 'right', [['wrist', { latencyMs, amplitudeMv: 8, distanceMm: 80 }]]),
@@ -21,4 +21,16 @@ it('a patch holds what changed, and what did not keeps its objects', () => {
 
 it.each([['from nothing', undefined, after], ['a run was added', after, larger], ['a run was taken away', larger, before], ['nothing changed', after, after]])('%s', (_, from, to) => {
   expect(withPatch(from, JSON.parse(JSON.stringify(patchOf(from, to))))).toEqual(JSON.parse(JSON.stringify(to)))
+})
+
+it('a part that is gone is taken away', () => {
+  const seen: { runs: { id: string }[], visits?: string[] } = { runs: [{ id: 'a' }], visits: ['first'] }
+  const gone: typeof seen = { runs: [{ id: 'a' }] }
+  expect(withPatch(seen, structuredClone(patchOf(seen, gone)))).toEqual(gone)
+})
+
+it('of a study that was typed into one run is sent', () => {
+  const [was, is] = [study(3.5), study(5.2)]
+  expect(patchOf(was, is).runs.map(each => each.id)).toEqual([is.runs[0]?.id])
+  expect(withPatch(was, structuredClone(patchOf(was, is)))).toEqual(is)
 })
