@@ -77,12 +77,13 @@ function patternInput(context: StudyContext, runs: RunAssessment[], comparisons:
   }
 }
 
+const noneFor = { upper: 'none for a upper bound', lower: 'none for a lower bound' }
+
 function limitOfResult(context: StudyContext, result: Result | undefined, bound: AppliedLimit['bound']): AppliedLimit | string {
   if (!result) return 'not recorded'
   const { verdict } = result
-  const nothing = `none for a ${bound} bound`
-  if ('limits' in verdict) return verdict.limits.find(limit => limit.bound === bound) ?? nothing
+  if ('limits' in verdict) return verdict.limits.find(limit => limit.bound === bound) ?? noneFor[bound]
   const unsaid = context.limitsUnsaid.get(result)
-  if (unsaid) return unsaid[bound] ?? nothing
+  if (unsaid) return unsaid[bound] ?? noneFor[bound]
   return verdict.kind === 'no-limit' || verdict.kind === 'not-judged' ? verdict.because : 'no limit'
 }

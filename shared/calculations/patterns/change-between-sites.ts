@@ -51,11 +51,11 @@ export const changeBetweenSites: PatternSet = {
 interface Asked { nerve: Nerve, run: RunFacts, findings: Record<TextId, Finding> }
 
 function assessChange(facts: Facts, side: Side): Assessed | null {
-  const asked = nerves.flatMap((nerve): Asked[] => {
+  const asked: Asked[] = []
+  for (const nerve of nerves) {
     const run = facts.run(nerve.technique, side)
-    if (!run || !isStimulatedTwice(run)) return []
-    return [{ nerve, run, findings: findingsOf(facts, motorRun(facts, run), nerve.arm) }]
-  })
+    if (run && isStimulatedTwice(run)) asked.push({ nerve, run, findings: findingsOf(facts, motorRun(facts, run), nerve.arm) })
+  }
   if (asked.length === 0) return null
   const criteria = [...asked.flatMap(criteriaOf), entrapmentCriterion(facts)]
   return { outcome: outcomeOf(asked), criteria, runIds: eachOnce(asked.map(({ run }) => run.id)) }

@@ -2,7 +2,7 @@ import { distalLatencyRule, durationRule, fAbsentRule, fallRule, fLatencyRule, p
 import { decideOneNerve, decideParameter, idsMet, type Parameters } from './cidp-rules'
 import type { Facts } from './facts'
 import { anyOf, criterion, type Criterion, type CriterionText, type Truth } from './finding'
-import { motorNervesOf, type MotorNerve } from './motor-nerves'
+import { motorNervesOf, runIdsOf, type MotorNerve } from './motor-nerves'
 import { askEach, type RuleTable } from './nerve-truths'
 import { entrapmentCriterion, entrapmentText, eachOnce, type Assessed, type PatternSet } from './pattern-set'
 import { sensorySupport, sensoryRunIds, sensoryTexts } from './cidp-sensory'
@@ -49,7 +49,7 @@ function assessCidp2010(facts: Facts): Assessed | null {
     ...sensorySupport(facts),
     entrapmentCriterion(facts),
   ]
-  return { outcome: outcomeOf(criteria), criteria, runIds: eachOnce([...nerves.flatMap(nerve => nerve.runIds), ...sensoryRunIds(facts)]) }
+  return { outcome: outcomeOf(criteria), criteria, runIds: eachOnce([...runIdsOf(nerves), ...sensoryRunIds(facts)]) }
 }
 
 const rules = {

@@ -3,7 +3,7 @@ import { decideOneNerve, decideParameter, idsMet, type Parameters } from './cidp
 import { sensoryOf, sensoryRunIds, sensorySupport, sensoryTexts, summed } from './cidp-sensory'
 import type { Facts } from './facts'
 import { anyOf, criterion, notAssessable, type Criterion, type CriterionText, type Finding } from './finding'
-import { motorNervesOf, type MotorNerve } from './motor-nerves'
+import { motorNervesOf, runIdsOf, type MotorNerve } from './motor-nerves'
 import { askEach } from './nerve-truths'
 import { eachOnce, entrapmentCriterion, entrapmentText, type Assessed, type PatternSet } from './pattern-set'
 import { isAbnormal } from './sensory-nerves'
@@ -62,7 +62,7 @@ function assessCidp2021(facts: Facts): Assessed | null {
     ...sensorySupport(facts),
     entrapmentCriterion(facts),
   ]
-  return { outcome: outcomeOf(criteria), criteria, runIds: eachOnce([...nerves.flatMap(nerve => nerve.runIds), ...sensoryRunIds(facts)]) }
+  return { outcome: outcomeOf(criteria), criteria, runIds: eachOnce([...runIdsOf(nerves), ...sensoryRunIds(facts)]) }
 }
 
 function parameters2021(facts: Facts, nerves: readonly MotorNerve[]): Parameters {

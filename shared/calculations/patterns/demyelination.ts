@@ -44,14 +44,19 @@ export function distalLatencyRule(facts: Facts, bar: BandedBar, medianAtWrist: '
 
 /** Slow motor conduction in any segment that counts. */
 export function velocityRule(facts: Facts, bar: BandedBar, segmentCounts: (segment: SegmentFacts) => boolean): NerveRule {
-  return nerve => anyTruth(nerve.runs.flatMap((run) => {
-    if (run.facts.cold) return [unknown(run.facts.cold)]
-    return run.segments.filter(segmentCounts).map((segment) => {
-      const truth = bandedShare(facts, segment.velocity, 'lower', bar, run.amplitude)
-      return segment.id === 'forearm' || segment.id === 'leg' || truth.words === '' ? truth : { ...truth, words: `${segment.label} ${truth.words}` }
-    })
-  }))
+  return (nerve) => {
+    const truths: NerveTruth[] = []
+    for (const run of nerve.runs) {
+      if (run.facts.cold) truths.push(unknown(run.facts.cold))
+      else for (const segment of run.segments) if (segmentCounts(segment)) truths.push(named(segment, bandedShare(facts, segment.velocity, 'lower', bar, run.amplitude)))
+    }
+    return anyTruth(truths)
+  }
 }
+
+/** The long segments go without saying. */
+const named = ({ id, label }: SegmentFacts, { state, words }: NerveTruth): NerveTruth =>
+  ({ state, words: id === 'forearm' || id === 'leg' || words === '' ? words : `${label} ${words}` })
 
 /** Late shortest F-wave. */
 export function fLatencyRule(facts: Facts, bar: BandedBar): NerveRule {

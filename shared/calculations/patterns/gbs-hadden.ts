@@ -1,7 +1,7 @@
 import type { Facts } from './facts'
 import { allOf, anyOf, atLeast, criterion, notTruth, type Criterion, type CriterionText, type Finding, type Truth } from './finding'
 import { amplitudeTable, anyFeature, featureCriterion, featuresOf, inNerves, isInexcitable, strictly, truthOf, withReason, type FeatureBars } from './gbs-features'
-import { motorNervesOf, type MotorNerve } from './motor-nerves'
+import { motorNervesOf, runIdsOf, type MotorNerve } from './motor-nerves'
 import { namesMet, type RuleTable } from './nerve-truths'
 import { entrapmentCriterion, entrapmentText, eachOnce, type Assessed, type PatternSet } from './pattern-set'
 
@@ -44,7 +44,7 @@ function assessHadden(facts: Facts): Assessed | null {
     ...(['inexcitable', 'demyelinating', 'axonal', 'normal'] as const).map(id => criterion(texts[id], classes[id])),
     entrapmentCriterion(facts),
   ]
-  return { outcome: outcomeOf(classes), criteria, runIds: eachOnce(nerves.flatMap(nerve => nerve.runIds)) }
+  return { outcome: outcomeOf(classes), criteria, runIds: eachOnce(runIdsOf(nerves)) }
 }
 
 function classesOf(facts: Facts, nerves: readonly MotorNerve[], tables: readonly RuleTable[], each: readonly Criterion[]): Classes {

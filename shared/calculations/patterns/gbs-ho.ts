@@ -1,6 +1,6 @@
 import { shareOf } from './criteria'
 import type { Facts } from './facts'
-import { motorNervesOf } from './motor-nerves'
+import { motorNervesOf, runIdsOf } from './motor-nerves'
 import { allOf, criterion, joined, notTruth, passes, type CriterionText, type Finding } from './finding'
 import { amplitudeTable, anyFeature, featureCriterion, featuresOf, inNerves, strictly, withReason, type FeatureBars } from './gbs-features'
 import { namesMet } from './nerve-truths'
@@ -49,7 +49,7 @@ function assessHo(facts: Facts): Assessed | null {
     entrapmentCriterion(facts),
   ]
   const label = demyelinating.result === 'met' ? 'demyelinating' : demyelinating.result === 'not-met' ? 'not demyelinating' : 'not demyelinating in what could be assessed'
-  return { outcome: { met: demyelinating.result, label }, criteria, runIds: eachOnce(nerves.flatMap(nerve => nerve.runIds)) }
+  return { outcome: { met: demyelinating.result, label }, criteria, runIds: eachOnce(runIdsOf(nerves)) }
 }
 
 function lowSensory(facts: Facts): Finding {

@@ -2,7 +2,7 @@ import { fAbsentRule } from './demyelination'
 import type { Facts } from './facts'
 import { allOf, anyOf, criterion, joined, notTruth, type CriterionText, type Finding } from './finding'
 import { amplitudeTable, anyFeature, featureCriterion, featuresOf, inNerves, strictly, type FeatureBars } from './gbs-features'
-import { motorNervesOf, type MotorNerve } from './motor-nerves'
+import { motorNervesOf, runIdsOf, type MotorNerve } from './motor-nerves'
 import { askEach, decideNerves, namesMet, nerveWords, withOther, type RuleTable } from './nerve-truths'
 import { entrapmentCriterion, entrapmentText, eachOnce, type Assessed, type PatternSet } from './pattern-set'
 
@@ -48,7 +48,7 @@ function assessRajabally(facts: Facts): Assessed | null {
     criterion(texts.demyelinating, demyelinating), criterion(texts.axonal, axonal),
     entrapmentCriterion(facts),
   ]
-  return { outcome: outcomeOf(demyelinating, axonal), criteria, runIds: eachOnce(nerves.flatMap(nerve => nerve.runIds)) }
+  return { outcome: outcomeOf(demyelinating, axonal), criteria, runIds: eachOnce(runIdsOf(nerves)) }
 }
 
 /** In two nerves, and one of the others in another nerve. */

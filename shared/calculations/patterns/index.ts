@@ -21,11 +21,18 @@ const RECALLED = 'Judged with limits that are recalled, not verified.'
  */
 export function assessPatterns(input: PatternInput): PatternResult[] {
   const facts = factsOf(input)
-  return patternSets.filter(set => isOn(set, input.policy)).flatMap((set) => {
-    const places: readonly (Side | undefined)[] = set.scope === 'side' ? sides : [undefined]
-    return places.map(side => resultOf(set, facts, side)).filter(result => result !== null)
-  })
+  const results: PatternResult[] = []
+  for (const set of patternSets) {
+    if (!isOn(set, input.policy)) continue
+    for (const side of set.scope === 'side' ? sides : wholeStudy) {
+      const result = resultOf(set, facts, side)
+      if (result) results.push(result)
+    }
+  }
+  return results
 }
+
+const wholeStudy = [undefined] as const
 
 function resultOf(set: PatternSet, facts: Facts, side: Side | undefined): PatternResult | null {
   facts.usedRecalled = false

@@ -62,6 +62,13 @@ function motorNerve(facts: Facts, { nerve, motor, fWave }: (typeof recordings)[n
   }
 }
 
+/** Ids of every run of these nerves. */
+export function runIdsOf(nerves: readonly MotorNerve[]): string[] {
+  const ids: string[] = []
+  for (const { runIds } of nerves) ids.push(...runIds)
+  return ids
+}
+
 /** Shortest F latency; none of the stimuli answered counts as no response. */
 function fReading(facts: Facts, run: RunFacts): Reading {
   const shortest = readingOf(facts, run, 'minimumLatencyMs')

@@ -33,7 +33,11 @@ export function sitePairs(facts: Facts, run: RunFacts): SitePair[] {
     area: readingOf(facts, run, 'areaMvMs', site.id),
     duration: readingOf(facts, run, 'durationMs', site.id),
   })).filter(({ amplitude, area }) => isKnown(amplitude) || isKnown(area))
-  return stimulated.flatMap((distal, index) => stimulated.slice(index + 1).map(proximal => pairOf(run, distal, proximal)))
+  const pairs: SitePair[] = []
+  for (const [index, distal] of stimulated.entries()) {
+    for (const proximal of stimulated.slice(index + 1)) pairs.push(pairOf(run, distal, proximal))
+  }
+  return pairs
 }
 
 const isKnown = (reading: Reading) => reading.state !== 'missing'
