@@ -2,7 +2,7 @@ import { siteOf } from '../../catalogue/nerves'
 import type { Side } from '../../schemas/common'
 import { definiteIn, dispersion, lowRatio, overPairs, probableIn, type PairRule } from './change-rules'
 import type { Facts, RunFacts } from './facts'
-import { anyOf, criterion, notAssessable, type Criterion, type CriterionText, type Finding } from './finding'
+import { anyOf, criterion, notAssessable, type Criterion, type CriterionText, type Finding, type Truth } from './finding'
 import { motorRun, type MotorRun } from './motor-nerves'
 import { entrapmentCriterion, entrapmentText, eachOnce, type Assessed, type PatternSet } from './pattern-set'
 
@@ -57,8 +57,11 @@ function assessChange(facts: Facts, side: Side): Assessed | null {
     if (run && isStimulatedTwice(run)) asked.push({ nerve, run, findings: findingsOf(facts, motorRun(facts, run), nerve.arm) })
   }
   if (asked.length === 0) return null
-  const criteria = [...asked.flatMap(criteriaOf), entrapmentCriterion(facts)]
-  return { outcome: outcomeOf(asked), criteria, runIds: eachOnce(asked.map(({ run }) => run.id)) }
+  const criteria: Criterion[] = []
+  for (const one of asked) criteria.push(...criteriaOf(one))
+  const outcome = outcomeOf(asked, anyOf(criteria.map(one => one.result)))
+  criteria.push(entrapmentCriterion(facts))
+  return { outcome, criteria, runIds: eachOnce(asked.map(({ run }) => run.id)) }
 }
 
 function isStimulatedTwice({ assessment }: RunFacts): boolean {
@@ -88,7 +91,7 @@ function criteriaOf({ nerve, findings }: Asked): Criterion[] {
   return textIds.map(id => criterion(textsFor[nerve.technique][id], findings[id]))
 }
 
-function outcomeOf(asked: readonly Asked[]): Assessed['outcome'] {
+function outcomeOf(asked: readonly Asked[], met: Truth): Assessed['outcome'] {
   const namesOf = (id: TextId) => asked.filter(({ findings }) => findings[id].result === 'met').map(({ nerve }) => nerve.name)
   const definite = namesOf('definite')
   const probable = namesOf('probable').filter(name => !definite.includes(name))
@@ -98,7 +101,6 @@ function outcomeOf(asked: readonly Asked[]): Assessed['outcome'] {
     namesOf('dispersion').length > 0 && `dispersion: ${namesOf('dispersion').join(', ')}`,
     namesOf('ratio').length > 0 && `amplitude ratio: ${namesOf('ratio').join(', ')}`,
   ].filter(part => part !== false)
-  const met = anyOf(asked.flatMap(({ findings }) => textIds.map(id => findings[id].result)))
   if (met === 'met') return { met, label: said.join('; ') }
   return { met, label: met === 'not-met' ? 'none' : 'none in what could be assessed' }
 }

@@ -68,11 +68,11 @@ export function recall<T>(facts: Facts, { answer, usedRecalled }: Noted<T>): T {
 
 /** Gathers what was studied; each run once. */
 export function factsOf(input: PatternInput): Facts {
-  const known = { right: new Map<string, RunFacts | undefined>(), left: new Map<string, RunFacts | undefined>() }
+  const known = { right: new Map<string, RunFacts | null>(), left: new Map<string, RunFacts | null>() }
   const run = (technique: string, side: Side) => {
-    const runs = known[side]
-    if (!runs.has(technique)) runs.set(technique, runFacts(input, technique, side))
-    return runs.get(technique)
+    let facts = known[side].get(technique)
+    if (facts === undefined) known[side].set(technique, facts = runFacts(input, technique, side) ?? null)
+    return facts ?? undefined
   }
   return { input, usedRecalled: false, run, hands: {} }
 }
