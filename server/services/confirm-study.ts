@@ -1,9 +1,9 @@
 import type * as z from 'zod'
 import type { Trx } from '#server/database/connection'
-import { cautionAnswers } from '#server/database/queries/bands'
 import { DomainError, type FieldError } from '#shared/errors'
 import type { ReferralSide } from '#shared/schemas/common'
 import type { Confirmation, confirmSchema } from '#shared/schemas/bench'
+import { refusePacingWire } from './ask-cautions'
 import { now, type ServiceContext } from './context'
 import { aboutStudy, studyChanged } from './editable-study'
 import { layOutRuns } from './lay-out-runs'
@@ -17,9 +17,7 @@ function checkConfirmation(input: Input, referral: { side: ReferralSide | null, 
   if (new Set(input.identifiers).size < 2) fields.push({ path: 'identifiers', message: 'Confirm two different identifiers.' })
   if (input.side !== referral.side && input.sideReason.length < 3) fields.push({ path: 'sideReason', message: `The referral says ${(referral.side ?? 'no side').toUpperCase()}. Say why the side differs.` })
   if (fields.length) throw new DomainError('not-valid', { fields })
-  const wire = cautionAnswers(referral.cautionsJson).find(caution => caution.id === 'temporary-pacing-wire')
-  // Current can reach the heart through a wire that leads out of the body: this study is not done. Guarded by bench.test.ts.
-  if (wire?.answer === 'yes') throw new DomainError('not-valid', { message: 'A temporary pacing wire or other external cardiac lead is recorded. Nerves are not stimulated while it is in place: stop the study with this reason, or correct the referral if the answer is wrong.', fields: [{ path: 'cautions.temporary-pacing-wire', message: 'A temporary pacing wire is in place: stop the study.' }] })
+  refusePacingWire(referral.cautionsJson)
 }
 
 async function loadFor(trx: Trx, studyId: string) {

@@ -4,6 +4,7 @@ import { DomainError } from '#shared/errors'
 import type { visitSchema, LaterEntryInput } from '#shared/schemas/bench-day'
 import type { RunSettings } from '#server/database/queries/studies'
 import type { Trx } from '#server/database/connection'
+import { refusePacingWire } from './ask-cautions'
 import { now, type ServiceContext } from './context'
 import { aboutStudy, editableStudy, studyChanged } from './editable-study'
 import { recordAuditEvent } from './record-audit-event'
@@ -24,6 +25,8 @@ export async function startVisit(context: ServiceContext, { id, reason, identifi
     const day = localDate(context.clock(), await zoneOf(trx, study.siteId))
     const last = await trx.selectFrom('studyVisit').select('day').where('studyId', '=', id).orderBy('startedAt', 'desc').executeTakeFirst()
     if (day <= (last?.day ?? study.studyDate)) throw new DomainError('wrong-state', { message: 'The study is of today already. A further visit begins on a later day.' })
+    const { cautionsJson } = await trx.selectFrom('referral').select('cautionsJson').where('id', '=', study.referralId).executeTakeFirstOrThrow()
+    refusePacingWire(cautionsJson)
     const [visitId, startedAt] = [randomUUID(), now(context)]
     const confirmation = { identifiers, cautionsRead, at: startedAt, byName: context.actor.label }
     await trx.insertInto('studyVisit').values({ id: visitId, studyId: id, day, startedAt, reason, technologistId: context.actor.userId, confirmationJson: JSON.stringify(confirmation) }).execute()

@@ -12,6 +12,7 @@ const because = (reason: string) => reason ? `: ${reason}` : ''
 export const benchEvents = {
   'study.started': event(z.object({ number: z.string() }), data => `started the study ${data.number}`),
   'study.confirmed': event(z.object({ identifiers: z.array(z.string()), side: z.string(), referralSide: z.string().nullable(), sideReason: z.string() }), data => `confirmed ${data.identifiers.join(' and ')}, the side ${data.side.toUpperCase()} and the cautions${data.side === data.referralSide ? '' : `; the referral says ${(data.referralSide ?? 'no side').toUpperCase()}`}`),
+  'study.cautions-asked': event(changes, data => `asked about cautions at the bench: ${changedFields(data)}`),
   'study.body-size-changed': event(z.object({ before: size, after: size }), () => 'changed height or weight'),
   'study.temperature-added': event(temperature.extend({ boundRuns: z.array(z.string()) }), data => `noted ${data.celsius.toFixed(1)} °C, ${data.side.toUpperCase()} ${data.segment}`),
   'study.temperature-removed': event(temperature, data => `removed the temperature ${data.celsius.toFixed(1)} °C, ${data.side.toUpperCase()} ${data.segment}`),

@@ -3,7 +3,7 @@ import { idSchema, isoDateTimeSchema, sideSchema } from './common'
 import { entrySchema, runSchema, type RunRow, type Study } from './study'
 import type { BenchChoices, StudyAround } from './bench-day'
 import type { PatientBand } from './patient'
-import type { RouteNode, UploadView, Urgency } from './referral'
+import { cautionIds, type RouteNode, type UploadView, type Urgency } from './referral'
 import type { AdoptedSet, Assessment, Policy } from '../calculations/types'
 import type { StudyState } from '../states'
 
@@ -37,6 +37,8 @@ export const confirmSchema = z.object({
   sideReason: z.string().trim().max(300).default(''),
   cautionsRead: z.literal(true, 'Confirm that the cautions were read.'),
 })
+/** What the patient answered when the technologist asked. */
+export const cautionsAskedSchema = z.object({ answers: z.partialRecord(z.enum(cautionIds), z.enum(['yes', 'no'])) })
 export type Confirmation = z.infer<typeof confirmSchema> & { at: string, byName: string }
 
 /**

@@ -23,7 +23,7 @@ export const cautions = [
   { id: 'adhesive-allergy', label: 'Allergy to adhesives or latex', chip: 'adhesive allergy' },
 ] as const
 export type CautionId = (typeof cautions)[number]['id']
-const cautionIds = cautions.map(c => c.id) as [CautionId, ...CautionId[]]
+export const cautionIds = cautions.map(c => c.id) as [CautionId, ...CautionId[]]
 
 export const urgencies = ['routine', 'urgent', 'same-week'] as const
 export type Urgency = (typeof urgencies)[number]

@@ -5,6 +5,7 @@ import { askTechnicalReport, closeStopped } from '#server/services/after-stop'
 import { bookReferral } from '#server/services/book-referral'
 import { commentOnStudy } from '#server/services/comment-on-study'
 import { confirmStudy } from '#server/services/confirm-study'
+import { askCautions } from '#server/services/ask-cautions'
 import { noteLaterEntry, startVisit } from '#server/services/continue-study'
 import { handOverStudy, stopStudy } from '#server/services/hand-over-study'
 import { checkMovedValues, enterStudyInError, moveStudy } from '#server/services/move-study'
@@ -261,6 +262,9 @@ describe('a second visit', () => {
     await c.type(id, 'median-motor-apb', 'right', [values])
     t.clock.set('2026-12-09T10:00:00.000Z')
     expect(await refusal(startVisit(c.technologist, { id, reason: 'too tired', identifiers: ['name', 'name'], cautionsRead: true }))).toBe('not-valid')
+    await askCautions(c.technologist, { id, answers: { 'temporary-pacing-wire': 'yes' } })
+    expect(await refusal(startVisit(c.technologist, { id, reason: 'too tired', identifiers: ['name', 'birth-date'], cautionsRead: true }))).toBe('not-valid')
+    await askCautions(c.technologist, { id, answers: { 'temporary-pacing-wire': 'no' } })
     await startVisit(c.technologist, { id, reason: 'too tired', identifiers: ['name', 'birth-date'], cautionsRead: true })
     await c.type(id, 'ulnar-motor-adm', 'right', [values])
     const cold = async () => Object.fromEntries((await assessStoredStudy(t.context, id)).assessment.runs.map(run => [run.technique, run.cold.state]))

@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest'
 import { addRun, changeRun, removeRun } from '#server/services/save-run'
 import { addRow, removeRow } from '#server/services/save-row'
+import { askCautions } from '#server/services/ask-cautions'
 import { addTemperature, removeTemperature } from '#server/services/save-temperature'
 import { confirmStudy } from '#server/services/confirm-study'
 import { handOverStudy, stopStudy } from '#server/services/hand-over-study'
@@ -105,6 +106,28 @@ describe('confirming', () => {
     await c.type(id, 'median-motor-apb', 'right', [{ latencyMs: 4 }])
     await confirmStudy(by, { id, ...confirmation, side: 'left', sideReason: 'told so' })
     expect(await titles(id)).toEqual(['right median-motor-apb', ...LEFT])
+  })
+  it('what was not asked is asked at the bench, an answer that is not true today is corrected, and the trail keeps both', async () => {
+    const id = await c.started({ cautions: { 'cardiac-device': 'no', 'temporary-pacing-wire': 'no', 'lymphoedema': 'not-asked' } })
+    await askCautions(by, { id, answers: { 'lymphoedema': 'yes', 'cardiac-device': 'no' } })
+    expect((await viewStudy(by, id)).band.cautions).toEqual(['lymphoedema'])
+    await askCautions(by, { id, answers: { 'temporary-pacing-wire': 'yes' } })
+    await expect(confirmStudy(by, { id, ...confirmation })).rejects.toMatchObject({ code: 'not-valid', options: { message: expect.stringContaining('temporary pacing wire') } })
+    await askCautions(by, { id, answers: { 'temporary-pacing-wire': 'no' } })
+    await confirmStudy(by, { id, ...confirmation })
+    const kept = await t.db.selectFrom('auditEvent').select('dataJson').where('subjectId', '=', id).where('name', '=', 'study.cautions-asked').orderBy('seq').execute()
+    expect(kept.map(event => JSON.parse(event.dataJson) as unknown)).toEqual([
+      { changes: [{ field: 'lymphoedema', before: 'not-asked', after: 'yes' }] },
+      { changes: [{ field: 'temporary-pacing-wire', before: 'no', after: 'yes' }] },
+      { changes: [{ field: 'temporary-pacing-wire', before: 'yes', after: 'no' }] },
+    ])
+    await askCautions(by, { id, answers: { lymphoedema: 'yes' } })
+    expect(await t.db.selectFrom('auditEvent').select('id').where('subjectId', '=', id).where('name', '=', 'study.cautions-asked').execute()).toHaveLength(3)
+  })
+  it('no caution of a study that is closed is changed', async () => {
+    const id = await c.started()
+    await stopStudy(by, { id, reason: 'not today' })
+    await expect(askCautions(by, { id, answers: { lymphoedema: 'yes' } })).rejects.toMatchObject({ code: 'wrong-state' })
   })
   it('stops at a temporary pacing wire, with the reason', async () => {
     const id = await c.started({ cautions: { 'cardiac-device': 'no', 'temporary-pacing-wire': 'yes' } })
