@@ -1,13 +1,27 @@
 import type { Page } from 'playwright-core'
 import { afterAll, afterEach, beforeAll, expect, it } from 'vitest'
 import type { StudyView } from '#shared/schemas/bench'
-import { signIn, startApp, visit, type App, type Window } from './app'
+import { expectNoAxeFindings, signIn, startApp, visit, type App, type Window } from './app'
 import { bookStudy } from './booked-study'
 
 /** What the bench must not let happen: a slip taken for a value, a typed value lost, slowness of a cold limb called disease. */
 let app: App
 let technologist: Window
 let studyUrl = ''
+
+/** One that was not asked, and one whose answer is another today: with a wire in place nothing goes on until it is corrected. */
+async function askCautions(page: Page): Promise<void> {
+  const cautions = page.locator('[data-test=cautions]')
+  await cautions.getByRole('group', { name: 'Lymphoedema' }).getByLabel('yes').check()
+  await page.getByText('lymphoedema', { exact: true }).waitFor()
+  const wire = 'Temporary pacing wire or other external cardiac lead'
+  for (const [answer, state] of [['yes', 'detached'], ['no', 'visible']] as const) {
+    await cautions.getByRole('button', { name: new RegExp(`^Correct ?: ${wire}`) }).click()
+    await cautions.getByRole('group', { name: wire }).getByLabel(answer).check()
+    await page.getByRole('button', { name: 'Confirm and record' }).waitFor({ state })
+    await expectNoAxeFindings(page)
+  }
+}
 
 beforeAll(async () => {
   app = await startApp()
@@ -23,6 +37,7 @@ beforeAll(async () => {
   await confirm.getByLabel('Name: Tollefsen').check()
   await confirm.getByLabel('Date of birth: 20 May 1971').check()
   await confirm.getByLabel('BOTH SIDES').check()
+  await askCautions(page)
   await confirm.getByLabel('I read the cautions').check()
   await confirm.getByRole('button', { name: /Confirm/ }).click()
   await confirm.waitFor({ state: 'detached' })
