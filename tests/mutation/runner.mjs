@@ -2,7 +2,7 @@
 // for every change. That takes milliseconds; a fresh worker for each, as the usual runner has it, takes half a second.
 import { readdirSync } from 'node:fs'
 import { createRequire } from 'node:module'
-import { join, relative, resolve, sep } from 'node:path'
+import { join, relative, resolve } from 'node:path'
 import { Script } from 'node:vm'
 import { INSTRUMENTER_CONSTANTS } from '@stryker-mutator/api/core'
 import { declareClassPlugin, PluginKind } from '@stryker-mutator/api/plugin'
@@ -93,14 +93,15 @@ class CalculationsRunner {
   }
 }
 
-/**
- * The files whose tests may notice a change in this one, those that bear its name or its folder's first. The slow tests of
- * the patterns are asked only about the patterns: what these stand on has to be noticed by its own tests.
- */
+/** Folders whose tests are asked about changes in the same folder alone: what they stand on has tests of its own. */
+const UPPER_FLOORS = ['patterns', 'plausibility']
+
+/** The files whose tests may notice a change in this file, those first whose path shares words with it. */
 function filesFor(changed, files) {
-  const parts = relative('shared/calculations', relative(config.root, changed)).replace(/\.ts$/, '').split(sep)
-  const nearness = file => parts.filter(part => file.includes(part)).length
-  return files.filter(file => parts[0] === 'patterns' || !file.startsWith(join(TESTS, 'patterns'))).sort((a, b) => nearness(b) - nearness(a))
+  const words = relative('shared/calculations', relative(config.root, changed)).replace(/\.ts$/, '').split(/\W/)
+  const isAsked = file => UPPER_FLOORS.every(floor => floor === words[0] || !file.startsWith(join(TESTS, floor)))
+  const nearness = file => words.filter(word => file.includes(word)).length
+  return files.filter(isAsked).sort((a, b) => nearness(b) - nearness(a))
 }
 
 async function scriptOf(contents, plugins) {
