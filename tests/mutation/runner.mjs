@@ -53,13 +53,13 @@ class CalculationsRunner {
     return { status: DryRunStatus.Complete, tests: tests.map(resultOf), mutantCoverage }
   }
 
-  async mutantRun({ activeMutant, testFilter, hitLimit, mutantActivation }) {
+  async mutantRun({ activeMutant, sandboxFileName, testFilter, hitLimit, mutantActivation }) {
     changes.hitCount = 0
     changes.hitLimit = hitLimit
     const isStatic = mutantActivation === 'static'
     changes.activeMutant = isStatic ? activeMutant.id : undefined
     const wanted = testFilter && new Set(testFilter)
-    const files = filesFor(activeMutant.fileName, this.files).filter(file => !wanted || testFilter.some(id => id.startsWith(`${file}#`)))
+    const files = filesFor(sandboxFileName, this.files).filter(file => !wanted || testFilter.some(id => id.startsWith(`${file}#`)))
     const tests = await this.run(files, wanted, test => changes.activeMutant = test || isStatic ? activeMutant.id : undefined, true)
     changes.activeMutant = undefined
     const limit = determineHitLimitReached(changes.hitCount, hitLimit)
