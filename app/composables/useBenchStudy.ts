@@ -66,7 +66,12 @@ export function useBenchStudy(first: StudyView) {
   /** The study as the sheets show it. What is typed stands in its own cell at once, around it after the next frame. */
   const drawn = shallowRef(first.study)
   const draw = () => drawn.value = study.value
+  /** At once: a cell that showed an older value beside its new revision would overwrite what somebody else stored, unseen. */
   function show(next: Study) {
+    study.value = next
+    draw()
+  }
+  function showTyped(next: Study) {
     study.value = next
     turns.soon(draw, draw)
   }
@@ -96,11 +101,11 @@ export function useBenchStudy(first: StudyView) {
 
   /** Shows a value while it is typed, without storing it. */
   function preview(rowId: string, field: string, content: CellContent) {
-    show(withCell(study.value, rowId, field, content))
+    showTyped(withCell(study.value, rowId, field, content))
   }
 
   function apply(edits: CellEdit[]) {
-    show(withoutFallenAnswers(edits.reduce((state, edit) => withCell(state, edit.rowId, edit.field, edit.after), study.value)))
+    showTyped(withoutFallenAnswers(edits.reduce((state, edit) => withCell(state, edit.rowId, edit.field, edit.after), study.value)))
     saving.save(edits.map(edit => ({ rowId: edit.rowId, field: edit.field, entry: edit.after })))
   }
 

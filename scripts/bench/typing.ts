@@ -1,3 +1,4 @@
+import { cpus, loadavg } from 'node:os'
 import { chromium, type BrowserContext, type CDPSession, type Page } from 'playwright-core'
 import { openServices } from '#server/utils/open-services'
 import type { StudyView } from '#shared/schemas/bench'
@@ -13,7 +14,10 @@ const techniques = ['median-motor-apb', 'ulnar-motor-adm', 'median-sensory-d2', 
 /** Plausible values by the name of the column; what has no entry is passed over with Tab. */
 const values: Record<string, string[]> = { latency: ['3.4', '7.9', '8.8'], amplitude: ['8.2', '7.8', '7.5'], duration: ['5.5'], distance: ['80', '220'], onset: ['2.9'], peak: ['3.6'] }
 
-interface TraceEvent { name: string, ph: string, pid: number, tid: number, dur?: number, tdur?: number, args?: { name?: string, data?: { type?: string } } }
+interface TraceEvent { name: string, ph: string, pid: number, tid: number, ts: number, dur?: number, tdur?: number, args?: { name?: string, data?: { type?: string } } }
+/** What a task was for: it drew a frame, or answered a key, or something else. */
+type Kind = 'frames' | 'keys' | 'others'
+interface Task { ms: number, kind: Kind }
 
 /** A study that is being recorded where the neurologist works, with thirty runs. */
 async function studyToType(clinic: Clinic, context: BrowserContext): Promise<string> {
@@ -42,8 +46,11 @@ async function typeCells(page: Page): Promise<void> {
   }
 }
 
-/** Processor time of each task of the page's own thread while something is done, in ms: what others do on the machine counts less. */
-async function tasksWhile(cdp: CDPSession, act: () => Promise<void>): Promise<number[]> {
+/**
+ * Processor time of each task of the page's own thread while something is done, in ms: what others do on the machine counts
+ * less. The pauses of a slowed processor are counted: a loop of 38 ms took 73 to 82 at twice, 152 to 179 at four times as slow.
+ */
+async function tasksWhile(cdp: CDPSession, act: () => Promise<void>): Promise<Task[]> {
   const events: TraceEvent[] = []
   cdp.on('Tracing.dataCollected', ({ value }) => events.push(...value as unknown as TraceEvent[]))
   await cdp.send('Tracing.start', { transferMode: 'ReportEvents', traceConfig: { includedCategories: ['devtools.timeline', 'toplevel'] } })
@@ -52,7 +59,22 @@ async function tasksWhile(cdp: CDPSession, act: () => Promise<void>): Promise<nu
   await cdp.send('Tracing.end')
   await complete
   const key = events.find(event => event.name === 'EventDispatch' && event.args?.data?.type === 'keydown')
-  return events.filter(event => event.ph === 'X' && event.name === 'ThreadControllerImpl::RunTask' && event.pid === key?.pid && event.tid === key?.tid).map(event => (event.tdur ?? event.dur ?? 0) / 1000)
+  return tasksOf(events.filter(event => event.ph === 'X' && event.pid === key?.pid && event.tid === key?.tid))
+}
+
+function tasksOf(events: TraceEvent[]): Task[] {
+  const signs = events.filter(event => event.name === 'Layerize' || event.name === 'EventDispatch').sort((a, b) => a.ts - b.ts)
+  let next = 0
+  return events.filter(event => event.name === 'ThreadControllerImpl::RunTask').sort((a, b) => a.ts - b.ts).map((task) => {
+    const names = new Set<string>()
+    for (; next < signs.length && signs[next]!.ts < task.ts + (task.dur ?? 0); next++) names.add(signs[next]!.name)
+    return { ms: (task.tdur ?? task.dur ?? 0) / 1000, kind: names.has('Layerize') ? 'frames' : names.size > 0 ? 'keys' : 'others' }
+  })
+}
+
+/** @example kindsOf(tasks) // => '71 frames, 12 keys, 1 others' */
+function kindsOf(tasks: readonly Task[]): string {
+  return (['frames', 'keys', 'others'] as const).map(kind => `${tasks.filter(task => task.kind === kind).length} ${kind}`).join(', ')
 }
 
 /** The longest stretch in which the page answers nothing while a hundred cells are typed into a study of thirty runs. */
@@ -69,11 +91,13 @@ export async function typingFigures(clinic: Clinic): Promise<Figure[]> {
     const cdp = await context.newCDPSession(page)
     await cdp.send('Emulation.setCPUThrottlingRate', { rate: SLOWER })
     const tasks = await tasksWhile(cdp, () => typeCells(page))
-    const over = tasks.filter(task => task > FRAME_MS)
+    const times = tasks.map(task => task.ms)
+    const over = tasks.filter(task => task.ms > FRAME_MS)
+    const load = `load ${loadavg()[0]?.toFixed(1)} on ${cpus().length} processors`
     const partner = `a frame, ${FRAME_MS} ms`
     return [
-      { what: `Typing ${CELLS} cells into ${RUNS} runs, processor ${SLOWER} times slower: longest task of the page (${over.length} of ${tasks.length} over ${FRAME_MS} ms)`, value: ms(Math.max(...tasks)), partner, ratio: Math.max(...tasks) / FRAME_MS, goal: 1 },
-      { what: 'The same, 99 of 100 tasks at or below', value: ms(percentile(tasks, 0.99)), partner, ratio: percentile(tasks, 0.99) / FRAME_MS, goal: 1 },
+      { what: `Typing ${CELLS} cells into ${RUNS} runs, processor ${SLOWER} times slower: longest task of the page (${over.length} of ${tasks.length} over ${FRAME_MS} ms: ${kindsOf(over)}; of all ${kindsOf(tasks)}; ${load})`, value: ms(Math.max(...times)), partner, ratio: Math.max(...times) / FRAME_MS, goal: 1 },
+      { what: 'The same, 99 of 100 tasks at or below', value: ms(percentile(times, 0.99)), partner, ratio: percentile(times, 0.99) / FRAME_MS, goal: 1 },
     ]
   }
   finally {
