@@ -24,7 +24,7 @@ export function remarkOnDistances(list: RemarkList, known: KnownRun, rows: reado
 
 function remarkOnSegment(list: RemarkList, known: KnownRun, { row, site, label }: PlacedRow, index: number): void {
   const distance = row.values.distanceMm
-  if (typeof distance !== 'number' || !site?.segmentMm || distance <= 0) return
+  if (typeof distance !== 'number' || !site?.segmentMm) return
   const { usualMin, usualMax, possibleMin, possibleMax } = site.segmentMm
   if (distance < possibleMin || distance > possibleMax) return
   const isSegment = known.technique?.kind === 'motor' && index > 0
@@ -59,8 +59,7 @@ function remarkOnVelocity(list: RemarkList, result: Result, known: KnownRun): vo
   // Over 20 mm a tenth of a millisecond moves the velocity by half: the step itself is what is looked at.
   if (velocity === null || !possible || !usual || isShortStep(known, result.rowId)) return
   const isImpossible = velocity < possible.min || velocity > possible.max
-  const leg = known.technique?.limb === 'leg' && known.technique.kind === 'motor' && result.at === 'leg'
-  const max = leg ? LEG_SEGMENT_MPS : usual.max
+  const max = result.at === 'leg' ? LEG_SEGMENT_MPS : usual.max
   if (!isImpossible && velocity >= usual.min && velocity <= max) return
   const [code, strength, words] = isImpossible
     ? ['velocity-impossible', 'stop', `; nerves carry between ${possible.min} and ${possible.max} m/s. Check the distance and both latencies.`] as const

@@ -43,7 +43,7 @@ export function assessMotor(maker: RunMaker): void {
     const place = segmentOf(previous, placed)
     const segment = addVelocity(maker, previous, placed, place, asker)
     if (segment && isShort(maker)) addStep(maker, placed, segment, place)
-    if (segment && before && placed.site?.segment?.entrapment) addDrop(maker, placed, before, segment, asker)
+    if (segment && before && placed.site?.segment?.entrapment) addDrop(maker, placed, placed.site.segment, [before, segment], asker)
     addChanges(maker, previous, placed, index, place, asker)
     if (segment && index === distalIndex + 1) addDistalIndices(maker, previous, segment, distalDistance, asker)
     before = segment
@@ -112,9 +112,7 @@ function whyNot(previous: PlacedRow, placed: PlacedRow): string {
   return ''
 }
 
-function addDrop(maker: RunMaker, placed: PlacedRow, before: Segment, segment: Segment, asker: LimitAsker): void {
-  const at = placed.site?.segment
-  if (!at) return
+function addDrop(maker: RunMaker, placed: PlacedRow, at: { id: string, label: string }, [before, segment]: [Segment, Segment], asker: LimitAsker): void {
   const how = { formula: `${roundForPrint(before.velocityMps, 1)} m/s against ${roundForPrint(segment.velocityMps, 1)} m/s`, source: DROP_SOURCE }
   add(maker, placed, { quantity: 'velocityDropMps', at: at.id, label: `velocity drop ${at.label}`, typed: false, supporting: true, asker, how, value: velocityDrop(before, segment, maker.context.expanded) })
   add(maker, placed, { quantity: 'velocityDropPercent', at: at.id, label: `relative velocity drop ${at.label}`, typed: false, supporting: true, asker, how, value: velocityDropPercent(before.velocityMps, segment.velocityMps) })

@@ -14,6 +14,7 @@ describe('a number by itself', () => {
   it.each([
     ['the shortest latency there can be', wrist({ latencyMs: 0.3 }), ['check unusual/r/r-0/latencyMs: Latency at wrist is usually between 0.5 and 15 ms; 0.3 was entered.']],
     ['a shorter one', wrist({ latencyMs: 0.29 }), ['stop impossible/r/r-0/latencyMs: Latency at wrist must be between 0.3 and 100 ms; 0.29 was entered.']],
+    ['too short for any slip', wrist({ latencyMs: 0.01 }), ['stop impossible/r/r-0/latencyMs: Latency at wrist must be between 0.3 and 100 ms; 0.01 was entered.']],
     ['the shortest usual latency', wrist({ latencyMs: 0.5 }), []],
     ['just under it', wrist({ latencyMs: 0.49 }), ['check unusual/r/r-0/latencyMs: Latency at wrist is usually between 0.5 and 15 ms; 0.49 was entered.']],
     ['the longest usual latency', wrist({ latencyMs: 15 }), []],

@@ -300,3 +300,28 @@ describe('temperature-corrected values stand beside the measured ones', () => {
   ])('not %s', (_, technique, rows, celsius, policy) => expect(of(technique, rows, celsius, policy)).toEqual([]))
   it('nor without a temperature', () => expect(sheet('median-motor-apb', median, { policy: corrected, study: { temperatures: [] } }).filter(line => line.includes('corrected'))).toEqual([]))
 })
+
+describe('what was typed and what was computed', () => {
+  it.each<[technique: string, rows: Rows]>([
+    ['ulnar-motor-adm', [...ulnar, ['median-elbow', { latencyMs: 6, amplitudeMv: 3 }]]],
+    ['ulnar-motor-adm-short', [['elbow-minus-4', { latencyMs: 6 }], ['elbow-minus-2', { latencyMs: 6.5, distanceMm: 20 }]]],
+    ['median-sensory-d2', [['palm', { onsetLatencyMs: 1.4, distanceMm: 70 }], ['wrist', { onsetLatencyMs: 3, peakLatencyMs: 3.6, amplitudeUv: 9, durationMs: 1.5, distanceMm: 140, stimulusMa: 20 }]]],
+    ['ulnar-f-adm', [['wrist', { mLatencyMs: 3, limbLengthMm: 575 }, [27, 28]]]],
+    ['h-reflex-soleus', [['popliteal-fossa', { mLatencyMs: 5, hLatencyMs: 31, mAmplitudeMv: 12, hAmplitudeMv: 3, legLengthMm: 400 }]]],
+    ['blink', [['supraorbital', { r1Ms: 11, r2IpsilateralMs: 33, r2ContralateralMs: 31 }]]],
+    ['repetitive-ulnar-adm', [['rest', { rateHz: 3, amplitudeMv: 8 }, [8, 7, 6, 6]], ['after-exercise', { secondsAfterExercise: 10 }, [9, 9, 9, 9]], ['high-rate', {}, [2, 3]]]],
+  ])('%s', (technique, rows) => {
+    const [assessed] = assess(studyWith([run(technique, 'right', rows, { id: 'r' })], { temperatures: [{ id: 't', segment: 'hand', side: 'right', celsius: 29, warmed: false }] }), { ...ndtfPolicy, temperatureCorrection: true }).runs
+    const cells = rows.flatMap(([, values], index) => Object.keys(values).map(quantity => `r/r-${index}/${quantity}`))
+    expect(assessed!.results.filter(result => result.typed).map(result => result.key).sort()).toEqual(cells.sort())
+    expect(new Set(assessed!.results.map(result => `${result.runId} ${result.side}`))).toEqual(new Set(['r right']))
+  })
+  it('at their sites and segments', () => {
+    const [assessed] = assess(studyWith([run('ulnar-motor-adm', 'right', ulnar, { id: 'r' })])).runs
+    expect(Object.fromEntries(assessed!.results.filter(result => !result.typed).map(result => [result.key.replace(/^r\/r-/, ''), result.at]))).toEqual({
+      '0/terminalLatencyIndex': 'wrist', '0/residualLatencyMs': 'wrist', '1/velocityMps': 'forearm', '1/amplitudeFallPercent': 'forearm', '1/areaFallPercent': 'forearm', '1/durationRisePercent': 'forearm',
+      '2/velocityMps': 'across-elbow', '2/velocityDropMps': 'across-elbow', '2/velocityDropPercent': 'across-elbow', '2/amplitudeFallPercent': 'across-elbow', '2/areaFallPercent': 'across-elbow', '2/durationRisePercent': 'across-elbow',
+      '2/amplitudeFallFromDistalPercent': 'wrist-above-elbow', '2/areaFallFromDistalPercent': 'wrist-above-elbow', '2/durationRiseFromDistalPercent': 'wrist-above-elbow',
+    })
+  })
+})
