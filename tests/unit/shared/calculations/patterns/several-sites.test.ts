@@ -103,3 +103,46 @@ describe('which runs a result rests on', () => {
   ])('%s', (id, side, runs, runIds) => expect(patternOf(id, runs, { limits: cardLimits }, side).runIds).toEqual(runIds))
   it('two tests outside their grey zones point the way', () => expect(patternOf('combined-sensory-index', index.map(one => one.technique === 'median-mixed-palm' ? sensory('median-mixed-palm', 'right', { peak: 2.5 }, 80) : one), {}, 'right').outcome.label).toBe('index not computable; palm, ring outside the grey zone'))
 })
+
+describe('sensory conduction beside a definite block', () => {
+  const limits: Limit[] = [...cardLimits, ['median-sensory-d2', 'amplitudeUv', 'wrist', 'lower', 10], ['ulnar-sensory-d5', 'amplitudeUv', 'wrist', 'lower', 8], ['sural', 'amplitudeUv', 'calf', 'lower', 4]]
+  const block = right('median-motor-apb', [['wrist', { amplitudeMv: 8, areaMvMs: 24, durationMs: 5 }], ['elbow', { amplitudeMv: 3, areaMvMs: 9, durationMs: 5.5 }]])
+  const d2 = (amplitude: number | 'technical') => sensory('median-sensory-d2', 'right', { amplitude })
+  const d5 = sensory('ulnar-sensory-d5', 'right', { amplitude: 15 })
+  const sural = (amplitude: number | 'technical') => sensory('sural', 'right', { amplitude })
+  const mmn = (runs: Run[], criterion: string) => of('mmn-efns-pns-2010', [block, ...runs], criterion, { limits })
+  it.each<[name: string, runs: Run[], criterion: string, line: string]>([
+    ['within', [d2(15), d5], 'sensory', 'met: RIGHT median amplitude 15.0 µV, limit 10 µV'],
+    ['abnormal', [d2(5), d5], 'sensory', 'not-met: RIGHT median amplitude 5.0 µV, limit 10 µV'],
+    ['of another nerve', [d5], 'sensory', 'not-assessable:  [RIGHT median: no sensory study]'],
+    ['of the other side', [{ ...d2(15), id: 'l', side: 'left' }], 'sensory', 'not-assessable:  [RIGHT median: no sensory study]'],
+    ['two nerves are too few', [d2(15), d5], 'sensory-2003', 'not-assessable:  [2 sensory nerves studied]'],
+    ['one is as well', [d2(15)], 'sensory-2003', 'not-assessable:  [1 sensory nerve studied]'],
+    ['three normal', [d2(15), d5, sural(9)], 'sensory-2003', 'met: 3 nerves'],
+    ['one of three abnormal', [d2(15), d5, sural(3)], 'sensory-2003', 'not-met: abnormal: RIGHT sural'],
+    ['one not recordable', [d2(15), d5, sural('technical')], 'sensory-2003', 'not-assessable: 3 nerves [not recordable for technical reasons; onset latency missing; not recorded]'],
+  ])('%s', (_, runs, criterion, line) => expect(mmn(runs, criterion)).toBe(line))
+  it('rests on the motor and the sensory runs', () => expect(patternOf('mmn-efns-pns-2010', [block, d2(15), d5], { limits }).runIds).toEqual(['right-median-motor-apb', 'right-median-sensory-d2', 'right-ulnar-sensory-d5']))
+})
+
+describe('which trains count', () => {
+  const trains = (rows: [site: string, values: Values, series: number[]][]) => patternOf('myasthenic-decrement', [run('repetitive-ulnar-adm', 'right', rows, { id: 't' })], {}, 'right')
+  const falling = [8, 6.8, 6.4, 6.2, 6.3]
+  const lines = (rows: Parameters<typeof trains>[0]) => trains(rows).criteria.map(({ id }) => `${id.split('/').slice(1).join('/')}: ${said(trains(rows), id)}`)
+  it('fast ones do not', () => {
+    expect(lines([['rest', { rateHz: 3 }, falling], ['high-rate', {}, falling], ['after-exercise', { rateHz: 10 }, falling]]).filter(line => line.includes('decrement:'))).toEqual(['t-0/decrement: met: 22.5 %'])
+  })
+  it('nor does exercise without a time, nor the train at rest beside itself', () => {
+    expect(lines([['rest', { rateHz: 3, secondsAfterExercise: 0 }, falling], ['after-exercise', { rateHz: 3 }, [8, 8, 8, 8]]]).slice(-2)).toEqual(['repair: not-assessable:  [no train at that time]', 'exhaustion: not-assessable:  [no train at that time]'])
+  })
+  it('the same decrement is neither repair nor exhaustion', () => {
+    expect(lines([['rest', { rateHz: 3 }, falling], ['after-exercise', { rateHz: 3, secondsAfterExercise: 10 }, falling], ['after-exercise', { rateHz: 3, secondsAfterExercise: 60 }, falling]]).slice(-2).map(line => line.split(': ')[1])).toEqual(['not-met', 'not-met'])
+  })
+  it('have their muscle and place in words', () => {
+    expect(trains([['rest', { rateHz: 3 }, falling]]).criteria.map(one => one.text)).toEqual([
+      'ADM: at rest: decrement from the first to the fourth response above 10 % (5 to 10 % equivocal), stimuli at 2 to 5 Hz', 'ADM: above 10 % in more than one train', 'ADM: Beside: the largest step is from the first to the second response, and the train levels off',
+      'ADM: Beside: less decrement right after exercise than at rest', 'ADM: Beside: more decrement one to four minutes after exercise than at rest',
+    ])
+  })
+  it('and their run', () => expect(trains([['rest', { rateHz: 3 }, falling]]).runIds).toEqual(['t']))
+})

@@ -1,8 +1,10 @@
 import { describe, expect, it } from 'vitest'
+import { assessStudy } from '#shared/calculations/assess-study'
 import { defaultPolicy, type Policy } from '#shared/calculations/types'
 import type { Run, RunRow, Study } from '#shared/schemas/study'
 import { ndtfPolicy } from '../../../../fixtures/carpal-tunnel-study'
-import { runLines, verdictLine } from '../result-lines'
+import { adopt, limitRow, tableOf } from '../limit-fixtures'
+import { resultLine, runLines, verdictLine } from '../result-lines'
 import { assess, policyWith, run, studyWith } from '../study-maker'
 
 type Values = RunRow['values']
@@ -324,4 +326,22 @@ describe('what was typed and what was computed', () => {
       '2/amplitudeFallFromDistalPercent': 'wrist-above-elbow', '2/areaFallFromDistalPercent': 'wrist-above-elbow', '2/durationRiseFromDistalPercent': 'wrist-above-elbow',
     })
   })
+})
+
+/** Invented limits: these two are shown only where the set in use has one for them. */
+describe('falls in mV and ratios', () => {
+  const of = (amplitudes: [Values['amplitudeMv'], Values['amplitudeMv']], quantities: string[]) => {
+    const table = tableOf(quantities.map((quantity, index) => limitRow({ id: `row-${index}`, technique: 'median-motor-apb', quantity, at: 'forearm', unit: '', value: 2, bound: quantity === 'amplitudeRatio' ? 'lower' : 'upper', distanceMm: null, direction: null, amplitudeDefinition: null })))
+    const study = studyWith([run('median-motor-apb', 'right', [['wrist', { amplitudeMv: amplitudes[0] }], ['elbow', { amplitudeMv: amplitudes[1] }]], { id: 'r' })])
+    const results = assessStudy(study, [table], { ...defaultPolicy, adopted: [adopt(table)] }).runs[0]!.results.filter(result => ['amplitudeFallMv', 'amplitudeRatio'].includes(result.quantity))
+    expect(results.map(result => [result.typed, result.at])).toEqual(results.map(() => [false, 'forearm']))
+    return results.map(result => `${resultLine(result)} | ${verdictLine(result.verdict)}`)
+  }
+  it.each<[name: string, amplitudes: Parameters<typeof of>[0], quantities: string[], lines: string[]]>([
+    ['both', [8, 5], ['amplitudeFallMv', 'amplitudeRatio'], [`r/r-1/amplitudeFallMv | amplitude fall in mV, wrist to elbow 3.0 mV | 8 mV - 5 mV | ${CHANGE} | outside ≤ 2, above`, `r/r-1/amplitudeRatio | amplitude ratio, wrist to elbow 0.63 | 5 mV / 8 mV | ${CHANGE} | outside ≥ 2, below`]],
+    ['the fall alone', [8, 6], ['amplitudeFallMv'], [`r/r-1/amplitudeFallMv | amplitude fall in mV, wrist to elbow 2.0 mV | 8 mV - 6 mV | ${CHANGE} | within ≤ 2`]],
+    ['neither without a limit', [8, 5], ['durationMs'], []],
+    ['no response above', [8, 'no-response'], ['amplitudeFallMv', 'amplitudeRatio'], []],
+    ['not recordable below', ['technical', 5], ['amplitudeFallMv', 'amplitudeRatio'], []],
+  ])('%s', (_, amplitudes, quantities, lines) => expect(of(amplitudes, quantities)).toEqual(lines))
 })
