@@ -15,6 +15,8 @@ export interface Listener {
   tellHere: (seq: number) => void
   /** The session is over: nothing further is told. */
   end: () => void
+  /** The server stops: the line breaks, and the browser asks for a new one. */
+  hangUp: () => void
 }
 
 const LOOK_MS = 250
@@ -112,7 +114,7 @@ export function makeChangeHub(services: Omit<ServiceContext, 'actor'>) {
       clearTimeout(timer)
       const all = [...listeners.keys()]
       listeners.clear()
-      for (const listener of all) listener.end()
+      for (const listener of all) listener.hangUp()
     },
   }
 }

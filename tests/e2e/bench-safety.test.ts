@@ -115,6 +115,20 @@ it('a killed server loses nothing that was typed before, during and after', asyn
   expect(values).toEqual(['4.1', '7.3', '12.4'])
 })
 
+it('a server that is restarted on purpose ends no session, and the page goes on', async () => {
+  const { page } = technologist
+  // The line of events has to stand, or nothing could be said by it.
+  await page.waitForResponse(response => response.url().includes('/presence') && response.ok())
+  await page.waitForTimeout(3000)
+  await app.kill('SIGTERM')
+  await type(page, 'RIGHT tibial motor, popliteal fossa, amplitude, mV', '6.1')
+  await page.locator('[data-test=save-state]').getByText('1 value not saved yet').waitFor()
+  await app.restart()
+  await page.locator('[data-test=save-state]').getByRole('button', { name: 'Try now' }).click()
+  await saved(page)
+  expect(await page.getByText('You are signed out.').count()).toBe(0)
+})
+
 it('two people at one cell: both values are shown and one is chosen', async () => {
   const { page } = technologist
   const other = await app.open()

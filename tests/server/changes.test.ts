@@ -46,6 +46,7 @@ async function listening(user: MadeUser, hub: ReturnType<typeof makeChangeHub>, 
     tellAgain: seq => hear('again', seq),
     tellHere: note,
     end: () => hear('end'),
+    hangUp: () => hear('hung up'),
   }
   await hub.listen(listener, after)
   return { heard, seen, sessionId, listener }
@@ -71,6 +72,12 @@ describe('who hears of a change', () => {
     await hub.look()
     expect(heard).toEqual(hears ? [`${subject} thing`] : [])
     hub.close()
+  })
+  it('a server that stops breaks the line and says nothing of the session', async () => {
+    const hub = makeChangeHub(t.context)
+    const { heard } = await listening(await t.makeUser({ roles: [{ siteId: c.site.id, role: 'technologist' }] }), hub)
+    hub.close()
+    expect(heard).toEqual(['hung up'])
   })
   it('nobody hears of another site', async () => {
     const hub = makeChangeHub(t.context)

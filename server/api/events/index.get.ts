@@ -25,6 +25,7 @@ export default defineApiHandler({
       tell: (notice: object, seq?: number) => push('change', notice, seq),
       tellAgain: (seq: number) => push('again', {}, seq),
       tellHere: (seq: number) => push('here', {}, seq),
+      hangUp: () => void stream.close().catch(() => undefined),
       end: () => void stream.push({ event: 'end', data: '{}' }).finally(() => stream.close()).catch(() => undefined),
     }
     event.node.res.once('close', () => hub.leave(listener))
