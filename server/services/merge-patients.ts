@@ -57,8 +57,9 @@ async function moveAll(trx: Trx, from: string, to: string): Promise<Moved> {
 }
 
 /**
- * Takes two records apart again: what the merge moved goes back, what came since stays with the record that was kept.
- * @throws DomainError 'not-found', 'wrong-state' when it was undone already
+ * Takes two records apart again: what the merge moved goes back, and a study goes with its referral; what came since stays
+ * with the record that was kept.
+ * @throws DomainError 'not-found', 'wrong-state' when it was undone already, or the kept record was itself merged since
  */
 export async function undoMerge(context: ServiceContext, { mergeId, reason }: { mergeId: string, reason: string }): Promise<void> {
   await context.db.transaction().execute(async (trx) => {
@@ -67,9 +68,14 @@ export async function undoMerge(context: ServiceContext, { mergeId, reason }: { 
     if (merge.undoneAt) throw new DomainError('wrong-state')
     const { keptId, mergedId } = merge
     const moved = JSON.parse(merge.movedJson) as Moved
+    const kept = await trx.selectFrom('patient').select('mergedInto').where('id', '=', keptId).executeTakeFirstOrThrow()
+    // What was moved lies further on by now: it would stay there, in another person's record.
+    if (kept.mergedInto) throw new DomainError('wrong-state', { message: 'The record that was kept was put together with another one since. Take those two apart first.' })
     await withdrawReady(context, trx, { patientId: keptId })
     for (const id of moved.referrals) await trx.updateTable('referral').set({ patientId: mergedId }).where('id', '=', id).where('patientId', '=', keptId).execute()
     for (const id of moved.studies) await trx.updateTable('study').set({ patientId: mergedId }).where('id', '=', id).where('patientId', '=', keptId).execute()
+    // One that was begun since, for a referral that goes back.
+    for (const id of moved.referrals) await trx.updateTable('study').set({ patientId: mergedId }).where('referralId', '=', id).where('patientId', '=', keptId).execute()
     for (const id of moved.outsideStudies) await trx.updateTable('outsideStudy').set({ patientId: mergedId }).where('id', '=', id).where('patientId', '=', keptId).execute()
     await trx.updateTable('patient').set(eb => ({ mergedInto: null, revision: eb('revision', '+', 1) })).where('id', '=', mergedId).execute()
     await trx.updateTable('deskReferral').set({ identifiedAt: null, identifiedBy: null, outcome: null, mergeId: null }).where('mergeId', '=', mergeId).execute()

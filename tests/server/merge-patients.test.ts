@@ -2,6 +2,7 @@ import { describe, expect, it } from 'vitest'
 import { searchPatients } from '#server/database/queries/patients'
 import { mergePatients, undoMerge } from '#server/services/merge-patients'
 import { addOutsideStudy, removeOutsideStudy } from '#server/services/outside-studies'
+import { startStudy } from '#server/services/start-study'
 import { viewHistory } from '#server/services/view-history'
 import { clinic } from './bench-helpers'
 import { testContext } from './helpers'
@@ -38,6 +39,29 @@ describe('two records of one person', () => {
     const kept = await t.makePatient({ birthDate: before.birthDate, sexForLimits: before.sexForLimits })
     await mergePatients(administrator, { keptId: kept.id, mergedId: before.id, reason })
     expect(await t.db.selectFrom('study').select('patientId').where('id', '=', studyId).executeTakeFirstOrThrow()).toEqual({ patientId: kept.id })
+  })
+  it('are taken apart in the order in which they were put together, the last first', async () => {
+    const [kept, merged] = await pair()
+    const third = await t.makePatient({ familyName: 'Doubled' })
+    const referral = await t.makeReferral({ patientId: merged.id, siteId: c.site.id })
+    const first = await mergePatients(administrator, { keptId: kept.id, mergedId: merged.id, reason })
+    const second = await mergePatients(administrator, { keptId: third.id, mergedId: kept.id, reason })
+    await expect(undoMerge(administrator, { mergeId: first.mergeId, reason: 'Two sisters after all.' })).rejects.toMatchObject({ code: 'wrong-state' })
+    expect(await owner(referral.id)).toBe(third.id)
+    await undoMerge(administrator, { mergeId: second.mergeId, reason: 'Two sisters after all.' })
+    await undoMerge(administrator, { mergeId: first.mergeId, reason: 'Two sisters after all.' })
+    expect(await owner(referral.id)).toBe(merged.id)
+  })
+  it('a study begun in between goes back with its referral', async () => {
+    const referralId = await c.booked()
+    const { patientId } = await t.db.selectFrom('referral').select('patientId').where('id', '=', referralId).executeTakeFirstOrThrow()
+    const before = await t.db.selectFrom('patient').selectAll().where('id', '=', patientId).executeTakeFirstOrThrow()
+    const kept = await t.makePatient({ birthDate: before.birthDate, sexForLimits: before.sexForLimits })
+    const { mergeId } = await mergePatients(administrator, { keptId: kept.id, mergedId: patientId, reason })
+    const { studyId } = await startStudy(c.technologist, { referralId })
+    await undoMerge(administrator, { mergeId, reason: 'Two sisters after all.' })
+    expect(await owner(referralId)).toBe(patientId)
+    expect(await t.db.selectFrom('study').select('patientId').where('id', '=', studyId).executeTakeFirstOrThrow()).toEqual({ patientId })
   })
   it.each([
     { what: 'another birth date', changes: { birthDate: '1974-04-13' }, words: 'dates of birth differ' },
