@@ -2,9 +2,10 @@ import type { EventHandler } from 'h3'
 import { simpleParser } from 'mailparser'
 import { afterAll, beforeEach, describe, expect, it } from 'vitest'
 import { closePdfThread } from '#server/pdf/render-pdf'
+import { dispatchPage } from '#server/database/queries/deliveries'
 import { openTasks } from '#server/database/queries/tasks'
 import { answerReply, repliesOfReport } from '#server/services/answer-reply'
-import { withdrawDelivery } from '#server/services/change-delivery'
+import { resolveDelivery, withdrawDelivery } from '#server/services/change-delivery'
 import { changePractice } from '#server/services/change-practice'
 import { finishTask } from '#server/services/finish-task'
 import { makeNewVersion } from '#server/services/make-new-version'
@@ -123,6 +124,16 @@ describe('a link that is too old', () => {
     const answers = await Promise.all([works.token, gone.token, 'y'.repeat(43), 'short'].map(token => post(token, 'ask-link')))
     expect(answers.map(answer => [answer.status, answer.body])).toEqual(Array.from({ length: 4 }, () => [200, { asked: true }]))
     expect([...await openKinds(works.id), ...await openKinds(gone.id)].filter(kind => kind === 'link-asked')).toEqual([])
+  })
+  it('works for 30 days after it was sent again, however long ago it was renewed', async () => {
+    const made = await mailed()
+    await renewLink(admin, made.id)
+    t.clock.minutes(40 * 1440)
+    await resolveDelivery(admin, { id: made.id, outcome: 'send-again', note: 'They never saw it.' })
+    await round()
+    expect((await call('GET', `/api/acknowledge/${made.token}`)).body).toMatchObject({ collect: true, expired: false })
+    const [row] = (await dispatchPage(t.db, { siteIds: [room.site.id] }, { page: 1, pageSize: 50 })).rows.filter(each => each.id === made.id)
+    expect(Date.parse(row!.linkUntil!)).toBeGreaterThan(t.context.clock().getTime())
   })
   it('is not renewed when a later version stands, when it was attached, or when it was withdrawn', async () => {
     const [old, attached, gone] = [await mailed(), await mailed(false), await mailed()]

@@ -38,7 +38,7 @@ export const deliveryColumns = [
   eventsNamed('delivery.page-opened').as('opened'), eventsNamed('delivery.collected').as('collected'),
   sql<string | null>`(SELECT coalesce(taker.name, practice_delegate.name) FROM audit_event LEFT JOIN physician AS taker ON taker.id = audit_event.data_json ->> '$.collector.id' LEFT JOIN practice_delegate ON practice_delegate.id = audit_event.data_json ->> '$.collector.id' WHERE audit_event.subject = 'delivery' AND audit_event.subject_id = delivery.id AND audit_event.name = 'delivery.collected' ORDER BY audit_event.seq DESC LIMIT 1)`.as('collectedBy'),
   // As server/services/link-age.ts counts it.
-  sql<string | null>`CASE WHEN delivery.method = 'collection-link' AND delivery.sent_at IS NOT NULL THEN strftime('%Y-%m-%dT%H:%M:%fZ', coalesce(delivery.link_renewed_at, delivery.sent_at), '+30 days') END`.as('linkUntil'),
+  sql<string | null>`CASE WHEN delivery.method = 'collection-link' AND delivery.sent_at IS NOT NULL THEN strftime('%Y-%m-%dT%H:%M:%fZ', max(coalesce(delivery.link_renewed_at, delivery.sent_at), delivery.sent_at), '+30 days') END`.as('linkUntil'),
   sql<string | null>`(SELECT id FROM incident WHERE incident.delivery_id = delivery.id)`.as('incidentId'),
   sql<string | null>`(SELECT json_object('means', means, 'told', told, 'at', at, 'readBack', read_back) FROM delivery_by_hand WHERE delivery_by_hand.delivery_id = delivery.id ORDER BY recorded_at DESC LIMIT 1)`.as('byHandJson'),
 ] as const
