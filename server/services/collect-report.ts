@@ -54,8 +54,9 @@ export async function collectReport(context: ServiceContext, { collectorId, ...i
     await refused(context, delivery, 'not among those who may collect')
     throw new DomainError('not-valid', { fields: [{ path: 'collectorId', message: 'This person may no longer collect for your practice. Telephone the laboratory.' }] })
   }
-  await collected(context, delivery, collector)
+  // First the PDF: the trail never says that somebody collected what could not be made.
   const pdf = await reportPdf(context, delivery.reportVersionId)
+  await collected(context, delivery, collector)
   return { bytes: pdf.bytes, number: delivery.number, version: delivery.version }
 }
 

@@ -1,4 +1,5 @@
 import type { EventHandler } from 'h3'
+import { sql } from 'kysely'
 import { simpleParser } from 'mailparser'
 import { beforeAll, describe, expect, it } from 'vitest'
 import { withdrawDelivery } from '#server/services/change-delivery'
@@ -129,4 +130,14 @@ it('a report that is attached cannot be collected by its link', async () => {
   const mail = await simpleParser(received.at(-1)!)
   expect(mail.attachments).toHaveLength(1)
   expect((await collect(/acknowledge\/(\S+)/.exec(mail.text ?? '')![1]!, PASSPHRASE)).status).toBe(404)
+})
+
+it('nobody collected a report whose PDF no longer fits its hash: nothing is handed out, and the trail says nothing else', async () => {
+  const { token, delivery, physician } = await mailed()
+  // Only somebody with the file itself can do this: the triggers stand in the way of everybody else.
+  await sql`DROP TRIGGER report_pdf_no_update`.execute(t.db)
+  await t.db.updateTable('reportPdf').set({ bytes: Buffer.from('%PDF-1.7 of somebody else') }).where('reportVersionId', '=', delivery.reportVersionId).execute()
+  const answer = await collectAs(token, PASSPHRASE, physician.id)
+  expect([answer.status >= 400, answer.headers.get('content-type')]).toEqual([true, expect.stringContaining('json')])
+  expect(await trail(delivery.id)).toEqual([])
 })
