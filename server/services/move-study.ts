@@ -109,6 +109,12 @@ async function copyRuns(context: ServiceContext, trx: Trx, from: string, to: str
   return copied
 }
 
+/** Without its days a temperature of one visit would serve the runs of another. Who was confirmed then was the other person. */
+async function copyVisits(trx: Trx, from: string, to: string): Promise<void> {
+  const visits = await trx.selectFrom('studyVisit').selectAll().where('studyId', '=', from).execute()
+  for (const visit of visits) await trx.insertInto('studyVisit').values({ ...visit, id: randomUUID(), studyId: to, confirmationJson: 'null' }).execute()
+}
+
 /** Blank runs that the right protocol laid out where values were moved to would stand twice. */
 async function dropBlankTwins(context: ServiceContext, trx: Trx, studyId: string): Promise<void> {
   const runs = await trx.selectFrom('studyRun').selectAll().where('studyId', '=', studyId).where('removedAt', 'is', null).execute()
@@ -149,6 +155,7 @@ export async function moveStudyIn(context: ServiceContext, trx: Trx, { id, toRef
   await trx.updateTable('upload').set({ studyId: target.id }).where('studyId', '=', id).where('removedAt', 'is', null).execute()
   const later = await trx.selectFrom('studyLaterEntry').selectAll().where('studyId', '=', id).executeTakeFirst()
   if (later) await trx.insertInto('studyLaterEntry').values({ ...later, studyId: target.id }).execute()
+  await copyVisits(trx, id, target.id)
   await trx.insertInto('studyMove').values({ fromStudyId: id, toStudyId: target.id, reason, at: now(context), byUserId, checkedAt: null, checkedBy: null }).execute()
   await recordAuditEvent(context, trx, { name: 'study.moved-away', ...aboutStudy(study), data: { toStudyId: target.id } })
   await recordAuditEvent(context, trx, { name: 'study.moved-here', ...aboutStudy(target), data: { fromStudyId: id, runs } })

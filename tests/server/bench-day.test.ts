@@ -279,6 +279,22 @@ describe('a second visit', () => {
   })
 })
 
+it('values of two visits keep their days in the right record: no temperature of last week serves today', async () => {
+  t.clock.set('2026-12-02T09:00:00.000Z')
+  const id = await c.recording()
+  const toReferralId = await c.booked({ patientId: (await t.makePatient({ birthDate: '1950-01-01' })).id })
+  await addTemperature(c.technologist, { id, segment: 'hand', side: 'right', celsius: 34, method: 'skin probe', warmed: false })
+  await c.type(id, 'median-motor-apb', 'right', [values])
+  t.clock.set('2026-12-09T10:00:00.000Z')
+  await startVisit(c.technologist, { id, reason: 'too tired', identifiers: ['name', 'birth-date'], cautionsRead: true })
+  await c.type(id, 'ulnar-motor-adm', 'right', [values])
+  const { studyId } = await moveStudy(c.technologist, { id, toReferralId, reason: 'The other patient of the same name lay there.' })
+  const cold = Object.fromEntries((await assessStoredStudy(t.context, studyId)).assessment.runs.map(run => [run.technique, run.cold.state]))
+  expect(cold).toMatchObject({ 'median-motor-apb': 'warm', 'ulnar-motor-adm': 'unknown' })
+  expect((await viewStudy(c.technologist, studyId)).around.visits).toMatchObject([{ day: '2026-12-09' }])
+  t.clock.set('2026-12-02T09:00:00.000Z')
+})
+
 describe('entered later from paper', () => {
   it('the study is of the day on which it was measured, by whom, entered by whom', async () => {
     t.clock.set('2026-12-02T09:00:00.000Z')
