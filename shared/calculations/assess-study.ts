@@ -14,7 +14,7 @@ import { standingRun, studyContext, type StudyContext } from './study-context'
 import type { AppliedLimit, Assessment, ComparisonAssessment, EarlierStudy, Policy, Result, RunAssessment } from './types'
 
 /** Stands in every assessment and every signed report. Raised whenever a result could come out differently. */
-export const CALCULATION_VERSION = '1.1.0'
+export const CALCULATION_VERSION = '1.1.1'
 
 /**
  * Everything the program says about a study: results with limits and verdicts, comparisons, remarks, the chance line,

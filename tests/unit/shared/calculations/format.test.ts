@@ -30,7 +30,7 @@ describe('npm run evaluate', () => {
   it('prints the assessment of a wrapped study', () => {
     const { status, stdout } = evaluate('wrapped.json', JSON.stringify({ study: carpalTunnelStudy(), sets: ['aanem-ndtf-2016'] }))
     expect(status).toBe(0)
-    expect(JSON.parse(stdout)).toMatchObject({ calculationVersion: '1.1.0', studyId: 'study-carpal-tunnel' })
+    expect(JSON.parse(stdout)).toMatchObject({ calculationVersion: '1.1.1', studyId: 'study-carpal-tunnel' })
     expect(JSON.parse(stdout).flagged).toHaveLength(6)
   }, 30_000)
   it('a bare study has no set', () => {
