@@ -22,6 +22,8 @@ export async function mergePhysicians(context: ServiceContext, { id, into }: { i
     const referrals = await moveReferrals(trx, from.id, to.id)
     await endOpenCodes(context, trx, from.id)
     await trx.updateTable('physician').set({ mergedInto: to.id, leftOn: today, userId: null }).where('id', '=', from.id).execute()
+    // Entries that were merged into this one before go along.
+    await trx.updateTable('physician').set({ mergedInto: to.id }).where('mergedInto', '=', from.id).execute()
     if (to.userId === null && from.userId !== null) await trx.updateTable('physician').set({ userId: from.userId }).where('id', '=', to.id).execute()
     await recordAuditEvent(context, trx, { name: 'physician.merged', subject: 'physician', subjectId: from.id, data: { into: to.id, referrals } })
   })

@@ -122,6 +122,13 @@ describe('two entries that are one person', () => {
     expect((await recipientsOfReferral(t.db, answered.id, TODAY)).map(recipient => recipient.physicianId)).toEqual([stays.id])
     expect((await searchPhysicians(t.db, { search: double.name, page: 1, pageSize: 20, today: TODAY })).rows.map(row => row.id)).not.toContain(double.id)
   })
+  it('and once more: what went to the first entry goes to the last', async () => {
+    const [first, second, last] = [await entry(), await entry(), await entry()]
+    const answered = await t.makeReferral({ siteId: north.id, physicianId: first.id, state: 'answered' })
+    await mergePhysicians(northAdmin, { id: first.id, into: second.id })
+    await mergePhysicians(northAdmin, { id: second.id, into: last.id })
+    expect((await recipientsOfReferral(t.db, answered.id, TODAY)).map(recipient => recipient.physicianId)).toEqual([last.id])
+  })
   it.each([
     ['the same entry', async (made: { id: string }) => made.id],
     ['one that left', async () => (await t.makePhysician({ leftOn: '2026-11-01' })).id],
