@@ -60,7 +60,7 @@ it('0.006 in a column of microvolts is stopped with the question, and never conv
   const label = 'RIGHT sural sensory, calf, amplitude, µV'
   await type(page, label, '0.006')
   await page.getByRole('alert').filter({ hasText: 'Was 0.006 read in mV?' }).waitFor()
-  expect(await cell(page, label).getAttribute('aria-invalid')).toBe('true')
+  await expect.poll(() => cell(page, label).getAttribute('aria-invalid'), { timeout: 20_000 }).toBe('true')
   expect(await cell(page, label).inputValue()).toBe('0.006')
   await visit(page, studyUrl)
   expect(await cell(page, label).inputValue()).toBe('')
@@ -164,7 +164,7 @@ it('slow in a cold foot is not interpretable; repeated warm, the first run is ke
   const second = page.getByRole('region', { name: 'RIGHT sural sensory' }).nth(1)
   await typeSural(page, second, ['3.9', '4.8', '6', '140'])
   await first.getByText('repeated warm: this run is kept and not used').waitFor()
-  expect(await first.locator('tbody').evaluate(body => getComputedStyle(body).textDecorationLine)).toBe('line-through')
+  await expect.poll(() => first.locator('tbody').evaluate(body => getComputedStyle(body).textDecorationLine), { timeout: 20_000 }).toBe('line-through')
   const [kept, used] = await suralRuns(page)
   expect(kept).toMatchObject({ onset: 4.6, superseded: true, flagged: [] })
   expect(used).toMatchObject({ onset: 3.9, superseded: false, flagged: ['onsetLatencyMs', 'peakLatencyMs'] })

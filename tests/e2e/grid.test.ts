@@ -40,7 +40,7 @@ it('rows, columns and heights stay where they are while values, results, limits 
   }
   await saved(page)
   await page.getByRole('region', { name: 'RIGHT ulnar motor' }).getByText('37').first().waitFor()
-  expect(await cell(page, ulnar('below elbow, amplitude')).getAttribute('aria-label')).toContain('questioned')
+  await expect.poll(() => cell(page, ulnar('below elbow, amplitude')).getAttribute('aria-label'), { timeout: 20_000 }).toContain('questioned')
   expect(await places(page)).toEqual(before)
 })
 

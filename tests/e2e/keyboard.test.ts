@@ -78,7 +78,7 @@ it('types runs: decimal comma, Enter down, arrows, Tab along, n for no response,
   // A space puts in the method's own distance.
   await press(page, 'Space')
   expect((await focused(page)).value).toBe('80')
-  expect(await velocityOf(page)).toBe('54')
+  await expect.poll(() => velocityOf(page), { timeout: 20_000 }).toBe('54')
 
   await alongTo(page, /^RIGHT median sensory, digit 2, wrist, onset/)
   await press(page, 'n')

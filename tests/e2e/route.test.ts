@@ -131,19 +131,18 @@ it('types the study; velocities, limits and flags appear in the row', async () =
       }
     }
   }
-  expect(await velocities(page)).toEqual(['54', '37', '52', '59', '59', '54', '47', '50'])
-  expect(await cell(page, 'RIGHT', 'median motor', 'wrist', 'latency').getAttribute('aria-label')).toContain('above the upper limit 4.4')
-  expect(await cell(page, 'RIGHT', 'median sensory, digit 2', 'wrist', 'onset').getAttribute('aria-label')).toContain('above the upper limit 3.3')
-  expect(await cell(page, 'RIGHT', 'median sensory, digit 2', 'wrist', 'peak').getAttribute('aria-label')).toContain('above the upper limit 4.0')
+  // What is computed follows the keys when the browser is free.
+  await expect.poll(() => velocities(page), { timeout: 20_000 }).toEqual(['54', '37', '52', '59', '59', '54', '47', '50'])
+  await expect.poll(() => cell(page, 'RIGHT', 'median motor', 'wrist', 'latency').getAttribute('aria-label'), { timeout: 20_000 }).toContain('above the upper limit 4.4')
+  await expect.poll(() => cell(page, 'RIGHT', 'median sensory, digit 2', 'wrist', 'onset').getAttribute('aria-label'), { timeout: 20_000 }).toContain('above the upper limit 3.3')
+  await expect.poll(() => cell(page, 'RIGHT', 'median sensory, digit 2', 'wrist', 'peak').getAttribute('aria-label'), { timeout: 20_000 }).toContain('above the upper limit 4.0')
   await page.getByText(/saved \d\d:\d\d:\d\d/).first().waitFor()
   await expectNoAxeFindings(page)
 })
 
 it('shows the median against the ulnar nerve and hands over', async () => {
   const { page } = technologist
-  const text = await comparedText(page)
-  for (const expected of ['1.1', '1.3', '2.3', '0.2', '0.3']) expect(text).toContain(expected)
-  expect(text).toContain('no left ulnar motor run')
+  for (const expected of ['1.1', '1.3', '2.3', '0.2', '0.3', 'no left ulnar motor run']) await expect.poll(() => comparedText(page), { timeout: 20_000 }).toContain(expected)
   // The protocol planned a LEFT ulnar motor run that this study leaves out.
   await handOver(page, { notDone: 'Not asked for on this side.' })
 })
@@ -193,10 +192,9 @@ it('returns it with a question; the changed latency moves flags and sentences', 
   release()
   await page.getByText('Was the distal latency measured to the onset?').first().waitFor()
   await retype(page, '4.2')
-  expect((await velocities(page))[0]).toBe('43')
-  expect(await cell(page, 'RIGHT', 'median motor', 'wrist', 'latency').getAttribute('aria-label')).toContain('within')
-  const text = await comparedText(page)
-  expect(text).not.toContain('2.3')
+  await expect.poll(async () => (await velocities(page))[0], { timeout: 20_000 }).toBe('43')
+  await expect.poll(() => cell(page, 'RIGHT', 'median motor', 'wrist', 'latency').getAttribute('aria-label'), { timeout: 20_000 }).toContain('within')
+  await expect.poll(() => comparedText(page), { timeout: 20_000 }).not.toContain('2.3')
   await handOver(page, {})
   await visit(reader, `${app.origin}/reading/${studyPath}`)
   const flags = await flaggedLabels(reader)
@@ -214,7 +212,7 @@ it('changed back and handed over again, it is signed with the password and a mea
   const { page } = technologist
   await visit(page, `${app.origin}/bench/${studyPath}`)
   await retype(page, '5.2')
-  expect((await velocities(page))[0]).toBe('54')
+  await expect.poll(async () => (await velocities(page))[0], { timeout: 20_000 }).toBe('54')
   await handOver(page, {})
   await visit(reader, `${app.origin}/reading/${studyPath}`)
   expect(await flaggedLabels(reader)).toHaveLength(6)

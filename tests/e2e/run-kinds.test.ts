@@ -208,6 +208,6 @@ it('the next study of the same patient shows these values faint, with day and si
   const day = new Intl.DateTimeFormat('en-GB', { day: 'numeric', month: 'short', year: 'numeric', timeZone: 'UTC' }).format(new Date(`${study.studyDate}T12:00:00Z`))
   await sheet.getByText(`faint: ${day}, Harrowmere Clinic`).waitFor()
   const onset = sheet.locator('input').first()
-  expect([await onset.getAttribute('aria-label'), await onset.inputValue()]).toEqual([expect.stringContaining('earlier 1.9'), ''])
+  await expect.poll(async () => [await onset.getAttribute('aria-label'), await onset.inputValue()], { timeout: 20_000 }).toEqual([expect.stringContaining('earlier 1.9'), ''])
   await expectNoAxeFindings(page)
 })
