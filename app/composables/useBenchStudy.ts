@@ -66,10 +66,16 @@ export function useBenchStudy(first: StudyView) {
   /** The study as the sheets show it. What is typed stands in its own cell at once, around it after the next frame. */
   const drawn = shallowRef(first.study)
   const draw = () => drawn.value = study.value
+  /** Counts what was drawn at once: each cell then shows what the study holds, also where a key was taken back before it was drawn. */
+  const redrawn = shallowRef(0)
+  function drawAtOnce() {
+    draw()
+    redrawn.value++
+  }
   /** At once: a cell that showed an older value beside its new revision would overwrite what somebody else stored, unseen. */
   function show(next: Study) {
     study.value = next
-    draw()
+    drawAtOnce()
   }
   function showTyped(next: Study) {
     study.value = next
@@ -119,7 +125,7 @@ export function useBenchStudy(first: StudyView) {
   /** Any other change stands on the page at once. */
   function change(edits: CellEdit[]) {
     store(edits)
-    draw()
+    drawAtOnce()
   }
 
   /** Undo and redo answer with the cell they changed, for the cursor to go there. */
@@ -128,7 +134,7 @@ export function useBenchStudy(first: StudyView) {
     history.value = step.history
     const edits = step.edits.filter(edit => findRow(study.value, edit.rowId))
     apply(edits)
-    draw()
+    drawAtOnce()
     const lastEdit = edits.at(-1)
     const row = lastEdit && findRow(study.value, lastEdit.rowId)
     return lastEdit && row ? { runId: row.run.id, rowId: lastEdit.rowId, field: lastEdit.field } : null
@@ -227,7 +233,7 @@ export function useBenchStudy(first: StudyView) {
   const changeRun = (runId: string, changes: object) => act(`runs/${runId}`, 'PATCH', () => ({ ...changes, revision: view.value.runRevisions[runId] ?? 0 }))
 
   return {
-    view, study, drawn, turns, policy, saving, assessment: live.assessment, assessed, isLive: live.live, liveProblem: live.problem, differences: live.differences, mayType, busy, problem, problemOf, at, runInHand, editor, explained, allColumns, notesOf, unaccepted,
+    view, study, drawn, redrawn, turns, policy, saving, assessment: live.assessment, assessed, isLive: live.live, liveProblem: live.problem, differences: live.differences, mayType, busy, problem, problemOf, at, runInHand, editor, explained, allColumns, notesOf, unaccepted,
     contentOf, preview, store, change, reload, act, changeRun, askedAt, goToRemark, earlierOf, earlierSource,
     undo: () => walk(undoStep(history.value)),
     redo: () => walk(redoStep(history.value)),
