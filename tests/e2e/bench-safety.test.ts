@@ -3,6 +3,7 @@ import { afterAll, afterEach, beforeAll, expect, it } from 'vitest'
 import type { StudyView } from '#shared/schemas/bench'
 import { expectNoAxeFindings, signIn, startApp, visit, type App, type Window } from './app'
 import { bookStudy } from './booked-study'
+import { expectFocus } from './keyboard'
 
 /** What the bench must not let happen: a slip taken for a value, a typed value lost, slowness of a cold limb called disease. */
 let app: App
@@ -12,8 +13,10 @@ let studyUrl = ''
 /** One that was not asked, and one whose answer is another today: with a wire in place nothing goes on until it is corrected. */
 async function askCautions(page: Page): Promise<void> {
   const cautions = page.locator('[data-test=cautions]')
-  await cautions.getByRole('group', { name: 'Lymphoedema' }).getByLabel('yes').check()
+  await cautions.getByRole('group', { name: 'Lymphoedema' }).getByLabel('yes').focus()
+  await page.keyboard.press('Space')
   await page.getByText('lymphoedema', { exact: true }).waitFor()
+  await expectFocus(page, /^Correct ?: Lymphoedema/)
   const wire = 'Temporary pacing wire or other external cardiac lead'
   for (const [answer, state] of [['yes', 'detached'], ['no', 'visible']] as const) {
     await cautions.getByRole('button', { name: new RegExp(`^Correct ?: ${wire}`) }).click()
